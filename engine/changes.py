@@ -1,0 +1,70 @@
+"""The changes a desk can make to a week, as frozen values; `engine.week` says what each does."""
+
+from dataclasses import dataclass
+from typing import Any, Literal
+
+from engine.figures import Customer, Depot, RateKey, RateRow
+
+What = Literal["depot", "customer", "rate", "rule"]
+Key = str | RateKey
+
+
+@dataclass(frozen=True, slots=True)
+class Add:
+    """Put in a depot, a customer or a rate row.
+
+    `place` is a depot's or customer's position among its like, or the id of a rate row that was taken
+    out before and comes back; None puts it last.
+    """
+
+    record: Depot | Customer | RateRow
+    place: int | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Remove:
+    """Take out a depot, a customer or a rate row."""
+
+    what: What
+    key: Key
+
+
+@dataclass(frozen=True, slots=True)
+class Alter:
+    """Give one field another value; for a rule, `key` is the empty string.
+
+    The field `name` of a depot or customer renames it everywhere. The lane and haulier of a rate row
+    are what names it: to alter those, remove the row and add another.
+    """
+
+    what: What
+    key: Key
+    field: str
+    value: Any
+
+
+@dataclass(frozen=True, slots=True)
+class SetHold:
+    """Fix the quantity on a rate row, with a reason; an earlier hold on it is replaced."""
+
+    key: RateKey
+    quantity: Any
+    reason: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Lift:
+    """Take a hold away."""
+
+    key: RateKey
+
+
+@dataclass(frozen=True, slots=True)
+class Together:
+    """Several changes that are one act: a paste, or the undoing of one."""
+
+    changes: tuple["Change", ...]
+    note: str = ""
+
+
+Change = Add | Remove | Alter | SetHold | Lift | Together

@@ -1,0 +1,256 @@
+"""A week: its figures as uploaded plus the changes made since. Frozen values, pure functions, no I/O."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field, fields, replace
+from decimal import Decimal
+from types import MappingProxyType
+from typing import Any
+
+from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
+from engine.figures import Customer, Depot, Hold, Order, RateKey, RateRow, Rules
+from engine.rates import Rates
+
+FIELDS = {
+    "depot": frozenset(f.name for f in fields(Depot)),
+    "customer": frozenset(f.name for f in fields(Customer)) | {"ordered"},
+    "rate": frozenset(f.name for f in fields(RateRow)) - {"depot", "customer", "haulier"},
+    "rule": frozenset(f.name for f in fields(Rules)),
+}
+
+
+class Refused(ValueError):
+    """A change that does not fit the week it was made to; the message says why, as a sentence."""
+
+
+def _named(records: tuple[Any, ...]) -> Mapping[str, Any]:
+    return MappingProxyType({record.name: record for record in records})
+
+
+@dataclass(frozen=True, eq=False)
+class Week:
+    """One planning period. Depots and customers stand in sheet order, by name.
+
+    A rate row may name a depot or customer that is not in the week: it waits until that one is.
+    """
+
+    depots: Mapping[str, Depot] = field(default_factory=dict)
+    customers: Mapping[str, Customer] = field(default_factory=dict)
+    rates: Rates = field(default_factory=Rates)
+    rules: Rules = field(default_factory=Rules)
+    holds: Mapping[RateKey, Hold] = field(default_factory=dict)
+
+    @classmethod
+    def of(
+        cls,
+        depots: tuple[Depot, ...],
+        customers: tuple[Customer, ...],
+        rates: Rates | tuple[RateRow, ...],
+        rules: Rules | None = None,
+        holds: Mapping[RateKey, Hold] | None = None,
+    ) -> "Week":
+        """A week of these figures; names must be distinct."""
+        for what, records in (("depot", depots), ("customer", customers)):
+            names = [record.name for record in records]
+            twice = next((name for name in names if names.count(name) > 1), None) if _repeats(names) else None
+            if twice is not None:
+                raise Refused(f"The {what} '{twice}' is there twice.")
+        table = rates if isinstance(rates, Rates) else Rates.of(rates)
+        return cls(_named(depots), _named(customers), table, rules or Rules(), MappingProxyType(holds or {}))
+
+    def __eq__(self, other: object) -> bool:
+        if not isinstance(other, Week):
+            return NotImplemented
+        return (
+            list(self.depots.values()) == list(other.depots.values())
+            and list(self.customers.values()) == list(other.customers.values())
+            and self.rules == other.rules
+            and self.holds == other.holds
+            and self.rates == other.rates
+        )
+
+    __hash__ = None  # type: ignore[assignment]
+
+    @property
+    def is_empty(self) -> bool:
+        return not self.depots and not self.customers and not len(self.rates)
+
+    def apply(self, change: Change) -> "Week":
+        """The week after a change.
+
+        Raises:
+            Refused: the change names what is not there, or adds what is; the week is as it was.
+        """
+        match change:
+            case Add(record=RateRow() as row, place=place):
+                return replace(self, rates=_with_row(self.rates, row, place))
+            case Add(record=record, place=place):
+                what = "depot" if isinstance(record, Depot) else "customer"
+                return self._with(what, _inserted(what, self._of(what), record, place))
+            case Remove(what="rate", key=RateKey() as key):
+                if key in self.holds:
+                    raise Refused(f"{describe(key)} is held: lift the hold before taking the row out.")
+                return replace(self, rates=self.rates.without_row(_row_id(self.rates, key)))
+            case Remove(what=what, key=str(name)):
+                self._record(what, name)
+                return self._with(what, {n: r for n, r in self._of(what).items() if n != name})
+            case Alter():
+                return self._altered(change)
+            case SetHold(key=key, quantity=quantity, reason=reason):
+                _row_id(self.rates, key)
+                return self._holding({**self.holds, key: Hold(quantity, reason)})
+            case Lift(key=key):
+                if key not in self.holds:
+                    raise Refused(f"{describe(key)} is not held: there is nothing to lift.")
+                return self._holding({k: hold for k, hold in self.holds.items() if k != key})
+            case Together(changes=changes):
+                week = self
+                for one in changes:
+                    week = week.apply(one)
+                return week
+        raise Refused(f"This is no change that a week knows: {change!r}.")
+
+    def inverse(self, change: Change) -> Change:
+        """The change that brings this week back once `change` has been applied to it."""
+        match change:
+            case Add(record=RateRow() as row, place=place):
+                rates = _with_row(self.rates, row, place)
+                return Remove("rate", rates.key_of(rates.end - 1 if place is None else place))
+            case Add(record=record):
+                return Remove("depot" if isinstance(record, Depot) else "customer", record.name)
+            case Remove(what="rate", key=RateKey() as key):
+                number = _row_id(self.rates, key)
+                row = self.rates.row(number)
+                if row is None:
+                    raise Refused(f"There is no rate row for {describe(key)}.")
+                return Add(row, place=number)
+            case Remove(what=what, key=str(name)):
+                return Add(self._record(what, name), place=list(self._of(what)).index(name))
+            case Alter(what="rate", key=RateKey() as key, field=name):
+                return Alter("rate", key, name, getattr(self.rates.row(_row_id(self.rates, key)), name))
+            case Alter(what="rule", field=name):
+                return Alter("rule", "", name, getattr(self.rules, name))
+            case Alter(what=what, key=str(key), field="name", value=new):
+                return Alter(what, new, "name", key)
+            case Alter(what="customer", key=str(key), field="ordered"):
+                return Alter("customer", key, "orders", self._record("customer", key).orders)
+            case Alter(what=what, key=str(key), field=name):
+                return Alter(what, key, name, getattr(self._record(what, key), name))
+            case SetHold(key=key) | Lift(key=key):
+                hold = self.holds.get(key)
+                return Lift(key) if hold is None else SetHold(key, hold.quantity, hold.reason)
+            case Together(changes=changes, note=note):
+                back: list[Change] = []
+                week = self
+                for one in changes:
+                    back.insert(0, week.inverse(one))
+                    week = week.apply(one)
+                return Together(tuple(back), note)
+        raise Refused(f"This is no change that a week knows: {change!r}.")
+
+    def _of(self, what: str) -> Mapping[str, Any]:
+        return self.depots if what == "depot" else self.customers
+
+    def _with(self, what: str, records: Mapping[str, Any]) -> "Week":
+        frozen = MappingProxyType(records)
+        return replace(self, depots=frozen) if what == "depot" else replace(self, customers=frozen)
+
+    def _holding(self, holds: dict[RateKey, Hold]) -> "Week":
+        return replace(self, holds=MappingProxyType(holds))
+
+    def _record(self, what: str, name: str) -> Any:
+        try:
+            return self._of(what)[name]
+        except KeyError:
+            raise Refused(f"There is no {what} '{name}' in the week.") from None
+
+    def _altered(self, change: Alter) -> "Week":
+        what, key, name, value = change.what, change.key, change.field, change.value
+        if name not in FIELDS[what]:
+            raise Refused(f"A {what} has no figure called '{name}' that can be altered.")
+        if what == "rule":
+            return replace(self, rules=replace(self.rules, **{name: value}))
+        if isinstance(key, RateKey):
+            number = _row_id(self.rates, key)
+            row = self.rates.row(number)
+            if row is None:
+                raise Refused(f"There is no rate row for {describe(key)}.")
+            return replace(self, rates=self.rates.with_row(number, replace(row, **{name: value})))
+        record = self._record(what, key)
+        if name == "name":
+            return self._renamed(what, key, value)
+        new = reordered(record, value) if name == "ordered" else replace(record, **{name: value})
+        return self._with(what, {**self._of(what), key: new})
+
+    def _renamed(self, what: str, old: str, new: str) -> "Week":
+        if new == old:
+            return self
+        if new in self._of(what):
+            raise Refused(f"There is a {what} '{new}' already: two of one name cannot be told apart.")
+        if self.rates.name_used(what, new):
+            raise Refused(f"Rate rows name a {what} '{new}' already: rename or take out those rows first.")
+        renamed = {
+            (new if name == old else name): (replace(record, name=new) if name == old else record)
+            for name, record in self._of(what).items()
+        }
+        holds = {
+            (key._replace(**{what: new}) if getattr(key, what) == old else key): hold
+            for key, hold in self.holds.items()
+        }
+        week = replace(self._with(what, renamed), rates=self.rates.renamed(what, old, new))._holding(holds)
+        if what == "depot":
+            tied = [c for c in self.customers.values() if c.one_depot == old]
+            for customer in tied:
+                week = week._altered(Alter("customer", customer.name, "one_depot", new))
+        return week
+
+
+def reordered(customer: Customer, ordered: Decimal) -> Customer:
+    """The customer with another total order.
+
+    A rise goes to the last order row; a fall is taken from the last row backwards, so that numbers and
+    days of the earlier rows stay.
+    """
+    orders = list(customer.orders) or [Order(Decimal(0))]
+    difference = ordered - customer.ordered
+    if difference >= 0:
+        orders[-1] = replace(orders[-1], quantity=orders[-1].quantity + difference)
+        return replace(customer, orders=tuple(orders))
+    for position in reversed(range(len(orders))):
+        taken = max(difference, -orders[position].quantity)
+        orders[position] = replace(orders[position], quantity=orders[position].quantity + taken)
+        difference -= taken
+    return replace(customer, orders=tuple(orders))
+
+
+def describe(key: RateKey) -> str:
+    """A rate row's name for a sentence."""
+    haulier = f" by {key.haulier}" if key.haulier else ""
+    count = f" (row {key.number} of its kind)" if key.number > 1 else ""
+    return f"{key.depot} to {key.customer}{haulier}{count}"
+
+
+def _repeats(names: list[str]) -> bool:
+    return len(set(names)) < len(names)
+
+
+def _row_id(rates: Rates, key: RateKey) -> int:
+    number = rates.find(key)
+    if number is None:
+        raise Refused(f"There is no rate row for {describe(key)}.")
+    return number
+
+
+def _with_row(rates: Rates, row: RateRow, place: int | None) -> Rates:
+    if place is None:
+        return rates.with_row(rates.end, row)
+    if place not in rates.removed:
+        raise Refused(f"No rate row was taken out at place {place}: there is nothing to put back.")
+    return rates.with_row(place, row)
+
+
+def _inserted(what: str, records: Mapping[str, Any], record: Any, place: int | None) -> dict[str, Any]:
+    if record.name in records:
+        raise Refused(f"There is a {what} '{record.name}' already.")
+    items = list(records.items())
+    items.insert(len(items) if place is None else place, (record.name, record))
+    return dict(items)
