@@ -1,0 +1,1 @@
+"""The desk in the browser, and the command line."""
