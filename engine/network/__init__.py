@@ -1,0 +1,7 @@
+"""The exact solver of transportation problems: integers and arrays only, every answer proved."""
+
+from engine.network.flow import Contradiction, Cut, Flow
+from engine.network.problem import UNLIMITED, Problem
+from engine.network.proof import NotProved, Proof, prove
+
+__all__ = ["UNLIMITED", "Contradiction", "Cut", "Flow", "NotProved", "Problem", "Proof", "prove"]
