@@ -50,12 +50,14 @@ DEPOT_COLUMNS = (
 )
 
 CUSTOMER_COLUMNS = (
-    Column("Customer", "name", Kind.NAME, "Who ordered; several rows of one customer are added up", needed=True),
+    Column("Customer", "name", Kind.NAME, "Who ordered; rows of one customer are added up", needed=True),
     Column("Ordered", "ordered", Kind.QUANTITY, "What was ordered for the whole week", needed=True),
-    Column("Charge if short", "charge_if_short", Kind.PRICE, "Cost per unit not delivered; blank takes the week's"),
+    Column(
+        "Charge if short", "charge_if_short", Kind.PRICE, "Cost per unit not delivered; blank: the week's"
+    ),
     Column("Priority", "priority", Kind.PRIORITY, "A is served before B before C; blank counts as C"),
     Column("One depot", "one_depot", Kind.ONE_DEPOT, "yes: a single depot serves; a depot's name: that one"),
-    Column("May decline", "may_decline", Kind.YES, "yes: served only where that costs less than the charge if short"),
+    Column("May decline", "may_decline", Kind.YES, "yes: served only where that costs less than being short"),
     Column("Smallest drop", "smallest_drop", Kind.QUANTITY, "A delivery is nothing, or at least this"),
     Column("Order number", "number", Kind.TEXT, "Kept for the loading lists"),
     Column("Day", "day", Kind.TEXT, "Delivery day, kept for the loading lists"),
@@ -87,7 +89,9 @@ RULE_COLUMNS = (
     Column("Fuel surcharge %", "fuel_surcharge", Kind.PERCENT, "On every rate that has none of its own"),
     Column("Load size", "load_size", Kind.QUANTITY, "What one vehicle carries"),
     Column("When short", "when_short", Kind.TEXT, "charge, priority or even share"),
-    Column("Charge if short", "charge_if_short", Kind.PRICE, "Per unit not delivered, where a customer has none"),
+    Column(
+        "Charge if short", "charge_if_short", Kind.PRICE, "Per unit, where a customer has none of its own"
+    ),
     Column("Step", "step", Kind.QUANTITY, "What even shares are rounded down to, a pallet for instance"),
 )
 """The rows of the *Rules* sheet (its own headings are Rule and Value)."""

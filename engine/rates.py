@@ -154,7 +154,7 @@ class Rates:
     """
 
     table: RateTable = NO_ROWS
-    overlay: Mapping[int, RateRow] = MappingProxyType({})
+    overlay: Mapping[int, RateRow] = field(default_factory=dict)
     removed: frozenset[int] = frozenset()
     added: int = 0
 
@@ -174,8 +174,6 @@ class Rates:
         if self.table is other.table and self.overlay == other.overlay and self.removed == other.removed:
             return True
         return len(self) == len(other) and all(a == b for a, b in zip(self, other, strict=True))
-
-    __hash__ = None  # type: ignore[assignment]
 
     @property
     def end(self) -> int:
@@ -233,10 +231,10 @@ class Rates:
                 new if name == old else name for name in getattr(self.table, f"{what}_names")
             )
         }
-        overlay = {
-            number: replace(row, **{what: new}) if getattr(row, what) == old else row
-            for number, row in self.overlay.items()
-        }
+        overlay: dict[int, RateRow] = {}
+        for number, row in self.overlay.items():
+            named: dict[str, Any] = {what: new} if getattr(row, what) == old else {}
+            overlay[number] = replace(row, **named)
         return replace(self, table=replace(self.table, **names), overlay=MappingProxyType(overlay))
 
     def name_used(self, what: str, name: str) -> bool:

@@ -68,8 +68,6 @@ class Week:
             and self.rates == other.rates
         )
 
-    __hash__ = None  # type: ignore[assignment]
-
     @property
     def is_empty(self) -> bool:
         return not self.depots and not self.customers and not len(self.rates)
@@ -115,18 +113,16 @@ class Week:
             case Add(record=RateRow() as row, place=place):
                 rates = _with_row(self.rates, row, place)
                 return Remove("rate", rates.key_of(rates.end - 1 if place is None else place))
-            case Add(record=record):
-                return Remove("depot" if isinstance(record, Depot) else "customer", record.name)
+            case Add(record=Depot() as depot):
+                return Remove("depot", depot.name)
+            case Add(record=Customer() as customer):
+                return Remove("customer", customer.name)
             case Remove(what="rate", key=RateKey() as key):
-                number = _row_id(self.rates, key)
-                row = self.rates.row(number)
-                if row is None:
-                    raise Refused(f"There is no rate row for {describe(key)}.")
-                return Add(row, place=number)
+                return Add(self._rate_row(key), place=_row_id(self.rates, key))
             case Remove(what=what, key=str(name)):
                 return Add(self._record(what, name), place=list(self._of(what)).index(name))
             case Alter(what="rate", key=RateKey() as key, field=name):
-                return Alter("rate", key, name, getattr(self.rates.row(_row_id(self.rates, key)), name))
+                return Alter("rate", key, name, getattr(self._rate_row(key), name))
             case Alter(what="rule", field=name):
                 return Alter("rule", "", name, getattr(self.rules, name))
             case Alter(what=what, key=str(key), field="name", value=new):
@@ -163,6 +159,12 @@ class Week:
         except KeyError:
             raise Refused(f"There is no {what} '{name}' in the week.") from None
 
+    def _rate_row(self, key: RateKey) -> RateRow:
+        row = self.rates.row(_row_id(self.rates, key))
+        if row is None:
+            raise Refused(f"There is no rate row for {describe(key)}.")
+        return row
+
     def _altered(self, change: Alter) -> "Week":
         what, key, name, value = change.what, change.key, change.field, change.value
         if name not in FIELDS[what]:
@@ -170,11 +172,8 @@ class Week:
         if what == "rule":
             return replace(self, rules=replace(self.rules, **{name: value}))
         if isinstance(key, RateKey):
-            number = _row_id(self.rates, key)
-            row = self.rates.row(number)
-            if row is None:
-                raise Refused(f"There is no rate row for {describe(key)}.")
-            return replace(self, rates=self.rates.with_row(number, replace(row, **{name: value})))
+            row = replace(self._rate_row(key), **{name: value})
+            return replace(self, rates=self.rates.with_row(_row_id(self.rates, key), row))
         record = self._record(what, key)
         if name == "name":
             return self._renamed(what, key, value)
@@ -192,10 +191,7 @@ class Week:
             (new if name == old else name): (replace(record, name=new) if name == old else record)
             for name, record in self._of(what).items()
         }
-        holds = {
-            (key._replace(**{what: new}) if getattr(key, what) == old else key): hold
-            for key, hold in self.holds.items()
-        }
+        holds = {_key_renamed(key, what, old, new): hold for key, hold in self.holds.items()}
         week = replace(self._with(what, renamed), rates=self.rates.renamed(what, old, new))._holding(holds)
         if what == "depot":
             tied = [c for c in self.customers.values() if c.one_depot == old]
@@ -227,6 +223,12 @@ def describe(key: RateKey) -> str:
     haulier = f" by {key.haulier}" if key.haulier else ""
     count = f" (row {key.number} of its kind)" if key.number > 1 else ""
     return f"{key.depot} to {key.customer}{haulier}{count}"
+
+
+def _key_renamed(key: RateKey, what: str, old: str, new: str) -> RateKey:
+    if getattr(key, what) != old:
+        return key
+    return key._replace(depot=new) if what == "depot" else key._replace(customer=new)
 
 
 def _repeats(names: list[str]) -> bool:
