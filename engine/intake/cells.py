@@ -1,0 +1,199 @@
+"""Files to sheets of raw cells, with addresses. What a cell means is decided elsewhere."""
+
+import io
+import os
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any, BinaryIO
+
+import python_calamine as calamine
+
+from engine.intake.delimited import rows_of_text
+from engine.intake.numbers import ErrorCell, FormulaCell, PercentCell
+from engine.intake.refusal import (
+    Limits,
+    Unreadable,
+    damaged,
+    kind_of,
+    not_a_spreadsheet,
+    protected,
+    read_whole,
+    too_large,
+    unpacked,
+)
+from engine.intake.workbook_marks import Marks, has_entities, marks_of, percent_styles, sheet_parts, used_area
+
+Source = str | os.PathLike[str] | bytes | BinaryIO | tuple[str, bytes] | tuple[str, BinaryIO]
+"""A path; bytes or an open file; or a name with bytes or an open file."""
+
+
+@dataclass(frozen=True, eq=False)
+class Sheet:
+    """One sheet: `rows` are lists of raw cells, all equally long, from row 1 and column A on."""
+
+    file: str
+    name: str
+    rows: Sequence[Sequence[Any]]
+    hidden: bool = False
+    hidden_rows: frozenset[int] = frozenset()
+    merged: tuple[tuple[tuple[int, int], tuple[int, int]], ...] = ()
+    is_text: bool = False
+
+    @property
+    def width(self) -> int:
+        return len(self.rows[0]) if self.rows else 0
+
+
+def address(row: int, column: int) -> str:
+    """The address of a cell, counted from 0, as spreadsheets write it: (0, 1) is B1."""
+    return f"{column_letters(column)}{row + 1}"
+
+
+def column_letters(column: int) -> str:
+    """The letters of a column, counted from 0."""
+    letters = ""
+    column += 1
+    while column:
+        column, rest = divmod(column - 1, 26)
+        letters = chr(65 + rest) + letters
+    return letters
+
+
+def read_sheets(sources: Source | Iterable[Source], limits: Limits | None = None) -> list[Sheet]:
+    """All sheets of one file or of several, in order.
+
+    Raises:
+        Unreadable: a file that is no spreadsheet, is damaged, protected, or costs too much.
+        OSError: a path that cannot be opened.
+    """
+    limits = limits or Limits()
+    single = isinstance(sources, (str, bytes, os.PathLike)) or hasattr(sources, "read") or _is_named(sources)
+    return [
+        sheet
+        for source in ([sources] if single else sources)  # type: ignore[union-attr]
+        for sheet in _sheets_of(source, limits)  # type: ignore[arg-type]
+    ]
+
+
+def _is_named(source: object) -> bool:
+    return (
+        isinstance(source, tuple)
+        and len(source) == 2
+        and isinstance(source[0], str)
+        and (isinstance(source[1], bytes) or hasattr(source[1], "read"))
+    )
+
+
+def _sheets_of(source: Source, limits: Limits) -> list[Sheet]:
+    name, data = _opened(source, limits)
+    kind = kind_of(data, name)
+    if kind == "text":
+        return [Sheet(name, Path(name).stem, rows_of_text(data, name, limits), is_text=True)]
+    if kind == "zip":
+        return _zipped(data, name, limits)
+    return _calamine_sheets(data, name, {}, limits)
+
+
+def _opened(source: Source, limits: Limits) -> tuple[str, bytes]:
+    if isinstance(source, (str, os.PathLike)):
+        path = Path(source)
+        if path.is_dir():
+            raise Unreadable("not a spreadsheet", "This is a folder.", "Name the file in it.", path.name)
+        with path.open("rb") as opened:
+            return path.name, read_whole(opened, path.name, limits)
+    name, content = source if isinstance(source, tuple) else (_name_of(source), source)
+    stream = io.BytesIO(content) if isinstance(content, bytes) else content
+    return name, read_whole(stream, name, limits)
+
+
+def _name_of(source: object) -> str:
+    name = getattr(source, "name", "")
+    return Path(name).name if isinstance(name, str) else ""
+
+
+def _zipped(data: bytes, name: str, limits: Limits) -> list[Sheet]:
+    parts = unpacked(data, name, limits)
+    if any(has_entities(part[:100_000]) for key, part in parts.items() if not key.endswith(".bin")):
+        raise Unreadable(
+            "entities in the file",
+            "The workbook declares document types or entities of its own, which no spreadsheet needs.",
+            "Open it in a spreadsheet program, save it again and upload that.",
+            name,
+        )
+    marks: dict[str, Marks] = {}
+    if any(key.casefold() == "xl/workbook.xml" for key in parts):
+        percent = percent_styles(parts)
+        for sheet, part in sheet_parts(parts).items():
+            xml = parts.pop(part, b"")
+            area = used_area(xml, limits.cells)
+            if area[0] * area[1] > limits.cells:
+                raise too_large(
+                    name, f"The used area of sheet '{sheet}' is {area[0]} rows by {area[1]} columns."
+                )
+            marks[sheet] = marks_of(xml, percent, area)
+    elif not {"xl/workbook.bin", "content.xml"} & {key.casefold() for key in parts}:
+        raise not_a_spreadsheet(name)
+    del parts
+    return _calamine_sheets(data, name, marks, limits)
+
+
+def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Limits) -> list[Sheet]:
+    sheets = []
+    try:
+        with calamine.CalamineWorkbook.from_filelike(io.BytesIO(data)) as book:
+            for meta in book.sheets_metadata:
+                if meta.typ != calamine.SheetTypeEnum.WorkSheet:
+                    continue
+                sheet = book.get_sheet_by_name(meta.name)
+                if sheet.total_height * sheet.total_width > limits.cells:
+                    raise too_large(name, f"Sheet '{meta.name}' has more than {limits.cells} cells.")
+                rows = sheet.to_python(skip_empty_area=False)
+                known = marks.get(meta.name)
+                if known is not None:
+                    rows = _marked(rows, known)
+                sheets.append(
+                    Sheet(
+                        name,
+                        meta.name,
+                        rows,
+                        hidden=meta.visible != calamine.SheetVisibleEnum.Visible,
+                        hidden_rows=known.hidden_rows if known else frozenset(),
+                        merged=tuple(sheet.merged_cell_ranges or ()),
+                    )
+                )
+    except calamine.PasswordError as error:
+        raise protected(name) from error
+    except (calamine.CalamineError, OSError, ValueError) as error:
+        if isinstance(error, Unreadable):
+            raise
+        if "assword" in str(error) or "ncrypt" in str(error):
+            raise protected(name) from error
+        raise damaged(name) from error
+    except BaseException as error:  # a panic of the reader is no Exception, yet only says: damaged
+        if type(error).__name__ != "PanicException":
+            raise
+        raise damaged(name) from error
+    return sheets
+
+
+def _marked(rows: list[list[Any]], marks: Marks) -> list[list[Any]]:
+    """The cells with errors, missing results and percent formats worked in."""
+    spoilt: dict[tuple[int, int], Any] = {
+        place: FormulaCell(f"={text}") for place, text in marks.no_result.items()
+    }
+    spoilt.update({place: ErrorCell(text) for place, text in marks.errors.items()})
+    if spoilt:
+        height = max(len(rows), max(row for row, _ in spoilt) + 1)
+        width = max(len(rows[0]) if rows else 0, max(column for _, column in spoilt) + 1)
+        for row in rows:
+            row.extend([""] * (width - len(row)))
+        rows.extend([""] * width for _ in range(height - len(rows)))
+        for (row_number, column), cell in spoilt.items():
+            rows[row_number][column] = cell
+    for row_number, column in marks.percent:
+        if row_number < len(rows) and column < len(rows[row_number]):
+            cell = rows[row_number][column]
+            if type(cell) is float:
+                rows[row_number][column] = PercentCell(cell)
+    return rows
