@@ -1,0 +1,247 @@
+"""The depot exchange: a primal-dual method for few depots and many customers.
+
+At given depot prices every customer takes its cheapest rows. What is then too much at one depot and too
+little at another is handed over along cheapest chains of exchanges at single customers, while the
+prices rise; the network that is searched has the depots only. To start near the end, a sample of the
+customers is solved first, with shares of the supply, then a larger one, then all. And of all customers
+only those enter the search whose rows could change hands within the prices' expected movement; when the
+prices move further, more are let in.
+
+Hitchcock (1941) for the problem; Ford & Fulkerson (1956), Tomizawa (1971) and Edmonds & Karp (1972) for
+the primal-dual method with prices; Ahuja, Magnanti & Orlin (1993), chapter 9, as a textbook.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+
+from engine.exact import Integers, TooLarge, total
+from engine.network.compiled import kernel
+from engine.network.customers import FAR, UNSERVED, Rows, State, fill, mark_regular
+from engine.network.flow import Contradiction, Cut
+from engine.network.handover import list_users, renew
+from engine.network.paths import (
+    DONE,
+    REACHED,
+    RELIST,
+    STUCK,
+    TOO_FAR,
+    find_paths,
+    level_out,
+    new_search,
+)
+from engine.network.problem import Figures, Problem
+
+SAMPLE = 8
+"""Customers per depot in the smallest sample."""
+
+STEP = 4
+"""Each sample is so many times larger than the one before."""
+
+UNSERVABLE = 5
+"""Outcome: one customer's rows cannot carry what it needs."""
+
+
+def solve(problem: Problem, price: Integers, quantity: Integers | None) -> tuple[Integers, Integers, Integers]:
+    """A least-cost flow of `problem`: quantities per row, depot prices, customer prices, not yet proved.
+
+    price:    (depots,) prices to start from
+    quantity: (rows,) quantities to start from, as far as they suit the prices; None to start afresh
+    Raises Contradiction if there is no flow, TooLarge if prices could leave int64.
+    """
+    _check_reach(problem)
+    rows = _without_lower_limits(problem)
+    depots = problem.depots
+    flow = np.zeros(problem.rows, dtype=np.int64)
+    if quantity is not None:
+        flow += quantity if problem.at_least is None else np.maximum(quantity - problem.at_least, 0)
+    state = State(
+        flow,
+        price.copy(),
+        np.zeros(depots, dtype=np.int64),
+        np.empty((depots, depots), dtype=np.int64),
+        np.empty((depots, depots), dtype=np.int64),
+    )
+    outcome, place = run(rows, state, quantity is not None)
+    if outcome == TOO_FAR:
+        raise TooLarge("Prices grow beyond what can be computed exactly: use a larger currency unit.")
+    if outcome == UNSERVABLE:
+        raise Contradiction(cut(problem, np.zeros(depots, dtype=bool), np.arange(problem.customers) == place))
+    if outcome == STUCK:
+        raise Contradiction(_cut_of_stuck(problem, rows, state))
+    customer_price = np.empty(problem.customers, dtype=np.int64)
+    price_customers(rows, state, customer_price)
+    if depots:
+        customer_price += state.price[0]
+        state.price[:] -= state.price[0]
+    if problem.at_least is not None:
+        flow += problem.at_least
+    return flow, state.price, customer_price
+
+
+def cut(problem: Problem, depots: np.ndarray, customers: np.ndarray) -> Cut:
+    """The figures of a cut: `depots` and `customers` are masks, see `Cut`."""
+    from_inside = depots[problem.depot]
+    to_inside = customers[problem.customer]
+    limited = bound = 0
+    if problem.at_most is not None:
+        limited = total(problem.at_most[~from_inside & to_inside])
+    if problem.at_least is not None:
+        bound = total(problem.at_least[from_inside & ~to_inside])
+    return Cut(
+        depots=tuple(np.flatnonzero(depots).tolist()),
+        customers=tuple(np.flatnonzero(customers).tolist()),
+        needed=total(problem.demand[customers]),
+        brought=total(problem.supply[depots]),
+        limited=limited,
+        bound=bound,
+    )
+
+
+def _cut_of_stuck(problem: Problem, rows: Rows, state: State) -> Cut:
+    """Depots that the search reaches have too much, and their customers can take nothing from others."""
+    search = new_search(problem.depots)
+    find_paths(state, search)
+    depots = search.reach < REACHED
+    customers = np.zeros(problem.customers, dtype=bool)
+    customers[problem.customer[depots[problem.depot] & (state.flow > 0)]] = True
+    return cut(problem, depots, customers)
+
+
+def _check_reach(problem: Problem) -> None:
+    """The longest path, twice the largest cost per depot, must stay below every bound of the search."""
+    cost = problem.cost
+    largest = max(int(cost.max(initial=0)), -int(cost.min(initial=0)))
+    bound = 2**57 // (problem.depots + 1)
+    if largest > bound:
+        raise TooLarge(
+            f"A cost of {largest} is too large for {problem.depots} depots, up to {bound} can be "
+            f"computed with exactly: use a larger currency unit."
+        )
+
+
+def _without_lower_limits(problem: Problem) -> Rows:
+    """The same problem with lower limits taken off everywhere; raises Contradiction if they do not fit."""
+    supply, demand, at_least, at_most = problem.supply, problem.demand, problem.at_least, problem.at_most
+    room = np.empty(0, dtype=np.int64) if at_most is None else at_most
+    if at_least is not None:
+        supply, demand = supply.copy(), demand.copy()
+        everybody = np.ones(problem.depots, dtype=bool)
+        outcome, place = take_off(problem.figures, supply, demand)
+        if outcome == 1:
+            raise Contradiction(cut(problem, everybody, np.arange(problem.customers) != place))
+        if outcome == 2:
+            nobody = np.zeros(problem.customers, dtype=bool)
+            raise Contradiction(cut(problem, np.arange(problem.depots) == place, nobody))
+        if at_most is not None:
+            room = at_most - at_least
+    regular = np.empty(problem.customers, dtype=np.uint8)
+    mark_regular(problem.start, problem.depot, problem.depots, regular)
+    return Rows(supply, demand, problem.start, problem.depot, problem.cost, room, regular)
+
+
+@kernel
+def take_off(figures: Figures, supply: Integers, demand: Integers) -> tuple[int, int]:
+    """Takes the lower limits off `supply` and `demand`.
+
+    Returns (0, 0), (1, customer) or (2, depot) where they ask for more than there is.
+    """
+    for j in range(len(demand)):
+        for row in range(figures.start[j], figures.start[j + 1]):
+            bound, i = figures.at_least[row], figures.depot[row]
+            if bound > demand[j]:
+                return 1, j
+            if bound > supply[i]:
+                return 2, i
+            demand[j] -= bound
+            supply[i] -= bound
+    return 0, 0
+
+
+@kernel
+def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
+    """Samples first, then all customers. Returns the outcome, and the customer that cannot be served.
+
+    again: whether `state.flow` holds an earlier flow; then no samples are needed
+    """
+    depots, customers = len(rows.supply), len(rows.demand)
+    stride = 1
+    if not again:
+        while customers // (stride * STEP) >= SAMPLE * depots:
+            stride *= STEP
+    while True:
+        outcome, place = solve_sample(rows, state, stride)
+        if stride == 1 or outcome == UNSERVABLE or outcome == TOO_FAR:
+            return outcome, place
+        stride //= STEP
+
+
+@kernel
+def solve_sample(rows: Rows, state: State, stride: int) -> tuple[int, int]:
+    """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`."""
+    chosen = np.arange(0, len(rows.demand), stride)
+    share_out(rows, chosen, stride, state.excess)
+    gap = np.empty(len(chosen), dtype=np.int64)
+    for n in range(len(chosen)):
+        j = chosen[n]
+        gap[n] = fill(rows, state, j)
+        if gap[n] == UNSERVED:
+            return UNSERVABLE, j
+        for row in range(rows.start[j], rows.start[j + 1]):
+            state.excess[rows.depot[row]] += state.flow[row]
+    search = new_search(len(rows.supply))
+    wanted = len(chosen) // 8 + 4 * len(rows.supply)
+    while True:
+        slack = FAR
+        active = chosen
+        if 2 * wanted < len(chosen):
+            slack = np.partition(gap, wanted)[wanted]
+            active = chosen[gap <= slack]
+        wanted *= 2
+        outcome = RELIST
+        while outcome == RELIST:
+            users = list_users(rows, state, active)
+            for i in range(len(rows.supply)):
+                renew(rows, state, users, i)
+            outcome = level_out(rows, state, users, search, slack)
+        if outcome == DONE or outcome == STUCK or outcome == TOO_FAR:
+            return outcome, 0
+        for n in range(len(chosen)):
+            gap[n] = fill(rows, state, chosen[n])
+
+
+@kernel
+def share_out(rows: Rows, chosen: Integers, stride: int, excess: Integers) -> None:
+    """Sets `excess` to minus each depot's supply, or to minus its share for a sample.
+
+    Shares are only about right, which is enough for prices to start from.
+    """
+    if stride == 1:
+        excess[:] = -rows.supply
+        return
+    sampled, whole = 0.0, 0.0
+    for j in chosen:
+        sampled += rows.demand[j]
+    for i in range(len(excess)):
+        whole += rows.supply[i]
+    for i in range(len(excess)):
+        excess[i] = -int(rows.supply[i] * (sampled / max(whole, 1.0))) - 1
+
+
+@kernel
+def price_customers(rows: Rows, state: State, customer_price: Integers) -> None:
+    """What one more unit costs each customer at the depot prices, within what its rows allow."""
+    for j in range(len(customer_price)):
+        dearest_used, cheapest_free = -FAR, FAR
+        for row in range(rows.start[j], rows.start[j + 1]):
+            reduced = rows.cost[row] - state.price[rows.depot[row]]
+            if state.flow[row] > 0:
+                dearest_used = max(dearest_used, reduced)
+            if len(rows.room) == 0 or state.flow[row] < rows.room[row]:
+                cheapest_free = min(cheapest_free, reduced)
+        if cheapest_free != FAR:
+            customer_price[j] = cheapest_free
+        elif dearest_used != -FAR:
+            customer_price[j] = dearest_used
+        else:
+            customer_price[j] = 0

@@ -1,0 +1,240 @@
+"""Sends what is too much at some depots to where there is too little, along cheapest chains of exchanges.
+
+Successive shortest paths with prices (Tomizawa 1971; Edmonds & Karp 1972), several paths per search as in
+the primal-dual method of Ford & Fulkerson (1956), on a network of the depots alone.
+"""
+
+from __future__ import annotations
+
+from typing import NamedTuple
+
+import numpy as np
+
+from engine.exact import Integers
+from engine.network.compiled import kernel
+from engine.network.customers import FAR, Rows, State
+from engine.network.handover import (
+    Users,
+    add_user,
+    customer_of,
+    offer,
+    remove_user,
+    renew,
+    row_with_room,
+)
+
+REACHED = 2**60
+"""Every real path ends below this price."""
+
+LARGEST_PRICE = 2**59
+"""Prices beyond this stop the search; below it no sum here can leave int64."""
+
+DONE, WIDEN, RELIST, STUCK, TOO_FAR = 0, 1, 2, 3, 4
+
+
+class Search(NamedTuple):
+    """Scratch space of one search, all (depots,).
+
+    reach:  price that each depot would get: its own plus its distance from the nearest depot with too much
+    closed: 0, or FAR once a depot's distance is known
+    before: the depot before it on its path, -1 at the beginning
+    target: depots with too little, nearest first
+    given:  rows that give up, receiving: rows that take over, along the path in hand
+    event:  what happened to those two rows, see `send`
+    """
+
+    reach: Integers
+    closed: Integers
+    before: Integers
+    target: Integers
+    given: Integers
+    taking: Integers
+    event: Integers
+
+
+@kernel
+def new_search(depots: int) -> Search:
+    """Scratch space for `depots` depots."""
+    return Search(
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+    )
+
+
+@kernel
+def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int) -> int:
+    """Moves flow until no depot has too much, with prices rising by no more than `slack` (FAR: any).
+
+    Returns DONE; WIDEN when prices would have to rise further; RELIST when `users` is out of space;
+    STUCK when depots with too much reach none with too little; TOO_FAR when prices grow too large.
+    """
+    base = state.price.copy()
+    while True:
+        targets, limit = find_paths(state, search)
+        if limit < 0:
+            return DONE
+        if targets == 0 and slack == FAR:
+            return STUCK
+        for k in range(len(base)):
+            allowed = slack - (state.price[k] - base[k])
+            if search.reach[k] - state.price[k] > allowed:
+                limit = min(limit, allowed)
+        found = 0
+        for k in range(len(base)):
+            rise = min(limit, search.reach[k] - state.price[k])
+            search.reach[k] = rise
+            state.price[k] += rise
+            if abs(state.price[k]) > LARGEST_PRICE:
+                return TOO_FAR
+        for n in range(targets):
+            target = search.target[n]
+            while state.excess[target] < 0:
+                outcome = send(rows, state, users, search, target)
+                if outcome == RELIST:
+                    return RELIST
+                if outcome == WIDEN:
+                    break
+                found += 1
+        if found == 0:
+            return WIDEN
+
+
+@kernel
+def find_paths(state: State, search: Search) -> tuple[int, int]:
+    """Dijkstra from all depots with too much at once (Dijkstra 1959), as far as all that have too little.
+
+    Returns how many of these were reached and the distance of the farthest; a negative distance if no
+    depot has too much.
+    """
+    depots = len(state.price)
+    reach, closed, price = search.reach, search.closed, state.price
+    wanting, sources = 0, 0
+    for k in range(depots):
+        closed[k] = 0
+        search.before[k] = -1
+        reach[k] = FAR
+        if state.excess[k] > 0:
+            reach[k] = price[k]
+            sources += 1
+        elif state.excess[k] < 0:
+            wanting += 1
+    if sources == 0:
+        return 0, -1
+    nearest, targets, distance = 0, 0, 0
+    while targets < wanting:
+        i = 0
+        while reach[i] - price[i] + closed[i] != nearest:
+            i += 1
+        closed[i] = FAR
+        if state.excess[i] < 0:
+            search.target[targets] = i
+            targets += 1
+            distance = nearest
+            if targets == wanting:
+                break
+        here = reach[i]
+        handover = state.handover[i]
+        nearest = 2 * FAR
+        for k in range(depots):
+            there = here + handover[k]
+            better = there < reach[k]
+            reach[k] = there if better else reach[k]
+            search.before[k] = i if better else search.before[k]
+            nearest = min(nearest, reach[k] - price[k] + closed[k])
+        if nearest > REACHED:
+            break
+    if targets == 0:
+        distance = FAR
+    return targets, distance
+
+
+@kernel
+def send(rows: Rows, state: State, users: Users, search: Search, target: int) -> int:
+    """Sends as much as possible along the path to `target`, if all its exchanges are still at their price.
+
+    Returns DONE if something was sent, WIDEN if not, RELIST if it was sent but `users` is out of space.
+    """
+    amount = -state.excess[target]
+    length, k = 0, target
+    while search.before[k] >= 0:
+        i = search.before[k]
+        if state.handover[i, k] + state.price[i] != state.price[k]:
+            return WIDEN
+        row = state.via[i, k]
+        other = row_with_room(rows, state, customer_of(rows, row), k)
+        amount = min(amount, state.flow[row])
+        if len(rows.room):
+            amount = min(amount, rows.room[other] - state.flow[other])
+        search.given[length], search.taking[length] = row, other
+        length += 1
+        k = i
+    amount = min(amount, state.excess[k])
+    if amount <= 0:
+        return WIDEN
+    state.excess[k] -= amount
+    state.excess[target] += amount
+    move(rows, state, search, length, amount)
+    return follow(rows, state, users, search, length)
+
+
+EMPTIED, BEGUN, FREED, FILLED = 1, 2, 4, 8
+
+
+@kernel
+def move(rows: Rows, state: State, search: Search, length: int, amount: int) -> None:
+    """Moves `amount` at every exchange of the path and notes which rows changed their standing."""
+    limited = len(rows.room) > 0
+    for n in range(length):
+        row, other = search.given[n], search.taking[n]
+        event = 0
+        if limited and state.flow[row] == rows.room[row]:
+            event |= FREED
+        state.flow[row] -= amount
+        if state.flow[row] == 0:
+            event |= EMPTIED
+        if state.flow[other] == 0:
+            event |= BEGUN
+        state.flow[other] += amount
+        if limited and state.flow[other] == rows.room[other]:
+            event |= FILLED
+        search.event[n] = event
+
+
+@kernel
+def follow(rows: Rows, state: State, users: Users, search: Search, length: int) -> int:
+    """Brings lists and exchange costs up to date after `move`."""
+    stale = search.closed
+    stale[:] = 0
+    for n in range(length):
+        event = search.event[n]
+        if event == 0:
+            continue
+        row, other = search.given[n], search.taking[n]
+        i, k = rows.depot[row], rows.depot[other]
+        j = customer_of(rows, row)
+        if event & EMPTIED:
+            remove_user(users, i, row)
+            for target in range(len(stale)):
+                if state.via[i, target] == row:
+                    stale[i] = 1
+        if event & BEGUN:
+            if not add_user(users, k, other, j):
+                return RELIST
+            offer(rows, state, k, other, j)
+        if event & (FREED | FILLED):
+            for used in range(rows.start[j], rows.start[j + 1]):
+                if state.flow[used] == 0:
+                    continue
+                if event & FREED:
+                    offer(rows, state, rows.depot[used], used, j)
+                if event & FILLED and state.via[rows.depot[used], k] == used:
+                    stale[rows.depot[used]] = 1
+    for i in range(len(stale)):
+        if stale[i]:
+            renew(rows, state, users, i)
+    return DONE
