@@ -1,0 +1,123 @@
+"""The shipments of a plan with what a reader needs beside them: orders, days, holds, where the rate stands."""
+
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+from decimal import Decimal
+
+import numpy as np
+
+from engine.exact import total_of
+from engine.figures import Customer
+from engine.planning.plan import Plan, Shipment
+from engine.report.look import Style, number_format, places_of
+from engine.report.sheet import Row, Value
+
+NO_HAULIER = "(no haulier named)"
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """A shipment to be listed.
+
+    `rate_row` counts the week's rate rows from 1, in sheet order; `part` says that the customer gets
+    the rest of its order from elsewhere, or not at all.
+    """
+
+    shipment: Shipment
+    rate_row: int
+    orders: str
+    days: str
+    part: bool
+    reason: str
+
+    @property
+    def haulier(self) -> str:
+        return self.shipment.haulier or NO_HAULIER
+
+
+def lines_of(plan: Plan) -> tuple[Line, ...]:
+    """A line for every shipment, depot by depot in sheet order, then customer by customer."""
+    week = plan.week
+    ids = week.rates.ids_in_order
+    depots = {name: place for place, name in enumerate(week.depots)}
+    customers = {name: place for place, name in enumerate(week.customers)}
+    told = {name: (order_numbers(customer), delivery_days(customer)) for name, customer in week.customers.items()}
+    lines = []
+    for shipment in plan.shipments:
+        number = week.rates.find(shipment.key)
+        if number is None:
+            raise ValueError(f"The plan ships on {shipment.key}, which is no rate row of its week.")
+        hold = week.holds.get(shipment.key)
+        orders, days = told[shipment.customer]
+        lines.append(
+            Line(
+                shipment,
+                1 + int(np.searchsorted(ids, number)),
+                orders,
+                days,
+                part=shipment.quantity < week.customers[shipment.customer].ordered,
+                reason=hold.reason if hold else "",
+            )
+        )
+    return tuple(
+        sorted(lines, key=lambda line: (depots[line.shipment.depot], customers[line.shipment.customer], line.rate_row))
+    )
+
+
+def order_numbers(customer: Customer) -> str:
+    """The customer's order numbers, as one cell."""
+    return ", ".join(dict.fromkeys(order.number for order in customer.orders if order.number))
+
+
+def delivery_days(customer: Customer) -> str:
+    """The customer's delivery days, as one cell."""
+    return ", ".join(dict.fromkeys(order.day for order in customer.orders if order.day))
+
+
+@dataclass(frozen=True, slots=True)
+class ListColumn:
+    """A column of a list of lines: its heading, its width, what it shows of a line, and how."""
+
+    heading: str
+    width: float
+    value: Callable[[Line], Value]
+    number: str | None = None
+    wrap: bool = False
+
+    def style(self, kind: str) -> Style:
+        if self.number is None:
+            return Style(kind, wrap=self.wrap)
+        return Style(kind, self.number, "right")
+
+    @property
+    def heading_style(self) -> Style:
+        return Style("heading", align="left" if self.number is None else "right", wrap=True)
+
+
+def quantity_format(plan: Plan) -> str:
+    """How quantities of this plan are shown: with as many places as any of them needs."""
+    week = plan.week
+    return number_format(
+        max(
+            places_of(shipment.quantity for shipment in plan.shipments),
+            places_of(depot.available for depot in week.depots.values()),
+            places_of(customer.ordered for customer in week.customers.values()),
+        )
+    )
+
+
+def total(values: Iterable[Decimal]) -> Decimal:
+    """Their exact sum."""
+    return total_of(values)
+
+
+def heading_row(columns: Iterable[ListColumn]) -> Row:
+    """The headings of a list."""
+    listed = list(columns)
+    return Row([c.heading for c in listed], [c.heading_style for c in listed], height=30)
+
+
+def styles_of(columns: Iterable[ListColumn]) -> dict[str, list[Style]]:
+    """The styles of a list's rows, by the kind of row."""
+    listed = list(columns)
+    return {kind: [c.style(kind) for c in listed] for kind in ("plain", "held", "total", "short", "group")}

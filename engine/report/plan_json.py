@@ -1,0 +1,76 @@
+"""A plan as JSON: decimals as exact strings, under the field names that other tools rely on."""
+
+from collections.abc import Iterable
+from decimal import Decimal
+from typing import Any
+
+from engine.exact import canonical
+from engine.planning.plan import Plan
+from engine.reasons.values import UnitValue, values
+
+
+def plan_as_json(plan: Plan) -> dict[str, Any]:
+    """The plan as a dictionary that `json.dumps` takes."""
+    rules = plan.week.rules
+    value_of = values(plan)
+    return {
+        "week": rules.week,
+        "unit": rules.unit,
+        "currency": rules.currency,
+        "status": plan.status,
+        "freight_cost": canonical(plan.freight_cost),
+        "unsent_cost": canonical(plan.unsent_cost),
+        "short_cost": canonical(plan.short_cost),
+        "total_cost": canonical(plan.total_cost),
+        "freight_payable": canonical(plan.freight_payable),
+        "shipments": [
+            {
+                "depot": one.depot,
+                "customer": one.customer,
+                "haulier": one.haulier,
+                "quantity": canonical(one.quantity),
+                "loads": one.loads,
+                "rate": canonical(one.rate),
+                "cost": canonical(one.cost),
+                "payable": canonical(one.payable),
+            }
+            for one in plan.shipments
+        ],
+        "short": [{"customer": one.customer, "quantity": canonical(one.quantity)} for one in plan.short],
+        "unsent": [{"depot": one.depot, "quantity": canonical(one.quantity)} for one in plan.unsent],
+        "depot_values": list(_values("depot", value_of.depots)),
+        "customer_values": list(_values("customer", value_of.customers)),
+        "proof": {
+            "exact": plan.proof.exact,
+            "lower_bound": canonical(plan.proof.lower_bound),
+            "gap": canonical(plan.proof.gap),
+            "rounding": canonical(plan.proof.rounding),
+        },
+        "findings": [
+            {
+                "severity": finding.severity.word,
+                "sheet": finding.sheet,
+                "cell": finding.cell,
+                "message": finding.message,
+            }
+            for finding in plan.findings
+        ],
+    }
+
+
+def _values(what: str, found: Iterable[UnitValue]) -> Iterable[dict[str, str | None]]:
+    for value in found:
+        yield {
+            what: value.name,
+            "price": canonical(value.price),
+            "one_more": _text(value.one_more),
+            "one_more_short": _text(value.one_more_short),
+            "one_more_holds_for": _text(value.one_more_holds_for),
+            "one_less": _text(value.one_less),
+            "one_less_short": _text(value.one_less_short),
+            "one_less_holds_for": _text(value.one_less_holds_for),
+        }
+
+
+def _text(value: Decimal | None) -> str | None:
+    return None if value is None else canonical(value)

@@ -1,0 +1,327 @@
+"""The three tables of sheet *Proof*: depots, customers, rate rows.
+
+Every line has a check: 0 is in order, 1 says that the line could improve the plan, 2 that it is outside
+its limits. What a line's cost less prices means for its quantity is said in `engine.network.proof`.
+"""
+
+from collections.abc import Iterator, Sequence
+
+import numpy as np
+
+from engine.figures import ANY_SINGLE_DEPOT
+from engine.network.problem import UNLIMITED
+from engine.planning.model import NO_RATE, Model
+from engine.planning.plan import Plan
+from engine.report.figures_sheets import HOLD
+from engine.report.lines import quantity_format
+from engine.report.look import Style, number_format
+from engine.report.proof_figures import ProofFigures, forced
+from engine.report.proof_layout import Layout, on_customers, on_depots, on_rates, on_rules
+from engine.report.sheet import Formula, Row, Value
+
+MISSING, STAYS = "(goods that are missing)", "(goods that stay)"
+
+DEPOT_HEADINGS = (
+    "No.", "Depot", "Could send", "Sent", "Unsent", "Of it, must move", "Left over", "Price", "Charge if kept",
+    "Charge less price", "Should move", "Check", None, None, "Forced", "Before cost", "Before cost, kept",
+)  # fmt: skip
+CUSTOMER_HEADINGS = (
+    "No.", "Customer", "Whole order", "Received", "Short", None, "Left over", "Price", "Charge, short",
+    "Charge less price", None, "Check", None, None, None, "Before cost", "Before cost, short",
+)  # fmt: skip
+RATE_HEADINGS = (
+    "Rate row", "Depot", "Customer", "Haulier", "Send", "Rate with surcharge", "Depot price", "Customer price",
+    "Rate less prices", "Limit below", "Limit above", "Check", "Exact cost", "Payable", "Forced", "Before cost", None,
+)  # fmt: skip
+
+
+def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row]:
+    """What each depot sends and keeps, its price, and whether keeping less or more would pay."""
+    model, quantity, q = plan.model, plan.flow.quantity, layout.places.quantity
+    yield from _head("Depots", DEPOT_HEADINGS)
+    styles = _styles(plan, layout, "n_qqqqqmmmqc__tnn")
+    kept = quantity[model.stay_rows]
+    must = np.where(model.must_row == NO_RATE, 0, quantity[model.must_row])
+    held = forced(model, figures)
+    stays = layout.customers[1] + 1
+    for i, name in enumerate(model.depots):
+        r = layout.depots[0] + i
+        rows = [int(row) for row in (model.stay_rows[i], model.must_row[i]) if row != NO_RATE]
+        supply, unsent = int(model.problem.supply[i]), int(kept[i] + must[i])
+        should = int(model.problem.at_most[rows[1]]) if len(rows) > 1 and model.problem.at_most is not None else 0
+        free_aims, must_aims = f"(P{r}+$P${stays})", f"(Q{r}-P{r}-$P${stays})"
+        free, bound = f"IF({free_aims}<>0,-{free_aims},J{r})", f"IF({must_aims}<>0,{must_aims},J{r})"
+        check = (
+            f"IF({free}>0,IF(ROUND(E{r}-F{r},{q})>0,1,0),IF({free}<0,IF(ROUND(E{r}-F{r}-C{r}+K{r},{q})<0,1,0),0))"
+            f"+IF(K{r}>0,IF({bound}>0,IF(F{r}>0,1,0),IF({bound}<0,IF(ROUND(F{r}-K{r},{q})<0,1,0),0)),0)"
+        )
+        worth = f"IF({free}<0,J{r}*(C{r}-K{r}),0)+IF(K{r}>0,IF({bound}<0,J{r}*K{r},0),0)"
+        values: list[Value] = [
+            i + 1,
+            name,
+            _link(layout, f"N({on_depots('available', i)})", _quantity(model, supply)),
+            _sent(layout, r, _quantity(model, supply - unsent)),
+            _quantity(model, unsent),
+            _quantity(model, int(must[i])),
+            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", 0),
+            _money(model, int(figures.depot.money[i])),
+            _link(layout, f"N({on_depots('charge_if_unsent', i)})", _money(model, int(model.money[rows[0]]))),
+            Formula(f"ROUND(I{r}-H{r}-$H${stays},{layout.places.money})", _money(model, int(figures.money[rows[0]]))),
+            _link(layout, f"N({on_depots('must_move', i)})", _quantity(model, should)),
+            Formula(check, sum(_check(plan, figures, row) for row in rows)),
+            None,
+            None,
+            Formula(worth, _cost(model, sum(int(held[row]) * int(figures.money[row]) for row in rows))),
+            int(figures.depot.aims[i]),
+            figures.must_aim,
+        ]
+        yield Row(values, styles)
+    yield _missing_row(plan, figures, layout, styles)
+    yield Row([])
+
+
+def _missing_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequence[Style]) -> Row:
+    """The stand-in depot: where what is missing comes from."""
+    model = plan.model
+    r, stays = layout.depots[1] + 1, layout.customers[1] + 1
+    ordered, short = int(model.problem.supply[-1]), sum(plan.flow.quantity[model.short_rows].tolist())
+    aims = f"(P{r}+$P${stays})"
+    joined = f"IF({aims}<>0,-{aims},-H{r}-H{stays})"
+    values: list[Value] = [
+        None,
+        MISSING,
+        _sum(layout.range("C", layout.customers), _quantity(model, ordered)),
+        _sum(layout.range("E", layout.customers), _quantity(model, short)),
+        *[None] * 3,
+        _money(model, int(figures.depot.money[-1])),
+        *[None] * 3,
+        Formula(
+            f"IF({joined}>0,IF(C{r}-D{r}>0,1,0),IF({joined}<0,1,0))", _check(plan, figures, model.joining_row)
+        ),
+        *[None] * 3,
+        int(figures.depot.aims[-1]),
+    ]
+    return Row(values, [style._replace(kind="quiet") for style in styles])
+
+
+def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row]:
+    """What each customer gets and goes short of, its price, and whether more or less short would pay."""
+    model, q = plan.model, layout.places.quantity
+    yield from _head("Customers", CUSTOMER_HEADINGS)
+    styles = _styles(plan, layout, "n_qqq_qmmm_c___nn")
+    missing = layout.depots[1] + 1
+    of_listed = model.problem.customer[layout.listed]
+    firsts = np.searchsorted(of_listed, np.arange(len(model.customers) + 1))
+    order_row = 0
+    for j, (name, customer) in enumerate(plan.week.customers.items()):
+        r, row = layout.customers[0] + j, int(model.short_rows[j])
+        first, last = layout.rates[0] + int(firsts[j]), layout.rates[0] + int(firsts[j + 1]) - 1
+        orders = max(1, len(customer.orders))
+        ordered, short = int(model.problem.demand[j]), int(plan.flow.quantity[row])
+        own, week = on_customers("charge_if_short", order_row), on_rules("charge_if_short")
+        rows_of = f"{on_customers('ordered', order_row)}:{on_customers('ordered', order_row + orders - 1).split('!')[1]}"
+        aims = f"(Q{r}-P{r}-$P${missing})"
+        sign = f"IF({aims}<>0,{aims},J{r})"
+        received = _quantity(model, ordered - short)
+        yield Row(
+            [
+                j + 1,
+                name,
+                _link(layout, f"SUM({rows_of})", _quantity(model, ordered)),
+                Formula(f"SUM(E{first}:E{last})", received) if last >= first else 0,
+                _quantity(model, short),
+                None,
+                Formula(f"ROUND(C{r}-D{r}-E{r},{q})", 0),
+                _money(model, int(figures.customer.money[j])),
+                _link(layout, f'IF({own}="",N({week}),{own})', _money(model, int(model.money[row]))),
+                Formula(
+                    f"ROUND(I{r}-H{r}-$H${missing},{layout.places.money})", _money(model, int(figures.money[row]))
+                ),
+                None,
+                Formula(f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))", _check(plan, figures, row)),
+                *[None] * 3,
+                int(figures.customer.aims[j]),
+                int(figures.short_aim[j]),
+            ],
+            styles,
+        )
+        order_row += orders
+    yield _stays_row(plan, figures, layout, styles)
+    yield Row([])
+
+
+def _stays_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequence[Style]) -> Row:
+    """The stand-in customer: where what stays goes to."""
+    model = plan.model
+    available = int(model.problem.demand[-1])
+    unsent = available - sum(plan.flow.quantity[figures.rows].tolist())
+    values: list[Value] = [
+        None,
+        STAYS,
+        _sum(layout.range("C", layout.depots), _quantity(model, available)),
+        _sum(layout.range("E", layout.depots), _quantity(model, unsent)),
+        *[None] * 3,
+        _money(model, int(figures.customer.money[-1])),
+        *[None] * 7,
+        int(figures.customer.aims[-1]),
+    ]
+    return Row(values, [style._replace(kind="quiet") for style in styles])
+
+
+def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row]:
+    """Every listed rate row: what goes on it, its rate less prices, and whether it could improve the plan."""
+    model, problem, q, m = plan.model, plan.model.problem, layout.places.quantity, layout.places.money
+    yield from _head("Rate rows" if layout.every_row else "Rate rows that are used", RATE_HEADINGS)
+    styles = _styles(plan, layout, "n___qmmmmqqctptn_")
+    flat, barred, held = plan.week.rates.flat, _barred(plan), forced(model, figures)
+    aims = figures.aims_matter
+    on_row, send = layout.on_plan("Rate row"), layout.on_plan("Send")
+    for r, row in enumerate(layout.listed.tolist(), layout.rates[0]):
+        position, i, j = int(model.rate_row[row]), int(problem.depot[row]), int(problem.customer[row])
+        depot, customer, haulier = flat.named(position)
+        used = int(plan.flow.quantity[row])
+        least, most = _limits(model, row)
+        sign = f"IF(P{r}<>0,P{r},I{r})" if aims else f"I{r}"
+        depot_row, customer_row = layout.depots[0] + i, layout.customers[0] + j
+        check = (
+            f'IF(OR(ROUND(E{r}-J{r},{q})<0,IF(K{r}="",FALSE,ROUND(E{r}-K{r},{q})>0)),2,'
+            f"IF({sign}>0,IF(ROUND(E{r}-J{r},{q})>0,1,0),"
+            f'IF({sign}<0,IF(K{r}="",1,IF(ROUND(E{r}-K{r},{q})<0,1,0)),0)))'
+        )
+        cost = used * int(model.money[row])
+        exact = Formula(f"ROUND(E{r}*F{r},{layout.places.cost})", _cost(model, cost)) if used else None
+        limited = most is not None or least
+        worth = f'IF({sign}>0,I{r}*J{r},IF({sign}<0,IF(K{r}="",0,I{r}*K{r}),0))'
+        yield Row(
+            [
+                position + 1,
+                depot,
+                customer,
+                haulier,
+                Formula(f"SUMIF({on_row},A{r},{send})", _quantity(model, used)) if used else 0,
+                _link(layout, _rate_formula(position, m), _money(model, int(model.money[row]))),
+                Formula(f"$H${depot_row}", _money(model, int(figures.depot.money[i]))),
+                Formula(f"$H${customer_row}", _money(model, int(figures.customer.money[j]))),
+                Formula(f"ROUND(F{r}-G{r}-H{r},{m})", _money(model, int(figures.money[row]))),
+                _link(layout, _least_formula(position), _quantity(model, least)),
+                _link(
+                    layout,
+                    _most_formula(position, position in barred),
+                    "" if most is None else _quantity(model, most),
+                ),
+                Formula(check, _check(plan, figures, row)),
+                exact,
+                Formula(f"ROUND(M{r},{layout.places.payable})", _payable(layout, model, cost)) if used else None,
+                Formula(worth, _cost(model, int(held[row]) * int(figures.money[row]))) if limited else None,
+                Formula(f"-$P${depot_row}-$P${customer_row}", int(figures.aims[row])) if aims else None,
+            ],
+            styles,
+        )
+
+
+def _rate_formula(position: int, places: int) -> str:
+    own = on_rates("Surcharge %", position)
+    percent = f'IF({own}="",N({on_rules("fuel_surcharge")}),{own})'
+    return f"ROUND({on_rates('Rate', position)}*(1+{percent}/100),{places})"
+
+
+def _least_formula(position: int) -> str:
+    hold = on_rates(HOLD, position)
+    return f'IF({hold}<>"",{hold},N({on_rates("At least", position)}))'
+
+
+def _most_formula(position: int, barred: bool) -> str:
+    hold, most, closed = (on_rates(heading, position) for heading in (HOLD, "At most", "Closed"))
+    open_row = "0" if barred else f'IF({closed}="yes",0,IF({most}="","",{most}))'
+    return f'IF({hold}<>"",{hold},{open_row})'
+
+
+def _barred(plan: Plan) -> set[int]:
+    """Positions of rate rows that a customer's one depot rules out."""
+    week, flat = plan.week, plan.week.rates.flat
+    named = {
+        name: customer.one_depot
+        for name, customer in week.customers.items()
+        if customer.one_depot not in (None, ANY_SINGLE_DEPOT)
+    }
+    codes = [code for code, name in enumerate(flat.customer_names) if name in named]
+    found = set()
+    for position in np.flatnonzero(np.isin(flat.customer, codes)).tolist():
+        depot, customer, _ = flat.named(position)
+        if depot != named[customer]:
+            found.add(position)
+    return found
+
+
+def _check(plan: Plan, figures: ProofFigures, row: int) -> int:
+    """What the check of a row of the problem comes to: 0, 1 or 2."""
+    quantity, sign = int(plan.flow.quantity[row]), int(figures.sign[row])
+    least, most = _limits(plan.model, row)
+    if quantity < least or (most is not None and quantity > most):
+        return 2
+    if sign > 0:
+        return int(quantity > least)
+    return int(sign < 0 and (most is None or quantity < most))
+
+
+def _limits(model: Model, row: int) -> tuple[int, int | None]:
+    problem = model.problem
+    least = 0 if problem.at_least is None else int(problem.at_least[row])
+    most = UNLIMITED if problem.at_most is None else int(problem.at_most[row])
+    return least, None if most == UNLIMITED else most
+
+
+def _head(name: str, headings: Sequence[str | None]) -> Iterator[Row]:
+    yield Row([name, *[None] * (len(headings) - 1)], [Style("part")] * len(headings))
+    words = {"Depot", "Customer", "Haulier"}
+    styles = [Style("heading", align="left" if heading in words else "right", wrap=True) for heading in headings]
+    yield Row(headings, styles, height=30)
+
+
+def _styles(plan: Plan, layout: Layout, kinds: str) -> list[Style]:
+    """One style a column: n a count, q a quantity, m money per unit, t a cost, p payable, c a check, _ text."""
+    formats = {
+        "n": "0",
+        "c": "0",
+        "q": quantity_format(plan),
+        "m": number_format(layout.places.money),
+        "t": number_format(layout.places.cost),
+        "p": number_format(layout.places.payable),
+    }
+    return [Style() if kind == "_" else Style("plain", formats[kind], "right") for kind in kinds]
+
+
+def _link(layout: Layout, formula: str, value: float | str) -> Value:
+    """A formula that points at another sheet, or a copy where the figures are too long for that."""
+    return Formula(formula, value) if layout.linked else value
+
+
+def _sent(layout: Layout, row: int, value: float) -> Value:
+    if layout.rates[1] < layout.rates[0]:
+        return 0
+    names, quantities = layout.range("B", layout.rates), layout.range("E", layout.rates)
+    return Formula(f"SUMPRODUCT(EXACT({names},B{row})*{quantities})", value)
+
+
+def _sum(where: str, value: float) -> Formula:
+    return Formula(f"SUM({where})", value)
+
+
+def _quantity(model: Model, integer: int) -> float:
+    return integer / 10**model.quantity_places
+
+
+def _money(model: Model, integer: int) -> float:
+    return integer / 10**model.money_places
+
+
+def _cost(model: Model, integer: int) -> float:
+    return integer / 10 ** (model.quantity_places + model.money_places)
+
+
+def _payable(layout: Layout, model: Model, cost: int) -> float:
+    from engine.exact import to_decimal
+    from engine.money import round_half_up
+
+    exact = to_decimal(cost, model.quantity_places + model.money_places)
+    return float(round_half_up(exact, layout.places.payable))
