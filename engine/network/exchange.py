@@ -42,7 +42,9 @@ UNSERVABLE = 5
 """Outcome: one customer's rows cannot carry what it needs."""
 
 
-def solve(problem: Problem, price: Integers, quantity: Integers | None) -> tuple[Integers, Integers, Integers]:
+def solve(
+    problem: Problem, price: Integers, quantity: Integers | None
+) -> tuple[Integers, Integers, Integers]:
     """A least-cost flow of `problem`: quantities per row, depot prices, customer prices, not yet proved.
 
     price:    (depots,) prices to start from
@@ -167,11 +169,11 @@ def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
     depots, customers = len(rows.supply), len(rows.demand)
     stride = 1
     if not again:
-        while customers // (stride * STEP) >= SAMPLE * depots:
+        while customers // (stride * STEP) > SAMPLE * depots:
             stride *= STEP
     while True:
         outcome, place = solve_sample(rows, state, stride)
-        if stride == 1 or outcome == UNSERVABLE or outcome == TOO_FAR:
+        if stride == 1 or outcome in (UNSERVABLE, TOO_FAR):
             return outcome, place
         stride //= STEP
 
@@ -204,7 +206,7 @@ def solve_sample(rows: Rows, state: State, stride: int) -> tuple[int, int]:
             for i in range(len(rows.supply)):
                 renew(rows, state, users, i)
             outcome = level_out(rows, state, users, search, slack)
-        if outcome == DONE or outcome == STUCK or outcome == TOO_FAR:
+        if outcome in (DONE, STUCK, TOO_FAR):
             return outcome, 0
         for n in range(len(chosen)):
             gap[n] = fill(rows, state, chosen[n])

@@ -22,13 +22,13 @@ class Users(NamedTuple):
     """For each depot, its rows that carry something.
 
     first:    (depots + 1,) where each depot's share of the two lists begins
-    count:    (depots,) how much of its share is in use
+    length:   (depots,) how much of its share is in use
     row:      the rows
     customer: their customers
     """
 
     first: Integers
-    count: Integers
+    length: Integers
     row: Integers
     customer: Integers
 
@@ -60,23 +60,23 @@ def list_users(rows: Rows, state: State, customers: Integers) -> Users:
 @kernel
 def add_user(users: Users, i: int, row: int, j: int) -> bool:
     """Adds a row to depot i's list; False if there is no space left."""
-    place = users.first[i] + users.count[i]
+    place = users.first[i] + users.length[i]
     if place == users.first[i + 1]:
         return False
     users.row[place], users.customer[place] = row, j
-    users.count[i] += 1
+    users.length[i] += 1
     return True
 
 
 @kernel
 def remove_user(users: Users, i: int, row: int) -> None:
     """Takes a row out of depot i's list."""
-    last = users.first[i] + users.count[i] - 1
+    last = users.first[i] + users.length[i] - 1
     place = users.first[i]
     while users.row[place] != row:
         place += 1
     users.row[place], users.customer[place] = users.row[last], users.customer[last]
-    users.count[i] -= 1
+    users.length[i] -= 1
 
 
 @kernel
@@ -106,7 +106,7 @@ def offer(rows: Rows, state: State, i: int, row: int, j: int) -> None:
 def renew(rows: Rows, state: State, users: Users, i: int) -> None:
     """Recomputes all that depot i can hand over."""
     state.handover[i, :] = FAR
-    for place in range(users.first[i], users.first[i] + users.count[i]):
+    for place in range(users.first[i], users.first[i] + users.length[i]):
         offer(rows, state, i, users.row[place], users.customer[place])
 
 
@@ -114,7 +114,7 @@ def renew(rows: Rows, state: State, users: Users, i: int) -> None:
 def row_with_room(rows: Rows, state: State, j: int, k: int) -> int:
     """The cheapest row from depot k to customer j that has room."""
     if rows.regular[j]:
-        return rows.start[j] + k
+        return int(rows.start[j] + k)
     chosen, least = -1, FAR
     for row in range(rows.start[j], rows.start[j + 1]):
         if rows.depot[row] == k and rows.cost[row] < least:
