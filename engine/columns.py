@@ -98,3 +98,6 @@ RULE_COLUMNS = (
 
 HOLD_HEADINGS = ("Hold", "Hold reason")
 """On *Rates* in a workbook we wrote: what a dispatcher fixed on the row, and why."""
+
+SEND = Column("Send", "quantity", Kind.QUANTITY, "What goes on the row this week", needed=True)
+"""The quantity of a plan: a sheet with this heading is a plan and never read as rates."""

@@ -88,6 +88,14 @@ def canonical(decimal: Decimal) -> str:
     return "0" if text in ("-0", "") else text
 
 
+def total_of(decimals: Iterable[Decimal]) -> Decimal:
+    """The exact sum of some decimals; the usual decimal context would round it silently."""
+    summed = Decimal(0)
+    for decimal in decimals:
+        summed = _CONTEXT.add(summed, decimal)
+    return summed
+
+
 def total(values: NDArray[Any]) -> int:
     """The sum of an int64 array as a Python int: high and low words apart, so that nothing wraps.
 

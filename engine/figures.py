@@ -10,6 +10,8 @@ from decimal import Decimal
 from functools import cached_property
 from typing import Literal, NamedTuple
 
+from engine.exact import total_of
+
 PRIORITIES = ("A", "B", "C")
 """Who is served first when goods run short; a blank priority counts as the last of them."""
 
@@ -68,7 +70,7 @@ class Customer:
     @cached_property
     def ordered(self) -> Decimal:
         """The whole week's order, in the week's unit."""
-        return sum((order.quantity for order in self.orders), Decimal(0))
+        return total_of(order.quantity for order in self.orders)
 
 
 class RateKey(NamedTuple):

@@ -1,0 +1,175 @@
+"""The command line: `hithe` opens the desk; its commands plan, check and hand out workbooks without one."""
+
+import json
+import sys
+from collections.abc import Iterable
+from pathlib import Path
+
+import click
+
+import engine
+from engine.exact import canonical
+from engine.findings import Finding, Severity, by_gravity, stops
+
+SHORT = 3
+UNUSABLE = 2
+FAULT = 1
+
+
+class _Faults(click.Group):
+    """Turns what only we can mend into exit status 1, with a sentence instead of a traceback."""
+
+    def invoke(self, ctx: click.Context) -> object:
+        try:
+            return super().invoke(ctx)
+        except (click.ClickException, click.exceptions.Exit, click.Abort):
+            raise
+        except Exception as fault:
+            if ctx.params.get("trace"):
+                raise
+            click.echo(f"This is a fault of ours: {type(fault).__name__}: {fault}", err=True)
+            click.echo("Run `hithe --trace …` again and send us what it prints.", err=True)
+            ctx.exit(FAULT)
+
+
+@click.group(cls=_Faults, invoke_without_command=True)
+@click.option("--trace", is_flag=True, help="Show where a fault of ours comes from.")
+@click.version_option(package_name="hithe")
+@click.pass_context
+def main(ctx: click.Context, trace: bool) -> None:
+    """Plan a freight desk's week at least cost.
+
+    Without a command it opens the desk in the browser. Exit status: 0 all orders met, 3 planned but
+    something is short, 2 the figures cannot be used (every finding is on stderr, nothing is written),
+    1 a fault of ours.
+    """
+    if ctx.invoked_subcommand is None:
+        ctx.invoke(desk)
+
+
+WEEK = click.argument(
+    "week", nargs=-1, required=True, type=click.Path(exists=True, dir_okay=False, path_type=Path)
+)
+
+
+@main.command()
+@click.argument("week", nargs=-1, type=click.Path(exists=True, dir_okay=False, path_type=Path))
+@click.option("--sample", is_flag=True, help="Open the sample week.")
+@click.option("--port", default=8507, show_default=True, help="Where the desk listens, on this machine only.")
+@click.option("--browser/--no-browser", default=True, help="Open a browser window.")
+def desk(week: tuple[Path, ...] = (), sample: bool = False, port: int = 8507, browser: bool = True) -> None:
+    """Open the desk in the browser, with the week in these files if any are given."""
+    from app.serve import serve
+
+    serve(port=port, open_browser=browser, files=week, sample=sample)
+
+
+@main.command()
+@WEEK
+@click.option("--near", type=click.Path(exists=True, dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
+              help="Among plans of equal cost, stay nearest to this earlier one.")  # fmt: skip
+@click.option("--out", type=click.Path(dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
+              help="Write the plan as a workbook.")  # fmt: skip
+@click.option("--json", "as_json", type=click.Path(dir_okay=False, allow_dash=True), metavar="FILE",
+              help="Write the plan as JSON; - is stdout.")  # fmt: skip
+@click.pass_context
+def plan(
+    ctx: click.Context, week: tuple[Path, ...], near: Path | None, out: Path | None, as_json: str | None
+) -> None:
+    """Plan the week in these files (one workbook, or separate tables)."""
+    reading = _read(ctx, week)
+    earlier = None if near is None else _earlier(ctx, near)
+    try:
+        made = engine.plan_week(reading.week, near=earlier, progress=_progress)
+    except engine.NotPlannable as stopped:
+        _refuse(ctx, _together(reading.findings, stopped.findings))
+    except engine.TooLarge as too_large:
+        _refuse(ctx, [*reading.findings, Finding(Severity.STOPS, "too large", str(too_large))])
+    made = engine.with_findings(made, reading.findings)
+    if out is not None:
+        engine.write_workbook(made, out)
+        click.echo(f"Wrote {out}", err=True)
+    if as_json is not None:
+        text = json.dumps(engine.plan_as_json(made), ensure_ascii=False, indent=1)
+        if as_json == "-":
+            click.echo(text)
+        else:
+            Path(as_json).write_text(text + "\n", encoding="utf-8")
+            click.echo(f"Wrote {as_json}", err=True)
+    else:
+        click.echo(_summary(made))
+    _tell(made.findings)
+    ctx.exit(SHORT if made.status == "short" else 0)
+
+
+@main.command()
+@WEEK
+@click.pass_context
+def check(ctx: click.Context, week: tuple[Path, ...]) -> None:
+    """Read the figures in these files and list every finding; nothing is planned."""
+    reading = _read(ctx, week)
+    found = _together(reading.findings, engine.contradictions(reading.week))
+    _tell(found)
+    if stops(found):
+        ctx.exit(UNUSABLE)
+    click.echo(reading.summary)
+
+
+@main.command()
+@click.argument("out", type=click.Path(dir_okay=False, path_type=Path), metavar="OUT.xlsx")
+def blank(out: Path) -> None:
+    """Write a workbook with the headings and no figures yet."""
+    engine.write_blank(out)
+    click.echo(f"Wrote {out}", err=True)
+
+
+def _read(ctx: click.Context, files: tuple[Path, ...]) -> engine.Reading:
+    """The week in these files; ends the command where they cannot be used."""
+    try:
+        reading = engine.read_week(list(files))
+    except engine.Unreadable as refused:
+        _refuse(ctx, [refused.finding])
+    if stops(reading.findings):
+        _refuse(ctx, reading.findings)
+    return reading
+
+
+def _earlier(ctx: click.Context, file: Path) -> engine.Quantities:
+    try:
+        return engine.read_quantities(file)
+    except engine.Unreadable as refused:
+        _refuse(ctx, [refused.finding])
+
+
+def _refuse(ctx: click.Context, findings: Iterable[Finding]) -> "click.NoReturn":  # type: ignore[name-defined]
+    _tell(findings)
+    ctx.exit(UNUSABLE)
+
+
+def _together(first: Iterable[Finding], second: Iterable[Finding]) -> list[Finding]:
+    """Both lists without what says the same twice."""
+    return by_gravity(dict.fromkeys([*first, *second]))
+
+
+def _tell(findings: Iterable[Finding]) -> None:
+    for finding in by_gravity(findings):
+        place = f"{finding.place}: " if finding.place else ""
+        mend = f" {finding.mend}" if finding.mend else ""
+        click.echo(f"{finding.severity.word}: {place}{finding.message}{mend}", err=True)
+
+
+def _progress(what: str) -> None:
+    if sys.stderr.isatty():
+        click.echo(f"{what} …", err=True)
+
+
+def _summary(made: engine.Plan) -> str:
+    rules = made.week.rules
+    lines = [
+        f"{rules.week}: {'all orders met' if made.status == 'met' else 'something is short'}",
+        f"Freight payable {canonical(made.freight_payable)} {rules.currency}",
+        f"Charges: short {canonical(made.short_cost)}, unsent {canonical(made.unsent_cost)} {rules.currency}",
+    ]
+    lines += [f"Short: {one.customer} {canonical(one.quantity)} {rules.unit}" for one in made.short]
+    lines += [f"Unsent: {one.depot} {canonical(one.quantity)} {rules.unit}" for one in made.unsent]
+    return "\n".join(lines)

@@ -1,0 +1,32 @@
+"""The plan: what it costs, who sends what to whom, and the map; a quantity typed here becomes a hold."""
+
+import streamlit as st
+
+from app.parts.costs import cost_line
+from app.parts.findings_panel import findings_panel
+from app.parts.nothing_yet import nothing_yet
+from app.parts.plan_map import plan_map
+from app.parts.shipments_grid import shipments_grid
+from app.session import desk
+
+state = desk()
+st.title("Plan")
+if state.week.is_empty:
+    nothing_yet("There is no week to plan yet.")
+else:
+    plan = state.planned()
+    if state.message:
+        kind, text = state.message
+        (st.error if kind == "error" else st.success)(text)
+        state.message = None
+    if plan is None:
+        st.error("This week cannot be planned as it stands. Mend what is listed here, or undo the last change.")
+        findings_panel(state.stopped, key="stopped")
+    else:
+        cost_line(plan, state.decimal_mark)
+        grid, chart = st.columns([11, 9], gap="medium")
+        with grid:
+            shipments_grid(state, plan)
+        with chart:
+            plan_map(plan, state.decimal_mark)
+        findings_panel(plan.findings, key="plan")

@@ -1,0 +1,48 @@
+"""Findings as a list: the gravest first, where each is, what it says and what to do."""
+
+from collections.abc import Sequence
+
+import pandas as pd
+import streamlit as st
+
+from app.parts.words import counted, plain
+from engine.findings import Finding, Severity, by_gravity
+
+SHOWN = 12
+SIGNS = {Severity.STOPS: "⛔", Severity.CHECK: "⚠", Severity.NOTE: "ℹ"}
+WORDS = {Severity.STOPS: "Stops", Severity.CHECK: "Check", Severity.NOTE: "Note"}
+
+
+def findings_panel(findings: Sequence[Finding], key: str) -> None:
+    """The findings, or a word that there are none."""
+    st.subheader("Findings", anchor=False)
+    if not findings:
+        st.caption("Nothing to remark on these figures.")
+        return
+    ordered = by_gravity(findings)
+    counts = [
+        counted(sum(f.severity is severity for f in ordered), WORDS[severity].lower(), plural)
+        for severity, plural in ((Severity.STOPS, "stop"), (Severity.CHECK, "checks"), (Severity.NOTE, "notes"))
+        if any(f.severity is severity for f in ordered)
+    ]
+    st.caption(", ".join(counts))
+    for finding in ordered[:SHOWN]:
+        place = f" · {plain(finding.place)}" if finding.place else ""
+        mend = f" *{plain(finding.mend)}*" if finding.mend else ""
+        st.markdown(
+            f"{SIGNS[finding.severity]} **{WORDS[finding.severity]}**{place}  \n{plain(finding.message)}{mend}"
+        )
+    if len(ordered) > SHOWN:
+        with st.expander(f"All {len(ordered)} findings"):
+            st.dataframe(
+                pd.DataFrame(
+                    {
+                        "Severity": [WORDS[f.severity] for f in ordered],
+                        "Where": [f.place for f in ordered],
+                        "What": [f.message for f in ordered],
+                        "What to do": [f.mend for f in ordered],
+                    }
+                ),
+                hide_index=True,
+                key=f"findings-{key}",
+            )

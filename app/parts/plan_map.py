@@ -1,0 +1,1 @@
+"""A plan on the map: its depots, customers and flows handed to the map widget."""

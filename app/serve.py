@@ -1,0 +1,69 @@
+"""Starts the desk: Streamlit on this machine only, with every setting that matters said here."""
+
+import threading
+import time
+import urllib.error
+import urllib.request
+import webbrowser
+from collections.abc import Sequence
+from pathlib import Path
+
+import click
+
+ADDRESS = "127.0.0.1"
+LARGEST_UPLOAD_MB = 20
+
+
+def flags(port: int) -> dict[str, object]:
+    """Streamlit's settings. Unset ones leak in from the working directory, so these are all said."""
+    return {
+        "server_port": port,
+        "server_address": ADDRESS,
+        "server_headless": True,
+        "server_fileWatcherType": "none",
+        "server_enableCORS": True,
+        "server_enableXsrfProtection": True,
+        "server_allowedHosts": [ADDRESS, "localhost"],
+        "server_maxUploadSize": LARGEST_UPLOAD_MB,
+        "browser_gatherUsageStats": False,
+        "client_toolbarMode": "minimal",
+        "client_showErrorDetails": "none",
+        "client_showErrorLinks": "false",
+    }
+
+
+def serve(port: int, open_browser: bool, files: Sequence[Path] = (), sample: bool = False) -> None:
+    """Run the desk until it is interrupted."""
+    from streamlit import config
+    from streamlit.web import bootstrap
+
+    script = Path(__file__).with_name("main.py")
+    settings = flags(port)
+    config._main_script_path = str(script)
+    bootstrap.load_config_options(flag_options=settings)
+    address = f"http://{ADDRESS}:{port}"
+    click.echo(f"The desk opens at {address} (Ctrl-C ends it)", err=True)
+    if open_browser:
+        threading.Thread(target=_open_when_ready, args=(address,), daemon=True).start()
+    threading.Thread(target=_prepare, daemon=True).start()
+    arguments = ["--sample"] if sample else []
+    arguments += [str(file.resolve()) for file in files]
+    bootstrap.run(str(script), False, arguments, settings)
+
+
+def _prepare() -> None:
+    """Compile the solver while the desk opens; the very first start takes some seconds."""
+    from engine.network import prepare
+
+    prepare()
+
+
+def _open_when_ready(address: str, patience: float = 30.0) -> None:
+    end = time.monotonic() + patience
+    while time.monotonic() < end:
+        try:
+            with urllib.request.urlopen(f"{address}/_stcore/health", timeout=1):
+                break
+        except (urllib.error.URLError, OSError):
+            time.sleep(0.1)
+    webbrowser.open(address)

@@ -1,0 +1,135 @@
+"""Limits and holds that cannot all be kept: each contradiction named with a minimal set of figures.
+
+Anything may go short and anything may stay, so figures contradict each other only where something is
+*forced*: on a row (held against its limits), at a customer (forced beyond its order) or at a depot
+(forced beyond what it has).
+"""
+
+from collections import defaultdict
+from collections.abc import Iterable
+from dataclasses import dataclass
+from decimal import Decimal
+
+import numpy as np
+
+from engine.exact import canonical, total_of
+from engine.figures import ANY_SINGLE_DEPOT, RateKey
+from engine.findings import Finding, Severity
+from engine.week import Week, describe
+
+RULE = "contradiction"
+
+
+@dataclass(frozen=True, slots=True)
+class Forced:
+    """A quantity that a hold or an *at least* forces onto a rate row."""
+
+    key: RateKey
+    quantity: Decimal
+    held: bool
+
+    def words(self, unit: str) -> str:
+        kind = "hold" if self.held else "at least"
+        return f"{describe(self.key)} ({kind} {canonical(self.quantity)} {unit})"
+
+
+def contradictions(week: Week) -> tuple[Finding, ...]:
+    """Every contradiction among limits and holds; none: the week can be planned."""
+    forced = list(_forced(week))
+    findings = [finding for one in forced for finding in _on_the_row(week, one)]
+    if findings:
+        return tuple(findings)
+    unit = week.rules.unit
+    for what, limit_word, limits in (
+        ("customer", "ordered", {name: c.ordered for name, c in week.customers.items()}),
+        ("depot", "available", {name: d.available for name, d in week.depots.items()}),
+    ):
+        at: dict[str, list[Forced]] = defaultdict(list)
+        for one in forced:
+            at[getattr(one.key, what)].append(one)
+        for name, there in at.items():
+            limit = limits[name]
+            if total_of(one.quantity for one in there) > limit:
+                findings.append(_beyond(name, limit_word, limit, minimal(there, limit), unit))
+    for name, depot in week.depots.items():
+        if depot.must_move is not None and depot.must_move > depot.available:
+            findings.append(
+                _finding(
+                    f"{name} must move {canonical(depot.must_move)} {unit} but has "
+                    f"{canonical(depot.available)} {unit} available.",
+                    "Must move is part of Available: lower it, or raise Available.",
+                )
+            )
+    return tuple(findings)
+
+
+def minimal(forced: Iterable[Forced], limit: Decimal) -> list[Forced]:
+    """Members that together go beyond the limit while no member less would."""
+    kept = sorted(forced, key=lambda one: one.quantity, reverse=True)
+    total = total_of(one.quantity for one in kept)
+    for one in reversed(kept.copy()):  # the smallest first, so that few large ones remain
+        if total - one.quantity > limit:
+            kept.remove(one)
+            total -= one.quantity
+    return kept
+
+
+def _forced(week: Week) -> Iterable[Forced]:
+    """What is forced on the rows whose depot and customer are in the week."""
+    for key, hold in week.holds.items():
+        if key.depot in week.depots and key.customer in week.customers:
+            yield Forced(key, hold.quantity, held=True)
+    flat = week.rates.flat
+    if "at_least" not in flat.decimals:
+        return
+    for position in np.flatnonzero(flat.decimals["at_least"].values > 0):
+        key = week.rates.key_of(int(week.rates.ids_in_order[position]))
+        least = flat.decimals["at_least"].get(int(position))
+        if least and key not in week.holds and key.depot in week.depots and key.customer in week.customers:
+            yield Forced(key, least, held=False)
+
+
+def _on_the_row(week: Week, forced: Forced) -> Iterable[Finding]:
+    """Where the row's own limits, or its customer's one depot, speak against what is forced on it."""
+    number = week.rates.find(forced.key)
+    row = None if number is None else week.rates.row(number)
+    if row is None:
+        yield _finding(
+            f"A hold is on {describe(forced.key)}, which has no rate row.",
+            "Lift the hold, or add the rate row.",
+        )
+        return
+    name, unit = forced.words(week.rules.unit), week.rules.unit
+    if forced.quantity < 0:
+        yield _finding(f"{name} is negative.", "A quantity is 0 or more: mend it.")
+    if row.closed and forced.quantity > 0:
+        yield _finding(f"{name} is on a closed row.", "Open the row, or take the quantity off it.")
+    if row.at_most is not None and forced.quantity > row.at_most:
+        yield _finding(
+            f"{name} is above the row's at most, {canonical(row.at_most)} {unit}.",
+            "Lower the one or raise the other.",
+        )
+    if forced.held and row.at_least is not None and forced.quantity < row.at_least:
+        yield _finding(
+            f"{name} is below the row's at least, {canonical(row.at_least)} {unit}.",
+            "Raise the hold or lower the limit.",
+        )
+    only = week.customers[forced.key.customer].one_depot
+    if only not in (None, ANY_SINGLE_DEPOT, forced.key.depot) and forced.quantity > 0:
+        yield _finding(
+            f"{name} goes to a customer that takes from {only} only.",
+            "Take the quantity off the row, or change One depot.",
+        )
+
+
+def _beyond(name: str, word: str, limit: Decimal, members: list[Forced], unit: str) -> Finding:
+    total = total_of(one.quantity for one in members)
+    listed = "; ".join(one.words(unit) for one in members)
+    return _finding(
+        f"{name} has {canonical(limit)} {unit} {word}, but {canonical(total)} {unit} are forced: {listed}.",
+        "Lower or lift any one of these, or raise the figure.",
+    )
+
+
+def _finding(message: str, mend: str) -> Finding:
+    return Finding(Severity.STOPS, RULE, f"These figures contradict each other: {message}", mend)

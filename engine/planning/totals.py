@@ -1,0 +1,31 @@
+"""A plan's quantities added up."""
+
+from dataclasses import dataclass
+from decimal import Decimal
+
+from engine.exact import total_of
+from engine.planning.plan import Plan
+
+
+@dataclass(frozen=True, slots=True)
+class Totals:
+    """Sums over a plan, in the week's unit; `lanes` counts depot-customer pairs that are used."""
+
+    ordered: Decimal
+    available: Decimal
+    delivered: Decimal
+    short: Decimal
+    unsent: Decimal
+    lanes: int
+
+
+def totals(plan: Plan) -> Totals:
+    """What the plan's quantities add up to."""
+    return Totals(
+        ordered=total_of(customer.ordered for customer in plan.week.customers.values()),
+        available=total_of(depot.available for depot in plan.week.depots.values()),
+        delivered=total_of(shipment.quantity for shipment in plan.shipments),
+        short=total_of(short.quantity for short in plan.short),
+        unsent=total_of(unsent.quantity for unsent in plan.unsent),
+        lanes=len({(shipment.depot, shipment.customer) for shipment in plan.shipments}),
+    )
