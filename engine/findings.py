@@ -24,6 +24,8 @@ class Finding:
     `sheet` and `cell` are empty where the remark is on no single cell. `message` is a whole sentence
     for a person; `rule` is a short fixed name that tests and answers can go by; `read` is what stood in
     the cell; `mend` says what to do. `rows` counts the sheet rows that the remark sets aside.
+    Where it asks a question, `options` are the possible answers, and (`rule`, `subject`) is what an
+    answer is remembered by.
     """
 
     severity: Severity
@@ -35,6 +37,8 @@ class Finding:
     cell: str = ""
     read: str = ""
     rows: int = 0
+    subject: str = ""
+    options: tuple[str, ...] = ()
 
     @property
     def place(self) -> str:

@@ -51,28 +51,44 @@ _CUSTOMER_WORDS = (
 _WORDS: dict[str, dict[str, str]] = {
     "depots": {
         "name": _DEPOT_WORDS + "|name|location",
-        "available": "available|availability|stock|in stock|stock on hand|on hand|supply|can send|capacity|"
-        "available stock|available this week|quantity available|qty available|available quantity|available qty",
+        "available": (
+            "available|availability|stock|in stock|stock on hand|on hand|supply|can send|capacity|"
+            "available stock|available this week|quantity available|qty available|available quantity|"
+            "available qty"
+        ),
         "must_move": "must move|must go|to clear|clear|minimum out|must send|must leave",
-        "charge_if_unsent": "charge if unsent|unsent charge|storage charge|storage cost|storage|holding cost|"
-        "cost if kept|demurrage",
-        "loads_a_day": "loads a day|loads per day|loads day|daily loads|vehicles a day|trucks a day|"
-        "trucks per day|loading slots|slots a day",
+        "charge_if_unsent": (
+            "charge if unsent|unsent charge|storage charge|storage cost|storage|holding cost|"
+            "cost if kept|demurrage"
+        ),
+        "loads_a_day": (
+            "loads a day|loads per day|loads day|daily loads|vehicles a day|trucks a day|"
+            "trucks per day|loading slots|slots a day"
+        ),
         "latitude": "latitude|lat|y",
         "longitude": "longitude|long|lon|lng|x",
     },
     "customers": {
         "name": _CUSTOMER_WORDS + "|name|location",
-        "ordered": "ordered|order|orders|demand|requirement|required|requested|wanted|needs|need|quantity|qty|"
-        "order quantity|order qty|quantity ordered|qty ordered|ordered quantity|ordered qty|weekly order|volume",
-        "charge_if_short": "charge if short|short charge|shortage charge|shortage cost|penalty|charge when short",
+        "ordered": (
+            "ordered|order|orders|demand|requirement|required|requested|wanted|needs|need|quantity|"
+            "qty|order quantity|order qty|quantity ordered|qty ordered|ordered quantity|ordered qty|"
+            "weekly order|volume"
+        ),
+        "charge_if_short": (
+            "charge if short|short charge|shortage charge|shortage cost|penalty|charge when short"
+        ),
         "priority": "priority|prio|class|rank",
         "one_depot": "one depot|single depot|single source|one source|only depot|depot only",
         "may_decline": "may decline|can decline|optional|may refuse",
-        "smallest_drop": "smallest drop|minimum drop|min drop|smallest delivery|minimum delivery|min delivery|"
-        "minimum order|min order",
-        "number": "order number|order no|order nr|order id|order ref|order reference|reference|ref|po|po number|"
-        "po no|purchase order|order #",
+        "smallest_drop": (
+            "smallest drop|minimum drop|min drop|smallest delivery|minimum delivery|min delivery|"
+            "minimum order|min order"
+        ),
+        "number": (
+            "order number|order no|order nr|order id|order ref|order reference|reference|ref|po|"
+            "po number|po no|purchase order|order #"
+        ),
         "day": "day|delivery day|delivery date|date|due|due date|deliver on|wanted on",
         "latitude": "latitude|lat|y",
         "longitude": "longitude|long|lon|lng|x",
@@ -80,21 +96,33 @@ _WORDS: dict[str, dict[str, str]] = {
     "rates": {
         "depot": _DEPOT_WORDS,
         "customer": _CUSTOMER_WORDS,
-        "rate": "rate|rates|freight rate|freight|price|tariff|cost|haulage|haulage rate|transport cost|"
-        "unit cost|unit rate|unit price|freight cost|charge|quote|quoted rate",
-        "per": "per|basis|rate basis|charged per|unit or load|rate per|uom|unit",
-        "haulier": "haulier|haulage company|carrier|transporter|transport company|forwarder|contractor|vendor|"
-        "trucker|hauler",
+        "rate": (
+            "rate|rates|freight rate|freight|price|tariff|cost|haulage|haulage rate|transport cost|"
+            "unit cost|unit rate|unit price|freight cost|charge|quote|quoted rate"
+        ),
+        "per": "per|basis|rate basis|charged per|unit or load|uom|unit",
+        "haulier": (
+            "haulier|haulage company|carrier|transporter|transport company|forwarder|contractor|"
+            "vendor|trucker|hauler"
+        ),
         "at_least": "at least|minimum|min|minimum quantity|min quantity|min qty|minimum qty|not under",
-        "at_most": "at most|maximum|max|maximum quantity|max quantity|max qty|maximum qty|limit|weekly limit|"
-        "lane limit|not over|cap|lane capacity",
+        "at_most": (
+            "at most|maximum|max|maximum quantity|max quantity|max qty|maximum qty|limit|"
+            "weekly limit|lane limit|not over|cap|lane capacity"
+        ),
         "closed": "closed|lane closed|blocked|shut|lane shut|not allowed",
-        "load_size": "load size|load|size of load|truck size|vehicle size|payload|full load|capacity per load",
-        "trip_minimum": "trip minimum|minimum charge|min charge|minimum per trip|minimum per load|"
-        "trip min|minimum freight",
-        "charge_per_use": "charge per use|fixed charge|fixed cost|charge once|opening charge|set up charge",
-        "surcharge": "surcharge %|surcharge|fuel surcharge|fuel surcharge %|fuel %|fuel|baf|diesel surcharge|"
-        "diesel surcharge %",
+        "load_size": (
+            "load size|load|size of load|truck size|vehicle size|payload|full load|capacity per load"
+        ),
+        "trip_minimum": (
+            "trip minimum|minimum charge|min charge|minimum per trip|minimum per load|trip min|"
+            "minimum freight"
+        ),
+        "charge_per_use": ("charge per use|fixed charge|fixed cost|charge once|opening charge|set up charge"),
+        "surcharge": (
+            "surcharge %|surcharge|fuel surcharge|fuel surcharge %|fuel %|fuel|baf|diesel surcharge|"
+            "diesel surcharge %"
+        ),
         "valid_from": "valid from|from date|valid|start date|effective|effective from|valid as of|since",
         "km": "km|distance|kilometres|kilometers|distance km|miles",
         "hold": "hold|held",
@@ -109,7 +137,7 @@ _RULE_WORDS = {
     "week": "week|period|name of week|week name",
     "unit": "unit|units|unit of quantity|quantity unit|uom",
     "currency": "currency|money|ccy",
-    "fuel_surcharge": "fuel surcharge %|fuel surcharge|surcharge|surcharge %|fuel|fuel %|diesel surcharge",
+    "fuel_surcharge": ("fuel surcharge %|fuel surcharge|surcharge|surcharge %|fuel|fuel %|diesel surcharge"),
     "load_size": "load size|load|vehicle size|truck size|payload",
     "when_short": "when short|if short|short rule|what when short",
     "charge_if_short": "charge if short|short charge|shortage charge|penalty",
@@ -166,13 +194,10 @@ def heading_of(text: str) -> Heading:
 
 def _is_mark(word: str) -> bool:
     pieces = [piece for piece in re.split(r"/", word) if piece]
-    return (
-        word in ("in", "per", "/")
-        or bool(pieces)
-        and all(
-            unit_of(piece) or currencies_of(piece) or unclear_unit(piece) or piece == "%" for piece in pieces
-        )
-    )
+    known = [
+        unit_of(piece) or currencies_of(piece) or unclear_unit(piece) or piece == "%" for piece in pieces
+    ]
+    return word in ("in", "per", "/") or (bool(known) and all(known))
 
 
 def is_heading_word(text: str) -> bool:

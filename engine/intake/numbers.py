@@ -122,7 +122,7 @@ def read_number(
 def _from_workbook(raw: int | float, expected: Expected) -> tuple[Decimal | None, Finding | None]:
     if isinstance(raw, float) and not math.isfinite(raw):
         return None, _not_finite(raw)
-    number = Decimal(repr(float(raw))) if isinstance(raw, float) else Decimal(raw)
+    number = _tidy(Decimal(repr(float(raw)))) if isinstance(raw, float) else Decimal(raw)
     if isinstance(raw, PercentCell):
         if expected != "percent":
             return None, _refused(
@@ -130,7 +130,7 @@ def _from_workbook(raw: int | float, expected: Expected) -> tuple[Decimal | None
                 f"{canonical(number * 100)}%",
                 "A percentage stands where a number belongs.",
             )
-        return _shortened(number * 100, raw)
+        return _shortened(_tidy(number * 100), raw)
     return _shortened(number, raw)
 
 
@@ -143,7 +143,7 @@ def _shortened(number: Decimal, raw: int | float) -> tuple[Decimal | None, Findi
         return (number, None) if digits <= MOST_DIGITS else (None, _too_many_digits(raw))
     if digits <= SHEET_DIGITS:
         return number, None
-    shown = Decimal(f"{number:.{SHEET_DIGITS}g}").normalize()
+    shown = _tidy(Decimal(f"{number:.{SHEET_DIGITS}g}"))
     return shown, Finding(
         Severity.NOTE,
         "digits beyond the sheet",
@@ -162,8 +162,7 @@ def _from_text(text: str, style: NumberStyle, expected: Expected) -> tuple[Decim
         return None, _misfit(text, parts.core, style.decimal_mark)
     if _significant(number) > MOST_DIGITS or number.adjusted() >= MOST_DIGITS:
         return None, _too_many_digits(text)
-    if parts.negative:
-        number = -number
+    number = _tidy(-number if parts.negative else number)
     return _with_words(number, parts, text, style, expected)
 
 
@@ -216,6 +215,11 @@ def _ungrouped(whole: str) -> str:
     middle = {len(group) for group in groups[1:-1]}
     by_hundreds = middle == {2} and len(groups[0]) <= 2 and "," in whole  # 12,34,567 as written in India
     return "".join(groups) if middle <= {3} or by_hundreds else ""
+
+
+def _tidy(number: Decimal) -> Decimal:
+    """The same number without zeros at its end, without an exponent and without a negative zero."""
+    return Decimal(canonical(number))
 
 
 def _with_words(

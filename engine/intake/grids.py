@@ -1,0 +1,200 @@
+"""Rates as a grid, depots down and customers across or the other way round, found by the names in it."""
+
+from collections import Counter
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+from functools import cached_property
+from itertools import chain
+from typing import Any
+
+from engine.intake.cells import Sheet
+from engine.intake.fields import CLOSED_WORDS, text_of
+from engine.intake.headings import names_what
+from engine.intake.names import folded
+from engine.intake.numbers import is_blank
+from engine.intake.recognise import candidate_rows, is_total
+
+_SAMPLE = 2000
+"""So many names are looked at to tell which way round a grid is."""
+
+
+@dataclass(frozen=True, eq=False)
+class Grid:
+    """A grid of rates.
+
+    head: row of the names across; side: column of the names down; columns: the columns with a name across;
+    rows: the rows with a name down; depots_down: whether the names down are depots; title: texts above and
+    in the corner, which may say what the rates are in; totals: how many rows and columns of totals were
+    left out. Rows and columns count from 0.
+    """
+
+    sheet: Sheet
+    head: int
+    side: int
+    columns: tuple[int, ...]
+    rows: tuple[int, ...]
+    depots_down: bool
+    title: str
+    totals: int = 0
+    sure: bool = True
+
+    @cached_property
+    def cells(self) -> list[Any]:
+        """The raw cells of the grid, row after row."""
+        if not self.columns:
+            return []
+        first, last = self.columns[0], self.columns[-1]
+        rows = (self.sheet.rows[row] for row in self.rows)
+        if last - first + 1 == len(self.columns):
+            return list(chain.from_iterable(row[first : last + 1] for row in rows))
+        return [row[column] for row in rows for column in self.columns]
+
+    def names_across(self) -> list[str]:
+        row = self.sheet.rows[self.head]
+        return [text_of(row[column]) for column in self.columns]
+
+    def names_down(self) -> list[str]:
+        return [text_of(self.sheet.rows[row][self.side]) for row in self.rows]
+
+
+def find_grid(
+    sheet: Sheet, depots: Iterable[str], customers: Iterable[str], from_row: int = 0
+) -> Grid | None:
+    """The grid of rates on a sheet, None where there is none.
+
+    depots, customers: the names that are known, folded; with none known the words in the corner decide
+    """
+    known = {"depot": frozenset(depots), "customer": frozenset(customers)}
+    best: tuple[int, int, int, bool, bool] | None = None
+    for head in candidate_rows(sheet):
+        if head < from_row:
+            continue
+        found = _by_names(sheet, head, known) or _by_corner(sheet, head)
+        if found is not None and (best is None or found[0] > best[0]):
+            score, side, depots_down, sure = found
+            best = score, head, side, depots_down, sure
+            if sure and score > 3 * len(sheet.rows[head]):
+                break
+    return None if best is None else _grid(sheet, *best[1:])
+
+
+def _by_names(
+    sheet: Sheet, head: int, known: Mapping[str, frozenset[str]]
+) -> tuple[int, int, bool, bool] | None:
+    """Score, column of the names down, whether those are depots, and whether that is certain."""
+    row = sheet.rows[head]
+    names = {column: folded(text_of(cell)) for column, cell in enumerate(row[:_SAMPLE]) if _is_name(cell)}
+    best: tuple[int, int, bool, bool] | None = None
+    for across, down in (("customer", "depot"), ("depot", "customer")):
+        hits = [column for column, name in names.items() if name in known[across]]
+        if not hits or 2 * len(hits) < len(names) - 2:
+            continue
+        first = min(hits)
+        below = sheet.rows[head + 1 : head + 1 + _SAMPLE]
+        counts = Counter[int]()
+        for column in range(max(0, first - 30), first):
+            counts[column] = sum(
+                folded(text_of(r[column])) in known[down] for r in below if _is_name(r[column])
+            )
+        if not counts or not max(counts.values()):
+            continue
+        side = max(counts, key=lambda column: (counts[column], column))
+        score = len(hits) + counts[side]
+        if best is not None and score == best[0]:
+            return (
+                score,
+                side,
+                names_what(text_of(row[side])) != "customer",
+                bool(names_what(text_of(row[side]))),
+            )
+        if best is None or score > best[0]:
+            best = score, side, down == "depot", True
+    return best
+
+
+def _by_corner(sheet: Sheet, head: int) -> tuple[int, int, bool, bool] | None:
+    """As `_by_names`, by a corner that says Depot or Customer and numbers below and to the right of it."""
+    row = sheet.rows[head]
+    side = next((column for column, cell in enumerate(row) if not is_blank(cell)), None)
+    if side is None or not isinstance(row[side], str):
+        return None
+    what = names_what(row[side])
+    across = [column for column in range(side + 1, min(len(row), side + 51)) if _is_name(row[column])]
+    below = sheet.rows[head + 1 : head + 21]
+    if not what or not across or not below or not any(_is_name(r[side]) for r in below):
+        return None
+    if any(names_what(text_of(row[column])) for column in across):
+        return None
+    body = [r[column] for r in below for column in across if not is_blank(r[column])]
+    rates = sum(_is_rate(cell) for cell in body)
+    return (1, side, what == "depot", True) if body and 2 * rates > len(body) else None
+
+
+def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> Grid:
+    row = sheet.rows[head]
+    end = _end(sheet, head, side)
+    columns = []
+    totals = 0
+    last = side
+    for column in range(side + 1, len(row)):
+        if is_blank(row[column]):
+            continue
+        text = text_of(row[column])
+        if is_total(text):
+            totals += 1
+            continue
+        if column > last + 1 and not _has_rates(sheet, head, end, column):
+            continue
+        if not _has_rates(sheet, head, end, column) and _has_words(sheet, head, end, column):
+            continue
+        columns.append(column)
+        last = column
+    rows = []
+    for number in range(head + 1, end):
+        cell = sheet.rows[number][side]
+        if is_blank(cell):
+            continue
+        if is_total(text_of(cell)):
+            totals += 1
+            continue
+        rows.append(number)
+    titles = [
+        text_of(cell) for r in sheet.rows[max(0, head - 3) : head] for cell in r[:50] if isinstance(cell, str)
+    ]
+    titles += [text_of(row[column]) for column in range(side + 1) if isinstance(row[column], str)]
+    title = " ".join([sheet.name, *(text for text in titles if text)])
+    return Grid(sheet, head, side, tuple(columns), tuple(rows), depots_down, title, totals, sure)
+
+
+def _end(sheet: Sheet, head: int, side: int) -> int:
+    """Where the grid ends: below its last row that has a name and anything else."""
+    rows = sheet.rows
+    for number in range(len(rows) - 1, head, -1):
+        row = rows[number]
+        if not is_blank(row[side]) and any(not is_blank(cell) for cell in row[side + 1 :]):
+            return number + 1
+    return head + 1
+
+
+def _is_name(cell: Any) -> bool:
+    return not is_blank(cell) and not isinstance(cell, bool)
+
+
+def _is_rate(cell: Any) -> bool:
+    if isinstance(cell, (int, float)):
+        return True
+    return isinstance(cell, str) and (
+        any(c.isdigit() for c in cell) or cell.strip().casefold() in CLOSED_WORDS
+    )
+
+
+def _column_cells(sheet: Sheet, head: int, end: int, column: int) -> Sequence[Any]:
+    return [row[column] for row in sheet.rows[head + 1 : min(end, head + 201)]]
+
+
+def _has_rates(sheet: Sheet, head: int, end: int, column: int) -> bool:
+    return any(map(_is_rate, _column_cells(sheet, head, end, column)))
+
+
+def _has_words(sheet: Sheet, head: int, end: int, column: int) -> bool:
+    return any(not is_blank(cell) for cell in _column_cells(sheet, head, end, column))

@@ -1,0 +1,143 @@
+"""Spreadsheets to a week: the public way in."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+from decimal import Decimal
+
+from engine.exact import TooLarge
+from engine.findings import Finding, by_gravity
+from engine.intake.answers import Answers
+from engine.intake.build import Figures, build_figures
+from engine.intake.build_lists import Unused
+from engine.intake.cells import Source, read_sheets
+from engine.intake.check import check_week
+from engine.intake.names import folded
+from engine.intake.numbers import NumberStyle
+from engine.intake.places import Places
+from engine.intake.refusal import Limits, Unreadable
+from engine.intake.remarks import Counts
+from engine.week import Week
+
+__all__ = ["Answers", "Limits", "Reading", "Unreadable", "read_week"]
+
+
+@dataclass(frozen=True, eq=False)
+class Reading:
+    """A week as read from spreadsheets, and everything that there is to say about it.
+
+    counts: rows below headings (in a grid: cells) read, used, and named in findings; read = used + named
+    summary: what was understood, in words
+    style: the number style that the figures were read by
+    unused: the texts of rows that are not in the week, and of cells that nobody could read
+    places: where each figure stands
+    tables: which tables were on the sheets
+    """
+
+    week: Week
+    findings: tuple[Finding, ...]
+    counts: Counts
+    summary: str
+    style: NumberStyle = field(default_factory=NumberStyle)
+    unused: tuple[Unused, ...] = ()
+    places: Places = field(default_factory=Places)
+    tables: frozenset[str] = frozenset()
+
+    @property
+    def rows_read(self) -> int:
+        return self.counts.read
+
+    @property
+    def rows_used(self) -> int:
+        return self.counts.used
+
+    @property
+    def rows_named(self) -> int:
+        return self.counts.named
+
+
+def read_week(
+    source: Source | Iterable[Source],
+    *,
+    limits: Limits | None = None,
+    answers: Answers | None = None,
+    known: Week | None = None,
+    decimal_mark: str = ".",
+) -> Reading:
+    """The week in one spreadsheet or several files, with findings; nothing is dropped without a word.
+
+    source: a path, an open file, bytes, or (name, bytes); or several of these
+    limits: what a file may cost
+    answers: what the desk has answered before
+    known: an earlier week, whose names help to recognise a grid when only rates are uploaded
+    decimal_mark: '.' or ',', assumed where the figures do not tell, and then asked
+
+    Raises:
+        Unreadable: a file that is no spreadsheet, is damaged, protected or too large.
+        OSError: a path that cannot be opened.
+    """
+    sheets = read_sheets(source, limits)
+    try:
+        figures = build_figures(sheets, answers or Answers(), known, decimal_mark)
+        found = check_week(figures.week, figures.places.where)
+    except TooLarge as error:
+        raise Unreadable(
+            "too large", str(error), "Mend the figure and upload again.", sheets[0].file
+        ) from error
+    findings = tuple(by_gravity([*figures.findings, *_not_said_yet(found, figures)]))
+    return Reading(
+        figures.week,
+        findings,
+        figures.counts,
+        summary_of(figures),
+        figures.style,
+        figures.unused,
+        figures.places,
+        figures.tables,
+    )
+
+
+def _not_said_yet(found: Iterable[Finding], figures: Figures) -> list[Finding]:
+    """Findings on the week without those that only follow from one on its sheets."""
+    missing = {finding.rule for finding in figures.findings}
+    aside = {
+        f"{unused.table.removesuffix('s')}: {folded(unused.texts.get('name', ''))}"
+        for unused in figures.unused
+        if unused.key is None
+    }
+    return [
+        finding
+        for finding in found
+        if f"missing {finding.rule.removeprefix('no ')}" not in missing
+        and not (finding.rule == "unknown name" and finding.subject in aside)
+    ]
+
+
+def summary_of(figures: Figures) -> str:
+    """What was understood, in one line of words."""
+    week = figures.week
+    table = week.rates.flat
+    lanes = (
+        len({*zip(table.depot.tolist(), table.customer.tolist(), strict=True)})
+        if len(table) < 200_000
+        else None
+    )
+    possible = len(week.depots) * len(week.customers)
+    parts = [_count(len(week.depots), "depot"), _count(len(week.customers), "customer")]
+    if lanes is None:
+        parts.append(f"{len(table)} rates")
+    else:
+        parts.append(
+            f"{_count(lanes, 'lane')} of {possible}"
+            + (f" ({len(table)} rates)" if len(table) > lanes else "")
+        )
+    ordered = sum((customer.ordered for customer in week.customers.values()), Decimal(0))
+    available = sum((depot.available for depot in week.depots.values()), Decimal(0))
+    unit = week.rules.unit
+    return (
+        f"{', '.join(parts)}; {ordered:,f} {unit} ordered, {available:,f} {unit} available; "
+        f"rates in {week.rules.currency} per {unit}; {figures.marks}"
+    )
+
+
+def _count(number: int, word: str) -> str:
+    return f"{number} {word}{'' if number == 1 else 's'}"
