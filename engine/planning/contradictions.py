@@ -1,8 +1,8 @@
 """Limits and holds that cannot all be kept: each contradiction named with a minimal set of figures.
 
 Anything may go short and anything may stay, so figures contradict each other only where something is
-*forced*: on a row (held against its limits), at a customer (forced beyond its order) or at a depot
-(forced beyond what it has).
+*forced*: at a customer (beyond its order, or from a depot it does not take from) or at a depot (beyond
+what it has).
 """
 
 from collections import defaultdict
@@ -34,9 +34,12 @@ class Forced:
 
 
 def contradictions(week: Week) -> tuple[Finding, ...]:
-    """Every contradiction among limits and holds; none: the week can be planned."""
+    """Every contradiction between rows; none: the week can be planned.
+
+    What speaks against itself on a single row, `engine.intake.check` has found before.
+    """
     forced = list(_forced(week))
-    findings = [finding for one in forced for finding in _on_the_row(week, one)]
+    findings = [finding for one in forced for finding in _against_one_depot(week, one)]
     if findings:
         return tuple(findings)
     unit = week.rules.unit
@@ -51,15 +54,6 @@ def contradictions(week: Week) -> tuple[Finding, ...]:
             limit = limits[name]
             if total_of(one.quantity for one in there) > limit:
                 findings.append(_beyond(name, limit_word, limit, minimal(there, limit), unit))
-    for name, depot in week.depots.items():
-        if depot.must_move is not None and depot.must_move > depot.available:
-            findings.append(
-                _finding(
-                    f"{name} must move {canonical(depot.must_move)} {unit} but has "
-                    f"{canonical(depot.available)} {unit} available.",
-                    "Must move is part of Available: lower it, or raise Available.",
-                )
-            )
     return tuple(findings)
 
 
@@ -89,35 +83,12 @@ def _forced(week: Week) -> Iterable[Forced]:
             yield Forced(key, least, held=False)
 
 
-def _on_the_row(week: Week, forced: Forced) -> Iterable[Finding]:
-    """Where the row's own limits, or its customer's one depot, speak against what is forced on it."""
-    number = week.rates.find(forced.key)
-    row = None if number is None else week.rates.row(number)
-    if row is None:
-        yield _finding(
-            f"A hold is on {describe(forced.key)}, which has no rate row.",
-            "Lift the hold, or add the rate row.",
-        )
-        return
-    name, unit = forced.words(week.rules.unit), week.rules.unit
-    if forced.quantity < 0:
-        yield _finding(f"{name} is negative.", "A quantity is 0 or more: mend it.")
-    if row.closed and forced.quantity > 0:
-        yield _finding(f"{name} is on a closed row.", "Open the row, or take the quantity off it.")
-    if row.at_most is not None and forced.quantity > row.at_most:
-        yield _finding(
-            f"{name} is above the row's at most, {canonical(row.at_most)} {unit}.",
-            "Lower the one or raise the other.",
-        )
-    if forced.held and row.at_least is not None and forced.quantity < row.at_least:
-        yield _finding(
-            f"{name} is below the row's at least, {canonical(row.at_least)} {unit}.",
-            "Raise the hold or lower the limit.",
-        )
+def _against_one_depot(week: Week, forced: Forced) -> Iterable[Finding]:
+    """What is forced on a row of a customer that takes from another depot only."""
     only = week.customers[forced.key.customer].one_depot
     if only not in (None, ANY_SINGLE_DEPOT, forced.key.depot) and forced.quantity > 0:
         yield _finding(
-            f"{name} goes to a customer that takes from {only} only.",
+            f"{forced.words(week.rules.unit)} goes to a customer that takes from {only} only.",
             "Take the quantity off the row, or change One depot.",
         )
 

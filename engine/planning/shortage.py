@@ -75,6 +75,8 @@ def evenly_shared(week: Week, model: Model) -> Model:
     step = to_integer(step_of(week.rules), model.quantity_places)
     received = rounded(sharing, shares(sharing, classes), step, classes)
     members = np.array([j for members in classes for j in members], dtype=np.int64)
+    if np.array_equal(received[members], sharing.ordered[members]):
+        return model
     problem = model.problem
     at_least, at_most = (np.array(limits, dtype=np.int64) for limits in (problem.at_least, problem.at_most))
     rows = model.short_rows[members]

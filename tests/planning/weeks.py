@@ -58,6 +58,8 @@ def weeks(draw: st.DrawFn) -> Week:
                         closed=draw(st.sampled_from([False] * 9 + [True])),
                     )
                 )
+    if not rows:  # a week without any lane is refused before it is planned
+        rows.append(RateRow("D0", "C0", D(draw(small)), haulier="H0"))
     holds = {
         RateKey(row.depot, row.customer, row.haulier): Hold(D(quantity), "asked for")
         for row in rows
