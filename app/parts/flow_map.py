@@ -9,6 +9,7 @@ import streamlit as st
 
 from app.parts.map_colours import colours
 from app.parts.map_drawing import (
+    FEW_DEPOTS,
     Drawing,
     Focus,
     Line,
@@ -78,26 +79,32 @@ def flow_map(
         alt=summary(drawn, unit, number),
     )
     st.image(legend(drawn, shown_in, unit, number), alt=in_words(drawn, unit, number))
-    for sentence in remarks(drawn, sum(label.kind == "short" for label in labels)):
+    named = [label.kind for label in labels]
+    for sentence in remarks(drawn, named.count("short"), named.count("depot")):
         st.text(sentence)
     return picked
 
 
-def flows_frame(points: Sequence[MapPoint], flows: Sequence[MapFlow], unit: str, number: Number = plain) -> pd.DataFrame:
-    """What the map shows, as a table: a row a flow, and a row for a customer that gets nothing."""
+def flows_frame(points: Sequence[MapPoint], flows: Sequence[MapFlow], unit: str) -> pd.DataFrame:
+    """What the map shows, as a table: a row a flow, and a row for each customer that gets nothing.
+
+    Quantities are exact decimals; None where nothing is sent, ordered or short.
+    """
     of = {point.name: point for point in points if point.kind == "customer"}
     moving = [flow for flow in flows if flow.quantity > 0]
     served = {flow.customer for flow in moving}
-    rows = [(flow.depot, flow.customer, flow.quantity, flow.label) for flow in moving]
-    rows += [("", name, Decimal(0), "") for name, point in of.items() if name not in served and point.quantity > 0]
+    rows: list[tuple[str, str, Decimal | None, str]] = [
+        (flow.depot, flow.customer, flow.quantity, flow.label) for flow in moving
+    ]
+    rows += [("", name, None, "") for name, point in of.items() if name not in served and point.quantity > 0]
     return pd.DataFrame(
         [
             (
                 depot,
                 customer,
-                number(quantity),
-                number(of[customer].quantity) if customer in of else "",
-                number(of[customer].short) if customer in of and of[customer].short > 0 else "",
+                quantity,
+                of[customer].quantity if customer in of else None,
+                of[customer].short if customer in of and of[customer].short > 0 else None,
                 " ".join(label.split()),
             )
             for depot, customer, quantity, label in rows
@@ -116,23 +123,26 @@ def flows_table(
     height: int = 300,
 ) -> Focus | None:
     """Shows the table and answers the row picked in it, None for none."""
-    frame = flows_frame(points, flows, unit, number)
+    frame = flows_frame(points, flows, unit)
+    names = frame[["Depot", "Customer"]]
     if not any(frame["Note"]):
         frame = frame.drop(columns="Note")
-    figures = [name for name in frame.columns if name.endswith(f"({unit})")]
-    event: Any = st.dataframe(
-        frame,
+    figures = [str(name) for name in frame.columns[2:5]]
+    sortable = frame.astype(dict.fromkeys(figures, float))  # the browser sorts floats, and shows our texts
+    shown: Any = sortable.style.format({name: lambda value: number(Decimal(repr(value))) for name in figures})
+    event = st.dataframe(
+        shown,
         key=key,
         height=height,
         hide_index=True,
+        placeholder="",
         on_select="rerun",
         selection_mode="single-row",
-        column_config={name: st.column_config.TextColumn(name, alignment="right") for name in figures},
     )
-    picked = [row for row in event.selection.rows if 0 <= row < len(frame)]
+    picked = [row for row in event.selection.rows if 0 <= row < len(names)]
     if not picked:
         return None
-    depot, customer = frame.iloc[picked[0]][["Depot", "Customer"]]
+    depot, customer = names.iloc[picked[0]]
     return Focus(depot or None, (customer,))
 
 
@@ -148,9 +158,9 @@ def summary(drawn: Drawing, unit: str, number: Number = plain) -> str:
     )
 
 
-def remarks(drawn: Drawing, short_named: int) -> list[str]:
+def remarks(drawn: Drawing, short_named: int, depots_named: int) -> list[str]:
     """What the map does not show, or shows together, a sentence each."""
-    said = []
+    said: list[str] = []
     if drawn.flows_drawn > len(drawn.lines) or any(len(mark.names) > 1 for mark in drawn.customers):
         customers = sum(len(mark.names) for mark in drawn.customers)
         said.append(
@@ -159,12 +169,15 @@ def remarks(drawn: Drawing, short_named: int) -> list[str]:
         )
     short = sum(mark.short > 0 for mark in drawn.customers)
     if short > short_named:
-        said.append(f"{short - short_named} more going short are ringed without room for a name: the table has them.")
+        said.append(f"{short - short_named} more going short are ringed, without room for a name.")
+    if len(drawn.depots) > depots_named:
+        said.append(f"{len(drawn.depots) - depots_named} depots are drawn without room for a name.")
     if drawn.unplaced:
         names = [point.name for point in drawn.unplaced]
-        listed = ", ".join(names[:MOST_NAMED]) + (f" and {len(names) - MOST_NAMED} more" if len(names) > MOST_NAMED else "")
-        lost = f" {_count(drawn.flows_not_drawn, 'flow')} from or to them stand only in the table." if drawn.flows_not_drawn else ""
-        said.append(f"Without coordinates, so not on the map: {listed}.{lost}")
+        more = f" and {len(names) - MOST_NAMED} more" if len(names) > MOST_NAMED else ""
+        said.append(f"Without usable coordinates, so not on the map: {', '.join(names[:MOST_NAMED])}{more}.")
+    if drawn.flows_not_drawn:
+        said.append(f"{_count(drawn.flows_not_drawn, 'flow')} from or to them: in the table only.")
     return said
 
 
@@ -208,7 +221,8 @@ def _wishes(
     drawn: Drawing, highlighted: Sequence[Line], focus: Focus | None, unit: str, number: Number
 ) -> list[Wish]:
     """Names in the order in which they claim room: depots, those looked at, those going short."""
-    wishes = [Wish(mark.title, mark, 14, "depot", must=True) for mark in drawn.depots]
+    few = len(drawn.depots) <= FEW_DEPOTS
+    wishes = [Wish(mark.title, mark, 14 if few else 12, "depot", must=few) for mark in drawn.depots]
     looked_at = {name for line in highlighted for name in line.customers}
     looked_at.update(focus.customers if focus else ())
     short = sorted((mark for mark in drawn.customers if mark.short > 0), key=lambda mark: -mark.short)

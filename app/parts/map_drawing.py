@@ -17,6 +17,9 @@ WIDEST, THINNEST = 11.0, 1.0
 """Pixels of a line."""
 LARGEST, SMALLEST = 9.0, 2.5
 """Pixels of a customer's radius."""
+DEPOT, CROWDED_DEPOT = 7.0, 5.0
+"""Half of a depot's side in pixels, with few depots and with many."""
+FEW_DEPOTS = 40
 TONES = 4
 
 Number = Callable[[Decimal], str]
@@ -39,10 +42,11 @@ class MapPoint:
 
     @property
     def place(self) -> Place | None:
-        """Longitude and latitude, None where either is missing."""
+        """Longitude and latitude, None where either is missing or is no place on earth."""
         if self.latitude is None or self.longitude is None:
             return None
-        return float(self.longitude), float(self.latitude)
+        longitude, latitude = float(self.longitude), float(self.latitude)
+        return (longitude, latitude) if abs(longitude) <= 180 and abs(latitude) <= 90 else None
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,7 +85,9 @@ class Mark:
 
     @property
     def title(self) -> str:
-        return self.names[0] if len(self.names) == 1 else f"{len(self.names)} customers around {self.names[0]}"
+        return (
+            self.names[0] if len(self.names) == 1 else f"{len(self.names)} customers around {self.names[0]}"
+        )
 
 
 @dataclass(frozen=True, slots=True)
@@ -173,9 +179,11 @@ def lines(
 
 def _depots(points: Sequence[MapPoint], under: Ground) -> tuple[Mark, ...]:
     marks: list[Mark] = []
+    size = DEPOT if len(points) <= FEW_DEPOTS else CROWDED_DEPOT
     for point in points:
         if point.place is not None:
-            mark = Mark((point.name,), under.plane.spot(point.place), point.quantity, point.short, 7.0, point.note)
+            spot = under.plane.spot(point.place)
+            mark = Mark((point.name,), spot, point.quantity, point.short, size, point.note)
             marks.append(replace(mark, tone=_tone(mark.spot, marks)))
     return tuple(marks)
 

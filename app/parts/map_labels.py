@@ -62,7 +62,12 @@ def placed(wishes: Sequence[Wish], depots: Sequence[Mark], customers: Sequence[M
             cost = covered + _overlap(box, dots) + 3 * rank
             if best is None or cost < best[0]:
                 anchor = ("middle", "start", "end")[right]
-                best = (cost, Label(wish.text, wish.mark.spot, near, anchor, wish.height, wish.kind), box, covered)
+                best = (
+                    cost,
+                    Label(wish.text, wish.mark.spot, near, anchor, wish.height, wish.kind),
+                    box,
+                    covered,
+                )
         if best is not None and (wish.must or best[3] == 0):
             taken.append(best[2])
             labels.append(best[1])
@@ -83,7 +88,8 @@ def _overlap(box: Box, others: Sequence[Box]) -> float:
     """The area, in square pixels, that a box shares with others."""
     left, top, right, bottom = box
     return sum(
-        max(0.0, min(right, other[2]) - max(left, other[0])) * max(0.0, min(bottom, other[3]) - max(top, other[1]))
+        max(0.0, min(right, other[2]) - max(left, other[0]))
+        * max(0.0, min(bottom, other[3]) - max(top, other[1]))
         for other in others
     )
 

@@ -6,7 +6,6 @@ lines and texts, which it leaves alone.
 """
 
 from collections.abc import Iterable, Sequence
-from typing import Any
 from zlib import crc32
 
 import pydeck
@@ -85,7 +84,7 @@ def _sum(parts: Iterable[tuple[str, ...]]) -> str:
 
 
 def _ground(drawing: Drawing, colours: Colours) -> list[pydeck.Layer]:
-    x, y = 3 * WIDTH, 3 * HEIGHT
+    x, y = 2 * WIDTH, 2 * HEIGHT
     under = drawing.ground
     return [
         pydeck.Layer(
@@ -143,7 +142,9 @@ def _lines(
             "end": line.end,
             "width": line.width,
             "colour": rgba(colours.tones[line.tone], alpha),
-            "tip": _tip([f"{line.depot} → {_names(line.customers)}", f"{number(line.quantity)} {unit}", line.label]),
+            "tip": _tip(
+                [f"{line.depot} → {_names(line.customers)}", f"{number(line.quantity)} {unit}", line.label]
+            ),
         }
         for line in lines
     ]
@@ -259,7 +260,7 @@ def _depots(
         get_line_color=rgba(colours.halo),
         get_line_width=2,
         line_width_units='"pixels"',
-        radius=10,
+        radius=max((mark.size for mark in marks), default=1.0) * 2**0.5,  # to a corner of the square
         radius_units='"pixels"',
         disk_resolution=4,
         angle=45,

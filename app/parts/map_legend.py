@@ -9,13 +9,15 @@ from app.parts.map_drawing import WIDEST, Drawing, Number
 
 ROW = 26
 TEXT_AT = 38
+EDGE = 6
+FONTS = "Source Sans, Segoe UI, Helvetica, Arial, sans-serif"
 FONT_SIZE = 13
 LETTER = 5.9
 """A letter's usual width in pixels at that size."""
 
 
-def legend(drawing: Drawing, colours: Colours, unit: str, number: Number, width: int = 520) -> str:
-    """The legend as SVG, broken into rows of at most this many pixels."""
+def legend(drawing: Drawing, colours: Colours, unit: str, number: Number, width: int = 540) -> str:
+    """The legend as SVG, at most this many pixels wide, on a ground of its own to be read on any page."""
     items = [
         (_squares(colours), "depots"),
         (_dot(colours, 6), "customer, sized by its order"),
@@ -24,20 +26,21 @@ def legend(drawing: Drawing, colours: Colours, unit: str, number: Number, width:
         items.append((_ring(colours), "going short, by how much"))
     shapes, widths = len(items), _widths(drawing, unit, number)
     items += [(_stroke(colours, line_width), f"{text} sent") for line_width, text in widths]
-    x, y, parts = 0.0, 0, []
+    x, y = 0.0, 0
+    parts = []
     for place, (shape, text) in enumerate(items):
         wide = TEXT_AT + len(text) * LETTER + 16
-        if x and (x + wide > width or place == shapes):
+        if x and (x + wide > width - 2 * EDGE or place == shapes):
             x, y = 0.0, y + ROW
-        parts.append(
-            f'<g transform="translate({x:.0f} {y})">{shape}<text x="{TEXT_AT}" y="{ROW / 2 + 4.5}" fill="{colours.ink}"'
-            f' font-family="Source Sans, Segoe UI, Helvetica, Arial, sans-serif" font-size="{FONT_SIZE}">'
-            f"{escape(text)}</text></g>"
-        )
+        words = f'<text x="{TEXT_AT}" y="{ROW / 2 + 4.5}">{escape(text)}</text>'
+        parts.append(f'<g transform="translate({x + EDGE:.0f} {y + EDGE})">{shape}{words}</g>')
         x += wide
+    height = y + ROW + 2 * EDGE
     return (
-        f'<svg xmlns="http://www.w3.org/2000/svg" width="{width}" height="{y + ROW}"'
-        f' viewBox="0 0 {width} {y + ROW}">{"".join(parts)}</svg>'
+        f'<svg xmlns="http://www.w3.org/2000/svg" width="{width}" height="{height}"'
+        f' viewBox="0 0 {width} {height}">'
+        f'<rect width="{width}" height="{height}" rx="4" fill="{colours.sea}"/>'
+        f'<g fill="{colours.ink}" font-family="{FONTS}" font-size="{FONT_SIZE}">{"".join(parts)}</g></svg>'
     )
 
 

@@ -25,8 +25,6 @@ class Plane:
     latitude: float
     shrink: float
     scale: float
-    half_width: float
-    half_height: float
 
     def spot(self, place: Place) -> Spot:
         """Where a place is drawn."""
@@ -65,8 +63,7 @@ def _plane(places: Sequence[Place]) -> Plane:
     shrink = max(0.05, cos(radians(latitude)))
     wide = max((east - west) * shrink, SMALLEST_SPAN)
     high = max(north - south, SMALLEST_SPAN)
-    scale = min(WIDTH / wide, HEIGHT / high)
-    return Plane((west + east) / 2, latitude, shrink, scale, wide * scale / 2, high * scale / 2)
+    return Plane((west + east) / 2, latitude, shrink, scale=min(WIDTH / wide, HEIGHT / high))
 
 
 def _unwrapped(longitudes: list[float]) -> list[float]:
@@ -77,29 +74,32 @@ def _unwrapped(longitudes: list[float]) -> list[float]:
 
 
 def _grid(plane: Plane) -> tuple[tuple[tuple[Spot, Spot], ...], tuple[tuple[str, Spot], ...]]:
-    """Lines at round degrees, reaching well beyond the drawing, labelled near its left and lower edge."""
-    half_lat = plane.half_height / plane.scale
-    half_lon = plane.half_width / plane.scale / plane.shrink
-    step = next((s for s in GRID_STEPS if 2 * half_lat / s <= 6 and 2 * half_lon / s <= 9), GRID_STEPS[-1])
+    """Lines at round degrees, reaching well beyond what is seen, labelled near its left and lower edge."""
+    high = HEIGHT / plane.scale
+    wide = WIDTH / plane.scale / plane.shrink
+    step = next((s for s in GRID_STEPS if high / s <= 6 and wide / s <= 9), GRID_STEPS[-1])
     lines: list[tuple[Spot, Spot]] = []
     labels: list[tuple[str, Spot]] = []
-    far_x, far_y = 3 * WIDTH, 3 * HEIGHT
-    for number in range(ceil((plane.latitude - 4 * half_lat) / step), floor((plane.latitude + 4 * half_lat) / step) + 1):
-        degrees = number * step
+    for degrees in _multiples(step, plane.latitude, 2 * high):
         if abs(degrees) <= 90:
             _, y = plane.spot((plane.longitude, degrees))
-            lines.append(((-far_x, y), (far_x, y)))
+            lines.append(((-2 * WIDTH, y), (2 * WIDTH, y)))
             if abs(y) < HEIGHT / 2:
                 labels.append((_degrees(degrees, "N", "S"), (-WIDTH / 2 - 16, y - 8)))
-    for number in range(ceil((plane.longitude - 4 * half_lon) / step), floor((plane.longitude + 4 * half_lon) / step) + 1):
-        degrees = number * step
-        if abs(degrees - plane.longitude) < 180:
-            x, _ = plane.spot((degrees, plane.latitude))
-            lines.append(((x, -far_y), (x, far_y)))
-            if abs(x) < WIDTH / 2 - 20:
-                turned = (degrees + 180) % 360 - 180
-                labels.append((_degrees(turned, "E", "W"), (x + 4, HEIGHT / 2 + 20)))
+    for degrees in _multiples(step, plane.longitude, min(2 * wide, 179.9)):
+        x, _ = plane.spot((degrees, plane.latitude))
+        lines.append(((x, -2 * HEIGHT), (x, 2 * HEIGHT)))
+        if abs(x) < WIDTH / 2 - 20:
+            turned = (degrees + 180) % 360 - 180
+            labels.append((_degrees(turned, "E", "W"), (x + 4, HEIGHT / 2 + 20)))
     return tuple(lines), tuple(labels)
+
+
+def _multiples(step: float, middle: float, reach: float) -> list[float]:
+    """The multiples of a step that are no farther than this from a middle."""
+    return [
+        number * step for number in range(ceil((middle - reach) / step), floor((middle + reach) / step) + 1)
+    ]
 
 
 def _degrees(value: float, positive: str, negative: str) -> str:
