@@ -210,10 +210,11 @@ def _missing_heading(partial: Partial, rows: int) -> Finding:
 
 
 def _not_understood(sheet: Sheet, rows: int) -> Finding:
+    numbers = any(isinstance(cell, int | float) for row in sheet.rows for cell in row)
     return Finding(
-        Severity.CHECK,
+        Severity.CHECK if numbers else Severity.NOTE,
         "sheet left out",
-        f"On sheet '{sheet.name}' no table was recognised; its {rows} rows were not read.",
+        f"On sheet '{sheet.name}' no table was recognised; it was not read ({rows} rows).",
         "Give it the headings of Depots, Customers, Rates or Rules if it holds figures.",
         sheet.file,
         sheet.name,

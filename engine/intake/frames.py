@@ -126,7 +126,7 @@ def changes_between(
         faults = found.get(label, {})
         if label in keys and label in same and not faults:
             continue
-        row = {name: column[position] for name, column in values.items()}
+        row = {name: _spelled(week, name, column[position]) for name, column in values.items()}
         if label not in keys and not faults and all(not v or v == "unit" for v in row.values()):
             continue
         more, said = _row_changes(week, table, keys.get(label), row, faults, taken)
@@ -139,6 +139,16 @@ def changes_between(
 
 
 _WHAT: Mapping[str, Any] = {"depots": "depot", "customers": "customer", "rates": "rate"}
+
+
+def _spelled(week: Week, name: str, value: Any) -> Any:
+    """A depot's or customer's name in a rate row or in *One depot*, spelled as the week spells it."""
+    if not isinstance(value, str) or name not in ("depot", "customer", "one_depot"):
+        return value
+    known = week.customers if name == "customer" else week.depots
+    if value in known:
+        return value
+    return next((other for other in known if folded(other) == folded(value)), value)
 
 
 def _records(week: Week, table: str) -> Sequence[Any]:

@@ -1,8 +1,10 @@
 """Spreadsheets to a week: the public way in."""
 
 from collections.abc import Iterable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from decimal import Decimal
+
+import numpy as np
 
 from engine.exact import TooLarge
 from engine.findings import Finding, by_gravity
@@ -105,7 +107,9 @@ def _not_said_yet(found: Iterable[Finding], figures: Figures) -> list[Finding]:
         if unused.key is None
     }
     return [
-        finding
+        replace(finding, mend="Fill in the rows below its headings.")
+        if finding.rule.removeprefix("no ") in figures.tables
+        else finding
         for finding in found
         if f"missing {finding.rule.removeprefix('no ')}" not in missing
         and not (finding.rule == "unknown name" and finding.subject in aside)
@@ -116,20 +120,11 @@ def summary_of(figures: Figures) -> str:
     """What was understood, in one line of words."""
     week = figures.week
     table = week.rates.flat
-    lanes = (
-        len({*zip(table.depot.tolist(), table.customer.tolist(), strict=True)})
-        if len(table) < 200_000
-        else None
-    )
+    lanes = _open_lanes(week)
     possible = len(week.depots) * len(week.customers)
     parts = [_count(len(week.depots), "depot"), _count(len(week.customers), "customer")]
-    if lanes is None:
-        parts.append(f"{len(table)} rates")
-    else:
-        parts.append(
-            f"{_count(lanes, 'lane')} of {possible}"
-            + (f" ({len(table)} rates)" if len(table) > lanes else "")
-        )
+    rates = f" ({len(table)} rates)" if len(table) > lanes else ""
+    parts.append(f"{_count(lanes, 'lane')} of {possible}{rates}")
     ordered = sum((customer.ordered for customer in week.customers.values()), Decimal(0))
     available = sum((depot.available for depot in week.depots.values()), Decimal(0))
     unit = week.rules.unit
@@ -137,6 +132,21 @@ def summary_of(figures: Figures) -> str:
         f"{', '.join(parts)}; {ordered:,f} {unit} ordered, {available:,f} {unit} available; "
         f"rates in {week.rules.currency} per {unit}; {figures.marks}"
     )
+
+
+def _open_lanes(week: Week) -> int:
+    """How many lanes between depots and customers of the week have a rate that is not closed."""
+    table = week.rates.flat
+    if not len(table):
+        return 0
+    depots = np.array([name in week.depots for name in table.depot_names], dtype=bool)[table.depot]
+    customers = np.array([name in week.customers for name in table.customer_names], dtype=bool)[
+        table.customer
+    ]
+    rows = depots & customers & ~table.closed
+    seen = np.zeros(len(table.depot_names) * len(table.customer_names), dtype=bool)
+    seen[table.customer[rows].astype(np.int64) * len(table.depot_names) + table.depot[rows]] = True
+    return int(seen.sum())
 
 
 def _count(number: int, word: str) -> str:
