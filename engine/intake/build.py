@@ -83,7 +83,7 @@ def _taught(answers: Answers) -> dict[str, dict[str, str]]:
     taught: dict[str, dict[str, str]] = {kind: {} for kind in TITLES}
     for (rule, subject), answer in answers.given.items():
         kind, colon, heading = subject.partition(": ")
-        if rule == WHICH_COLUMN and colon and kind in taught:
+        if (rule == WHICH_COLUMN or rule == f"missing {kind}") and colon and kind in taught:
             column = next((c for c in COLUMNS_OF[kind] if c.heading == answer), None)
             taught[kind][heading] = column.field if column else ""
     return taught

@@ -9,7 +9,7 @@ from typing import Any
 
 from engine.intake.cells import Sheet
 from engine.intake.fields import CLOSED_WORDS, text_of
-from engine.intake.headings import names_what
+from engine.intake.headings import is_heading_word, names_what
 from engine.intake.names import folded
 from engine.intake.numbers import is_blank
 from engine.intake.recognise import candidate_rows, is_total
@@ -69,7 +69,7 @@ def find_grid(
     for head in candidate_rows(sheet):
         if head < from_row:
             continue
-        found = _by_names(sheet, head, known) or _by_corner(sheet, head)
+        found = _by_names(sheet, head, known) or _by_corner(sheet, head, known)
         if found is not None and (best is None or found[0] > best[0]):
             score, side, depots_down, sure = found
             best = score, head, side, depots_down, sure
@@ -112,7 +112,9 @@ def _by_names(
     return best
 
 
-def _by_corner(sheet: Sheet, head: int) -> tuple[int, int, bool, bool] | None:
+def _by_corner(
+    sheet: Sheet, head: int, known: Mapping[str, frozenset[str]]
+) -> tuple[int, int, bool, bool] | None:
     """As `_by_names`, by a corner that says Depot or Customer and numbers below and to the right of it."""
     row = sheet.rows[head]
     side = next((column for column, cell in enumerate(row) if not is_blank(cell)), None)
@@ -121,13 +123,16 @@ def _by_corner(sheet: Sheet, head: int) -> tuple[int, int, bool, bool] | None:
     what = names_what(row[side])
     across = [column for column in range(side + 1, min(len(row), side + 51)) if _is_name(row[column])]
     below = sheet.rows[head + 1 : head + 21]
-    if not what or not across or not below or not any(_is_name(r[side]) for r in below):
+    if not what or len(across) < 2 or any(is_heading_word(text_of(row[column])) for column in across):
         return None
-    if any(names_what(text_of(row[column])) for column in across):
-        return None
+    down = [text_of(r[side]) for r in below if _is_name(r[side])]
+    other = "customer" if what == "depot" else "depot"
+    for kind, names in ((what, down), (other, [text_of(row[column]) for column in across])):
+        if known[kind] and not any(folded(name) in known[kind] for name in names):
+            return None
     body = [r[column] for r in below for column in across if not is_blank(r[column])]
     rates = sum(_is_rate(cell) for cell in body)
-    return (1, side, what == "depot", True) if body and 2 * rates > len(body) else None
+    return (1, side, what == "depot", True) if down and body and 2 * rates > len(body) else None
 
 
 def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> Grid:

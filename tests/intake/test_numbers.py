@@ -125,8 +125,20 @@ def test_arithmetic_noise_of_a_sheet_is_read_as_shown_and_said():
 
 
 def test_what_one_cell_tells_of_the_mark():
-    told = {"1.234": "?", "1,234": "?", "1.5": ".", "1,5": ",", "0.123": ".", "1,234.5": ".", "1.234.567": ",",
-            "12": "", "1 234": "", "abc": "", "12.50": ".", "1234.567": "."}  # fmt: skip
+    told = {
+        "1.234": "?",
+        "1,234": "?",
+        "1.5": ".",
+        "1,5": ",",
+        "0.123": ".",
+        "1,234.5": ".",
+        "1.234.567": ",",
+        "12": "",
+        "1 234": "",
+        "abc": "",
+        "12.50": ".",
+        "1234.567": ".",
+    }
     assert {text: mark_told_by(text) for text in told} == told
     assert both_readings("1.234") == ("1.234", "1234")
 

@@ -35,7 +35,8 @@ def test_a_plain_week():
     assert reading.findings == ()
     assert (reading.rows_read, reading.rows_used, reading.rows_named) == (11, 11, 0)
     assert reading.summary == (
-        "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available; rates in EUR per t; decimal point"
+        "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available; "
+        "rates in EUR per t; decimal point"
     )
 
 
@@ -59,8 +60,16 @@ def test_rates_as_a_grid_either_way_round(grid):
 
 
 def test_a_grid_that_starts_anywhere_with_lanes_closed_in_words():
-    rows = [["Rates of November"], [], ["", "", "Aster", "Birch", "Total"],
-            ["", "Northgate", "x", 13, 13], ["", "Quarry", "9.75", "n/a"], ["", "Total", 1, 2], [], ["valid until Friday"]]  # fmt: skip
+    rows = [
+        ["Rates of November"],
+        [],
+        ["", "", "Aster", "Birch", "Total"],
+        ["", "Northgate", "x", 13, 13],
+        ["", "Quarry", "9.75", "n/a"],
+        ["", "Total", 1, 2],
+        [],
+        ["valid until Friday"],
+    ]
     reading = read(Rates=rows)
     assert [(r.depot, r.customer, r.rate) for r in reading.week.rates] == [
         ("Northgate", "Birch", Decimal(13)),
@@ -87,8 +96,12 @@ def test_tables_anywhere_two_on_a_sheet_titles_and_notes():
 
 
 def test_order_rows_are_added_up_and_numbers_and_days_kept():
-    rows = [["Customer", "Ordered", "Priority", "Order number", "Day"], ["Aster", 50, "A", 1001, "Mon"],
-            ["Birch", "40 t", None, None, None], ["  aster", 10, None, "1002", "Tue"]]  # fmt: skip
+    rows = [
+        ["Customer", "Ordered", "Priority", "Order number", "Day"],
+        ["Aster", 50, "A", 1001, "Mon"],
+        ["Birch", "40 t", None, None, None],
+        ["  aster", 10, None, "1002", "Tue"],
+    ]
     week = read(Customers=rows).week
     aster = week.customers["Aster"]
     assert aster.orders == (Order(Decimal(50), "1001", "Mon"), Order(Decimal(10), "1002", "Tue"))
@@ -116,25 +129,42 @@ FAULTS = [
     ({"Depots": [*DEPOTS, ["QUARRY", 5]]}, ("stops", "same depot twice", "Depots", "A4")),
     ({"Depots": [*DEPOTS, [None, 5]]}, ("stops", "no name", "Depots", "A4")),
     ({"Depots": [*DEPOTS, ["Mill", 5]]}, ("check", "no lane leaves", "Depots", "A4")),
-    ({"Depots": [["Depot", "Available", "Charge if unsent"], ["Northgate", 120, -2], ["Quarry", 80]]},
-     ("check", "credit if unsent", "Depots", "C2")),
-    ({"Depots": [["Depot", "Available", "Must move"], ["Northgate", 120, 121], ["Quarry", 80]]},
-     ("stops", "must move over available", "Depots", "C2")),
-    ({"Depots": [["Depot", "Available", "Region"], ["Northgate", 120, "N"], ["Quarry", 80]]},
-     ("note", "which column", "Depots", "C1")),
-    ({"Depots": [["Depot", "Free tonnage"], ["Northgate", 120], ["Quarry", 80]]}, ("stops", "no depots", "Depots", "")),
+    (
+        {"Depots": [["Depot", "Available", "Charge if unsent"], ["Northgate", 120, -2], ["Quarry", 80]]},
+        ("check", "credit if unsent", "Depots", "C2"),
+    ),
+    (
+        {"Depots": [["Depot", "Available", "Must move"], ["Northgate", 120, 121], ["Quarry", 80]]},
+        ("stops", "must move over available", "Depots", "C2"),
+    ),
+    (
+        {"Depots": [["Depot", "Available", "Region"], ["Northgate", 120, "N"], ["Quarry", 80]]},
+        ("note", "which column", "Depots", "C1"),
+    ),
+    (
+        {"Depots": [["Depot", "Free tonnage"], ["Northgate", 120], ["Quarry", 80]]},
+        ("stops", "no depots", "Depots", ""),
+    ),
     ({"Depots": None}, ("stops", "no depots", "Depots", "")),
     ({"Customers": None}, ("stops", "no customers", "Customers", "")),
     ({"Customers": [*CUSTOMERS, ["Cole", 5]]}, ("check", "no lane reaches", "Customers", "A4")),
     ({"Customers": [*CUSTOMERS, ["Birch", None]]}, ("check", "no order", "Customers", "B4")),
-    ({"Customers": [["Customer", "Ordered"], ["Aster", 250], ["Birch", 40]]},
-     ("check", "order beyond reach", "Customers", "B2")),
-    ({"Customers": [["Customer", "Ordered", "One depot"], ["Aster", 60, "Mill"], ["Birch", 40, None]]},
-     ("stops", "unknown name", "Customers", "C2")),
-    ({"Customers": [["Customer", "Ordered", "One depot"], ["Aster", 60, "yes"], ["Birch", 40, None]]},
-     ("stops", "not planned yet", "Customers", "C2")),
-    ({"Customers": [["Customer", "Ordered", "Smallest drop"], ["Aster", 60, None], ["Birch", 40, 20]]},
-     ("stops", "not planned yet", "Customers", "C3")),
+    (
+        {"Customers": [["Customer", "Ordered"], ["Aster", 250], ["Birch", 40]]},
+        ("check", "order beyond reach", "Customers", "B2"),
+    ),
+    (
+        {"Customers": [["Customer", "Ordered", "One depot"], ["Aster", 60, "Mill"], ["Birch", 40, None]]},
+        ("stops", "unknown name", "Customers", "C2"),
+    ),
+    (
+        {"Customers": [["Customer", "Ordered", "One depot"], ["Aster", 60, "yes"], ["Birch", 40, None]]},
+        ("stops", "not planned yet", "Customers", "C2"),
+    ),
+    (
+        {"Customers": [["Customer", "Ordered", "Smallest drop"], ["Aster", 60, None], ["Birch", 40, 20]]},
+        ("stops", "not planned yet", "Customers", "C3"),
+    ),
     ({"Rates": None}, ("stops", "no rates", "Rates", "")),
     ({"Rates": [*RATES, ["Nothgate", "Aster", 3]]}, ("check", "unknown name", "Rates", "A6")),
     ({"Rates": [*RATES, ["Northgate", "Cole", 3]]}, ("check", "unknown name", "Rates", "B6")),
@@ -142,22 +172,35 @@ FAULTS = [
     ({"Rates": [*RATES, ["Northgate", "Aster", None]]}, ("check", "no rate", "Rates", "C6")),
     ({"Rates": [*RATES, ["Northgate", None, 3]]}, ("stops", "no name", "Rates", "B6")),
     ({"Rates": [*RATES, ["Northgate", "Aster", 12]]}, ("check", "same lane twice", "Rates", "C6")),
-    ({"Rates": rates(["Northgate", "Aster", 3, 20, 10], *RATES[2:], headings=["At least", "At most"])},
-     ("stops", "at least over at most", "Rates", "D2")),
-    ({"Rates": rates(["Northgate", "Aster", 3, "load"], *RATES[2:], headings=["Per"])},
-     ("stops", "not planned yet", "Rates", "D2")),
-    ({"Rates": [["Depot", "Customer", "Rate EUR/load"], *RATES[1:]]}, ("stops", "not planned yet", "Rates", "A2")),
-    ({"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Trip minimum"])},
-     ("stops", "not planned yet", "Rates", "D2")),
-    ({"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Charge per use"])},
-     ("stops", "not planned yet", "Rates", "D2")),
+    (
+        {"Rates": rates(["Northgate", "Aster", 3, 20, 10], *RATES[2:], headings=["At least", "At most"])},
+        ("stops", "at least over at most", "Rates", "D2"),
+    ),
+    (
+        {"Rates": rates(["Northgate", "Aster", 3, "load"], *RATES[2:], headings=["Per"])},
+        ("stops", "not planned yet", "Rates", "D2"),
+    ),
+    (
+        {"Rates": [["Depot", "Customer", "Rate EUR/load"], *RATES[1:]]},
+        ("stops", "not planned yet", "Rates", "A2"),
+    ),
+    (
+        {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Trip minimum"])},
+        ("stops", "not planned yet", "Rates", "D2"),
+    ),
+    (
+        {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Charge per use"])},
+        ("stops", "not planned yet", "Rates", "D2"),
+    ),
     ({"Rates": [["Depot", "Customer", "Rate £/t"], *RATES[1:]]}, ("stops", "other currency", "Rates", "C1")),
-    ({"Rates": [["Depot", "Customer", "Rate"], ["Northgate", "Aster", "1,234"], *RATES[2:]]},
-     ("check", "which mark", "Rates", "C2")),
+    (
+        {"Rates": [["Depot", "Customer", "Rate"], ["Northgate", "Aster", "1,234"], *RATES[2:]]},
+        ("check", "which mark", "Rates", "C2"),
+    ),
     ({"Rules": [["Rule", "Value"], ["When short", "toss a coin"]]}, ("stops", "rule", "Rules", "B2")),
     ({"Rules": [["Rule", "Value"], ["Unit", "ton"]]}, ("stops", "unclear unit", "Rules", "B2")),
     ({"Rules": [["Rule", "Value"], ["Colour", "blue"]]}, ("check", "unknown rule", "Rules", "A2")),
-]  # fmt: skip
+]
 
 
 @pytest.mark.parametrize(("changed", "finding"), FAULTS)
@@ -246,10 +289,14 @@ def test_separate_text_files_with_decimal_comma():
     sources = [
         text_file("depots.csv", "Depot;Available\nNorthgate;120\nQuarry;80\n", "utf-8-sig"),
         text_file("orders.txt", "Customer\tOrdered\nAster\t60,0\nBirch\t40\n", "utf-16"),
-        text_file("rates.csv", "Depot;Customer;Rate\nNorthgate;Aster;12,5\nNorthgate;Birch;13\n"
-                  "Quarry;Aster;9,75\nQuarry;Birch;11\n", "cp1252"),
+        text_file(
+            "rates.csv",
+            "Depot;Customer;Rate\nNorthgate;Aster;12,5\nNorthgate;Birch;13\n"
+            "Quarry;Aster;9,75\nQuarry;Birch;11\n",
+            "cp1252",
+        ),
         text_file("rules.csv", "Rule,Value\nWeek,Week 49\n"),
-    ]  # fmt: skip
+    ]
     reading = read_week(sources)
     assert reading.week == PLAIN
     assert reading.findings == ()
