@@ -1,0 +1,222 @@
+"""The first spanning tree: from an earlier flow as far as it fits, then customer by customer.
+
+Every step sends as much as it can on one row, and so uses up the depot, meets the customer's need or fills
+the row. A used-up depot then hangs below the customer, a served customer below the depot: whatever the order
+of the steps, no cycle can arise and the tree is strongly feasible. What no row can bring comes from the root,
+what no row takes goes back there, at a cost that no real detour reaches.
+
+Customers come in the order of what it would cost them to get their second choice (the idea of Vogel's
+method: Reinfeld & Vogel 1958, from memory).
+"""
+
+from __future__ import annotations
+
+from typing import NamedTuple
+
+import numpy as np
+
+from engine.exact import Integers
+from engine.network.compiled import kernel
+from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature
+from engine.network.simplex_tree import ARTIFICIAL, NOBODY, TREE, Tree, empty_tree
+
+
+class Hint(NamedTuple):
+    """What is known before the start.
+
+    price:    (depots,) guess at the depot prices, the lowest 0
+    quantity: (rows,) guess at the quantities above the lower limits, or empty
+    """
+
+    price: Integers
+    quantity: Integers
+
+
+def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int) -> Tree:
+    """A strongly feasible spanning tree; `left` and `need` are used up, `rows.full` is filled in.
+
+    left: (depots,) what each depot has; need: (customers,) what each customer needs; same totals
+    big:  cost of a unit to or from the root, more than any way round between two nodes
+    """
+    depots, customers = len(left), len(need)
+    tree = empty_tree(depots, customers)
+    kept = int(left.sum()) + 1
+    if len(hint.quantity):
+        replay(tree, rows, left, need, hint.quantity)
+    regret = np.empty(customers, dtype=np.int64)
+    find_regret(rows, left, need, hint.price, regret)
+    fill(tree, rows, left, need, hint.price, np.argsort(-regret, kind="stable"), big)
+    gate = depots + 1 + customers
+    tree.parent[gate], tree.flow[gate] = depots, kept - int(left.sum())
+    loose = np.flatnonzero(tree.parent[:depots] == NOBODY)
+    tree.parent[loose], tree.flow[loose] = gate, left[loose]
+    tree.cost[loose] = big + hint.price[loose]
+    grow(tree, depots + 1)
+    return tree
+
+
+@kernel(signature(VOID, TREE, ROWS, INT, INT, INT, INT))
+def link(tree: Tree, rows: Rows, node: int, parent: int, row: int, amount: int) -> None:
+    """Hangs `node` below `parent` by `row`, which carries `amount`."""
+    tree.parent[node], tree.row[node] = parent, row
+    tree.cost[node], tree.flow[node] = rows.cost[row], amount
+    if len(rows.room):
+        tree.room[node] = rows.room[row]
+
+
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INT, INT))
+def send(tree: Tree, rows: Rows, left: Integers, need: Integers, row: int, j: int) -> None:
+    """Sends as much on `row` as depot, customer `j` and row allow, and links who is done."""
+    i, customer = rows.depot[row], len(left) + 1 + j
+    amount = min(left[i], need[j])
+    limited = len(rows.room) > 0
+    if limited and rows.room[row] <= amount and rows.room[row] < need[j]:
+        amount = rows.room[row]
+        rows.full[row] = 1
+        rows.filled[j] += 1
+    elif amount == need[j]:
+        link(tree, rows, customer, i, row, amount)
+    else:
+        link(tree, rows, i, customer, row, amount)
+    left[i] -= amount
+    need[j] -= amount
+
+
+@kernel(signature(VOID, ROWS, INTS, INTS, INTS, INTS))
+def find_regret(rows: Rows, left: Integers, need: Integers, price: Integers, regret: Integers) -> None:
+    """How much dearer each customer's second cheapest row is than its cheapest, after depot prices."""
+    for j in range(len(need)):
+        best = second = NEVER
+        if need[j] > 0:
+            for row in range(rows.start[j], rows.start[j + 1]):
+                i = rows.depot[row]
+                if left[i] > 0:
+                    net = rows.cost[row] - price[i]
+                    second = min(second, max(best, net))
+                    best = min(best, net)
+        regret[j] = second - best
+
+
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS, INTS, INT))
+def fill(
+    tree: Tree, rows: Rows, left: Integers, need: Integers, price: Integers, order: Integers, big: int
+) -> None:
+    """Gives each customer in `order` its cheapest rows, after depot prices, and the rest from the root."""
+    root = len(left)
+    limited = len(rows.room) > 0
+    for j in order:
+        while need[j] > 0:
+            best, chosen = NEVER, -1
+            for row in range(rows.start[j], rows.start[j + 1]):
+                i = rows.depot[row]
+                if left[i] > 0:
+                    net = rows.cost[row] - price[i]
+                    if net < best and not (limited and (rows.full[row] or rows.room[row] == 0)):
+                        best, chosen = net, row
+            if chosen >= 0:
+                send(tree, rows, left, need, chosen, j)
+                continue
+            customer = root + 1 + j
+            tree.parent[customer], tree.row[customer] = root, ARTIFICIAL
+            tree.cost[customer], tree.flow[customer] = big, need[j]
+            need[j] = 0
+
+
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS))
+def replay(tree: Tree, rows: Rows, left: Integers, need: Integers, quantity: Integers) -> None:
+    """Sends again what an earlier flow sent, as far as it still fits; `quantity` is used up.
+
+    Rows that were full come first. The others are taken from the leaves of their forest inwards, since only
+    in that order sending as much as possible on each row gives the same quantities again.
+    """
+    depots, customers = len(left), len(need)
+    limited = len(rows.room) > 0
+    degree = np.zeros(depots + customers, dtype=np.int64)
+    row_key = np.zeros(depots + customers, dtype=np.int64)  # exclusive or of the rows that remain at a node
+    customer_key = np.zeros(depots, dtype=np.int64)  # the same of their customers
+    for j in range(customers):
+        for row in range(rows.start[j], rows.start[j + 1]):
+            if quantity[row] <= 0:
+                continue
+            i = rows.depot[row]
+            if limited and rows.room[row] <= quantity[row]:
+                room = rows.room[row]
+                quantity[row] = 0
+                if room == 0 or left[i] == 0:
+                    continue
+                if room <= left[i] and room < need[j]:
+                    send(tree, rows, left, need, row, j)
+                    continue
+                quantity[row] = room
+            for node in (i, depots + j):
+                degree[node] += 1
+                row_key[node] ^= row
+            customer_key[i] ^= j
+    stack = np.empty(depots + customers, dtype=np.int64)
+    height = 0
+    for node in range(depots + customers):
+        if degree[node] == 1:
+            stack[height] = node
+            height += 1
+    for start in range(customers):
+        # Where no leaf is left there is a cycle; any row at a customer then breaks it.
+        for spare in range(rows.start[start], rows.start[start + 1]):
+            while True:
+                if height:
+                    height -= 1
+                    node = stack[height]
+                    if degree[node] != 1:
+                        continue
+                    row, j = row_key[node], node - depots if node >= depots else customer_key[node]
+                elif quantity[spare] > 0:
+                    row, j = spare, start
+                else:
+                    break
+                i = rows.depot[row]
+                quantity[row] = 0
+                if left[i] > 0 and need[j] > 0:
+                    send(tree, rows, left, need, row, j)
+                customer_key[i] ^= j
+                for node in (i, depots + j):
+                    row_key[node] ^= row
+                    degree[node] -= 1
+                    if degree[node] == 1:
+                        stack[height] = node
+                        height += 1
+
+
+@kernel(signature(VOID, TREE, INT))
+def grow(tree: Tree, first: int) -> None:
+    """Fills in thread, last nodes, sizes and depot prices from the parents."""
+    nodes, root = len(tree.parent), first - 1
+    child = np.full(nodes, NOBODY, dtype=np.int32)
+    sibling = np.full(nodes, NOBODY, dtype=np.int32)
+    for depot in range(root):
+        customer = tree.parent[depot]
+        if child[customer] == NOBODY:
+            above = tree.parent[customer]
+            sibling[customer], child[above] = child[above], customer
+        sibling[depot], child[customer] = child[customer], depot
+    for node in range(nodes):
+        tree.size[node] = 2 if node < first else 1
+    node, before = root, NOBODY
+    while True:
+        parent = tree.parent[node]
+        if node < root:
+            tree.price[node] = tree.cost[node] - tree.cost[parent] + tree.price[tree.parent[parent]]
+        tree.before[node] = before
+        if before != NOBODY:
+            tree.next[before] = node
+        before = node
+        if child[node] != NOBODY:
+            node = child[node]
+            continue
+        while True:
+            tree.last[node] = before
+            if node == root:
+                return
+            tree.size[tree.parent[node]] += tree.size[node] & ~1
+            if sibling[node] != NOBODY:
+                break
+            node = tree.parent[node]
+        node = sibling[node]
