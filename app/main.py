@@ -28,35 +28,29 @@ def opened_at_start(state: Desk) -> None:
     state.started = True
 
 
-def sidebar(state: Desk) -> None:
-    """The week, undo and redo: the same on every page."""
-    with st.sidebar:
-        if state.week.is_empty:
-            st.caption("No week is open yet.")
-            return
-        rules = state.week.rules
-        st.markdown(f"**{plain(rules.week)}**")
+def toolbar(state: Desk) -> None:
+    """The week, undo and redo: the same above every page."""
+    if state.week.is_empty:
+        return
+    made = len(state.history.entries)
+    with st.container(horizontal=True, vertical_alignment="center", gap="small", key="toolbar"):
+        st.markdown(f"**{plain(state.week.rules.week)}**", width="content")
         st.caption(
             f"{counted(len(state.week.depots), 'depot')}, {counted(len(state.week.customers), 'customer')}, "
-            f"{counted(len(state.week.rates), 'rate')}"
+            f"{counted(len(state.week.rates), 'rate')} · "
+            + (f"{counted(made, 'change')} since it was opened" if made else "as it was opened")
         )
-        undo, redo = st.columns(2)
-        if undo.button(
-            "Undo", disabled=state.history.can_undo is None, key="undo", width="stretch", shortcut="Ctrl+Alt+Z"
-        ):
+        if st.button("↶ Undo", disabled=state.history.can_undo is None, key="undo", help="Take the last change back"):
             state.undo()
             st.rerun()
-        if redo.button(
-            "Redo", disabled=state.history.can_redo is None, key="redo", width="stretch", shortcut="Ctrl+Alt+Y"
-        ):
+        if st.button("↷ Redo", disabled=state.history.can_redo is None, key="redo", help="Make it again"):
             state.redo()
             st.rerun()
-        made = len(state.history.entries)
-        st.caption(f"{counted(made, 'change')} since the figures were opened" if made else "No changes yet")
 
 
 def main() -> None:
-    st.set_page_config(page_title="Hithe", page_icon="⚓", layout="wide")
+    st.set_page_config(page_title="Hithe", page_icon="⚓", layout="wide", initial_sidebar_state="collapsed")
+    st.html(HERE / "desk.css")
     state = desk()
     opened_at_start(state)
     page = st.navigation(
@@ -64,9 +58,10 @@ def main() -> None:
             st.Page(HERE / "pages" / "figures.py", title="Figures", default=True),
             st.Page(HERE / "pages" / "plan.py", title="Plan"),
             st.Page(HERE / "pages" / "handover.py", title="Hand over"),
-        ]
+        ],
+        position="top",
     )
-    sidebar(state)
+    toolbar(state)
     page.run()
 
 

@@ -7,9 +7,11 @@ from typing import Any
 import streamlit as st
 
 import engine
+from app.drafts import Draft, opened, unread_in
 from engine.changes import Change
 from engine.findings import Finding, Severity, by_gravity
 from engine.history import History
+from engine.intake.frames import TABLES
 from engine.intake.numbers import NumberStyle
 from engine.week import Refused, Week
 
@@ -21,14 +23,15 @@ class Desk:
     """What a session holds. `generation` counts what makes the grids start afresh from the week."""
 
     history: History = field(default_factory=lambda: History.of(Week()))
-    findings: tuple[Finding, ...] = ()
+    read: tuple[Finding, ...] = ()
     decimal_mark: str = "."
     generation: int = 0
+    uploads: int = 0
     message: tuple[str, str] | None = None
+    drafts: dict[str, Draft] = field(default_factory=dict)
     planned_for: Week | None = None
     plan: engine.Plan | None = None
     stopped: tuple[Finding, ...] = ()
-    kept: dict[str, Any] = field(default_factory=dict)
     started: bool = False
 
     @property
@@ -40,30 +43,32 @@ class Desk:
         """How this desk types numbers."""
         return NumberStyle(self.decimal_mark, self.week.rules.unit, self.week.rules.currency)
 
+    def grid(self, table: str) -> Draft:
+        return self.drafts.setdefault(table, Draft())
+
     def open(self, reading: engine.Reading) -> None:
         """Put the week that was read on the desk; the list of changes starts anew."""
         self.history = History.of(reading.week)
-        self.findings = tuple(f for f in reading.findings if f.severity is not Severity.STOPS)
         self.decimal_mark = reading.style.decimal_mark
-        self.kept.clear()
-        self._start_afresh()
+        self.drafts = {table: opened(self.week, table, reading.unused, self.style) for table in TABLES}
+        again = {(f.rule, f.message) for f in engine.check_week(self.week)}
+        in_grids = {f.message for draft in self.drafts.values() for f in draft.findings}
+        self.read = tuple(
+            f for f in reading.findings if (f.rule, f.message) not in again and f.message not in in_grids
+        )
+        self.uploads += 1
+        self.generation += 1
+        self.plan, self.planned_for, self.message = None, None, None
 
     def commit(self, change: Change, why: str = "") -> bool:
         """Make a change; False with a message where it does not fit the week."""
         try:
             self.history = self.history.after(change, why=why)
         except Refused as refused:
+            self.start_afresh()
             self.message = ("error", str(refused))
             return False
         return True
-
-    def undo(self) -> None:
-        self.history = self.history.undo()
-        self._start_afresh()
-
-    def redo(self) -> None:
-        self.history = self.history.redo()
-        self._start_afresh()
 
     def settle(self, change: Change, why: str = "") -> tuple[Finding, ...]:
         """Make a change only if the week can still be planned; otherwise what stands in the way.
@@ -71,26 +76,45 @@ class Desk:
         The plan that was made to find out is kept, so it is not made twice.
         """
         try:
-            week = self.week.apply(change)
+            history = self.history.after(change, why=why)
         except Refused as refused:
             return (Finding(Severity.STOPS, "refused", str(refused)),)
-        plan, stopped = try_plan(week, near=self.plan)
+        plan, stopped = try_plan(history.week, near=self.plan)
         if plan is None:
             return stopped
-        self.history = self.history.after(change, why=why)
-        self.planned_for, self.plan, self.stopped = self.week, plan, ()
-        self._start_afresh()
+        self.history, self.plan, self.planned_for, self.stopped = history, plan, history.week, ()
+        self.start_afresh()
         return ()
 
-    def _start_afresh(self) -> None:
+    def undo(self) -> None:
+        self.history = self.history.undo()
+        self.start_afresh()
+
+    def redo(self) -> None:
+        self.history = self.history.redo()
+        self.start_afresh()
+
+    def start_afresh(self) -> None:
+        """Let every grid show the week anew, with the texts that could not be read."""
+        for table, draft in self.drafts.items():
+            if draft.key:
+                draft.unread = unread_in(draft, self.week, table)
         self.generation += 1
-        self.message = None
+
+    def all_findings(self) -> list[Finding]:
+        """What there is to say of the figures as they stand: cells of the grids, the week, the upload."""
+        cells = [f for draft in self.drafts.values() for f in draft.findings]
+        return by_gravity([*cells, *engine.check_week(self.week), *self.read])
 
     def planned(self) -> engine.Plan | None:
         """The plan of the week as it stands, made when first asked for; None where it cannot be planned."""
+        unread = [p.finding for draft in self.drafts.values() for p in draft.problems if p.stops]
+        if unread:
+            self.stopped, self.planned_for = tuple(unread), None
+            return None
         if self.planned_for is not self.week:
-            self.planned_for = self.week
-            self.plan, self.stopped = try_plan(self.week, near=self.plan)
+            plan, self.stopped = try_plan(self.week, near=self.plan)
+            self.planned_for, self.plan = self.week, plan
         return self.plan
 
 

@@ -7,6 +7,7 @@ from app.parts.findings_panel import findings_panel
 from app.parts.nothing_yet import nothing_yet
 from app.parts.plan_map import plan_map
 from app.parts.shipments_grid import shipments_grid
+from app.parts.words import plain
 from app.session import desk
 
 state = desk()
@@ -17,14 +18,14 @@ else:
     plan = state.planned()
     if state.message:
         kind, text = state.message
-        (st.error if kind == "error" else st.success)(text)
+        (st.error if kind == "error" else st.success)(plain(text))
         state.message = None
     if plan is None:
         st.error("This week cannot be planned as it stands. Mend what is listed here, or undo the last change.")
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)
-        grid, chart = st.columns([11, 9], gap="medium")
+        grid, chart = st.columns([13, 9], gap="medium")
         with grid:
             shipments_grid(state, plan)
         with chart:

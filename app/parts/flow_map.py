@@ -129,7 +129,7 @@ def flows_table(
         frame = frame.drop(columns="Note")
     figures = [str(name) for name in frame.columns[2:5]]
     sortable = frame.astype(dict.fromkeys(figures, float))  # the browser sorts floats, and shows our texts
-    shown: Any = sortable.style.format({name: lambda value: number(Decimal(repr(value))) for name in figures})
+    shown: Any = sortable.style.format({name: lambda value: "" if pd.isna(value) else number(Decimal(repr(value))) for name in figures})
     event = st.dataframe(
         shown,
         key=key,

@@ -104,7 +104,7 @@ def _multiples(step: float, middle: float, reach: float) -> list[float]:
 
 def _degrees(value: float, positive: str, negative: str) -> str:
     """Degrees and minutes, or hundredths of a degree where the grid is finer than minutes."""
-    side = "" if value == 0 else f" {positive if value > 0 else negative}"
+    side = "" if abs(value) in (0, 180) else f" {positive if value > 0 else negative}"
     minutes = abs(value) * 60
     if abs(minutes - round(minutes)) > 1e-6:
         return f"{abs(value):.2f}°{side}"

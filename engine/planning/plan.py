@@ -1,11 +1,12 @@
 """A plan: shipments, what is short, what is unsent, costs, prices and the proof, all in exact decimals."""
 
-from dataclasses import dataclass
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from typing import Literal
 
 from engine.figures import RateKey
-from engine.findings import Finding
+from engine.findings import Finding, by_gravity
 from engine.network import Flow
 from engine.planning.model import Model
 from engine.week import Week
@@ -107,3 +108,11 @@ class Plan:
     findings: tuple[Finding, ...]
     model: Model
     flow: Flow
+
+
+def with_findings(plan: Plan, findings: Iterable[Finding]) -> Plan:
+    """The plan with what was found on the sheets put first; what says the same with a cell stands once."""
+    first = list(findings)
+    said = {(finding.rule, finding.message) for finding in first}
+    rest = [finding for finding in plan.findings if (finding.rule, finding.message) not in said]
+    return replace(plan, findings=tuple(by_gravity([*first, *rest])))

@@ -29,3 +29,20 @@ def totals(plan: Plan) -> Totals:
         unsent=total_of(unsent.quantity for unsent in plan.unsent),
         lanes=len({(shipment.depot, shipment.customer) for shipment in plan.shipments}),
     )
+
+
+@dataclass(frozen=True, slots=True)
+class LaneFlow:
+    """What goes on a lane, by whichever hauliers."""
+
+    depot: str
+    customer: str
+    quantity: Decimal
+
+
+def flows(plan: Plan) -> tuple[LaneFlow, ...]:
+    """The used lanes with their quantities, in order of first appearance."""
+    by_lane: dict[tuple[str, str], list[Decimal]] = {}
+    for shipment in plan.shipments:
+        by_lane.setdefault((shipment.depot, shipment.customer), []).append(shipment.quantity)
+    return tuple(LaneFlow(*lane, total_of(quantities)) for lane, quantities in by_lane.items())

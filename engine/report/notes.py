@@ -8,56 +8,70 @@ from engine.exact import canonical
 from engine.findings import Severity, by_gravity
 from engine.planning.plan import Plan
 from engine.report.costs import service_in_words
-from engine.report.look import Style
+from engine.report.look import Style, height_of
 from engine.report.rules_used import rules_used
 from engine.report.sheet import MOST_DIGITS, Row, Sheet, fits_a_number
 from engine.week import describe
 
 CAUTIONS = (
-    "The plan allocates quantities. It does not check axle or gross weights, drivers' hours, dangerous goods, "
+    "The plan allocates quantities. It does not check axle or gross weights, drivers' hours, dangerous "
+    "goods, "
     "temperature, site access or customs.",
     "Local codes and licensed practice decide those. Have them checked before anything is loaded.",
 )
 
 NOT_CHECKED = (
-    "Whether a haulier has the vehicles, or a depot the loading bays, on a given day (Loads a day is kept for the "
+    "Whether a haulier has the vehicles, or a depot the loading bays, on a given day (Loads a day is kept "
+    "for the "
     "loading lists, not planned with).",
     "On which day of the week a quantity goes: order numbers and days are carried along, not scheduled.",
     "Distances and positions: Km, Latitude and Longitude are not used in the costs.",
-    "Whether the figures themselves are right. Findings name what looks wrong; nobody but the desk can say what is.",
+    "Whether the figures themselves are right. Findings name what looks wrong; nobody but the desk can say "
+    "what is.",
 )
 
 _MOST_LISTED = 500
 
-PART, PLAIN, WRAPPED = Style("part"), Style("strong", wrap=True), Style(wrap=True)
+PART = Style("part")
+_STYLES = [Style("strong", wrap=True), Style(wrap=True)]
+_WIDTHS = (26, 110)
 
 
-def notes_sheet(plan: Plan, header: str, made: datetime | None = None, remarks: tuple[str, ...] = ()) -> Sheet:
+def notes_sheet(
+    plan: Plan, header: str, made: datetime | None = None, remarks: tuple[str, ...] = ()
+) -> Sheet:
     """Sheet *Notes*.
 
     made: when the file is written, as the desk's clock has it; None leaves it out.
     remarks: what the writer of the workbook has to say about the workbook itself.
     """
     rows = list(_rows(plan, made, remarks))
-    return Sheet("Notes", (26, 110), rows, length=len(rows), header=header, landscape=False)
+    return Sheet("Notes", _WIDTHS, rows, length=len(rows), header=header, landscape=False)
+
+
+def notes_of(
+    plan: Plan, made: datetime | None = None, remarks: tuple[str, ...] = ()
+) -> list[tuple[str, list[tuple[str, str]]]]:
+    """The notes in parts: a title, and pairs of a label (may be empty) and a sentence."""
+    parts = [
+        (f"Notes on the plan for {plan.week.rules.week}", list(_about(plan, made))),
+        ("How the figures were understood", list(rules_used(plan))),
+        ("Holds", list(_holds(plan)) if plan.week.holds else []),
+        ("Findings that came with this plan", list(_findings(plan))),
+        ("Cautions", [("", sentence) for sentence in CAUTIONS]),
+        ("Not checked", [("", sentence) for sentence in NOT_CHECKED]),
+        ("About this workbook", [("", remark) for remark in (*_about_numbers(plan), *remarks)]),
+    ]
+    return [(title, pairs) for title, pairs in parts if pairs]
 
 
 def _rows(plan: Plan, made: datetime | None, remarks: tuple[str, ...]) -> Iterator[Row]:
-    yield Row([f"Notes on the plan for {plan.week.rules.week}"], [Style("title")])
-    yield from _pairs(_about(plan, made))
-    yield from _part("How the figures were understood")
-    yield from _pairs(rules_used(plan))
-    if plan.week.holds:
-        yield from _part("Holds")
-        yield from _pairs(_holds(plan))
-    yield from _part("Findings that came with this plan")
-    yield from _pairs(_findings(plan))
-    yield from _part("Cautions")
-    yield from _pairs(("", sentence) for sentence in CAUTIONS)
-    yield from _part("Not checked")
-    yield from _pairs(("", sentence) for sentence in NOT_CHECKED)
-    yield from _part("About this workbook")
-    yield from _pairs((("", remark) for remark in (*_about_numbers(plan), *remarks)))
+    (title, about), *parts = notes_of(plan, made, remarks)
+    yield Row([title], [Style("title")], height=26)
+    yield from _pairs(about)
+    for name, pairs in parts:
+        yield from _part(name)
+        yield from _pairs(pairs)
 
 
 def _part(name: str) -> Iterator[Row]:
@@ -67,7 +81,8 @@ def _part(name: str) -> Iterator[Row]:
 
 def _pairs(pairs: Iterator[tuple[str, str]] | list[tuple[str, str]]) -> Iterator[Row]:
     for label, words in pairs:
-        yield Row([label or None, words], [PLAIN, WRAPPED])
+        values = [label or None, words]
+        yield Row(values, _STYLES, height_of(values, _WIDTHS, _STYLES))
 
 
 def _about(plan: Plan, made: datetime | None) -> list[tuple[str, str]]:
@@ -92,11 +107,13 @@ def _proof_in_words(plan: Plan) -> str:
     currency = plan.week.rules.currency
     if plan.proof.exact:
         return (
-            f"Proved: with these figures, holds and aims no plan costs less than {canonical(plan.total_cost)} "
+            "Proved: with these figures, holds and aims no plan costs less than "
+            f"{canonical(plan.total_cost)} "
             f"{currency}, exactly (freight before rounding, and charges). Sheet Proof adds it up again."
         )
     return (
-        f"Not proved to the last digit: no plan costs less than {canonical(plan.proof.lower_bound)} {currency}; "
+        f"Not proved to the last digit: no plan costs less than {canonical(plan.proof.lower_bound)} "
+        f"{currency}; "
         f"this one costs {canonical(plan.proof.gap)} {currency} more than that."
     )
 
@@ -121,14 +138,16 @@ def _findings(plan: Plan) -> Iterator[tuple[str, str]]:
 
 def _about_numbers(plan: Plan) -> Iterator[str]:
     yield (
-        f"A spreadsheet keeps {MOST_DIGITS} digits of a number. Whatever needs more stands in these sheets as text, so "
+        f"A spreadsheet keeps {MOST_DIGITS} digits of a number. Whatever needs more stands in these sheets "
+        "as text, so "
         "that no digit is lost; formulas pass such cells over."
     )
     long = [name for name, amount in _totals(plan) if not fits_a_number(amount)]
     if long:
         yield f"In this workbook that concerns {', '.join(long)}."
     yield (
-        "Depots, Customers, Rates and Rules are the figures as used, holds included: the workbook can be read in again "
+        "Depots, Customers, Rates and Rules are the figures as used, holds included: the workbook can be "
+        "read in again "
         "and gives the same week and the same cost. Text is never a formula, whatever it begins with."
     )
 

@@ -11,11 +11,12 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers, to_decimal
-from engine.network.closure import prices_from
+from engine.network.closure import close
 from engine.network.problem import UNLIMITED
 from engine.planning.aims import MUST_MOVE
 from engine.planning.model import NO_RATE, Model
 from engine.planning.plan import Plan
+from engine.planning.prices import chain_prices
 
 
 class Prices(NamedTuple):
@@ -59,7 +60,7 @@ def proof_figures(plan: Plan) -> ProofFigures:
     """The figures of the proof, taken apart into aims and money."""
     model, flow = plan.model, plan.flow
     problem = model.problem
-    depot_sums, customer_sums = prices_from(flow, model.stand_in)
+    depot_sums, customer_sums = chain_prices(model, close(flow))
     names = list(model.weights.of)  # the highest aim first
     depot_units, depot_money = _apart(model, depot_sums)
     customer_units, customer_money = _apart(model, customer_sums)

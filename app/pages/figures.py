@@ -1,0 +1,99 @@
+"""The figures: open spreadsheets or the sample week, mend what was found, edit by hand."""
+
+from io import BytesIO
+
+import streamlit as st
+
+import engine
+import sample_data
+from app.parts.figures_grid import figures_grid, rules_grid
+from app.parts.findings_panel import findings_panel
+from app.parts.words import plain
+from app.session import Desk, desk, read_files
+
+TYPES = ["xlsx", "xlsm", "xls", "xlsb", "ods", "csv", "tsv", "txt"]
+WORKBOOK = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
+
+
+def blank_workbook() -> bytes:
+    written = BytesIO()
+    engine.write_blank(written)
+    return written.getvalue()
+
+
+def welcome() -> None:
+    """What the tool does, for somebody who sees it for the first time."""
+    st.markdown(
+        "Hithe plans a freight desk's week: from what depots can send, what customers ordered and what "
+        "hauliers charge, it works out **who sends how much to whom at the least freight cost**, proves it, "
+        "and hands you the workbook."
+    )
+
+
+def open_sample(state: Desk) -> None:
+    reading, findings = read_files([sample_data.path(sample_data.SMALL_WEEK)])
+    if reading is None:
+        state.message = ("error", findings[0].message)
+    else:
+        state.open(reading)
+
+
+def opening(state: Desk) -> None:
+    """Upload, sample and blank workbook; what is read is shown before it replaces a week."""
+    files = st.file_uploader(
+        "Spreadsheets of the week: one workbook, or a file each for depots, customers and rates",
+        type=TYPES,
+        accept_multiple_files=True,
+        key=f"upload-{state.uploads}",
+    )
+    left, right, _ = st.columns([2, 2, 3])
+    if left.button("Open the sample week", width="stretch", type="primary" if state.week.is_empty else "secondary"):
+        open_sample(state)
+        st.rerun()
+    right.download_button(
+        "Blank workbook", blank_workbook, "hithe_week.xlsx", WORKBOOK, on_click="ignore", width="stretch"
+    )
+    if not files:
+        return
+    reading, findings = read_files([(file.name, file.getvalue()) for file in files])
+    if reading is None:
+        st.error(f"{plain(findings[0].message)} {plain(findings[0].mend)}")
+        return
+    if state.week.is_empty and not reading.week.is_empty:
+        state.open(reading)
+        st.rerun()
+    st.markdown(f"**Read:** {plain(reading.summary)}")
+    if reading.week.is_empty:
+        findings_panel(findings, key="upload")
+        return
+    if st.button("Put these figures in place of the week on screen", type="primary"):
+        state.open(reading)
+        st.rerun()
+    findings_panel(findings, key="upload")
+
+
+state = desk()
+st.title("Figures")
+if state.message:
+    kind, text = state.message
+    (st.error if kind == "error" else st.success)(plain(text))
+    state.message = None
+if state.week.is_empty:
+    welcome()
+    opening(state)
+else:
+    with st.expander("Open other figures"):
+        opening(state)
+    grids, remarks = st.columns([13, 7], gap="medium")
+    with grids:
+        depots, customers, rates, rules = st.tabs(["Depots", "Customers", "Rates", "Rules"])
+        with depots:
+            figures_grid(state, "depots")
+        with customers:
+            figures_grid(state, "customers")
+        with rates:
+            figures_grid(state, "rates")
+        with rules:
+            rules_grid(state)
+    with remarks:
+        findings_panel(state.all_findings(), key="figures")

@@ -1,0 +1,80 @@
+"""A table of figures as a grid of text: what is typed goes through our own reader and becomes changes."""
+
+import pandas as pd
+import streamlit as st
+
+from app.parts.words import plain
+from app.session import Desk
+from engine.changes import Change, Together
+from engine.columns import Column, Kind
+from engine.intake.frames import GRID_COLUMNS, changes_between, draft_of
+
+MOST_ROWS = 20_000
+NUMBERS = {
+    Kind.QUANTITY, Kind.RATE, Kind.CHARGE, Kind.PRICE, Kind.PERCENT, Kind.COUNT, Kind.DISTANCE,
+    Kind.LATITUDE, Kind.LONGITUDE,
+}  # fmt: skip
+
+
+def figures_grid(state: Desk, table: str) -> None:
+    """Depots, customers or rates; rows can be added, pasted and taken out."""
+    if table == "rates" and len(state.week.rates) > MOST_ROWS:
+        st.info(
+            f"{len(state.week.rates):,} rates are too many for a grid: mend them in your spreadsheet and open "
+            "it again. Quantities, closed rows and holds of single lanes are on *Plan*."
+        )
+        return
+    columns = GRID_COLUMNS[table]
+    _grid(state, table, {column.heading: _config(column) for column in columns}, "dynamic")
+
+
+def rules_grid(state: Desk) -> None:
+    """The desk's settings for the week, one a row."""
+    st.caption("When short is *charge*, *priority* or *even share*.")
+    config = {
+        "Rule": st.column_config.TextColumn("Rule", disabled=True),
+        "Value": st.column_config.TextColumn("Value"),
+    }
+    _grid(state, "rules", config, "fixed")
+
+
+def _config(column: Column) -> object:
+    return st.column_config.TextColumn(
+        column.heading,
+        help=column.about,
+        alignment="right" if column.kind in NUMBERS else "left",
+        pinned=column.kind is Kind.NAME,
+    )
+
+
+def _grid(state: Desk, table: str, config: dict[str, object], rows: str) -> None:
+    key = f"{table}-{state.generation}"
+    kept = state.grid(table)
+    if kept.key != key or key not in st.session_state:
+        # A grid starts afresh from one constant frame; what is edited since is kept apart from it.
+        kept.base = kept.draft if kept.key == key else draft_of(state.week, table, kept.unread, state.style)
+        kept.draft, kept.key = kept.base, key
+    edited = st.data_editor(
+        kept.base,
+        key=key,
+        num_rows=rows,  # type: ignore[arg-type]
+        hide_index=True,
+        height=520,
+        column_config=config,  # type: ignore[arg-type]
+        alt=f"{table.capitalize()} of the week",
+    )
+    if edited.equals(kept.draft):
+        return
+    _take_edits(state, table, edited)
+    st.rerun()
+
+
+def _take_edits(state: Desk, table: str, edited: pd.DataFrame) -> None:
+    """What differs from the last draft, as one change; what cannot be read stays on screen, with a finding."""
+    kept = state.grid(table)
+    changes, problems = changes_between(state.week, table, kept.draft, edited, state.style)
+    kept.draft, kept.problems = edited, tuple(problems)
+    if changes:
+        change: Change = changes[0] if len(changes) == 1 else Together(tuple(changes), f"edit of {table}")
+        if not state.commit(change) and state.message:
+            st.toast(plain(state.message[1]))
