@@ -63,7 +63,10 @@ def write_book(sheets: Sequence[Sheet], target: Target, title: str, made: dateti
         _set_up(book.create_sheet(sheet.name), sheet)
     when = NO_TIME if made is None else made.astimezone(UTC).replace(tzinfo=None)
     parts = _parts(book, when)
-    with open_whole(target) as file, zipfile.ZipFile(file, "w", zipfile.ZIP_DEFLATED, compresslevel=6) as archive:
+    with (
+        open_whole(target) as file,
+        zipfile.ZipFile(file, "w", zipfile.ZIP_DEFLATED, compresslevel=6) as archive,
+    ):
         for name in sorted(parts, key=lambda name: (_FIRST.index(name) if name in _FIRST else 9, name)):
             if name != _STYLES and not name.startswith("xl/worksheets/sheet"):
                 archive.writestr(_entry(name), parts[name])

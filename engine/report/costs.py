@@ -18,7 +18,7 @@ from engine.report.sheet import Row, Sheet, Value
 PAYABLE, NOTIONAL = "payable", "notional"
 COUNT = "#,##0"
 _WIDTHS = (40, 17, 17, 17, 17, 17)
-_MOST_BARS = 12
+_MOST_BARS = 8
 
 
 class Formats(NamedTuple):
@@ -46,7 +46,7 @@ def costs_sheet(plan: Plan, lines: Sequence[Line], header: str) -> tuple[Sheet, 
 
     def finish(sheet: Any) -> None:
         if lines:
-            sheet.add_chart(_chart(sheet, plan, first, min(last, first + _MOST_BARS - 1)), "H3")
+            sheet.add_chart(_chart(sheet, plan, first, min(last, first + _MOST_BARS - 1)), "E3")
 
     return Sheet("Costs", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish), cells
 
@@ -67,11 +67,13 @@ _HEADLINE, _ROUNDING = "Freight payable", "Rounding, once per shipment"
 def _formats(plan: Plan) -> Formats:
     minor = minor_places(plan.week.rules.currency)
     exact = [plan.freight_cost, plan.total_cost, plan.short_cost, plan.unsent_cost, plan.proof.rounding]
-    return Formats(number_format(minor), number_format(max(places_of(exact), minor)), quantity_format(plan))
+    return Formats(
+        number_format(minor), number_format(max(places_of(exact), minor), always=minor), quantity_format(plan)
+    )
 
 
 def _line(values: Sequence[Value], numbers: Sequence[str | None], kind: str = "plain") -> Row:
-    """A row of figures; where a number format is None the cell is text, from the second column on to the right."""
+    """A row of figures; where a number format is None it is text, to the right from the second column on."""
     styles = [
         Style(kind, number or "General", align=None if place == 0 else "right")
         for place, number in enumerate([*numbers, *[None] * (len(values) - len(numbers))])
@@ -80,16 +82,23 @@ def _line(values: Sequence[Value], numbers: Sequence[str | None], kind: str = "p
 
 
 def _headings(*names: str) -> Row:
-    return Row(names, [Style("heading", align="right" if place else "left", wrap=True) for place in range(len(names))], 30)
+    return Row(
+        names,
+        [Style("heading", align="right" if place else "left", wrap=True) for place in range(len(names))],
+        30,
+    )
 
 
 def _headline(plan: Plan, formats: Formats) -> list[Row]:
     rules, exact = plan.week.rules, (None, formats.exact, None)
     return [
-        Row([f"Costs of {rules.week}"], [Style("title")]),
-        Row([f"Money in {rules.currency}, quantities in {rules.unit}. {service_in_words(plan)}"], [Style("quiet")]),
+        Row([f"Costs of {rules.week}"], [Style("title")], height=26),
+        Row(
+            [f"Money in {rules.currency}, quantities in {rules.unit}. {service_in_words(plan)}"],
+            [Style("quiet")],
+        ),
         Row([]),
-        _line([_HEADLINE, plan.freight_payable], [None, formats.paid], "headline"),
+        _line([_HEADLINE, plan.freight_payable], [None, formats.paid], "headline")._replace(height=30),
         Row([]),
         _headings("How it adds up", rules.currency, "Kind"),
         _line(["Freight, exact", plan.freight_cost, None], exact),
@@ -98,7 +107,10 @@ def _headline(plan: Plan, formats: Formats) -> list[Row]:
         _line(["Charges for what is short", plan.short_cost, NOTIONAL], exact),
         _line(["Charges for what is unsent", plan.unsent_cost, NOTIONAL], exact),
         _line(["Made least: exact freight and charges", plan.total_cost, None], exact, "total"),
-        Row(["Notional: it steers the plan and stands on no invoice, unless the desk knows better."], [Style("quiet")]),
+        Row(
+            ["Notional: it steers the plan and stands on no invoice, unless the desk knows better."],
+            [Style("quiet")],
+        ),
         Row([]),
     ]
 
@@ -148,13 +160,16 @@ def _sums(lines: Sequence[Line]) -> tuple[Decimal, Decimal, int]:
 def _short(plan: Plan, formats: Formats) -> list[Row]:
     if not plan.short:
         return []
-    charge = number_format(places_of(one.charge for one in plan.short))
+    charge = number_format(places_of(one.charge for one in plan.short), always=2)
     numbers = (None, formats.quantity, charge, formats.exact)
     quantity = total(one.quantity for one in plan.short)
     return [
         _part("What is short", 5),
         _headings("Customer", "Short", "Charge per unit", "Charge", "Kind"),
-        *(_line([one.customer, one.quantity, one.charge, one.cost, NOTIONAL], numbers, "short") for one in plan.short),
+        *(
+            _line([one.customer, one.quantity, one.charge, one.cost, NOTIONAL], numbers, "short")
+            for one in plan.short
+        ),
         _line(["Total", quantity, None, plan.short_cost, NOTIONAL], numbers, "total"),
         Row([]),
     ]
@@ -163,7 +178,7 @@ def _short(plan: Plan, formats: Formats) -> list[Row]:
 def _unsent(plan: Plan, formats: Formats) -> list[Row]:
     if not plan.unsent:
         return []
-    charge = number_format(places_of(one.charge for one in plan.unsent))
+    charge = number_format(places_of(one.charge for one in plan.unsent), always=2)
     numbers = (None, formats.quantity, charge, formats.exact, None, formats.quantity)
     quantity, must = total(one.quantity for one in plan.unsent), total(one.must_move for one in plan.unsent)
     return [
@@ -199,5 +214,5 @@ def _chart(sheet: Any, plan: Plan, first: int, last: int) -> BarChart:
     chart.x_axis.scaling.orientation = "maxMin"
     chart.x_axis.delete = chart.y_axis.delete = False
     chart.gapWidth = 60
-    chart.width, chart.height = 16, 4 + 0.8 * (last - first + 1)
+    chart.width, chart.height = 13, 6
     return chart

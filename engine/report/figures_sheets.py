@@ -1,4 +1,4 @@
-"""The figures as used: sheets *Depots*, *Customers*, *Rates* and *Rules*, which read back as the same week."""
+"""The figures as used: sheets *Depots*, *Customers*, *Rates* and *Rules*, reading back as the same week."""
 
 from collections.abc import Iterable, Iterator, Sequence
 from datetime import date
@@ -8,7 +8,15 @@ from typing import Any
 import numpy as np
 from openpyxl.utils import get_column_letter
 
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, HOLD_HEADINGS, RATE_COLUMNS, RULE_COLUMNS, Column, Kind
+from engine.columns import (
+    CUSTOMER_COLUMNS,
+    DEPOT_COLUMNS,
+    HOLD_HEADINGS,
+    RATE_COLUMNS,
+    RULE_COLUMNS,
+    Column,
+    Kind,
+)
 from engine.exact import BLANK, DecimalColumn
 from engine.figures import Customer, Hold, Order
 from engine.rates import NO_CODE, RateTable
@@ -101,15 +109,22 @@ def _rules(week: Week, header: str) -> Sheet:
     for column in RULE_COLUMNS:
         value = getattr(week.rules, column.field)
         number = number_format(places_of([value])) if isinstance(value, Decimal) else "General"
-        rows.append(Row([column.heading, value, column.about], [Style(), Style("plain", number, "left"), Style("quiet")]))
-    return Sheet("Rules", (22, 24, 60), rows, len(rows), frozen="A2", landscape=False, header=header, tab=SHORE)
+        rows.append(
+            Row(
+                [column.heading, value, column.about],
+                [Style(), Style("plain", number, "left"), Style("quiet")],
+            )
+        )
+    return Sheet(
+        "Rules", (22, 24, 60), rows, len(rows), frozen="A2", landscape=False, header=header, tab=SHORE
+    )
 
 
 def _sheet(name: str, columns: Sequence[Column], rows: Sequence[Sequence[Value]], header: str) -> Sheet:
     styles = [_style(c, places_of(row[k] for row in rows)) for k, c in enumerate(columns)]
     return Sheet(
         name,
-        [_width(column) for column in columns],
+        [_width(c, any(row[k] is not None for row in rows)) for k, c in enumerate(columns)],
         (Row(values, style, height) for values, style, height in _with_headings(columns, rows, styles)),
         length=1 + len(rows),
         frozen="B2",
@@ -139,7 +154,9 @@ def _style(column: Column, places: int) -> Style:
     return Style("plain", number_format(places), "right")
 
 
-def _width(column: Column) -> float:
+def _width(column: Column, filled: bool) -> float:
+    if not filled:
+        return 10
     return 24 if column.kind is Kind.NAME else 14 if column.kind in _WORDS else 12
 
 
@@ -152,7 +169,11 @@ def _rates(week: Week, header: str) -> list[Sheet]:
     styles += [Style("plain", number_format(hold_places), "right"), Style(wrap=True)]
     headings = Row(
         RATE_HEADINGS,
-        [*(_heading_style(c.kind) for c in RATE_COLUMNS), _heading_style(Kind.QUANTITY), _heading_style(Kind.TEXT)],
+        [
+            *(_heading_style(c.kind) for c in RATE_COLUMNS),
+            _heading_style(Kind.QUANTITY),
+            _heading_style(Kind.TEXT),
+        ],
         height=30,
     )
     sheets = []
@@ -161,7 +182,7 @@ def _rates(week: Week, header: str) -> list[Sheet]:
         sheets.append(
             Sheet(
                 rates_place(first)[0].strip("'"),
-                [*(_width(column) for column in RATE_COLUMNS), 12, 26],
+                [*(_width(column, _filled(flat, column.field)) for column in RATE_COLUMNS), 12, 26],
                 _rate_rows(headings, flat, held, styles, range(first, last)),
                 length=1 + last - first,
                 frozen="C2",
@@ -181,6 +202,19 @@ def _held_at(week: Week) -> dict[int, Hold]:
         if number is not None:
             held[int(np.searchsorted(ids, number))] = hold
     return held
+
+
+def _filled(flat: RateTable, field: str) -> bool:
+    match field:
+        case "haulier":
+            return bool(flat.haulier_names)
+        case "per":
+            return bool(flat.per_load.any())
+        case "closed":
+            return bool(flat.closed.any())
+        case "valid_from":
+            return flat.valid_from is not None
+    return field in flat.decimals or field in ("depot", "customer", "rate")
 
 
 def _places(flat: RateTable, field: str) -> int:
@@ -233,5 +267,3 @@ def _numbers(column: DecimalColumn) -> list[Value]:
     for place in np.flatnonzero(blank).tolist():
         floats[place] = None
     return floats
-
-

@@ -13,14 +13,15 @@ from engine.report.lines import (
     ListColumn,
     delivery_days,
     heading_row,
+    line_rows,
     order_numbers,
     quantity_format,
     styles_of,
     total,
 )
-from engine.report.look import number_format, places_of
+from engine.report.look import height_of, number_format, places_of
 from engine.report.plan_sheet import SEND, total_values
-from engine.report.sheet import Formula, Row, Sheet
+from engine.report.sheet import Formula, Row, Sheet, Value
 
 Name = TypeVar("Name", str, str | None)
 
@@ -64,7 +65,7 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
             "Rate",
             12,
             lambda line: line.shipment.rate,
-            number_format(places_of(shipment.rate for shipment in plan.shipments)),
+            number_format(places_of(shipment.rate for shipment in plan.shipments), always=2),
         ),
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
         ListColumn("Order numbers", 24, lambda line: line.orders or None, wrap=True),
@@ -76,8 +77,8 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
     rows, _ = _in_groups(columns, at, "{}: invoices should say")
     if lines:
         rows.append(Row([]))
-        sums = total_values(columns, lines, 2, len(rows) - 1)
-        rows.append(Row(["All hauliers", *sums], styles_of(columns)["total"]))
+        overall = total_values(columns, lines, 2, len(rows) - 1)
+        rows.append(Row(["All hauliers", *overall], styles_of(columns)["total"]))
     return _list("By haulier", columns, rows, header)
 
 
@@ -109,13 +110,15 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
             values = [column.value(line) for column in columns]
             if place == 0:
                 values[6], values[7] = customer.ordered, short
-            rows.append(Row(values, styles[kind]))
+            rows.append(
+                Row(values, styles[kind], height_of(values, [c.width for c in columns], styles[kind]))
+            )
         if name not in at:
             rest = [customer.ordered, short, delivery_days(customer) or None, order_numbers(customer) or None]
             rows.append(Row([name, None, None, Decimal(0), unit, None, *rest], styles[kind]))
     last = len(rows)
     rows.append(Row([]))
-    sums: list[Formula | str | None] = ["Total", None, None]
+    sums: list[Value] = ["Total", None, None]
     for letter, amounts in (
         ("D", [line.shipment.quantity for line in lines]),
         ("E", None),
@@ -123,7 +126,9 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ("G", [customer.ordered for customer in week.customers.values()]),
         ("H", list(missing.values())),
     ):
-        sums.append(None if amounts is None else Formula(f"SUBTOTAL(109,{letter}2:{letter}{last})", total(amounts)))
+        sums.append(
+            None if amounts is None else Formula(f"SUBTOTAL(109,{letter}2:{letter}{last})", total(amounts))
+        )
     rows.append(Row([*sums, None, None], styles["total"]))
     return _list("By customer", columns, rows, header, filtered=f"A1:J{last}")
 
@@ -153,12 +158,9 @@ def _in_groups(
     breaks = []
     for name, lines in at.items():
         first = len(rows) + 1
-        rows.extend(
-            Row([c.value(line) for c in columns], styles["held" if line.shipment.held else "plain"])
-            for line in lines
-        )
-        sums = total_values(columns, lines, first, len(rows))
-        rows.append(Row([words.format(name or NO_HAULIER), *sums], styles["total"]))
+        rows.extend(line_rows(columns, lines))
+        of_group = total_values(columns, lines, first, len(rows))
+        rows.append(Row([words.format(name or NO_HAULIER), *of_group], styles["total"]))
         breaks.append(len(rows))
     return rows, breaks[:-1]
 

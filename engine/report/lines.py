@@ -1,6 +1,6 @@
-"""The shipments of a plan with what a reader needs beside them: orders, days, holds, where the rate stands."""
+"""The shipments of a plan with what a reader needs beside them: orders, days, holds, rate row."""
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from decimal import Decimal
 
@@ -9,7 +9,7 @@ import numpy as np
 from engine.exact import total_of
 from engine.figures import Customer
 from engine.planning.plan import Plan, Shipment
-from engine.report.look import Style, number_format, places_of
+from engine.report.look import Style, height_of, number_format, places_of
 from engine.report.sheet import Row, Value
 
 NO_HAULIER = "(no haulier named)"
@@ -41,7 +41,9 @@ def lines_of(plan: Plan) -> tuple[Line, ...]:
     ids = week.rates.ids_in_order
     depots = {name: place for place, name in enumerate(week.depots)}
     customers = {name: place for place, name in enumerate(week.customers)}
-    told = {name: (order_numbers(customer), delivery_days(customer)) for name, customer in week.customers.items()}
+    told = {
+        name: (order_numbers(customer), delivery_days(customer)) for name, customer in week.customers.items()
+    }
     lines = []
     for shipment in plan.shipments:
         number = week.rates.find(shipment.key)
@@ -60,7 +62,10 @@ def lines_of(plan: Plan) -> tuple[Line, ...]:
             )
         )
     return tuple(
-        sorted(lines, key=lambda line: (depots[line.shipment.depot], customers[line.shipment.customer], line.rate_row))
+        sorted(
+            lines,
+            key=lambda line: (depots[line.shipment.depot], customers[line.shipment.customer], line.rate_row),
+        )
     )
 
 
@@ -111,13 +116,22 @@ def total(values: Iterable[Decimal]) -> Decimal:
     return total_of(values)
 
 
-def heading_row(columns: Iterable[ListColumn]) -> Row:
+def heading_row(columns: Sequence[ListColumn]) -> Row:
     """The headings of a list."""
-    listed = list(columns)
-    return Row([c.heading for c in listed], [c.heading_style for c in listed], height=30)
+    return Row(
+        [column.heading for column in columns], [column.heading_style for column in columns], height=30
+    )
 
 
-def styles_of(columns: Iterable[ListColumn]) -> dict[str, list[Style]]:
+def line_rows(columns: Sequence[ListColumn], lines: Iterable[Line]) -> Iterator[Row]:
+    """A row a line; what is held is marked."""
+    styles, widths = styles_of(columns), [column.width for column in columns]
+    for line in lines:
+        values = [column.value(line) for column in columns]
+        kind = styles["held" if line.shipment.held else "plain"]
+        yield Row(values, kind, height_of(values, widths, kind))
+
+
+def styles_of(columns: Sequence[ListColumn]) -> dict[str, list[Style]]:
     """The styles of a list's rows, by the kind of row."""
-    listed = list(columns)
-    return {kind: [c.style(kind) for c in listed] for kind in ("plain", "held", "total", "short", "group")}
+    return {kind: [column.style(kind) for column in columns] for kind in ("plain", "held", "total", "short")}

@@ -1,4 +1,4 @@
-"""Loading lists: one file per depot, with nothing on it that a depot need not know (no money, no other depot)."""
+"""Loading lists: one file per depot, with nothing that it need not know (no money, no other depot)."""
 
 from collections.abc import Iterable
 from io import BytesIO
@@ -7,7 +7,7 @@ from typing import IO
 from engine.planning.plan import Plan
 from engine.report.book import Target, fixed_zip, open_whole, write_book
 from engine.report.groupings import loading_columns
-from engine.report.lines import Line, heading_row, lines_of, styles_of
+from engine.report.lines import Line, heading_row, line_rows, lines_of, styles_of
 from engine.report.look import Style
 from engine.report.notes import CAUTIONS
 from engine.report.plan_sheet import total_values
@@ -71,7 +71,7 @@ def _sheet(plan: Plan, depot: str, lines: list[Line]) -> Sheet:
         heading_row(columns),
     ]
     styles = styles_of(columns)
-    rows.extend(Row([column.value(line) for column in columns], styles["plain"]) for line in lines)
+    rows.extend(line_rows(columns, lines))
     if lines:
         first = _HEADING_ROW + 1
         rows.append(Row(["Total", *total_values(columns, lines, first, len(rows))], styles["total"]))

@@ -1,6 +1,8 @@
 """The look of our workbooks: a few colours, one font, and styles named by what they are for."""
 
+from collections.abc import Iterable, Sequence
 from decimal import Decimal
+from math import ceil
 from typing import NamedTuple
 
 from openpyxl.cell.cell import Cell
@@ -58,6 +60,12 @@ _LOOKS = {
     "good": _Look(ink=GOOD_INK, fill=GOOD, bold=True, size=12),
 }
 
+_INDENTED = {"plain", "heading", "total", "group", "held", "short", "good"}
+"""Where text keeps a distance from the number to its left."""
+
+LINE_HEIGHT = 13.2
+"""Points that a line of text takes at 10 points."""
+
 
 def apply(style: Style, cell: Cell) -> None:
     """Dress an openpyxl cell; the workbook it belongs to keeps the style."""
@@ -70,18 +78,41 @@ def apply(style: Style, cell: Cell) -> None:
         cell.border = Border(top=side)
     elif look.line == "below":
         cell.border = Border(bottom=Side("medium", color=DEEP))
-    middle = "center" if style.kind == "heading" else "top"
-    cell.alignment = Alignment(horizontal=style.align, vertical=middle, wrap_text=style.wrap or None)
+    text = style.align in (None, "left") and style.kind in _INDENTED
+    cell.alignment = Alignment(
+        horizontal="left" if text else style.align,
+        vertical="center" if style.kind in ("heading", "headline", "good", "title") else "top",
+        wrap_text=style.wrap or None,
+        indent=1 if text else 0,
+    )
     cell.number_format = style.number
     cell.quotePrefix = style.quoted
 
 
-def number_format(places: int) -> str:
-    """Thousands apart, and this many decimal places (at most six are shown; the cell keeps them all)."""
+def number_format(places: int, always: int | None = None) -> str:
+    """Thousands apart, and this many decimal places (at most six are shown; the cell keeps them all).
+
+    Beyond `always` places only those are shown that are not 0, with decimal points still in line.
+    """
     shown = max(0, min(places, MOST_PLACES_SHOWN))
-    return "#,##0" + ("." + "0" * shown if shown else "")
+    fixed = shown if always is None else min(always, shown)
+    decimals = "0" * fixed + "?" * (shown - fixed)
+    return "#,##0" + (f".{decimals}" if decimals else "")
 
 
-def places_of(decimals: object) -> int:
-    """The most decimal places that any of these decimals needs; None among them is passed over."""
-    return max((places_needed(d) for d in decimals if isinstance(d, Decimal)), default=0)  # type: ignore[attr-defined]
+def height_of(values: Sequence[object], widths: Sequence[float], styles: Sequence[Style]) -> float | None:
+    """How high a row has to be for its wrapped text; None where one line will do.
+
+    Programs are left to guess otherwise, and not all of them do. widths: in characters.
+    """
+    lines = 1
+    for value, width, style in zip(values, widths, styles, strict=False):
+        if style.wrap and isinstance(value, str):
+            wide = max(1.0, width - 2) * 1.05  # text is a little narrower than digits
+            lines = max(lines, sum(max(1, ceil(len(part) / wide)) for part in value.split("\n")))
+    return None if lines == 1 else min(400.0, LINE_HEIGHT * lines + 2)
+
+
+def places_of(decimals: Iterable[object]) -> int:
+    """The most decimal places that any of these decimals needs; what is no decimal is passed over."""
+    return max((places_needed(decimal) for decimal in decimals if isinstance(decimal, Decimal)), default=0)

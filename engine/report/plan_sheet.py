@@ -5,7 +5,7 @@ from decimal import Decimal
 
 from engine.money import minor_places
 from engine.planning.plan import Plan
-from engine.report.lines import Line, ListColumn, heading_row, quantity_format, styles_of, total
+from engine.report.lines import Line, ListColumn, heading_row, line_rows, quantity_format, styles_of, total
 from engine.report.look import DEEP, number_format, places_of
 from engine.report.sheet import Formula, Row, Sheet, Value
 
@@ -17,8 +17,8 @@ def plan_columns(plan: Plan) -> list[ListColumn]:
     """What *Plan* shows of each shipment; a CSV file of the plan has the same columns."""
     unit = plan.week.rules.unit
     payable = number_format(minor_places(plan.week.rules.currency))
-    rate = number_format(places_of(shipment.rate for shipment in plan.shipments))
-    cost = number_format(places_of(shipment.cost for shipment in plan.shipments))
+    rate = number_format(places_of(shipment.rate for shipment in plan.shipments), always=2)
+    cost = number_format(places_of(shipment.cost for shipment in plan.shipments), always=2)
     columns = [
         ListColumn("Depot", 20, lambda line: line.shipment.depot),
         ListColumn("Customer", 24, lambda line: line.shipment.customer),
@@ -67,8 +67,7 @@ def plan_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
 def _rows(columns: Sequence[ListColumn], lines: Sequence[Line]) -> Iterator[Row]:
     styles, last = styles_of(columns), 1 + len(lines)
     yield heading_row(columns)
-    for line in lines:
-        yield Row([c.value(line) for c in columns], styles["held" if line.shipment.held else "plain"])
+    yield from line_rows(columns, lines)
     if not lines:
         yield Row(["Nothing can be sent: see Notes."], styles["plain"])
         return
@@ -76,9 +75,7 @@ def _rows(columns: Sequence[ListColumn], lines: Sequence[Line]) -> Iterator[Row]
     yield Row(["Total", *total_values(columns, lines, 2, last)], styles["total"])
 
 
-def total_values(
-    columns: Sequence[ListColumn], lines: Sequence[Line], first: int, last: int
-) -> list[Value]:
+def total_values(columns: Sequence[ListColumn], lines: Sequence[Line], first: int, last: int) -> list[Value]:
     """The total row of a list but for its first cell: sums of what the filter shows.
 
     first, last: the sheet rows to be summed; totals among them are passed over (SUBTOTAL does so).

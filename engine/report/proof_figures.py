@@ -11,6 +11,7 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers, to_decimal
+from engine.money import minor_places
 from engine.network.closure import close
 from engine.network.problem import UNLIMITED
 from engine.planning.aims import MUST_MOVE
@@ -39,6 +40,7 @@ class ProofFigures(NamedTuple):
     sign:            (rows of the problem,) which way a row speaks: aims first, then money
     short_aim:       (customers,) what a unit short counts for the aims
     must_aim:        what a unit that must move and stays counts for the aims
+    payable_places:  decimal places that the currency is paid in
     """
 
     depot: Prices
@@ -49,6 +51,7 @@ class ProofFigures(NamedTuple):
     sign: Integers
     short_aim: Integers
     must_aim: int
+    payable_places: int
 
     @property
     def aims_matter(self) -> bool:
@@ -85,7 +88,40 @@ def proof_figures(plan: Plan) -> ProofFigures:
         sign=np.sign(np.where(aims != 0, aims, money)),
         short_aim=cost_aims[model.short_rows],
         must_aim=base ** (len(names) - 1 - names.index(MUST_MOVE)) if MUST_MOVE in names else 0,
+        payable_places=minor_places(plan.week.rules.currency),
     )
+
+
+def check_codes(plan: Plan, figures: ProofFigures) -> Integers:
+    """(rows of the problem,) 0: in order; 1: could improve the plan; 2: outside its limits."""
+    problem, quantity, sign = plan.model.problem, plan.flow.quantity, figures.sign
+    none = np.zeros(problem.rows, dtype=np.int64)
+    least = none if problem.at_least is None else problem.at_least
+    most = none + UNLIMITED if problem.at_most is None else problem.at_most
+    improves = ((sign > 0) & (quantity > least)) | ((sign < 0) & (quantity < most))
+    return np.where((quantity < least) | (quantity > most), 2, improves.astype(np.int64))
+
+
+def left_over(plan: Plan, figures: ProofFigures) -> tuple[Integers, Integers]:
+    """What each depot could send less what it sends and keeps; what each customer ordered less what it gets
+    and goes short of. Both are 0 in a plan that adds up.
+    """
+    model, problem, quantity = plan.model, plan.model.problem, plan.flow.quantity
+    depots, customers = problem.supply[:-1].copy(), problem.demand[:-1].copy()
+    np.subtract.at(depots, problem.depot[figures.rows], quantity[figures.rows])
+    np.subtract.at(customers, problem.customer[figures.rows], quantity[figures.rows])
+    return depots - kept(plan), customers - quantity[model.short_rows]
+
+
+def kept(plan: Plan) -> Integers:
+    """(depots,) what each depot keeps."""
+    return plan.flow.quantity[plan.model.stay_rows] + kept_of_must(plan)
+
+
+def kept_of_must(plan: Plan) -> Integers:
+    """(depots,) what each depot keeps of what must move."""
+    must = plan.model.must_row
+    return np.where(must == NO_RATE, 0, plan.flow.quantity[must])
 
 
 def forced(model: Model, figures: ProofFigures) -> Integers:

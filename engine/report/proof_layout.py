@@ -60,7 +60,7 @@ class Places(NamedTuple):
 def layout_of(
     plan: Plan, figures: ProofFigures, lines: Sequence[Line], plan_letters: dict[str, str], first: int
 ) -> Layout:
-    """The layout, its first table beginning at sheet row `first` (name, headings, lines, the stand-in, a gap)."""
+    """The layout, its first table beginning at sheet row `first` (name, headings, lines, stand-in, gap)."""
     model = plan.model
     every_row = len(figures.rows) <= MOST_ROWS_LISTED
     listed = figures.rows if every_row else figures.rows[plan.flow.quantity[figures.rows] > 0]

@@ -8,47 +8,53 @@ from collections.abc import Iterator, Sequence
 
 import numpy as np
 
+from engine.exact import to_decimal
 from engine.figures import ANY_SINGLE_DEPOT
+from engine.money import round_half_up
 from engine.network.problem import UNLIMITED
 from engine.planning.model import NO_RATE, Model
 from engine.planning.plan import Plan
 from engine.report.figures_sheets import HOLD
 from engine.report.lines import quantity_format
 from engine.report.look import Style, number_format
-from engine.report.proof_figures import ProofFigures, forced
+from engine.report.proof_figures import ProofFigures, check_codes, forced, kept, kept_of_must, left_over
 from engine.report.proof_layout import Layout, on_customers, on_depots, on_rates, on_rules
 from engine.report.sheet import Formula, Row, Value
 
 MISSING, STAYS = "(goods that are missing)", "(goods that stay)"
 
 DEPOT_HEADINGS = (
-    "No.", "Depot", "Could send", "Sent", "Unsent", "Of it, must move", "Left over", "Price", "Charge if kept",
-    "Charge less price", "Should move", "Check", None, None, "Forced", "Before cost", "Before cost, kept",
+    "No.", "Depot", "Could send", "Sent", "Unsent", "Of it, must move", "Left over", "Price",
+    "Charge if kept", "Charge less price", "Should move", "Check", None, None, "Forced",
+    "Before cost", "Before cost, kept",
 )  # fmt: skip
 CUSTOMER_HEADINGS = (
-    "No.", "Customer", "Whole order", "Received", "Short", None, "Left over", "Price", "Charge, short",
-    "Charge less price", None, "Check", None, None, None, "Before cost", "Before cost, short",
+    "No.", "Customer", "Whole order", "Received", "Short", None, "Left over", "Price",
+    "Charge, short", "Charge less price", None, "Check", None, None, None,
+    "Before cost", "Before cost, short",
 )  # fmt: skip
 RATE_HEADINGS = (
-    "Rate row", "Depot", "Customer", "Haulier", "Send", "Rate with surcharge", "Depot price", "Customer price",
-    "Rate less prices", "Limit below", "Limit above", "Check", "Exact cost", "Payable", "Forced", "Before cost", None,
+    "Rate row", "Depot", "Customer", "Haulier", "Send", "Rate with surcharge", "Depot price",
+    "Customer price", "Rate less prices", "Limit below", "Limit above", "Check", "Exact cost",
+    "Payable", "Forced", "Before cost", None,
 )  # fmt: skip
 
 
 def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row]:
     """What each depot sends and keeps, its price, and whether keeping less or more would pay."""
-    model, quantity, q = plan.model, plan.flow.quantity, layout.places.quantity
+    model, q = plan.model, layout.places.quantity
     yield from _head("Depots", DEPOT_HEADINGS)
     styles = _styles(plan, layout, "n_qqqqqmmmqc__tnn")
-    kept = quantity[model.stay_rows]
-    must = np.where(model.must_row == NO_RATE, 0, quantity[model.must_row])
-    held = forced(model, figures)
+    unsent, must, left = kept(plan), kept_of_must(plan), left_over(plan, figures)[0]
+    held, codes = forced(model, figures), check_codes(plan, figures)
     stays = layout.customers[1] + 1
     for i, name in enumerate(model.depots):
         r = layout.depots[0] + i
         rows = [int(row) for row in (model.stay_rows[i], model.must_row[i]) if row != NO_RATE]
-        supply, unsent = int(model.problem.supply[i]), int(kept[i] + must[i])
-        should = int(model.problem.at_most[rows[1]]) if len(rows) > 1 and model.problem.at_most is not None else 0
+        supply = int(model.problem.supply[i])
+        should = (
+            int(model.problem.at_most[rows[1]]) if len(rows) > 1 and model.problem.at_most is not None else 0
+        )
         free_aims, must_aims = f"(P{r}+$P${stays})", f"(Q{r}-P{r}-$P${stays})"
         free, bound = f"IF({free_aims}<>0,-{free_aims},J{r})", f"IF({must_aims}<>0,{must_aims},J{r})"
         check = (
@@ -60,15 +66,18 @@ def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Ro
             i + 1,
             name,
             _link(layout, f"N({on_depots('available', i)})", _quantity(model, supply)),
-            _sent(layout, r, _quantity(model, supply - unsent)),
-            _quantity(model, unsent),
+            _sent(layout, r, _quantity(model, supply - int(unsent[i]) - int(left[i]))),
+            _quantity(model, int(unsent[i])),
             _quantity(model, int(must[i])),
-            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", 0),
+            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[i]))),
             _money(model, int(figures.depot.money[i])),
             _link(layout, f"N({on_depots('charge_if_unsent', i)})", _money(model, int(model.money[rows[0]]))),
-            Formula(f"ROUND(I{r}-H{r}-$H${stays},{layout.places.money})", _money(model, int(figures.money[rows[0]]))),
+            Formula(
+                f"ROUND(I{r}-H{r}-$H${stays},{layout.places.money})",
+                _money(model, int(figures.money[rows[0]])),
+            ),
             _link(layout, f"N({on_depots('must_move', i)})", _quantity(model, should)),
-            Formula(check, sum(_check(plan, figures, row) for row in rows)),
+            Formula(check, sum(int(codes[row]) for row in rows)),
             None,
             None,
             Formula(worth, _cost(model, sum(int(held[row]) * int(figures.money[row]) for row in rows))),
@@ -96,7 +105,8 @@ def _missing_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequ
         _money(model, int(figures.depot.money[-1])),
         *[None] * 3,
         Formula(
-            f"IF({joined}>0,IF(C{r}-D{r}>0,1,0),IF({joined}<0,1,0))", _check(plan, figures, model.joining_row)
+            f"IF({joined}>0,IF(C{r}-D{r}>0,1,0),IF({joined}<0,1,0))",
+            int(check_codes(plan, figures)[model.joining_row]),
         ),
         *[None] * 3,
         int(figures.depot.aims[-1]),
@@ -109,7 +119,7 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
     model, q = plan.model, layout.places.quantity
     yield from _head("Customers", CUSTOMER_HEADINGS)
     styles = _styles(plan, layout, "n_qqq_qmmm_c___nn")
-    missing = layout.depots[1] + 1
+    missing, left, codes = layout.depots[1] + 1, left_over(plan, figures)[1], check_codes(plan, figures)
     of_listed = model.problem.customer[layout.listed]
     firsts = np.searchsorted(of_listed, np.arange(len(model.customers) + 1))
     order_row = 0
@@ -119,26 +129,27 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
         orders = max(1, len(customer.orders))
         ordered, short = int(model.problem.demand[j]), int(plan.flow.quantity[row])
         own, week = on_customers("charge_if_short", order_row), on_rules("charge_if_short")
-        rows_of = f"{on_customers('ordered', order_row)}:{on_customers('ordered', order_row + orders - 1).split('!')[1]}"
+        first_order, last_order = (on_customers("ordered", at) for at in (order_row, order_row + orders - 1))
         aims = f"(Q{r}-P{r}-$P${missing})"
         sign = f"IF({aims}<>0,{aims},J{r})"
-        received = _quantity(model, ordered - short)
+        received = _quantity(model, ordered - short - int(left[j]))
         yield Row(
             [
                 j + 1,
                 name,
-                _link(layout, f"SUM({rows_of})", _quantity(model, ordered)),
+                _link(layout, f"SUM({first_order}:{last_order.split('!')[1]})", _quantity(model, ordered)),
                 Formula(f"SUM(E{first}:E{last})", received) if last >= first else 0,
                 _quantity(model, short),
                 None,
-                Formula(f"ROUND(C{r}-D{r}-E{r},{q})", 0),
+                Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[j]))),
                 _money(model, int(figures.customer.money[j])),
                 _link(layout, f'IF({own}="",N({week}),{own})', _money(model, int(model.money[row]))),
                 Formula(
-                    f"ROUND(I{r}-H{r}-$H${missing},{layout.places.money})", _money(model, int(figures.money[row]))
+                    f"ROUND(I{r}-H{r}-$H${missing},{layout.places.money})",
+                    _money(model, int(figures.money[row])),
                 ),
                 None,
-                Formula(f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))", _check(plan, figures, row)),
+                Formula(f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))", int(codes[row])),
                 *[None] * 3,
                 int(figures.customer.aims[j]),
                 int(figures.short_aim[j]),
@@ -174,7 +185,7 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
     yield from _head("Rate rows" if layout.every_row else "Rate rows that are used", RATE_HEADINGS)
     styles = _styles(plan, layout, "n___qmmmmqqctptn_")
     flat, barred, held = plan.week.rates.flat, _barred(plan), forced(model, figures)
-    aims = figures.aims_matter
+    aims, codes = figures.aims_matter, check_codes(plan, figures)
     on_row, send = layout.on_plan("Rate row"), layout.on_plan("Send")
     for r, row in enumerate(layout.listed.tolist(), layout.rates[0]):
         position, i, j = int(model.rate_row[row]), int(problem.depot[row]), int(problem.customer[row])
@@ -209,9 +220,11 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
                     _most_formula(position, position in barred),
                     "" if most is None else _quantity(model, most),
                 ),
-                Formula(check, _check(plan, figures, row)),
+                Formula(check, int(codes[row])),
                 exact,
-                Formula(f"ROUND(M{r},{layout.places.payable})", _payable(layout, model, cost)) if used else None,
+                Formula(f"ROUND(M{r},{layout.places.payable})", _payable(layout, model, cost))
+                if used
+                else None,
                 Formula(worth, _cost(model, int(held[row]) * int(figures.money[row]))) if limited else None,
                 Formula(f"-$P${depot_row}-$P${customer_row}", int(figures.aims[row])) if aims else None,
             ],
@@ -253,17 +266,6 @@ def _barred(plan: Plan) -> set[int]:
     return found
 
 
-def _check(plan: Plan, figures: ProofFigures, row: int) -> int:
-    """What the check of a row of the problem comes to: 0, 1 or 2."""
-    quantity, sign = int(plan.flow.quantity[row]), int(figures.sign[row])
-    least, most = _limits(plan.model, row)
-    if quantity < least or (most is not None and quantity > most):
-        return 2
-    if sign > 0:
-        return int(quantity > least)
-    return int(sign < 0 and (most is None or quantity < most))
-
-
 def _limits(model: Model, row: int) -> tuple[int, int | None]:
     problem = model.problem
     least = 0 if problem.at_least is None else int(problem.at_least[row])
@@ -274,18 +276,20 @@ def _limits(model: Model, row: int) -> tuple[int, int | None]:
 def _head(name: str, headings: Sequence[str | None]) -> Iterator[Row]:
     yield Row([name, *[None] * (len(headings) - 1)], [Style("part")] * len(headings))
     words = {"Depot", "Customer", "Haulier"}
-    styles = [Style("heading", align="left" if heading in words else "right", wrap=True) for heading in headings]
+    styles = [
+        Style("heading", align="left" if heading in words else "right", wrap=True) for heading in headings
+    ]
     yield Row(headings, styles, height=30)
 
 
 def _styles(plan: Plan, layout: Layout, kinds: str) -> list[Style]:
-    """One style a column: n a count, q a quantity, m money per unit, t a cost, p payable, c a check, _ text."""
+    """A style a column: n count, q quantity, m money per unit, t cost, p payable, c check, _ text."""
     formats = {
         "n": "0",
         "c": "0",
         "q": quantity_format(plan),
-        "m": number_format(layout.places.money),
-        "t": number_format(layout.places.cost),
+        "m": number_format(layout.places.money, always=2),
+        "t": number_format(layout.places.cost, always=2),
         "p": number_format(layout.places.payable),
     }
     return [Style() if kind == "_" else Style("plain", formats[kind], "right") for kind in kinds]
@@ -308,20 +312,23 @@ def _sum(where: str, value: float) -> Formula:
 
 
 def _quantity(model: Model, integer: int) -> float:
-    return integer / 10**model.quantity_places
+    return _float(integer, model.quantity_places)
 
 
 def _money(model: Model, integer: int) -> float:
-    return integer / 10**model.money_places
+    return _float(integer, model.money_places)
 
 
 def _cost(model: Model, integer: int) -> float:
-    return integer / 10 ** (model.quantity_places + model.money_places)
+    return _float(integer, model.quantity_places + model.money_places)
 
 
 def _payable(layout: Layout, model: Model, cost: int) -> float:
-    from engine.exact import to_decimal
-    from engine.money import round_half_up
-
     exact = to_decimal(cost, model.quantity_places + model.money_places)
     return float(round_half_up(exact, layout.places.payable))
+
+
+def _float(integer: int, places: int) -> float:
+    """The float nearest to a decimal of so many places."""
+    power: int = 10**places
+    return integer / power

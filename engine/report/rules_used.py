@@ -55,8 +55,9 @@ def _blank_charges(plan: Plan) -> str:
     default = plan.week.rules.charge_if_short
     unit, currency = plan.week.rules.unit, plan.week.rules.currency
     if default is not None:
-        return f"A customer without a charge if short of its own has the week's: {canonical(default)} {currency} per {unit}."
-    return "A customer without a charge if short counts with 0, since the week has none: freight alone decides there."
+        charge = f"{canonical(default)} {currency} per {unit}"
+        return f"A customer without a charge if short of its own has the week's: {charge}."
+    return "A customer without a charge if short counts with 0, as the week has none: freight decides there."
 
 
 def _surcharge(plan: Plan) -> str:
@@ -64,7 +65,10 @@ def _surcharge(plan: Plan) -> str:
     own = "surcharge" in plan.week.rates.flat.decimals
     parts = []
     if week:
-        parts.append(f"{canonical(week)} % fuel surcharge is on every rate{' that has none of its own' if own else ''}.")
+        parts.append(
+            f"{canonical(week)} % fuel surcharge is on every "
+            f"rate{' that has none of its own' if own else ''}."
+        )
     if own:
         parts.append("A surcharge on a rate row goes before the week's.")
     parts.append("It is never rounded by itself, and fixed charges do not bear it.")
@@ -74,10 +78,15 @@ def _surcharge(plan: Plan) -> str:
 def _rounding(plan: Plan) -> str:
     currency = plan.week.rules.currency
     places = minor_places(currency)
-    guess = "" if is_known(currency) else f" {currency} is not in our list of currencies, so two places are assumed."
+    guess = (
+        ""
+        if is_known(currency)
+        else f" {currency} is not in our list of currencies, so two places are assumed."
+    )
     return (
         f"Each shipment is rounded once, halves up, to {places} decimal places ({currency}).{guess} "
-        "Haulier totals add up the rounded amounts, as invoices do; Costs and Proof show the exact sum beside them."
+        "Haulier totals add up the rounded amounts, as invoices do; Costs and Proof show the exact sum "
+        "beside them."
     )
 
 
@@ -86,10 +95,16 @@ def _one_depot(plan: Plan) -> str:
     any_single = [c.name for c in plan.week.customers.values() if c.one_depot == ANY_SINGLE_DEPOT]
     parts = []
     if named:
-        parts.append(f"{len(named)} customers take from one named depot only.")
+        parts.append(f"Taking from one named depot only: {_listed(named)}.")
     if any_single:
-        parts.append(f"{len(any_single)} customers take from a single depot, whichever is cheapest.")
+        parts.append(f"Taking from a single depot, whichever costs least: {_listed(any_single)}.")
     return " ".join(parts)
+
+
+def _listed(names: list[str]) -> str:
+    """The first five names and how many more there are."""
+    shown = ", ".join(names[:5])
+    return shown if len(names) <= 5 else f"{shown} and {len(names) - 5} more"
 
 
 def _unsent_charges(plan: Plan) -> str:
@@ -104,19 +119,27 @@ _RULES = (
     Rule(
         "The whole week",
         _always,
-        lambda plan: "Ordered and Available state the whole week. Quantities are in "
-        f"{plan.week.rules.unit}, money in {plan.week.rules.currency}; one unit and one product per week.",
+        lambda plan: (
+            "Ordered and Available state the whole week. Quantities are in "
+            f"{plan.week.rules.unit}, money in {plan.week.rules.currency}; one unit and one product per week."
+        ),
     ),
     Rule(
         "Orders in several rows",
         _any_customer(lambda customer: len(customer.orders) > 1),
-        lambda _: "Order rows of one customer are added up; their numbers and days are kept for the loading lists.",
+        lambda _: (
+            "Order rows of one customer are added up; their numbers and days are kept for the loading lists."
+        ),
     ),
-    Rule("Blank is not zero", _any_customer(lambda customer: customer.charge_if_short is None), _blank_charges),
+    Rule(
+        "Blank is not zero", _any_customer(lambda customer: customer.charge_if_short is None), _blank_charges
+    ),
     Rule(
         "May decline",
         _any_customer(lambda customer: customer.may_decline),
-        lambda _: "A customer that may decline is served only where serving costs less than its charge if short.",
+        lambda _: (
+            "A customer that may decline is served only where serving costs less than its charge if short."
+        ),
     ),
     Rule(
         "Must move",
@@ -127,8 +150,10 @@ _RULES = (
     Rule(
         "Headline",
         _always,
-        lambda _: "The headline is freight payable. Charges for what is short or unsent stand apart and are "
-        "notional: they steer the plan, nobody sends an invoice for them.",
+        lambda _: (
+            "The headline is freight payable. Charges for what is short or unsent stand apart and are "
+            "notional: they steer the plan, nobody sends an invoice for them."
+        ),
     ),
     Rule(
         "Surcharge",
@@ -139,27 +164,38 @@ _RULES = (
     Rule(
         "Whole loads",
         lambda plan: any(shipment.loads is not None for shipment in plan.shipments),
-        lambda _: "Where a rate is per load, the quantity is divided by the load size and rounded up per customer "
-        "and rate row: a part load pays whole.",
+        lambda _: (
+            "Where a rate is per load, the quantity is divided by the load size and rounded up per customer "
+            "and rate row: a part load pays whole."
+        ),
     ),
     Rule(
         "Limits",
-        lambda plan: _any_rate("at_least")(plan)
-        or _any_rate("at_most")(plan)
-        or bool(plan.week.rates.flat.closed.any()),
-        lambda _: "At least and At most hold on their rate row whatever they cost; nothing goes on a closed row.",
+        lambda plan: (
+            _any_rate("at_least")(plan)
+            or _any_rate("at_most")(plan)
+            or bool(plan.week.rates.flat.closed.any())
+        ),
+        lambda _: (
+            "At least and At most hold on their rate row whatever they cost; nothing goes on a closed row."
+        ),
     ),
     Rule(
         "Even share",
         lambda plan: plan.week.rules.when_short == "even share" and bool(plan.short),
-        lambda _: "What there is, is shared evenly as far as the lanes allow, rounded down to the week's step; "
-        "remainders go by the largest fraction, then by sheet order.",
+        lambda _: (
+            "What there is, is shared evenly as far as the lanes allow, rounded down to the week's step; "
+            "remainders go by the largest fraction, then by sheet order."
+        ),
     ),
     Rule("One depot", _any_customer(lambda customer: customer.one_depot), _one_depot),
     Rule(
         "Holds",
         lambda plan: bool(plan.week.holds),
-        lambda _: "A held quantity was fixed by a dispatcher; the rest is planned around it. Below is each, with its reason.",
+        lambda _: (
+            "A held quantity was fixed by a dispatcher; the rest is planned around it. Below is each, with "
+            "its reason."
+        ),
     ),
     Rule(
         "Several rates on a lane",

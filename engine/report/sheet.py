@@ -93,7 +93,9 @@ def render(rows: Iterable[Row], style_id: Callable[[Style], int]) -> Iterator[st
     known: dict[tuple[int, int], tuple[Sequence[Style], list[str], list[str], list[bool]]] = {}
     for number, row in enumerate(rows, 1):
         if number > MOST_ROWS:
-            raise ValueError(f"A sheet holds at most {MOST_ROWS:,} rows: split the table over several sheets.")
+            raise ValueError(
+                f"A sheet holds at most {MOST_ROWS:,} rows: split the table over several sheets."
+            )
         width = len(row.values)
         while len(letters) < width:
             letters.append(get_column_letter(len(letters) + 1))
@@ -154,7 +156,9 @@ def _text(reference: str, text: str, style: str) -> str:
 def _formula(reference: str, formula: Formula, style: str) -> str:
     text = escape(formula.text)
     if isinstance(formula.result, str):
-        return f'<c r="{reference}"{style} t="str"><f>{text}</f><v>{escape(cell_text(formula.result))}</v></c>'
+        return (
+            f'<c r="{reference}"{style} t="str"><f>{text}</f><v>{escape(cell_text(formula.result))}</v></c>'
+        )
     result = formula.result
     shown = canonical(result) if isinstance(result, Decimal) else f"{result:.15g}"
     return f'<c r="{reference}"{style}><f>{text}</f><v>{shown}</v></c>'

@@ -7,7 +7,8 @@ from engine.report.look import Style, number_format, places_of
 from engine.report.sheet import Row, Sheet
 
 _ABOUT = (
-    "What one unit is worth, in {currency} per {unit}: a rate starts to pay below depot price plus customer price. "
+    "What one unit is worth, in {currency} per {unit}: a rate starts to pay below depot price plus customer "
+    "price. "
     "Prices belong to this plan as it is; where a figure is changed by much, plan again."
 )
 
@@ -30,9 +31,16 @@ def _rows(plan: Plan) -> Iterator[Row]:
     rules = plan.week.rules
     yield Row([_ABOUT.format(currency=rules.currency, unit=rules.unit)], [Style("quiet")])
     yield Row([])
-    yield Row(["Where", "Name", "Price per unit"], [Style("heading"), Style("heading"), Style("heading", align="right")])
+    yield Row(
+        ["Where", "Name", "Price per unit"],
+        [Style("heading"), Style("heading"), Style("heading", align="right")],
+    )
     prices = (*plan.depot_prices, *plan.customer_prices)
-    styles = [Style("quiet"), Style(), Style("plain", number_format(places_of(p.price for p in prices)), "right")]
+    styles = [
+        Style("quiet"),
+        Style(),
+        Style("plain", number_format(places_of(p.price for p in prices)), "right"),
+    ]
     for where, listed in (("depot", plan.depot_prices), ("customer", plan.customer_prices)):
         for price in listed:
             yield Row([where, price.name, price.price], styles)

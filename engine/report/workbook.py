@@ -1,6 +1,5 @@
 """A plan as one workbook: the plan from every side, its costs and proof, notes, and the figures as used."""
 
-from collections.abc import Sequence
 from datetime import datetime
 
 from engine.planning.plan import Plan
@@ -53,10 +52,11 @@ def header_of(plan: Plan) -> str:
     return f"{plan.week.rules.week} ({plan.week.rules.unit}, {plan.week.rules.currency})"
 
 
-def _remarks(plan: Plan) -> Sequence[str]:
+def _remarks(plan: Plan) -> tuple[str, ...]:
     if len(plan.week.rates) <= MOST_ROWS_LISTED:
         return ()
     return (
-        f"Proof lists only the rate rows that are used, since there are more than {MOST_ROWS_LISTED:,}. All of them "
+        f"Proof lists only the rate rows that are used, since there are more than {MOST_ROWS_LISTED:,}. All "
+        "of them "
         "were checked in whole numbers before this file was written.",
     )
