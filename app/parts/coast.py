@@ -1,5 +1,6 @@
-"""An invented island in open ocean, more than two thousand kilometres from any land.
+"""An invented island in open ocean, around the place that is farthest from any land.
 
+That is the oceanic pole of inaccessibility, at 48°52.6′ S 123°23.6′ W (Lukatela 1992; from memory).
 The coast is kept as a few corners and roughened the same way every time, so that the map and the
 sample figures agree on what is land.
 """

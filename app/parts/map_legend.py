@@ -5,7 +5,7 @@ from decimal import Decimal
 from xml.sax.saxutils import escape
 
 from app.parts.map_colours import Colours
-from app.parts.map_drawing import WIDEST, Drawing, Number
+from app.parts.map_drawing import THINNEST, WIDEST, Drawing, Number
 
 ROW = 26
 TEXT_AT = 38
@@ -59,10 +59,12 @@ def _widths(drawing: Drawing, unit: str, number: Number) -> Sequence[tuple[float
         return ()
     widest = drawing.lines[0].width
     steps = [step for step in (_round(most), _round(most / 3), _round(most / 9)) if step > 0]
-    return [
-        (min(WIDEST, max(1.0, float(step / most) * widest)), f"{number(step)} {unit}")
-        for step in dict.fromkeys(steps)
-    ]
+    told: list[tuple[float, str]] = []
+    for step in dict.fromkeys(steps):
+        width = min(WIDEST, max(THINNEST, float(step / most) * widest))
+        if not told or told[-1][0] - width > 0.5:  # narrower differences are not seen
+            told.append((width, f"{number(step)} {unit}"))
+    return told
 
 
 def _round(value: Decimal) -> Decimal:

@@ -96,6 +96,11 @@ def test_the_coast_is_drawn_for_our_island_only():
     assert not around_here([])
 
 
+def test_the_island_is_where_no_land_is():
+    # The oceanic pole of inaccessibility, 48 52.6 S 123 23.6 W (Lukatela 1992; value from memory).
+    assert on_land((-(123 + 23.6 / 60), -(48 + 52.6 / 60)))
+
+
 def test_samples_lie_on_land():
     for name in ("small_week.xlsx", "large_week.xlsx"):
         assert all(on_land(point.place) for point in sample_points(name))
