@@ -6,6 +6,7 @@ from decimal import Decimal
 from typing import Any, NamedTuple
 
 from openpyxl.chart import BarChart, Reference
+from openpyxl.chart.label import DataLabelList
 from openpyxl.chart.shapes import GraphicalProperties
 
 from engine.exact import canonical
@@ -14,6 +15,7 @@ from engine.planning.plan import Plan
 from engine.report.lines import NO_HAULIER, Line, quantity_format, total
 from engine.report.look import DEEP, Style, number_format, places_of
 from engine.report.sheet import Row, Sheet, Value
+from engine.report.text import cell_text
 
 PAYABLE, NOTIONAL = "payable", "notional"
 COUNT = "#,##0"
@@ -204,15 +206,16 @@ def _chart(sheet: Any, plan: Plan, first: int, last: int) -> BarChart:
     """Freight payable by haulier, the dearest on top."""
     chart = BarChart()
     chart.type = "bar"
-    chart.title = "Freight payable by haulier"
+    chart.title = f"Freight payable by haulier, {cell_text(plan.week.rules.currency)}"
     chart.legend = None
     chart.add_data(Reference(sheet, min_col=2, min_row=first, max_row=last))
     chart.set_categories(Reference(sheet, min_col=1, min_row=first, max_row=last))
     chart.series[0].graphicalProperties = GraphicalProperties(solidFill=DEEP)
-    chart.y_axis.title = plan.week.rules.currency
-    chart.y_axis.number_format = COUNT
+    chart.dataLabels = DataLabelList(showVal=True, showSerName=False, showCatName=False, showLegendKey=False)
+    chart.dataLabels.numFmt = COUNT
     chart.x_axis.scaling.orientation = "maxMin"
-    chart.x_axis.delete = chart.y_axis.delete = False
+    chart.x_axis.delete, chart.y_axis.delete = False, True
+    chart.y_axis.majorGridlines = None
     chart.gapWidth = 60
     chart.width, chart.height = 13, 6
     return chart

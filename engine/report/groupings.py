@@ -5,6 +5,7 @@ from collections.abc import Callable, Iterable, Mapping, Sequence
 from decimal import Decimal
 from typing import TypeVar
 
+from engine.columns import SEND
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.report.lines import (
@@ -20,7 +21,7 @@ from engine.report.lines import (
     total,
 )
 from engine.report.look import height_of, number_format, places_of
-from engine.report.plan_sheet import SEND, total_values
+from engine.report.plan_sheet import total_values
 from engine.report.sheet import Formula, Row, Sheet, Value
 
 Name = TypeVar("Name", str, str | None)
@@ -32,10 +33,10 @@ def loading_columns(plan: Plan) -> list[ListColumn]:
     columns = [
         ListColumn("Customer", 30, lambda line: line.shipment.customer),
         ListColumn("Haulier", 22, lambda line: line.shipment.haulier),
-        ListColumn(SEND, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
+        ListColumn(SEND.heading, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
         ListColumn("Unit", 8, lambda _: unit),
         ListColumn("Days", 14, lambda line: line.days or None, wrap=True),
-        ListColumn("Order numbers", 26, lambda line: line.orders or None, wrap=True),
+        ListColumn("Order numbers", 30, lambda line: line.orders or None, wrap=True),
         ListColumn("Part of order", 10, lambda line: "yes" if line.part else None),
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
@@ -59,7 +60,7 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ListColumn("Haulier", 20, lambda line: line.haulier),
         ListColumn("Depot", 20, lambda line: line.shipment.depot),
         ListColumn("Customer", 26, lambda line: line.shipment.customer),
-        ListColumn(SEND, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
+        ListColumn(SEND.heading, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
         ListColumn("Unit", 7, lambda _: unit),
         ListColumn(
             "Rate",
@@ -68,7 +69,7 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
             number_format(places_of(shipment.rate for shipment in plan.shipments), always=2),
         ),
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
-        ListColumn("Order numbers", 24, lambda line: line.orders or None, wrap=True),
+        ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
@@ -91,13 +92,13 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ListColumn("Customer", 26, lambda line: line.shipment.customer),
         ListColumn("Depot", 20, lambda line: line.shipment.depot),
         ListColumn("Haulier", 18, lambda line: line.shipment.haulier),
-        ListColumn(SEND, 12, lambda line: line.shipment.quantity, quantity),
+        ListColumn(SEND.heading, 12, lambda line: line.shipment.quantity, quantity),
         ListColumn("Unit", 7, lambda _: unit),
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
         ListColumn("Whole order", 12, lambda _: None, quantity),
         ListColumn("Goes short of", 12, lambda _: None, quantity),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
-        ListColumn("Order numbers", 24, lambda line: line.orders or None, wrap=True),
+        ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
     ]
     styles = styles_of(columns)
     at = _grouped(lines, week.customers, lambda line: line.shipment.customer)
@@ -159,7 +160,7 @@ def _in_groups(
     for name, lines in at.items():
         first = len(rows) + 1
         rows.extend(line_rows(columns, lines))
-        of_group = total_values(columns, lines, first, len(rows))
+        of_group: list[Value] = total_values(columns, lines, first, len(rows))
         rows.append(Row([words.format(name or NO_HAULIER), *of_group], styles["total"]))
         breaks.append(len(rows))
     return rows, breaks[:-1]

@@ -108,7 +108,7 @@ def height_of(values: Sequence[object], widths: Sequence[float], styles: Sequenc
     lines = 1
     for value, width, style in zip(values, widths, styles, strict=False):
         if style.wrap and isinstance(value, str):
-            wide = max(1.0, width - 2) * 1.05  # text is a little narrower than digits
+            wide = max(1.0, width - 2) * 1.15  # most letters are narrower than the digits that widths count
             lines = max(lines, sum(max(1, ceil(len(part) / wide)) for part in value.split("\n")))
     return None if lines == 1 else min(400.0, LINE_HEIGHT * lines + 2)
 

@@ -3,14 +3,12 @@
 from collections.abc import Iterator, Sequence
 from decimal import Decimal
 
+from engine.columns import SEND
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.report.lines import Line, ListColumn, heading_row, line_rows, quantity_format, styles_of, total
 from engine.report.look import DEEP, number_format, places_of
 from engine.report.sheet import Formula, Row, Sheet, Value
-
-SEND = "Send"
-"""The heading of quantities in a plan: no sheet that has it is read as rates."""
 
 
 def plan_columns(plan: Plan) -> list[ListColumn]:
@@ -23,14 +21,14 @@ def plan_columns(plan: Plan) -> list[ListColumn]:
         ListColumn("Depot", 20, lambda line: line.shipment.depot),
         ListColumn("Customer", 24, lambda line: line.shipment.customer),
         ListColumn("Haulier", 18, lambda line: line.shipment.haulier),
-        ListColumn(SEND, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
+        ListColumn(SEND.heading, 12, lambda line: line.shipment.quantity, quantity_format(plan)),
         ListColumn("Unit", 7, lambda _: unit),
         ListColumn("Rate", 12, lambda line: line.shipment.rate, rate),
         ListColumn("Cost", 15, lambda line: line.shipment.cost, cost),
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
         ListColumn("Held", 7, lambda line: "yes" if line.shipment.held else None),
-        ListColumn("Hold reason", 26, lambda line: line.reason or None, wrap=True),
-        ListColumn("Order numbers", 20, lambda line: line.orders or None, wrap=True),
+        ListColumn("Hold reason", 28, lambda line: line.reason or None, wrap=True),
+        ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
         ListColumn("Rate row", 9, lambda line: line.rate_row, "0"),
     ]
@@ -39,7 +37,7 @@ def plan_columns(plan: Plan) -> list[ListColumn]:
     return columns
 
 
-SUMMED = (SEND, "Loads", "Cost", "Payable")
+SUMMED = (SEND.heading, "Loads", "Cost", "Payable")
 
 
 def plan_letters(columns: Sequence[ListColumn]) -> dict[str, str]:

@@ -99,7 +99,7 @@ def _sums_agree(plan: Plan, figures: ProofFigures, layout: Layout, costs: dict[s
     charges = _products(layout, "E", "I", (depots, customers))
     stand_ins = ((depots[0], depots[1] + 1), (customers[0], customers[1] + 1))
     by_prices = _products(layout, "C", "H", stand_ins)
-    by_limits = "+".join(f"SUM({layout.range('O', table)})" for table in (depots, rates))
+    by_limits = "+".join(f"SUM({layout.range('O', table)})" for table in (depots, customers, rates))
     listed = plan.shipments
     return [
         Check(

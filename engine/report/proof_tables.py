@@ -30,7 +30,7 @@ DEPOT_HEADINGS = (
 )  # fmt: skip
 CUSTOMER_HEADINGS = (
     "No.", "Customer", "Whole order", "Received", "Short", None, "Left over", "Price",
-    "Charge, short", "Charge less price", None, "Check", None, None, None,
+    "Charge, short", "Charge less price", "Fixed share", "Check", None, None, "Forced",
     "Before cost", "Before cost, short",
 )  # fmt: skip
 RATE_HEADINGS = (
@@ -118,8 +118,9 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
     """What each customer gets and goes short of, its price, and whether more or less short would pay."""
     model, q = plan.model, layout.places.quantity
     yield from _head("Customers", CUSTOMER_HEADINGS)
-    styles = _styles(plan, layout, "n_qqq_qmmm_c___nn")
-    missing, left, codes = layout.depots[1] + 1, left_over(plan, figures)[1], check_codes(plan, figures)
+    styles = _styles(plan, layout, "n_qqq_qmmmqc__tnn")
+    missing, left = layout.depots[1] + 1, left_over(plan, figures)[1]
+    held, codes = forced(model, figures), check_codes(plan, figures)
     of_listed = model.problem.customer[layout.listed]
     firsts = np.searchsorted(of_listed, np.arange(len(model.customers) + 1))
     order_row = 0
@@ -133,29 +134,33 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
         aims = f"(Q{r}-P{r}-$P${missing})"
         sign = f"IF({aims}<>0,{aims},J{r})"
         received = _quantity(model, ordered - short - int(left[j]))
-        yield Row(
-            [
-                j + 1,
-                name,
-                _link(layout, f"SUM({first_order}:{last_order.split('!')[1]})", _quantity(model, ordered)),
-                Formula(f"SUM(E{first}:E{last})", received) if last >= first else 0,
-                _quantity(model, short),
-                None,
-                Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[j]))),
-                _money(model, int(figures.customer.money[j])),
-                _link(layout, f'IF({own}="",N({week}),{own})', _money(model, int(model.money[row]))),
-                Formula(
-                    f"ROUND(I{r}-H{r}-$H${missing},{layout.places.money})",
-                    _money(model, int(figures.money[row])),
-                ),
-                None,
-                Formula(f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))", int(codes[row])),
-                *[None] * 3,
-                int(figures.customer.aims[j]),
-                int(figures.short_aim[j]),
-            ],
-            styles,
-        )
+        least, most = _limits(model, row)
+        share = _quantity(model, short) if least or most is not None else None
+        free = f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))"
+        values: list[Value] = [
+            j + 1,
+            name,
+            _link(layout, f"SUM({first_order}:{last_order.split('!')[1]})", _quantity(model, ordered)),
+            Formula(f"SUM(E{first}:E{last})", received) if last >= first else 0,
+            _quantity(model, short),
+            None,
+            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[j]))),
+            _money(model, int(figures.customer.money[j])),
+            _link(layout, f'IF({own}="",N({week}),{own})', _money(model, int(model.money[row]))),
+            Formula(
+                f"ROUND(I{r}-H{r}-$H${missing},{layout.places.money})", _money(model, int(figures.money[row]))
+            ),
+            share,
+            Formula(free if share is None else f"IF(ROUND(E{r}-K{r},{q})=0,0,2)", int(codes[row])),
+            None,
+            None,
+            None
+            if share is None
+            else Formula(f"J{r}*K{r}", _cost(model, int(held[row]) * int(figures.money[row]))),
+            int(figures.customer.aims[j]),
+            int(figures.short_aim[j]),
+        ]
+        yield Row(values, styles)
         order_row += orders
     yield _stays_row(plan, figures, layout, styles)
     yield Row([])
