@@ -127,7 +127,7 @@ def large_week() -> Figures:
         places = _scattered(len(SITES), 0.030, chance, [], near=(centre, 0.22))
         stores.update({f"{plant} {site}": place for site, place in zip(SITES, places, strict=True)})
     customers = _customers(stores, _sizes(stores, chance, 26, 180), chance, first_number=50001)
-    for row in customers:
+    for row in {row["Customer"]: row for row in reversed(customers)}.values():  # the first row of each
         draw = chance.random()
         row["Priority"] = "A" if draw < 0.15 else "B" if draw < 0.55 else None
         row["Charge if short"] = Decimal(60) if row["Priority"] == "A" else None

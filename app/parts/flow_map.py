@@ -2,6 +2,8 @@
 
 from collections.abc import Mapping, Sequence
 from decimal import Decimal
+from functools import partial
+from math import isnan
 from typing import Any
 
 import pandas as pd
@@ -129,7 +131,7 @@ def flows_table(
         frame = frame.drop(columns="Note")
     figures = [str(name) for name in frame.columns[2:5]]
     sortable = frame.astype(dict.fromkeys(figures, float))  # the browser sorts floats, and shows our texts
-    shown: Any = sortable.style.format({name: lambda value: "" if pd.isna(value) else number(Decimal(repr(value))) for name in figures})
+    shown: Any = sortable.style.format(dict.fromkeys(figures, partial(_written, number)))
     event = st.dataframe(
         shown,
         key=key,
@@ -144,6 +146,11 @@ def flows_table(
         return None
     depot, customer = names.iloc[picked[0]]
     return Focus(depot or None, (customer,))
+
+
+def _written(number: Number, value: float) -> str:
+    """A quantity of the table; blank where there is none."""
+    return "" if isnan(value) else number(Decimal(repr(float(value))))
 
 
 def summary(drawn: Drawing, unit: str, number: Number = plain) -> str:

@@ -275,6 +275,15 @@ def test_table_says_the_same_exactly():
     assert list(frame["Short (t)"]) == [None, None, Decimal("20.5"), None, None, Decimal("0.1")]
 
 
+def test_blank_figures_are_never_written_as_numbers():
+    def only_numbers(quantity):
+        assert quantity.is_finite()
+        return plain(quantity)
+
+    assert widget._written(only_numbers, float("nan")) == ""
+    assert widget._written(only_numbers, 1234.1) == "1234.1"
+
+
 def test_summary_and_remarks():
     made = drawing(*figures(""))
     assert summary(made, "t") == (
