@@ -173,3 +173,7 @@ def _summary(made: engine.Plan) -> str:
     lines += [f"Short: {one.customer} {canonical(one.quantity)} {rules.unit}" for one in made.short]
     lines += [f"Unsent: {one.depot} {canonical(one.quantity)} {rules.unit}" for one in made.unsent]
     return "\n".join(lines)
+
+
+if __name__ == "__main__":
+    main()
