@@ -1,0 +1,89 @@
+"""Every page, with no week, the sample week, a faulty one and a large one: no exception, and its words."""
+
+from decimal import Decimal
+from pathlib import Path
+
+import pytest
+from streamlit.testing.v1 import AppTest
+
+import engine
+import sample_data
+from app.session import KEY, Desk
+
+MAIN = Path(__file__).parents[2] / "app" / "main.py"
+PAGES = ["pages/figures.py", "pages/plan.py", "pages/handover.py"]
+
+
+def page(name: str, state: Desk | None = None) -> AppTest:
+    test = AppTest.from_file(str(MAIN), default_timeout=60)
+    if state is not None:
+        state.started = True
+        test.session_state[KEY] = state
+    test.run()
+    test.switch_page(name).run()
+    assert not test.exception
+    return test
+
+
+def with_sample(name: str = sample_data.SMALL_WEEK) -> Desk:
+    state = Desk()
+    state.open(engine.read_week(sample_data.path(name)))
+    return state
+
+
+@pytest.mark.parametrize("name", PAGES)
+@pytest.mark.parametrize("sample", [None, sample_data.SMALL_WEEK, sample_data.MESSY_WEEK, sample_data.LARGE_WEEK])
+def test_every_page_stands_with_every_week(name: str, sample: str | None) -> None:
+    page(name, with_sample(sample) if sample else Desk())
+
+
+def test_a_first_visitor_reaches_a_plan_of_the_sample_in_one_click() -> None:
+    test = page("pages/figures.py", Desk())
+    next(button for button in test.button if button.label == "Open the sample week").click().run()
+    assert not test.exception
+    test.switch_page("pages/plan.py").run()
+    assert test.metric[0].value == "59,566.18"
+
+
+def test_a_typed_quantity_is_held_and_undone() -> None:
+    state = with_sample()
+    test = page("pages/plan.py", state)
+    before = state.planned()
+    assert before is not None
+    grid = f"shipments-{state.generation}-depot-None-False"
+    edited = {"edited_rows": {0: {"Send": "12.5"}}, "added_rows": [], "deleted_rows": []}
+    test.session_state[grid] = edited
+    test.run()
+    assert not test.exception
+    assert [hold.quantity for hold in state.week.holds.values()] == [Decimal("12.5")]
+    state.undo()
+    test.run()
+    assert not test.exception
+    assert not state.week.holds
+    assert state.planned().total_cost == before.total_cost  # type: ignore[union-attr]
+
+
+def test_a_quantity_that_cannot_be_is_refused_in_words_and_the_week_stays() -> None:
+    state = with_sample()
+    test = page("pages/plan.py", state)
+    grid = f"shipments-{state.generation}-depot-None-False"
+    edited = {"edited_rows": {0: {"Send": "999999"}}, "added_rows": [], "deleted_rows": []}
+    test.session_state[grid] = edited
+    test.run()
+    assert not test.exception
+    assert any("Not done" in error.value for error in test.error)
+    assert not state.week.holds
+
+
+def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None:
+    state = with_sample()
+    test = page("pages/figures.py", state)
+    key = f"depots-{state.generation}"
+    test.session_state[key] = {"edited_rows": {0: {"Available": "a lot"}}, "added_rows": [], "deleted_rows": []}
+    test.run()
+    assert not test.exception
+    assert state.grid("depots").draft.iloc[0]["Available"] == "a lot"
+    assert state.planned() is None
+    state.start_afresh()
+    test.run()
+    assert state.grid("depots").base.iloc[0]["Available"] == "a lot"
