@@ -1,6 +1,6 @@
 """What a grid of figures holds between two runs of a page: its frame, what was typed, what nobody can read."""
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import pandas as pd
 
@@ -26,7 +26,14 @@ class Draft:
 
     @property
     def findings(self) -> list[Finding]:
-        return [problem.finding for problem in self.problems]
+        """What there is to say of the grid's cells, each with its table, row and column as the place."""
+        return [self._placed(problem) for problem in self.problems]
+
+    def _placed(self, problem: CellProblem) -> Finding:
+        frame = self.draft
+        named = frame.loc[problem.row] if problem.row in frame.index else []
+        row = ", ".join(str(text) for text in list(named)[: 2 if problem.table == "rates" else 1] if text)
+        return replace(problem.finding, file="", sheet=problem.table.capitalize(), cell=f"{row}: {problem.column}")
 
 
 def opened(week: Week, table: str, unused: tuple[Unused, ...], style: NumberStyle) -> Draft:
@@ -36,7 +43,7 @@ def opened(week: Week, table: str, unused: tuple[Unused, ...], style: NumberStyl
         return Draft()
     frame = draft_of(week, table, unread, style)
     _, problems = changes_between(week, table, frame, frame, style)
-    return Draft(unread=unread, problems=tuple(problems))
+    return Draft(draft=frame, unread=unread, problems=tuple(problems))
 
 
 def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:

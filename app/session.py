@@ -52,9 +52,12 @@ class Desk:
         self.decimal_mark = reading.style.decimal_mark
         self.drafts = {table: opened(self.week, table, reading.unused, self.style) for table in TABLES}
         again = {(f.rule, f.message) for f in engine.check_week(self.week)}
-        in_grids = {f.message for draft in self.drafts.values() for f in draft.findings}
+        in_grids = {f.read for draft in self.drafts.values() for f in draft.findings if f.read}
         self.read = tuple(
-            f for f in reading.findings if (f.rule, f.message) not in again and f.message not in in_grids
+            f
+            for f in reading.findings
+            if (f.rule, f.message) not in again
+            and not (f.severity is Severity.STOPS and f.read and f.read in in_grids)
         )
         self.uploads += 1
         self.generation += 1
@@ -108,9 +111,10 @@ class Desk:
 
     def planned(self) -> engine.Plan | None:
         """The plan of the week as it stands, made when first asked for; None where it cannot be planned."""
-        unread = [p.finding for draft in self.drafts.values() for p in draft.problems if p.stops]
-        if unread:
-            self.stopped, self.planned_for = tuple(unread), None
+        cells = [finding for draft in self.drafts.values() for finding in draft.findings]
+        stopping = [f for f in (*cells, *self.read) if f.severity is Severity.STOPS]
+        if stopping:
+            self.stopped, self.planned_for = tuple(stopping), None
             return None
         if self.planned_for is not self.week:
             plan, self.stopped = try_plan(self.week, near=self.plan)

@@ -5,12 +5,13 @@ from collections.abc import Sequence
 import pandas as pd
 import streamlit as st
 
-from app.parts.words import counted, plain
+from app.parts.words import plain
 from engine.findings import Finding, Severity, by_gravity
 
 SHOWN = 12
-SIGNS = {Severity.STOPS: "⛔", Severity.CHECK: "⚠", Severity.NOTE: "ℹ"}
 WORDS = {Severity.STOPS: "Stops", Severity.CHECK: "Check", Severity.NOTE: "Note"}
+SIGNS = {Severity.STOPS: ":red[■]", Severity.CHECK: ":orange[▲]", Severity.NOTE: ":gray[●]"}
+PLURALS = {Severity.STOPS: "stop the plan", Severity.CHECK: "to check", Severity.NOTE: "to note"}
 
 
 def findings_panel(findings: Sequence[Finding], key: str) -> None:
@@ -20,12 +21,8 @@ def findings_panel(findings: Sequence[Finding], key: str) -> None:
         st.caption("Nothing to remark on these figures.")
         return
     ordered = by_gravity(findings)
-    counts = [
-        counted(sum(f.severity is severity for f in ordered), WORDS[severity].lower(), plural)
-        for severity, plural in ((Severity.STOPS, "stop"), (Severity.CHECK, "checks"), (Severity.NOTE, "notes"))
-        if any(f.severity is severity for f in ordered)
-    ]
-    st.caption(", ".join(counts))
+    counts = [(severity, sum(f.severity is severity for f in ordered)) for severity in Severity]
+    st.caption(", ".join(f"{count} {PLURALS[severity]}" for severity, count in counts if count))
     for finding in ordered[:SHOWN]:
         place = f" · {plain(finding.place)}" if finding.place else ""
         mend = f" *{plain(finding.mend)}*" if finding.mend else ""

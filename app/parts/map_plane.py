@@ -9,7 +9,7 @@ from app.parts.coast import Place, around_here, coasts
 Spot = tuple[float, float]
 """Right and down from the middle of the drawing, in pixels."""
 
-WIDTH, HEIGHT = 500, 500
+WIDTH, HEIGHT = 440, 500
 """What the drawing is fitted into, in pixels: a little less than the least room a map usually has."""
 
 GRID_STEPS = (0.01, 0.02, 0.05, 0.1, 0.25, 0.5, 1, 2, 5, 10, 15, 30)
@@ -77,7 +77,7 @@ def _grid(plane: Plane) -> tuple[tuple[tuple[Spot, Spot], ...], tuple[tuple[str,
     """Lines at round degrees, reaching well beyond what is seen, labelled near its left and lower edge."""
     high = HEIGHT / plane.scale
     wide = WIDTH / plane.scale / plane.shrink
-    step = next((s for s in GRID_STEPS if high / s <= 6 and wide / s <= 9), GRID_STEPS[-1])
+    step = next((s for s in GRID_STEPS if high / s <= 6 and wide / s <= 7), GRID_STEPS[-1])
     lines: list[tuple[Spot, Spot]] = []
     labels: list[tuple[str, Spot]] = []
     for degrees in _multiples(step, plane.latitude, 2 * high):
