@@ -20,7 +20,7 @@ from app.parts.map_drawing import MOST_LINES, MOST_MARKS, drawing
 from app.parts.map_labels import placed
 from app.parts.map_layers import deck, layer_ids, shown
 from app.parts.map_legend import in_words, legend
-from app.parts.map_plane import ground
+from app.parts.map_plane import WIDTH, ground
 from tests.app.flow_map_page import figures
 
 PAGE = Path(__file__).with_name("flow_map_page.py")
@@ -85,7 +85,7 @@ def test_a_desk_across_the_180th_meridian_stays_together():
     ]
     made = drawing(points, [])
     assert made.depots[0].spot[0] < made.customers[1].spot[0] < made.customers[0].spot[0]
-    assert made.customers[0].spot[0] - made.depots[0].spot[0] == pytest.approx(500, abs=0.1)
+    assert made.customers[0].spot[0] - made.depots[0].spot[0] == pytest.approx(WIDTH, abs=0.1)
     assert {"179°45′ E", "180°", "179°45′ W"} <= {text for text, _ in made.ground.grid_labels}
 
 
@@ -179,7 +179,7 @@ def test_labels_do_not_cover_each_other_on_the_large_sample():
     ]
     _, labels = drawn_deck(points, [])
     assert sum(label.kind == "depot" for label in labels) == 20
-    assert sum(label.kind == "short" for label in labels) > 15
+    assert sum(label.kind == "short" for label in labels) >= 10
     assert not [(a.text, b.text) for a, b in combinations(labels, 2) if meet(box(a), box(b))]
 
 
