@@ -105,19 +105,12 @@ def _shown(value: Any) -> Value:
 
 
 def _rules(week: Week, header: str) -> Sheet:
-    rows = [Row(["Rule", "Value", "What it is"], [Style("heading")] * 3)]
+    rows = [Row(["Rule", "Value"], [Style("heading")] * 2)]
     for column in RULE_COLUMNS:
         value = getattr(week.rules, column.field)
         number = number_format(places_of([value])) if isinstance(value, Decimal) else "General"
-        rows.append(
-            Row(
-                [column.heading, value, column.about],
-                [Style(), Style("plain", number, "left"), Style("quiet")],
-            )
-        )
-    return Sheet(
-        "Rules", (22, 24, 60), rows, len(rows), frozen="A2", landscape=False, header=header, tab=SHORE
-    )
+        rows.append(Row([column.heading, value], [Style(), Style("plain", number, "left")]))
+    return Sheet("Rules", (24, 30), rows, len(rows), frozen="A2", landscape=False, header=header, tab=SHORE)
 
 
 def _sheet(name: str, columns: Sequence[Column], rows: Sequence[Sequence[Value]], header: str) -> Sheet:

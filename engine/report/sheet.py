@@ -9,6 +9,7 @@ from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass, field
 from datetime import date
 from decimal import Decimal
+from functools import lru_cache
 from typing import Any, NamedTuple
 from xml.sax.saxutils import escape
 
@@ -109,12 +110,17 @@ def render(rows: Iterable[Row], style_id: Callable[[Style], int]) -> Iterator[st
                 [style.kind != "plain" for style in padded],
             )
         _, plain, quoted, seen_empty = known[key]
-        cells = "".join(
-            _cell(f"{letters[place]}{number}", value, plain[place], quoted[place])
-            for place, value in enumerate(row.values)
-            if value is not None or seen_empty[place]
-        )
-        yield f'<row r="{number}"{_of_row(row)}>{cells}</row>'
+        cells = []
+        for place, value in enumerate(row.values):
+            if value is None:
+                if seen_empty[place]:
+                    cells.append(f'<c r="{letters[place]}{number}"{plain[place]}/>')
+            elif isinstance(value, str):
+                style = quoted[place] if starts_a_formula(value) else plain[place]
+                cells.append(f'<c r="{letters[place]}{number}"{style}{_text(value)}')
+            else:
+                cells.append(f'<c r="{letters[place]}{number}"{plain[place]}{_rest(value)}')
+        yield f'<row r="{number}"{_of_row(row)}>{"".join(cells)}</row>'
 
 
 def _of_row(row: Row) -> str:
@@ -122,43 +128,38 @@ def _of_row(row: Row) -> str:
     return f'{height} outlineLevel="{row.outline}"' if row.outline else height
 
 
-def _cell(reference: str, value: Value, style: str, quoted: str) -> str:
+def _rest(value: Value) -> str:
+    """The rest of a cell's element, after its place and style."""
     match value:
-        case None:
-            return f'<c r="{reference}"{style}/>'
         case float():
-            return f'<c r="{reference}"{style}><v>{value:.15g}</v></c>'
-        case str():
-            return _text(reference, value, quoted if starts_a_formula(value) else style)
+            return f"><v>{value:.15g}</v></c>"
+        case Formula():
+            return _formula(value)
         case Decimal():
-            if fits_a_number(value):
-                return f'<c r="{reference}"{style}><v>{canonical(value)}</v></c>'
-            return _text(reference, canonical(value), style)
+            text = canonical(value)
+            return f"><v>{text}</v></c>" if fits_a_number(value) else _text(text)
         case bool():
             raise TypeError("A cell says yes in words, not as a truth value.")
         case int():
-            return f'<c r="{reference}"{style}><v>{value}</v></c>'
-        case Formula():
-            return _formula(reference, value, style)
+            return f"><v>{value}</v></c>"
         case date():
             if value < _FIRST_SAFE_DAY:
-                return _text(reference, value.isoformat(), style)
-            return f'<c r="{reference}"{style}><v>{(value - FIRST_DAY).days}</v></c>'
-    raise TypeError(f"{reference}: a cell cannot hold {type(value).__name__}.")
+                return _text(value.isoformat())
+            return f"><v>{(value - FIRST_DAY).days}</v></c>"
+    raise TypeError(f"A cell cannot hold {type(value).__name__}.")
 
 
-def _text(reference: str, text: str, style: str) -> str:
+@lru_cache(maxsize=65_536)
+def _text(text: str) -> str:
+    """The rest of a text cell: most names stand in very many cells."""
     safe = escape(cell_text(text))
     keep = ' xml:space="preserve"' if safe != safe.strip() or "\n" in safe else ""
-    return f'<c r="{reference}"{style} t="inlineStr"><is><t{keep}>{safe}</t></is></c>'
+    return f' t="inlineStr"><is><t{keep}>{safe}</t></is></c>'
 
 
-def _formula(reference: str, formula: Formula, style: str) -> str:
-    text = escape(formula.text)
-    if isinstance(formula.result, str):
-        return (
-            f'<c r="{reference}"{style} t="str"><f>{text}</f><v>{escape(cell_text(formula.result))}</v></c>'
-        )
-    result = formula.result
+def _formula(formula: Formula) -> str:
+    text, result = escape(formula.text), formula.result
+    if isinstance(result, str):
+        return f' t="str"><f>{text}</f><v>{escape(cell_text(result))}</v></c>'
     shown = canonical(result) if isinstance(result, Decimal) else f"{result:.15g}"
-    return f'<c r="{reference}"{style}><f>{text}</f><v>{shown}</v></c>'
+    return f"><f>{text}</f><v>{shown}</v></c>"

@@ -7,10 +7,7 @@ from engine.reasons.values import UnitValue, Values, values
 from engine.report.look import Style, number_format, places_of
 from engine.report.sheet import Row, Sheet, Value
 
-_HEADINGS = (
-    "Where", "Name", "One more costs", "and goes short by", "One less costs", "and goes short by",
-    "Price in the proof",
-)  # fmt: skip
+_HEADINGS = ("Where", "Name", "One more", "goes short by", "One less", "goes short by", "Price in the proof")
 _WIDTHS = (12, 30, 15, 15, 15, 15, 15)
 _HEADING_ROW = 5
 
