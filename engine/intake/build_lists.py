@@ -3,7 +3,7 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from decimal import Decimal
-from typing import Any
+from typing import Any, NamedTuple
 
 from engine.columns import Kind
 from engine.exact import canonical
@@ -44,8 +44,7 @@ class Built:
     unused: tuple[Unused, ...] = ()
 
 
-@dataclass(frozen=True, eq=False)
-class _Row:
+class _Row(NamedTuple):
     number: int
     name: str
     values: Mapping[str, Any]
@@ -55,6 +54,7 @@ class _Row:
 def build_depots(tables: Sequence[Table], manner: Manner) -> Built:
     """The depots of all lists of depots; one that stands twice is kept once and asked about."""
     kept: dict[str, Depot] = {}
+    spelled: dict[str, str] = {}
     spots: dict[tuple[str, str], Spot] = {}
     findings: list[Finding] = []
     unused: list[Unused] = []
@@ -70,8 +70,8 @@ def build_depots(tables: Sequence[Table], manner: Manner) -> Built:
                 unused.append(Unused("depots", _texts(table, row.number)))
                 continue
             depot = Depot(row.name, **{name: row.values[name] for name in row.values if name != "name"})
-            first = next((name for name in kept if folded(name) == folded(row.name)), None) if kept else None
-            if first is None:
+            first = spelled.setdefault(folded(row.name), row.name)
+            if first not in kept:
                 kept[depot.name] = depot
                 spots["depots", depot.name] = Spot(table.sheet, row.number, table.columns)
                 used += 1
@@ -155,17 +155,18 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
     read = 0
     sums = {name: Decimal(0) for name in table.columns if column_of(table.kind, name).kind is Kind.QUANTITY}
     sheet_rows = table.sheet.rows
+    faulty = {name: found for name, found in problems.items() if found}
     after_blank = False
     for offset in range(table.end - table.head - 1):
         number = table.head + 1 + offset
         cells = sheet_rows[number][table.left : table.right + 1]
-        filled = [cell for cell in cells if not is_blank(cell)]
+        filled = [cell for cell in cells if cell != "" and not is_blank(cell)]
         if not filled:
             after_blank = True
             continue
         read += 1
         name = values["name"][offset]
-        here = {field_name: found[offset] for field_name, found in problems.items() if offset in found}
+        here = {name: found[offset] for name, found in faulty.items() if offset in found}
         if name is None and "name" in here:
             remarks.append(Remark(number, "name", here["name"], True))
         elif name is None:

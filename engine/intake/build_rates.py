@@ -12,7 +12,7 @@ from engine.exact import BLANK, DecimalColumn
 from engine.figures import Hold, RateKey
 from engine.findings import Finding, Severity
 from engine.intake.build_lists import Unused
-from engine.intake.column_reader import read_decimals, read_values
+from engine.intake.column_reader import Problems, read_decimals, read_values
 from engine.intake.conversion import converted
 from engine.intake.fields import CLOSED_WORDS, NUMBER_KINDS, text_of
 from engine.intake.grids import Grid
@@ -174,7 +174,7 @@ def _grid(grid: Grid, start: int, names: tuple[Names, Names, Names], manner: Man
     findings, named = _gathered_cells(remarks, grid, width)
     there = np.flatnonzero(rate.values != BLANK)
     row, place = np.divmod(there, max(1, width))
-    empty = sum(1 for cell in grid.cells if type(cell) is str and (cell == "" or is_blank(cell)))
+    empty = _empty(grid.cells) if grid.has_text else 0
     counts = Counts(len(grid.cells) - empty, len(grid.cells) - empty - named, named)
     depot, customer = (side[row], top[place]) if grid.depots_down else (top[place], side[row])
     heading = heading_of(grid.title)
@@ -192,6 +192,10 @@ def _grid(grid: Grid, start: int, names: tuple[Names, Names, Names], manner: Man
         [*findings, *_grid_notes(grid)],
         counts,
     )
+
+
+def _empty(cells: Sequence[Any]) -> int:
+    return sum(type(cell) is str and (cell == "" or is_blank(cell)) for cell in cells)
 
 
 def _gathered_cells(remarks: list[Remark], grid: Grid, width: int) -> tuple[list[Finding], int]:
@@ -286,7 +290,7 @@ def _columns(
     for name in table.columns:
         column: Column = column_of("rates", name)
         if name in ("depot", "customer", "haulier"):
-            problems = [(at, spoilt(raw)) for at, raw in enumerate(cells[name]) if isinstance(raw, _SPOILT)]
+            problems = _spoilt(cells[name])
         elif column.kind in NUMBER_KINDS:
             words = _CLOSED if name == "rate" else None
             found = read_decimals(column, cells[name], manner.style(table, name), words)
@@ -300,7 +304,11 @@ def _columns(
     return numbers, values
 
 
-_SPOILT = (ErrorCell, FormulaCell)
+def _spoilt(cells: Sequence[Any]) -> Problems:
+    """What there is to say of the names in a column: that a cell holds an error instead."""
+    if not {ErrorCell, FormulaCell} & set(map(type, cells)):
+        return []
+    return [(at, spoilt(raw)) for at, raw in enumerate(cells) if isinstance(raw, ErrorCell | FormulaCell)]
 
 
 def _per_load(table: Table, values: Mapping[str, list[Any]], count: int) -> npt.NDArray[np.bool_]:

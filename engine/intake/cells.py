@@ -19,10 +19,18 @@ from engine.intake.refusal import (
     not_a_spreadsheet,
     protected,
     read_whole,
+    refused,
     too_large,
     unpacked,
 )
-from engine.intake.workbook_marks import Marks, has_entities, marks_of, percent_styles, sheet_parts, used_area
+from engine.intake.workbook_marks import (
+    Marks,
+    has_entities,
+    marks_of,
+    outline_of,
+    percent_styles,
+    sheet_parts,
+)
 
 Source = str | os.PathLike[str] | bytes | BinaryIO | tuple[str, bytes] | tuple[str, BinaryIO]
 """A path; bytes or an open file; or a name with bytes or an open file."""
@@ -99,7 +107,7 @@ def _opened(source: Source, limits: Limits) -> tuple[str, bytes]:
     if isinstance(source, (str, os.PathLike)):
         path = Path(source)
         if path.is_dir():
-            raise Unreadable("not a spreadsheet", "This is a folder.", "Name the file in it.", path.name)
+            raise refused("not a spreadsheet", "This is a folder.", "Name the file in it.", path.name)
         with path.open("rb") as opened:
             return path.name, read_whole(opened, path.name, limits)
     name, content = source if isinstance(source, tuple) else (_name_of(source), source)
@@ -115,7 +123,7 @@ def _name_of(source: object) -> str:
 def _zipped(data: bytes, name: str, limits: Limits) -> list[Sheet]:
     parts = unpacked(data, name, limits)
     if any(has_entities(part[:100_000]) for key, part in parts.items() if not key.endswith(".bin")):
-        raise Unreadable(
+        raise refused(
             "entities in the file",
             "The workbook declares document types or entities of its own, which no spreadsheet needs.",
             "Open it in a spreadsheet program, save it again and upload that.",
@@ -126,12 +134,11 @@ def _zipped(data: bytes, name: str, limits: Limits) -> list[Sheet]:
         percent = percent_styles(parts)
         for sheet, part in sheet_parts(parts).items():
             xml = parts.pop(part, b"")
-            area = used_area(xml, limits.cells)
-            if area[0] * area[1] > limits.cells:
-                raise too_large(
-                    name, f"The used area of sheet '{sheet}' is {area[0]} rows by {area[1]} columns."
-                )
-            marks[sheet] = marks_of(xml, percent, area)
+            outline = outline_of(xml)
+            if outline.rows * outline.columns > limits.cells:
+                size = f"{outline.rows} rows by {outline.columns} columns"
+                raise too_large(name, f"The used area of sheet '{sheet}' is {size}.")
+            marks[sheet] = marks_of(xml, percent, outline)
     elif not {"xl/workbook.bin", "content.xml"} & {key.casefold() for key in parts}:
         raise not_a_spreadsheet(name)
     del parts

@@ -116,8 +116,8 @@ def out_of_reach(week: Week, where: Where) -> Iterator[Finding]:
         return
     open_rows = _open(table) & _known(table.depot_names, table.depot, week.depots)
     open_rows &= _known(table.customer_names, table.customer, week.customers)
-    reached = {table.customer_names[code] for code in np.unique(table.customer[open_rows])}
-    used = {table.depot_names[code] for code in np.unique(table.depot[open_rows])}
+    reached = _names_in(table.customer_names, table.customer[open_rows])
+    used = _names_in(table.depot_names, table.depot[open_rows])
     unreached = [c.name for c in week.customers.values() if c.ordered and c.name not in reached]
     for name in unreached[:_MOST]:
         yield _finding(
@@ -147,17 +147,18 @@ def _beyond_reach(
         [float(week.depots[n].available) if n in week.depots else 0.0 for n in table.depot_names]
     )
     depots, customers = len(table.depot_names), len(table.customer_names)
-    lane = table.customer[open_rows].astype(np.int64) * depots + table.depot[open_rows]
-    if "at_most" in table.decimals:
-        column = table.decimals["at_most"]
-        cap = np.where(column.values == BLANK, np.inf, column.values / 10.0**column.places)[open_rows]
+    depot, customer = table.depot[open_rows], table.customer[open_rows]
+    most = available[depot]
+    lane = customer.astype(np.int64) * depots + depot
+    if "at_most" in table.decimals or not _all_differ(lane):
         lane, of_row = np.unique(lane, return_inverse=True)
-        caps = np.bincount(of_row, weights=cap, minlength=len(lane))
-        most = np.minimum(caps, available[lane % depots])
-    else:
-        lane = lane if _all_differ(lane) else np.unique(lane)
-        most = available[lane % depots]
-    brought = np.bincount(lane // depots, weights=most, minlength=customers)
+        cap = np.full(len(of_row), np.inf)
+        if "at_most" in table.decimals:
+            column = table.decimals["at_most"]
+            cap = np.where(column.values == BLANK, np.inf, column.values / 10.0**column.places)[open_rows]
+        most = np.minimum(np.bincount(of_row, weights=cap, minlength=len(lane)), available[lane % depots])
+        customer = lane // depots
+    brought = np.bincount(customer, weights=most, minlength=customers)
     told = 0
     for code, name in enumerate(table.customer_names):
         if name not in reached:
@@ -200,6 +201,10 @@ def _all_differ(key: Places) -> bool:
         seen[key] = True
         return int(seen.sum()) == len(key)
     return len(np.unique(key)) == len(key)
+
+
+def _names_in(names: Sequence[str], codes: npt.NDArray[np.int32]) -> set[str]:
+    return {names[code] for code in np.flatnonzero(np.bincount(codes, minlength=len(names))).tolist()}
 
 
 def _first_rows(codes: npt.NDArray[np.int32], wanted: list[int]) -> dict[int, int]:

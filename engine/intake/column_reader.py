@@ -112,15 +112,24 @@ def _as_integers(plain: npt.NDArray[np.float64]) -> tuple[npt.NDArray[np.int64],
     An integer below 1e15 over a power of ten up to 1e22 is divided with one correct rounding (IEEE 754), so
     where the quotient is the number itself, that decimal is the shortest one which prints it.
     """
+    known = ~np.isnan(plain)
+    left = np.flatnonzero(known)
+    usual = _usual_places(plain[left[:500]])
+    if len(left) == len(plain):
+        scaled = np.rint(plain * 10.0**usual)
+        if (scaled / 10.0**usual == plain).all() and np.abs(scaled).max(initial=0) < _SAFE:
+            return scaled.astype(np.int64), usual
     values = np.full(len(plain), BLANK, dtype=np.int64)
-    left = np.flatnonzero(~np.isnan(plain))
     found: list[tuple[npt.NDArray[np.int64], npt.NDArray[np.int64], int]] = []
-    for places in range(_PLACES + 1):
+    for places in sorted(range(_PLACES + 1), key=lambda places: (places != usual, places)):
         if not len(left):
             break
         numbers = plain[left]
         scaled = np.rint(numbers * 10.0**places)
         sure = (np.abs(scaled) < _SAFE) & (scaled / 10.0**places == numbers)
+        if sure.all():
+            found.append((left, scaled.astype(np.int64), places))
+            break
         found.append((left[sure], scaled[sure].astype(np.int64), places))
         left = left[~sure]
     places = max((p for where, _, p in found if len(where)), default=0)
@@ -129,6 +138,14 @@ def _as_integers(plain: npt.NDArray[np.float64]) -> tuple[npt.NDArray[np.int64],
         fits = np.abs(integers) <= LARGEST // factor
         values[where[fits]] = integers[fits] * np.int64(factor)
     return values, places
+
+
+def _usual_places(numbers: npt.NDArray[np.float64]) -> int:
+    """The fewest places that keep the first numbers of a column."""
+    for places in range(_PLACES + 1):
+        if (np.rint(numbers * 10.0**places) / 10.0**places == numbers).all():
+            return places
+    return _PLACES
 
 
 def _read_one_by_one(

@@ -3,7 +3,7 @@
 import csv
 import io
 
-from engine.intake.refusal import Limits, Unreadable, not_a_spreadsheet, too_large
+from engine.intake.refusal import Limits, not_a_spreadsheet, refused, too_large
 
 SEPARATORS = (";", "\t", ",", "|")
 
@@ -33,7 +33,7 @@ def rows_of_text(data: bytes, name: str, limits: Limits) -> list[list[str]]:
                     name, f"The file holds more than {limits.cells} cells, or over 20000 columns."
                 )
     except csv.Error as error:
-        raise Unreadable(
+        raise refused(
             "not a spreadsheet",
             f"The file cannot be read as a table: {error}, near line {len(rows) + 1}.",
             "Save the sheet as .xlsx or .csv again and upload that.",

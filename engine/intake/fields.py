@@ -126,6 +126,8 @@ def text_of(raw: Any) -> str:
     if isinstance(raw, date):
         return raw.isoformat()
     text = raw if isinstance(raw, str) else str(raw)
+    if text.isprintable() and "  " not in text and text[:1] != " " and text[-1:] != " ":
+        return text
     if not text.isprintable():
         text = text.translate(_INVISIBLE)
         text = "".join(c if c.isprintable() else " " for c in text)

@@ -49,6 +49,11 @@ class Grid:
             return list(chain.from_iterable(row[first : last + 1] for row in rows))
         return [row[column] for row in rows for column in self.columns]
 
+    @cached_property
+    def has_text(self) -> bool:
+        """Whether any cell of the grid holds text, an empty cell included."""
+        return any(issubclass(kind, str) for kind in set(map(type, self.cells)))
+
     def names_across(self) -> list[str]:
         row = self.sheet.rows[self.head]
         return [text_of(row[column]) for column in self.columns]

@@ -238,7 +238,7 @@ _DEGREES = frozenset({Kind.LATITUDE, Kind.LONGITUDE})
 
 def _number_cells(part: Part) -> dict[str, Sequence[Any]]:
     if isinstance(part, Grid):
-        return {"rate": part.cells}
+        return {"rate": part.cells} if part.has_text else {}
     return {
         name: part.cells(name) for name in part.columns if column_of(part.kind, name).kind in NUMBER_KINDS
     }

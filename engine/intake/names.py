@@ -3,8 +3,10 @@
 import unicodedata
 from collections.abc import Iterable
 from difflib import SequenceMatcher
+from functools import lru_cache
 
 
+@lru_cache(maxsize=1 << 17)
 def folded(name: str) -> str:
     """What two spellings of one name have in common: letters regardless of case, Unicode form and spaces."""
     if not name.isascii():
@@ -51,9 +53,12 @@ def nearly_alike(names: Iterable[str]) -> list[tuple[str, str]]:
     return pairs
 
 
+_NOT_LETTERS = {code: None for code in range(128) if not chr(code).isalnum()}
+
+
 def _bare(name: str) -> str:
     if name.isascii():
-        return "".join(c for c in name.casefold() if c.isalnum())
+        return name.casefold().translate(_NOT_LETTERS)
     decomposed = unicodedata.normalize("NFKD", name.casefold())
     return "".join(c for c in decomposed if c.isalnum())
 

@@ -84,7 +84,7 @@ def plain_text(text: str) -> str:
 
 def is_blank(raw: Any) -> bool:
     """Whether a cell holds nothing: empty, or only spaces."""
-    return raw is None or (isinstance(raw, str) and not plain_text(raw))
+    return raw is None or raw == "" or (isinstance(raw, str) and not raw[0].isalnum() and not plain_text(raw))
 
 
 def read_number(

@@ -16,7 +16,7 @@ from engine.intake.check import check_week
 from engine.intake.names import folded
 from engine.intake.numbers import NumberStyle
 from engine.intake.places import Places
-from engine.intake.refusal import Limits, Unreadable
+from engine.intake.refusal import Limits, Unreadable, refused
 from engine.intake.remarks import Counts
 from engine.week import Week
 
@@ -82,9 +82,7 @@ def read_week(
         figures = build_figures(sheets, answers or Answers(), known, decimal_mark)
         found = check_week(figures.week, figures.places.where)
     except TooLarge as error:
-        raise Unreadable(
-            "too large", str(error), "Mend the figure and upload again.", sheets[0].file
-        ) from error
+        raise refused("too large", str(error), "Mend the figure and upload again.", sheets[0].file) from error
     findings = tuple(by_gravity([*figures.findings, *_not_said_yet(found, figures)]))
     return Reading(
         figures.week,

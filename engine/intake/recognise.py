@@ -106,7 +106,10 @@ def candidate_rows(sheet: Sheet) -> list[int]:
 
 def is_total(text: str) -> bool:
     """Whether a name in a list is that of a row of totals."""
-    return _TOTAL.fullmatch(folded(text).strip(" :.")) is not None
+    name = folded(text)
+    if "total" not in name and name[:1] not in "saσ∑(":
+        return False
+    return _TOTAL.fullmatch(name.strip(" :.")) is not None
 
 
 def _filled(cell: Any) -> bool:

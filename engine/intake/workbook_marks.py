@@ -8,6 +8,12 @@ import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from posixpath import join, normpath
+from typing import NamedTuple
+
+import numpy as np
+import numpy.typing as npt
+
+_CHUNK, _OVERLAP = 1 << 20, 32
 
 _ROW_TAG = re.compile(rb"<(?:\w+:)?row\b([^>]*)>")
 _ROW_NUMBER = re.compile(rb'\br="(\d+)"')
@@ -21,8 +27,7 @@ _NO_RESULT = re.compile(
     rb"\s*(?:<(?:\w+:)?v\s*/>|<(?:\w+:)?v>\s*</(?:\w+:)?v>)?\s*</(?:\w+:)?c>"
 )
 _FORMATTED = re.compile(rb'<(?:\w+:)?c\b([^>]*\bs="(\d+)"[^>]*)>')
-_WIDE = re.compile(rb'\br="[A-Z]{3}\d')
-_MEDIUM = re.compile(rb'\br="[A-Z]{2}\d')
+_LOOSE = re.compile(rb"""\br\s*=\s*["']([A-Z]{1,3})(\d{1,7})["']""")
 _ENTITY = re.compile(rb"<!(?:DOCTYPE|ENTITY)", re.IGNORECASE)
 _PERCENT_FORMATS = frozenset({9, 10})  # the built-in formats 0% and 0.00% of ECMA-376 part 1, 18.8.30
 
@@ -35,8 +40,15 @@ class Marks:
     no_result: Mapping[tuple[int, int], str]
     percent: frozenset[tuple[int, int]]
     hidden_rows: frozenset[int]
-    last_row: int
-    last_column: int
+
+
+class Outline(NamedTuple):
+    """How many rows and columns reach from A1 to the farthest cell, and what a sheet may hold."""
+
+    rows: int
+    columns: int
+    has_errors: bool
+    has_formulas: bool
 
 
 def has_entities(part: bytes) -> bool:
@@ -77,24 +89,85 @@ def percent_styles(parts: Mapping[str, bytes]) -> frozenset[int]:
     return frozenset(style for style, number in enumerate(numbers) if number in formats)
 
 
-def used_area(xml: bytes, most: int) -> tuple[int, int]:
-    """The last row and column, from 1, that any cell stands in; exact where their product may pass `most`."""
-    last_row = 0
-    for match in _ROW_TAG.finditer(xml):
-        number = _ROW_NUMBER.search(match[1])
-        last_row = max(last_row, int(number[1])) if number else last_row + 1
-    last_column = 16384 if _WIDE.search(xml) else 702 if _MEDIUM.search(xml) else 26
-    if last_row * last_column > most:
-        exact = [(_column(letters), int(row)) for letters, row in _REFERENCE.findall(xml)]
-        if exact:
-            return max(row for _, row in exact), max(column for column, _ in exact) + 1
-    return last_row, last_column
+def outline_of(xml: bytes) -> Outline:
+    """How far a sheet's cells reach, and whether it has errors or formulas, from one pass over its bytes.
+
+    Every reference counts, in whatever order they stand: what a sheet states as its dimension may be wrong,
+    and a single cell far away would make a reader allocate the whole area.
+    """
+    rows = columns = found = cells = 0
+    errors = formulas = False
+    for start in range(0, len(xml), _CHUNK):
+        chunk = np.frombuffer(xml, np.uint8, min(_CHUNK + _OVERLAP, len(xml) - start), start)
+        length = min(_CHUNK, len(xml) - start)
+        last_row, last_column, count = _farthest(chunk, length)
+        rows, columns, found = max(rows, last_row), max(columns, last_column), found + count
+        cells += _cells(chunk, length)
+        errors = errors or _quoted(chunk, "e")
+        formulas = formulas or _opened(chunk, "f")
+    if found < cells:  # cells without a reference, or with spaces in it
+        loose = [(int(row), _column(letters) + 1) for letters, row in _LOOSE.findall(xml)]
+        rows = max([rows, xml.count(b"<row"), *(row for row, _ in loose)])
+        columns = max([columns, min(16384, cells - len(loose)), *(column for _, column in loose)])
+    return Outline(rows, columns, errors, formulas)
 
 
-def marks_of(xml: bytes, percent: frozenset[int], area: tuple[int, int]) -> Marks:
+def _quoted(chunk: npt.NDArray[np.uint8], letter: str) -> bool:
+    """Whether a letter stands alone between quotes."""
+    at = np.flatnonzero(chunk[1:-1] == ord(letter)) + 1
+    quotes = (ord('"'), ord("'"))
+    return bool((np.isin(chunk[at - 1], quotes) & np.isin(chunk[at + 1], quotes)).any())
+
+
+def _opened(chunk: npt.NDArray[np.uint8], letter: str) -> bool:
+    """Whether a tag may begin whose name, with or without a prefix, begins with this letter."""
+    at = np.flatnonzero(chunk[1:] == ord(letter)) + 1
+    return bool(np.isin(chunk[at - 1], (ord("<"), ord(":"))).any())
+
+
+def _cells(chunk: npt.NDArray[np.uint8], length: int) -> int:
+    """How many cell tags begin in some bytes, whatever their namespace prefix."""
+    at = np.flatnonzero(chunk[1 : max(1, len(chunk) - 1)] == ord("c")) + 1
+    at = at[at <= length]
+    before, behind = chunk[at - 1], chunk[at + 1]
+    opens = (before == ord("<")) | (before == ord(":"))
+    return int((opens & ((behind <= ord(" ")) | (behind == ord(">")) | (behind == ord("/")))).sum())
+
+
+def _farthest(chunk: npt.NDArray[np.uint8], length: int) -> tuple[int, int, int]:
+    """The last row and column that references in some bytes name, and how many cells have one."""
+    if len(chunk) < 6:
+        return 0, 0, 0
+    at = np.flatnonzero(chunk[: len(chunk) - 3] == ord("r"))
+    at = at[at < length]
+    at = at[(chunk[at + 1] == ord("=")) & ((chunk[at + 2] == ord('"')) | (chunk[at + 2] == ord("'")))] + 3
+    row = np.zeros(len(at), dtype=np.int32)
+    column = np.zeros(len(at), dtype=np.int32)
+    padded = np.concatenate([chunk, np.zeros(16, dtype=np.uint8)])
+    byte = padded[at]
+    for _ in range(3):
+        letter = (byte >= ord("A")) & (byte <= ord("Z"))
+        if not letter.any():
+            break
+        column = np.where(letter, column * 26 + byte - 64, column)
+        at = at + letter
+        byte = padded[at]
+    for step in range(1, 8):
+        digit = (byte >= ord("0")) & (byte <= ord("9"))
+        if not digit.any():
+            break
+        row = np.where(digit, row * 10 + byte - 48, row)
+        byte = np.where(digit, padded[at + step], 0)
+    named = (column > 0) & (row > 0)
+    plain = row[column == 0]
+    far = max(int(row[named].max(initial=0)), int(plain[plain <= 1 << 20].max(initial=0)))
+    return far, int(column[named].max(initial=0)), int(named.sum())
+
+
+def marks_of(xml: bytes, percent: frozenset[int], outline: Outline) -> Marks:
     """What one sheet's XML says beside its values."""
-    errors = dict(_placed(_ERROR, xml)) if b't="e"' in xml else {}
-    no_result = dict(_placed(_NO_RESULT, xml)) if b"<f" in xml or b":f" in xml else {}
+    errors = dict(_placed(_ERROR, xml)) if outline.has_errors else {}
+    no_result = dict(_placed(_NO_RESULT, xml)) if outline.has_formulas else {}
     shown = set()
     if percent and any(b's="%d"' % style in xml for style in percent):
         for match in _FORMATTED.finditer(xml):
@@ -107,7 +180,7 @@ def marks_of(xml: bytes, percent: frozenset[int], area: tuple[int, int]) -> Mark
             number = _ROW_NUMBER.search(match[1])
             if number and re.search(rb'\bhidden="(?:1|true)"', match[1]):
                 hidden.add(int(number[1]) - 1)
-    return Marks(errors, no_result, frozenset(shown), frozenset(hidden), *area)
+    return Marks(errors, no_result, frozenset(shown), frozenset(hidden))
 
 
 def _placed(pattern: re.Pattern[bytes], xml: bytes) -> Iterator[tuple[tuple[int, int], str]]:
