@@ -61,6 +61,7 @@ def build_depots(tables: Sequence[Table], manner: Manner) -> Built:
     counts = Counts()
     for table in tables:
         rows, remarks, read = _rows(table, manner, "available")
+        unused.extend(_nameless_rows(table, remarks))
         used = 0
         for row in rows:
             fault = row.problems.get("available")
@@ -101,6 +102,7 @@ def build_customers(tables: Sequence[Table], manner: Manner) -> Built:
     counts = Counts()
     for table in tables:
         rows, remarks, read = _rows(table, manner, "ordered")
+        unused.extend(_nameless_rows(table, remarks))
         used = 0
         for row in rows:
             if "ordered" in row.problems:
@@ -248,6 +250,7 @@ def _missing(name: str, heading: str) -> Finding:
         "figure missing",
         f"{name} has no figure in {heading}; blank is not zero.",
         "Type the figure, 0 for nothing.",
+        read=name,
     )
 
 
@@ -319,6 +322,12 @@ def _texts(table: Table, number: int) -> dict[str, str]:
     return {
         name: text_of(cells[column]) for name, column in table.columns.items() if not is_blank(cells[column])
     }
+
+
+def _nameless_rows(table: Table, remarks: Sequence[Remark]) -> list[Unused]:
+    rules = ("no name", "error cell", "formula without value", "long name")
+    rows = [r.row for r in remarks if r.field == "name" and r.sets_aside and r.finding.rule in rules]
+    return [Unused(table.kind, _texts(table, row)) for row in rows]
 
 
 def _unread(table: Table, row: _Row) -> list[Unused]:

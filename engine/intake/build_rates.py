@@ -191,6 +191,7 @@ def _grid(grid: Grid, start: int, names: tuple[Names, Names, Names], manner: Man
         RateRows(start, grid.sheet, sheet_rows[row], {}, sheet_columns[place]),
         [*findings, *_grid_notes(grid)],
         counts,
+        unused=_unused_cells(grid, [remark.row for remark in remarks if remark.sets_aside][:_MOST_UNUSED]),
     )
 
 
@@ -217,6 +218,22 @@ def _gathered_cells(remarks: list[Remark], grid: Grid, width: int) -> tuple[list
 def _says_per_load(title: str) -> bool:
     words = folded(title).replace("/", " per ")
     return any(f"per {word}" in words for word in ("load", "truck", "trip", "vehicle", "lorry"))
+
+
+def _unused_cells(grid: Grid, positions: Sequence[int]) -> list[Unused]:
+    down, across = grid.names_down(), grid.names_across()
+    names = ("depot", "customer") if grid.depots_down else ("customer", "depot")
+    return [
+        Unused(
+            "rates",
+            {
+                names[0]: down[position // len(across)],
+                names[1]: across[position % len(across)],
+                "rate": text_of(grid.cells[position]),
+            },
+        )
+        for position in positions
+    ]
 
 
 def _grid_notes(grid: Grid) -> list[Finding]:

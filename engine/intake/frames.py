@@ -121,10 +121,12 @@ def changes_between(
     same = _unchanged(before, after, columns)
     changes: list[Change] = [Remove(_WHAT[table], keys[label]) for label in keys if label not in set(labels)]
     problems_out: list[CellProblem] = []
+    needed = [column.field for column in columns if column.needed]
     taken = _names_taken(week, table, keys, labels)
     for position, label in enumerate(labels):
         faults = found.get(label, {})
-        if label in keys and label in same and not faults:
+        whole = not faults and all(values[name][position] is not None for name in needed)
+        if label in keys and label in same and whole:
             continue
         row = {name: _spelled(week, name, column[position]) for name, column in values.items()}
         if label not in keys and not faults and all(not v or v == "unit" for v in row.values()):
@@ -253,7 +255,7 @@ def _row_changes(
     for column in GRID_COLUMNS[table]:
         blank = row[column.field] is None and column.field not in said
         if column.needed and blank and not (table == "customers" and column.field == "ordered"):
-            said[column.field] = _needed(column)
+            said[column.field] = _needed(column, row)
     unread = {name for name, finding in said.items() if finding.severity is Severity.STOPS}
     if table != "rates" and "name" not in unread:
         name = folded(row["name"])
@@ -335,12 +337,14 @@ def _rule_changes(
     return changes, problems
 
 
-def _needed(column: Column) -> Finding:
+def _needed(column: Column, row: Mapping[str, Any]) -> Finding:
+    some = next((value for value in row.values() if value), "")
     return Finding(
         Severity.STOPS,
         "figure missing",
         f"{column.heading} is blank, and is needed.",
         f"Type {column.heading}.",
+        read=show_field(column, some),
     )
 
 

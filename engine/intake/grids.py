@@ -25,7 +25,7 @@ class Grid:
     head: row of the names across; side: column of the names down; columns: the columns with a name across;
     rows: the rows with a name down; depots_down: whether the names down are depots; title: texts above and
     in the corner, which may say what the rates are in; totals: how many rows and columns of totals were
-    left out. Rows and columns count from 0.
+    left out; last_row, last_column: where it ends, totals included. Rows and columns count from 0.
     """
 
     sheet: Sheet
@@ -37,6 +37,8 @@ class Grid:
     title: str
     totals: int = 0
     sure: bool = True
+    last_row: int = 0
+    last_column: int = 0
 
     @cached_property
     def cells(self) -> list[Any]:
@@ -145,13 +147,14 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
     end = _end(sheet, head, side)
     columns = []
     totals = 0
-    last = side
+    last = far = side
     for column in range(side + 1, len(row)):
         if is_blank(row[column]):
             continue
         text = text_of(row[column])
         if is_total(text):
             totals += 1
+            far = max(far, column)
             continue
         if column > last + 1 and not _has_rates(sheet, head, end, column):
             continue
@@ -159,6 +162,7 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
             continue
         columns.append(column)
         last = column
+        far = max(far, column)
     rows = []
     for number in range(head + 1, end):
         cell = sheet.rows[number][side]
@@ -173,7 +177,9 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
     ]
     titles += [text_of(row[column]) for column in range(side + 1) if isinstance(row[column], str)]
     title = " ".join([sheet.name, *(text for text in titles if text)])
-    return Grid(sheet, head, side, tuple(columns), tuple(rows), depots_down, title, totals, sure)
+    return Grid(
+        sheet, head, side, tuple(columns), tuple(rows), depots_down, title, totals, sure, end - 1, far
+    )
 
 
 def _end(sheet: Sheet, head: int, side: int) -> int:

@@ -153,7 +153,7 @@ def _checked(
     if heading.currency and base.currency.upper() not in currencies_of(heading.currency):
         findings.append(
             Finding(
-                Severity.STOPS, "other currency",
+                Severity.STOPS, "column in other currency",
                 f"The heading '{text}' is in {heading.currency.upper()}, the week is in {base.currency}.",
                 f"Give the amounts in {base.currency}, or set the week's currency on Rules.",
                 *place, read=text,
@@ -182,7 +182,7 @@ def _checked(
     if by is None:
         findings.append(
             Finding(
-                Severity.STOPS, "other unit",
+                Severity.STOPS, "column in other unit",
                 f"The heading '{text}' is in {unit}, the week is in {base.unit}; that cannot be converted.",
                 f"Give the column in {base.unit}.", *place, read=text,
             )

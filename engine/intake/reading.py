@@ -33,6 +33,8 @@ class Reading:
     unused: the texts of rows that are not in the week, and of cells that nobody could read
     places: where each figure stands
     tables: which tables were on the sheets
+    lasting: the findings that neither the figures in the grids nor `check_week` will bring up again: they
+        stay until they are answered, accepted, or the sheets are uploaded anew
     """
 
     week: Week
@@ -43,6 +45,7 @@ class Reading:
     unused: tuple[Unused, ...] = ()
     places: Places = field(default_factory=Places)
     tables: frozenset[str] = frozenset()
+    lasting: tuple[Finding, ...] = ()
 
     @property
     def rows_read(self) -> int:
@@ -93,7 +96,42 @@ def read_week(
         figures.unused,
         figures.places,
         figures.tables,
+        tuple(by_gravity(f for f in figures.findings if f.options or f.rule not in _IN_GRIDS)),
     )
+
+
+_IN_GRIDS = frozenset(
+    {
+        "not a number",
+        "date for number",
+        "shortened number",
+        "too many digits",
+        "decimal mark",
+        "money for number",
+        "percent for number",
+        "error cell",
+        "formula without value",
+        "negative",
+        "not whole",
+        "out of range",
+        "percent",
+        "small percent",
+        "read as blank",
+        "not yes or no",
+        "not a priority",
+        "not a basis",
+        "not a date",
+        "long name",
+        "figure missing",
+        "same depot twice",
+        "no name",
+        "rule",
+        "other unit",
+        "other currency",
+        "unclear unit",
+    }
+)
+"""Rules on single cells whose text is in the draft of a grid, where the same reader says it again."""
 
 
 def _not_said_yet(found: Iterable[Finding], figures: Figures) -> list[Finding]:

@@ -1,0 +1,177 @@
+"""What there is to say of sheets as such: what was left out, what is hidden, which headings nobody knows."""
+
+from collections.abc import Iterable, Iterator, Sequence
+from typing import Any
+
+from engine.findings import Finding, Severity
+from engine.intake.cells import Sheet, address
+from engine.intake.fields import text_of
+from engine.intake.grids import Grid
+from engine.intake.headings import COLUMNS_OF, TITLES
+from engine.intake.numbers import is_blank
+from engine.intake.recognise import Found, Partial, Table
+from engine.intake.remarks import Counts
+
+WHICH_COLUMN = "which column"
+LEAVE_OUT = "none of these"
+
+Area = tuple[int, int, int, int]
+"""First row, row after the last, first column, last column."""
+
+
+def about_sheets(found: Found, grids: Sequence[Grid]) -> tuple[list[Finding], Counts]:
+    """Findings on sheets and on cells that belong to no table, with the rows that they name."""
+    findings = [
+        _note(sheet, "plan left out", f"Sheet '{sheet.name}' holds a plan and was not read.")
+        for sheet in found.plans
+    ]
+    counts = Counts()
+    in_grids = {id(grid.sheet) for grid in grids}
+    read_kinds = {table.kind for table in found.tables} | ({"rates"} if grids else set())
+    partly: set[int] = set()
+    for partial in found.partials:
+        sheet = partial.sheet
+        if id(sheet) in in_grids or partial.kind in read_kinds or id(sheet) in partly:
+            continue
+        partly.add(id(sheet))
+        rows = sum(not _blank_row(row) for row in sheet.rows[partial.head + 1 :])
+        findings.append(_missing_heading(partial, rows))
+        counts = counts.plus(Counts(rows, 0, rows))
+    for sheet in found.others:
+        rows = 0 if id(sheet) in in_grids | partly else sum(not _blank_row(row) for row in sheet.rows)
+        if rows:
+            findings.append(_not_understood(sheet, rows))
+            counts = counts.plus(Counts(rows, 0, rows))
+    areas: dict[int, tuple[Sheet, list[Area]]] = {}
+    for table in found.tables:
+        area = table.head, table.end, table.left, table.right
+        areas.setdefault(id(table.sheet), (table.sheet, []))[1].append(area)
+    for grid in grids:
+        last = max((*grid.columns, grid.last_column))
+        area = grid.head, max((*grid.rows, grid.last_row)) + 1, grid.side, last
+        areas.setdefault(id(grid.sheet), (grid.sheet, []))[1].append(area)
+    for sheet, here in areas.values():
+        findings.extend(_hidden(sheet))
+        outside, rows = _outside(sheet, here)
+        findings.extend(outside)
+        counts = counts.plus(Counts(rows, 0, rows))
+    return findings, counts
+
+
+def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
+    """Columns that nobody knows: not read, and asked about where they hold anything."""
+    for table in tables:
+        for column in range(table.left, table.right + 1):
+            if column in table.columns.values():
+                continue
+            rows = table.sheet.rows[table.head + 1 : table.end]
+            if all(is_blank(row[column]) for row in rows):
+                continue
+            text = table.headings.get(column, "")
+            free = tuple(c.heading for c in COLUMNS_OF[table.kind] if c.field not in table.columns)
+            what = f"The column '{text}'" if text else "A column without a heading"
+            yield Finding(
+                Severity.NOTE,
+                WHICH_COLUMN,
+                f"{what} on {TITLES[table.kind]} is none that is known; it was not read.",
+                "Say which column it is, or leave it." if text else "Give it a heading if it holds figures.",
+                table.sheet.file,
+                table.sheet.name,
+                address(table.head, column),
+                text,
+                subject=f"{table.kind}: {text}" if text else "",
+                options=(*free, LEAVE_OUT) if text else (),
+            )
+
+
+def _hidden(sheet: Sheet) -> Iterator[Finding]:
+    if sheet.hidden:
+        yield _note(sheet, "hidden sheet", f"Sheet '{sheet.name}' is hidden; it was read.")
+    rows = sorted(
+        row for row in sheet.hidden_rows if row < len(sheet.rows) and not _blank_row(sheet.rows[row])
+    )
+    if rows:
+        which = ", ".join(str(row + 1) for row in rows[:5]) + (" …" if len(rows) > 5 else "")
+        message = f"Hidden rows of sheet '{sheet.name}' were read: {which}."
+        yield _note(sheet, "hidden rows", message, address(rows[0], 0))
+
+
+def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:
+    """Cells beside and below the tables of a sheet, and numbers above them; titles are only titles."""
+    top = min(area[0] for area in areas)
+    places: list[tuple[int, int]] = []
+    numbers = rows = 0
+    for number, row in enumerate(sheet.rows):
+        here = [area for area in areas if area[0] <= number < area[1]]
+        if len(here) == 1 and here[0][2] == 0 and here[0][3] >= len(row) - 1:
+            continue
+        cells = [
+            (column, cell)
+            for column, cell in enumerate(row)
+            if cell != "" and not is_blank(cell) and not any(area[2] <= column <= area[3] for area in here)
+        ]
+        found = sum(isinstance(cell, (int, float)) for _, cell in cells)
+        if not cells or (number < top and not found):
+            continue
+        numbers += found
+        places.extend((number, column) for column, _ in cells[:1])
+        rows += not here
+    if not places:
+        return [], 0
+    first, column = places[0]
+    text = text_of(sheet.rows[first][column])[:60]
+    return [
+        Finding(
+            Severity.CHECK if numbers else Severity.NOTE,
+            "cells left out",
+            f"Cells of {len(places)} rows on sheet '{sheet.name}' belong to no table and were not read, "
+            f"first '{text}'.",
+            "Give them a heading beside the others if they are figures." if numbers else "",
+            sheet.file,
+            sheet.name,
+            address(first, column),
+            text,
+            rows,
+        )
+    ], rows
+
+
+def _missing_heading(partial: Partial, rows: int) -> Finding:
+    missing = " and ".join(partial.missing)
+    unknown = [text for column, text in partial.headings.items() if column not in partial.known]
+    guess = f" Is it '{unknown[0]}'?" if len(unknown) == 1 else ""
+    return Finding(
+        Severity.STOPS,
+        f"missing {partial.kind}",
+        f"Sheet '{partial.sheet.name}' looks like {TITLES[partial.kind]}, but the heading {missing} "
+        f"is missing.{guess}",
+        f"Name the column {missing}.",
+        partial.sheet.file,
+        partial.sheet.name,
+        address(partial.head, min(partial.headings)),
+        ", ".join(partial.headings.values())[:100],
+        rows,
+        f"{partial.kind}: {unknown[0]}" if unknown else "",
+        tuple(partial.missing) if unknown else (),
+    )
+
+
+def _not_understood(sheet: Sheet, rows: int) -> Finding:
+    numbers = any(isinstance(cell, int | float) for row in sheet.rows for cell in row)
+    return Finding(
+        Severity.CHECK if numbers else Severity.NOTE,
+        "sheet left out",
+        f"On sheet '{sheet.name}' no table was recognised; it was not read ({rows} rows).",
+        "Give it the headings of Depots, Customers, Rates or Rules if it holds figures.",
+        sheet.file,
+        sheet.name,
+        rows=rows,
+    )
+
+
+def _note(sheet: Sheet, rule: str, message: str, cell: str = "") -> Finding:
+    return Finding(Severity.NOTE, rule, message, "", sheet.file, sheet.name, cell)
+
+
+def _blank_row(row: Sequence[Any]) -> bool:
+    return all(is_blank(cell) for cell in row)
