@@ -13,6 +13,7 @@ from typing import Any, TypeVar, overload
 
 import numba
 import platformdirs
+from numba.extending import register_jitable
 
 Function = TypeVar("Function", bound=Callable[..., object])
 
@@ -31,6 +32,16 @@ def kernel(given: Any, /) -> Any:
     if inspect.isfunction(given):
         return _compiled(given, None)
     return lambda function: _compiled(function, given)
+
+
+def part(function: Function) -> Function:
+    """Lets kernels contain `function`, which has no machine code of its own.
+
+    Calling a compiled function with tuples of arrays counts references up and down for each array, which
+    can take longer than what the function does.
+    """
+    inlined: Function = register_jitable(inline="always")(function)
+    return inlined
 
 
 def _compiled(function: Any, signature: Any) -> Any:

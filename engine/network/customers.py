@@ -1,4 +1,4 @@
-"""One customer at given depot prices: its cheapest rows, filled, and how far they are from changing.
+"""The customers at given depot prices: their cheapest rows, filled, and how far these are from changing.
 
 Lower limits are taken out beforehand, so that a row carries between 0 and its room.
 """
@@ -17,20 +17,27 @@ from engine.network.problem import UNLIMITED
 FAR = 2**61
 """Stands for no way at all; every real price or path stays within plus or minus 2**60."""
 
-UNSERVED = -1
-"""Instead of a gap: the customer's rows cannot carry what it needs."""
+LISTED, ASCENDING, COMPLETE, LIMITED = 0, 1, 2, 4
+"""Kinds of customers: rows in any order; in the order of depots, each at most once; one for each depot.
+
+To which LIMITED is added where the room of some row is less than the customer's demand.
+"""
+
+
+SEVERAL = -1
+"""In `State.home`: more than one row may carry something, or none."""
 
 
 class Rows(NamedTuple):
     """A problem without lower limits, as the depot exchange reads it.
 
-    supply:  (depots,)
-    demand:  (customers,)
-    start:   (customers + 1,) the rows of customer j
-    depot:   (rows,)
-    cost:    (rows,)
-    room:    (rows,) most that each row carries, or empty if nothing is limited
-    regular: (customers,) 1 where the customer has exactly one row per depot, in the order of the depots
+    supply: (depots,)
+    demand: (customers,)
+    start:  (customers + 1,) the rows of customer j
+    depot:  (rows,)
+    cost:   (rows,)
+    room:   (rows,) most that each row carries; empty if nothing is limited
+    kind:   (customers,) how the rows of the customer stand, see LISTED
     """
 
     supply: Integers
@@ -39,7 +46,7 @@ class Rows(NamedTuple):
     depot: Integers
     cost: Integers
     room: Integers
-    regular: NDArray[np.uint8]
+    kind: NDArray[np.uint8]
 
 
 class State(NamedTuple):
@@ -48,6 +55,7 @@ class State(NamedTuple):
     flow:     (rows,) at every customer the cheapest at `price`, never above `room`
     price:    (depots,)
     excess:   (depots,) what the customers take from each depot, less its supply
+    home:     (customers,) the only row that carries something, or SEVERAL
     handover: (depots, depots) least cost of handing one unit over from depot i to depot k at one customer
     via:      (depots, depots) the row of depot i that gives the unit up
     """
@@ -55,51 +63,112 @@ class State(NamedTuple):
     flow: Integers
     price: Integers
     excess: Integers
+    home: Integers
     handover: Integers
     via: Integers
 
 
 @kernel
-def mark_regular(figures_start: Integers, depot: Integers, depots: int, regular: NDArray[np.uint8]) -> None:
-    """Fills `Rows.regular`."""
-    for j in range(len(regular)):
-        first = figures_start[j]
-        same = figures_start[j + 1] - first == depots
-        if same:
-            for k in range(depots):
-                same &= depot[first + k] == k
-        regular[j] = same
+def classify(rows: Rows) -> None:
+    """Fills `Rows.kind`."""
+    start, depot, room = rows.start, rows.depot, rows.room
+    depots = len(rows.supply)
+    for j in range(len(rows.demand)):
+        first, last = start[j], start[j + 1]
+        ascending = True
+        for row in range(first + 1, last):
+            ascending &= depot[row - 1] < depot[row]
+        kind = LISTED
+        if ascending:
+            kind = COMPLETE if last - first == depots else ASCENDING
+        if len(room):
+            limited = False
+            for row in range(first, last):
+                limited |= room[row] < rows.demand[j]
+            if limited:
+                kind |= LIMITED
+        rows.kind[j] = kind
 
 
 @kernel
-def fill(rows: Rows, state: State, j: int) -> int:
-    """Gives customer j its cheapest rows; what already stands on rows as cheap stays there.
+def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers) -> int:
+    """Gives the `chosen` customers their cheapest rows, adds that to `excess` and notes their gaps.
 
-    Returns the gap: the least that exchanging two rows would cost per unit, FAR if nothing can be
-    exchanged, UNSERVED if the rows cannot carry the demand.
+    known: every so many-th customer has flow already; where it suits the prices it stays
+    gap:   receives what exchanging two rows of the customer would cost per unit at least, FAR for never
+    Returns the customer whose rows cannot carry what it needs, or -1.
     """
-    if len(rows.room):
-        return fill_limited(rows, state, j)
-    first, last, needed = rows.start[j], rows.start[j + 1], rows.demand[j]
-    if needed == 0:
-        state.flow[first:last] = 0
-        return FAR
-    cheapest, second, dearest_used, carried = FAR, FAR, -FAR, 0
-    for row in range(first, last):
-        reduced = rows.cost[row] - state.price[rows.depot[row]]
-        if reduced < cheapest:
-            second = cheapest
-            cheapest = reduced
-        elif reduced < second:
-            second = reduced
-        if state.flow[row]:
-            dearest_used = max(dearest_used, reduced)
-            carried += state.flow[row]
-    if cheapest == FAR:
-        return UNSERVED
-    if carried != needed or dearest_used != cheapest:
-        spread(rows, state, j, cheapest, needed)
-    return second - cheapest
+    start, depot, cost = rows.start, rows.depot, rows.cost
+    price, flow, excess, home = state.price, state.flow, state.excess, state.home
+    for n in range(len(chosen)):
+        j = chosen[n]
+        first, last, needed = start[j], start[j + 1], rows.demand[j]
+        fresh = j % known != 0
+        if rows.kind[j] & LIMITED:
+            home[j] = SEVERAL
+            if not fill_limited(rows, state, j):
+                return j
+            gap[n] = gap_limited(rows, state, j)
+            continue
+        cheapest, second = FAR, FAR
+        if rows.kind[j] == COMPLETE:
+            here = cost[first:last]
+            for k in range(len(price)):
+                reduced = here[k] - price[k]
+                second = min(second, max(cheapest, reduced))
+                cheapest = min(cheapest, reduced)
+        else:
+            for row in range(first, last):
+                reduced = cost[row] - price[depot[row]]
+                second = min(second, max(cheapest, reduced))
+                cheapest = min(cheapest, reduced)
+        gap[n] = second - cheapest
+        if needed == 0:
+            gap[n] = FAR
+            home[j] = SEVERAL
+            flow[first:last] = 0
+        elif first == last:
+            return j
+        elif fresh and second > cheapest:
+            at = first
+            while cost[at] - price[depot[at]] != cheapest:
+                at += 1
+            flow[at] = needed
+            excess[depot[at]] += needed
+            home[j] = at
+        elif not fresh and home[j] != SEVERAL and cost[home[j]] - price[depot[home[j]]] == cheapest:
+            excess[depot[home[j]]] += needed
+        else:
+            home[j] = SEVERAL
+            spread(rows, state, j, cheapest, needed)
+    return -1
+
+
+@kernel
+def measure(rows: Rows, state: State, chosen: Integers, gap: Integers) -> None:
+    """Notes the gaps of the `chosen` customers at prices that have changed; their flow suits them already."""
+    start, depot, cost, price = rows.start, rows.depot, rows.cost, state.price
+    for n in range(len(chosen)):
+        j = chosen[n]
+        first, last = start[j], start[j + 1]
+        if rows.demand[j] == 0:
+            continue
+        if rows.kind[j] & LIMITED:
+            gap[n] = gap_limited(rows, state, j)
+            continue
+        cheapest, second = FAR, FAR
+        if rows.kind[j] == COMPLETE:
+            here = cost[first:last]
+            for k in range(len(price)):
+                reduced = here[k] - price[k]
+                second = min(second, max(cheapest, reduced))
+                cheapest = min(cheapest, reduced)
+        else:
+            for row in range(first, last):
+                reduced = cost[row] - price[depot[row]]
+                second = min(second, max(cheapest, reduced))
+                cheapest = min(cheapest, reduced)
+        gap[n] = second - cheapest
 
 
 @kernel
@@ -107,49 +176,48 @@ def spread(rows: Rows, state: State, j: int, level: int, quantity: int) -> None:
     """Puts `quantity` on the rows that cost `level` at the prices, where it stood before as far as possible.
 
     Clears dearer rows and fills cheaper ones (which are limited, otherwise there are none). The rest
-    goes to the depot that has most to spare.
+    goes to the depots that have most to spare. Adds all to `excess`.
     """
     first, last = rows.start[j], rows.start[j + 1]
-    limited = len(rows.room) > 0
+    limited = rows.kind[j] & LIMITED
+    flow, excess = state.flow, state.excess
     left = quantity
     for row in range(first, last):
-        reduced = rows.cost[row] - state.price[rows.depot[row]]
-        if reduced > level:
-            state.flow[row] = 0
-        elif reduced < level:
-            state.flow[row] = rows.room[row]
-        else:
-            kept = min(state.flow[row], left)
+        i = rows.depot[row]
+        reduced = rows.cost[row] - state.price[i]
+        kept = 0
+        if reduced < level:
+            kept = rows.room[row]
+        elif reduced == level:
+            kept = min(flow[row], left)
             if limited:
                 kept = min(kept, rows.room[row])
-            state.flow[row] = kept
             left -= kept
+        flow[row] = kept
+        excess[i] += kept
     while left > 0:
         chosen, least = first, UNLIMITED
         for row in range(first, last):
             i = rows.depot[row]
-            if rows.cost[row] - state.price[i] == level and state.excess[i] < least:
-                if limited and state.flow[row] == rows.room[row]:
+            if rows.cost[row] - state.price[i] == level and excess[i] < least:
+                if limited and flow[row] == rows.room[row]:
                     continue
-                chosen, least = row, state.excess[i]
+                chosen, least = row, excess[i]
         more = left
         if limited:
-            more = min(left, rows.room[chosen] - state.flow[chosen])
-        state.flow[chosen] += more
+            more = min(left, rows.room[chosen] - flow[chosen])
+        flow[chosen] += more
+        excess[rows.depot[chosen]] += more
         left -= more
 
 
 @kernel
-def fill_limited(rows: Rows, state: State, j: int) -> int:
-    """`fill` where rows have limits: cheapest first, each up to its room."""
-    first, last, needed = rows.start[j], rows.start[j + 1], rows.demand[j]
-    if needed == 0:
-        state.flow[first:last] = 0
-        return FAR
-    level, left = -FAR, needed
+def fill_limited(rows: Rows, state: State, j: int) -> bool:
+    """Fills a limited customer's rows, cheapest first, each up to its room; False if that is not enough."""
+    level, left = -FAR, rows.demand[j]
     while True:
         following, able = FAR, 0
-        for row in range(first, last):
+        for row in range(rows.start[j], rows.start[j + 1]):
             reduced = rows.cost[row] - state.price[rows.depot[row]]
             if reduced <= level or reduced > following or rows.room[row] == 0:
                 continue
@@ -157,18 +225,18 @@ def fill_limited(rows: Rows, state: State, j: int) -> int:
                 following, able = reduced, 0
             able += min(rows.room[row], left - able)
         if following == FAR:
-            return UNSERVED
+            return False
         level = following
         if able == left:
             break
         left -= able
     spread(rows, state, j, level, left)
-    return gap_limited(rows, state, j)
+    return True
 
 
 @kernel
 def gap_limited(rows: Rows, state: State, j: int) -> int:
-    """The least that exchanging two different rows of customer j would cost per unit at the prices."""
+    """The least that exchanging two different rows of a limited customer would cost per unit."""
     least_free, second_free, free_row = FAR, FAR, -1
     most_used, second_used, used_row = -FAR, -FAR, -1
     for row in range(rows.start[j], rows.start[j + 1]):
@@ -186,3 +254,30 @@ def gap_limited(rows: Rows, state: State, j: int) -> int:
     if free_row != used_row:
         return min(FAR, least_free - most_used)
     return min(FAR, min(second_free - most_used, least_free - second_used))
+
+
+@kernel
+def price_customers(rows: Rows, state: State, customer_price: Integers) -> None:
+    """What one more unit costs each customer at the depot prices, within what its rows allow."""
+    start, depot, cost, price, flow = rows.start, rows.depot, rows.cost, state.price, state.flow
+    for j in range(len(customer_price)):
+        first, last = start[j], start[j + 1]
+        cheapest_free, dearest_used = FAR, -FAR
+        if rows.kind[j] == COMPLETE:
+            here = cost[first:last]
+            for k in range(len(price)):
+                cheapest_free = min(cheapest_free, here[k] - price[k])
+        else:
+            limited = rows.kind[j] & LIMITED
+            for row in range(first, last):
+                reduced = cost[row] - price[depot[row]]
+                if limited and flow[row] > 0:
+                    dearest_used = max(dearest_used, reduced)
+                if not limited or flow[row] < rows.room[row]:
+                    cheapest_free = min(cheapest_free, reduced)
+        if cheapest_free != FAR:
+            customer_price[j] = cheapest_free
+        elif dearest_used != -FAR:
+            customer_price[j] = dearest_used
+        else:
+            customer_price[j] = 0

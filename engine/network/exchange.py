@@ -17,9 +17,18 @@ import numpy as np
 
 from engine.exact import Integers, TooLarge, total
 from engine.network.compiled import kernel
-from engine.network.customers import FAR, UNSERVED, Rows, State, fill, mark_regular
+from engine.network.customers import (
+    FAR,
+    SEVERAL,
+    Rows,
+    State,
+    assign,
+    classify,
+    measure,
+    price_customers,
+)
 from engine.network.flow import Contradiction, Cut
-from engine.network.handover import list_users, renew
+from engine.network.handover import let_in, new_users
 from engine.network.paths import (
     DONE,
     REACHED,
@@ -61,6 +70,7 @@ def solve(
         flow,
         price.copy(),
         np.zeros(depots, dtype=np.int64),
+        np.full(problem.customers, SEVERAL, dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
     )
@@ -137,9 +147,10 @@ def _without_lower_limits(problem: Problem) -> Rows:
             raise Contradiction(cut(problem, np.arange(problem.depots) == place, nobody))
         if at_most is not None:
             room = at_most - at_least
-    regular = np.empty(problem.customers, dtype=np.uint8)
-    mark_regular(problem.start, problem.depot, problem.depots, regular)
-    return Rows(supply, demand, problem.start, problem.depot, problem.cost, room, regular)
+    kind = np.empty(problem.customers, dtype=np.uint8)
+    rows = Rows(supply, demand, problem.start, problem.depot, problem.cost, room, kind)
+    classify(rows)
+    return rows
 
 
 @kernel
@@ -167,49 +178,78 @@ def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
     again: whether `state.flow` holds an earlier flow; then no samples are needed
     """
     depots, customers = len(rows.supply), len(rows.demand)
-    stride = 1
+    stride, known = 1, 1
     if not again:
+        known = customers + 1
         while customers // (stride * STEP) > SAMPLE * depots:
             stride *= STEP
     while True:
-        outcome, place = solve_sample(rows, state, stride)
+        outcome, place = solve_sample(rows, state, stride, known)
         if stride == 1 or outcome in (UNSERVABLE, TOO_FAR):
             return outcome, place
+        known = stride
         stride //= STEP
 
 
 @kernel
-def solve_sample(rows: Rows, state: State, stride: int) -> tuple[int, int]:
-    """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`."""
+def solve_sample(rows: Rows, state: State, stride: int, known: int) -> tuple[int, int]:
+    """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`.
+
+    known: every so many-th customer has flow already
+    """
+    depots = len(rows.supply)
     chosen = np.arange(0, len(rows.demand), stride)
     share_out(rows, chosen, stride, state.excess)
     gap = np.empty(len(chosen), dtype=np.int64)
-    for n in range(len(chosen)):
-        j = chosen[n]
-        gap[n] = fill(rows, state, j)
-        if gap[n] == UNSERVED:
-            return UNSERVABLE, j
-        for row in range(rows.start[j], rows.start[j + 1]):
-            state.excess[rows.depot[row]] += state.flow[row]
-    search = new_search(len(rows.supply))
-    wanted = len(chosen) // 8 + 4 * len(rows.supply)
+    place = assign(rows, state, chosen, known, gap)
+    if place >= 0:
+        return UNSERVABLE, place
+    search = new_search(depots)
+    wanted = len(chosen) // 16 + 4 * depots
+    users = new_users(rows, state, chosen)
+    inside = np.zeros(len(chosen), dtype=np.uint8)
+    clear(state)
     while True:
-        slack = FAR
-        active = chosen
-        if 2 * wanted < len(chosen):
-            slack = np.partition(gap, wanted)[wanted]
-            active = chosen[gap <= slack]
+        slack = slack_for(gap, wanted)
         wanted *= 2
-        outcome = RELIST
-        while outcome == RELIST:
-            users = list_users(rows, state, active)
-            for i in range(len(rows.supply)):
-                renew(rows, state, users, i)
-            outcome = level_out(rows, state, users, search, slack)
+        for n in range(len(chosen)):
+            if gap[n] <= slack and inside[n] == 0:
+                inside[n] = 1
+                let_in(rows, state, users, chosen[n])
+        outcome = level_out(rows, state, users, search, slack)
         if outcome in (DONE, STUCK, TOO_FAR):
             return outcome, 0
-        for n in range(len(chosen)):
-            gap[n] = fill(rows, state, chosen[n])
+        if outcome == RELIST:
+            users = new_users(rows, state, chosen)
+            clear(state)
+            inside[:] = 0
+        measure(rows, state, chosen, gap)
+
+
+@kernel
+def clear(state: State) -> None:
+    """Forgets all exchanges."""
+    for i in range(len(state.price)):
+        for k in range(len(state.price)):
+            state.handover[i, k] = FAR
+            state.via[i, k] = -1
+
+
+@kernel
+def slack_for(gap: Integers, wanted: int) -> int:
+    """A gap that about `wanted` customers do not exceed, judged by some of them; FAR if it is for most."""
+    if 2 * wanted >= len(gap):
+        return FAR
+    some = np.empty(255, dtype=np.int64)
+    count = min(255, len(gap))
+    for n in range(count):
+        here = gap[n * len(gap) // count]
+        place = n
+        while place > 0 and some[place - 1] > here:
+            some[place] = some[place - 1]
+            place -= 1
+        some[place] = here
+    return some[wanted * count // len(gap)]
 
 
 @kernel
@@ -218,32 +258,12 @@ def share_out(rows: Rows, chosen: Integers, stride: int, excess: Integers) -> No
 
     Shares are only about right, which is enough for prices to start from.
     """
-    if stride == 1:
-        excess[:] = -rows.supply
-        return
     sampled, whole = 0.0, 0.0
     for j in chosen:
         sampled += rows.demand[j]
     for i in range(len(excess)):
         whole += rows.supply[i]
     for i in range(len(excess)):
-        excess[i] = -int(rows.supply[i] * (sampled / max(whole, 1.0))) - 1
-
-
-@kernel
-def price_customers(rows: Rows, state: State, customer_price: Integers) -> None:
-    """What one more unit costs each customer at the depot prices, within what its rows allow."""
-    for j in range(len(customer_price)):
-        dearest_used, cheapest_free = -FAR, FAR
-        for row in range(rows.start[j], rows.start[j + 1]):
-            reduced = rows.cost[row] - state.price[rows.depot[row]]
-            if state.flow[row] > 0:
-                dearest_used = max(dearest_used, reduced)
-            if len(rows.room) == 0 or state.flow[row] < rows.room[row]:
-                cheapest_free = min(cheapest_free, reduced)
-        if cheapest_free != FAR:
-            customer_price[j] = cheapest_free
-        elif dearest_used != -FAR:
-            customer_price[j] = dearest_used
-        else:
-            customer_price[j] = 0
+        excess[i] = -rows.supply[i]
+        if stride > 1 and whole > 0.0:
+            excess[i] = -np.int64(rows.supply[i] * (sampled / whole)) - 1

@@ -14,8 +14,11 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
-from engine.network.customers import FAR, Rows, State
+from engine.network.compiled import kernel, part
+from engine.network.customers import ASCENDING, COMPLETE, FAR, LIMITED, LISTED, Rows, State
+
+STALE = -2
+"""In `State.via`: the exchange that stood here is gone, the next best must be found."""
 
 
 class Users(NamedTuple):
@@ -25,106 +28,194 @@ class Users(NamedTuple):
     length:   (depots,) how much of its share is in use
     row:      the rows
     customer: their customers
+    cost:     their costs
     """
 
     first: Integers
     length: Integers
     row: Integers
     customer: Integers
+    cost: Integers
 
 
 @kernel
-def list_users(rows: Rows, state: State, customers: Integers) -> Users:
-    """The rows that carry something at `customers`, with space for as many more again."""
+def new_users(rows: Rows, state: State, chosen: Integers) -> Users:
+    """Empty lists with space for all rows that carry something at the `chosen` customers, and some more."""
     depots = len(rows.supply)
-    count = np.zeros(depots, dtype=np.int64)
-    for j in customers:
+    length = np.zeros(depots, dtype=np.int64)
+    for j in chosen:
+        if state.home[j] >= 0:
+            length[rows.depot[state.home[j]]] += 1
+            continue
         for row in range(rows.start[j], rows.start[j + 1]):
             if state.flow[row] > 0:
-                count[rows.depot[row]] += 1
+                length[rows.depot[row]] += 1
     first = np.empty(depots + 1, dtype=np.int64)
     first[0] = 0
     for i in range(depots):
-        first[i + 1] = first[i] + 2 * count[i] + 16
-    users = Users(
-        first, count, np.empty(first[depots], dtype=np.int64), np.empty(first[depots], dtype=np.int64)
+        first[i + 1] = first[i] + length[i] + length[i] // 2 + 64
+        length[i] = 0
+    space = first[depots]
+    return Users(
+        first,
+        length,
+        np.empty(space, dtype=np.int64),
+        np.empty(space, dtype=np.int64),
+        np.empty(space, dtype=np.int64),
     )
-    count[:] = 0
-    for j in customers:
-        for row in range(rows.start[j], rows.start[j + 1]):
-            if state.flow[row] > 0:
-                add_user(users, rows.depot[row], row, j)
-    return users
 
 
 @kernel
-def add_user(users: Users, i: int, row: int, j: int) -> bool:
-    """Adds a row to depot i's list; False if there is no space left."""
+def let_in(rows: Rows, state: State, users: Users, j: int) -> None:
+    """Puts the rows that carry something at customer j on the lists, and lets them offer their exchanges."""
+    if state.home[j] >= 0:
+        add_user(rows, users, state.home[j], j)
+        offer(rows, state, state.home[j], j)
+        return
+    for row in range(rows.start[j], rows.start[j + 1]):
+        if state.flow[row] > 0:
+            add_user(rows, users, row, j)
+            offer(rows, state, row, j)
+
+
+@part
+def add_user(rows: Rows, users: Users, row: int, j: int) -> bool:
+    """Adds a row of customer j to its depot's list; False if there is no space left."""
+    i = rows.depot[row]
     place = users.first[i] + users.length[i]
     if place == users.first[i + 1]:
         return False
-    users.row[place], users.customer[place] = row, j
+    users.row[place], users.customer[place], users.cost[place] = row, j, rows.cost[row]
     users.length[i] += 1
     return True
 
 
-@kernel
-def remove_user(users: Users, i: int, row: int) -> None:
-    """Takes a row out of depot i's list."""
+@part
+def remove_user(rows: Rows, users: Users, row: int) -> None:
+    """Takes a row out of its depot's list."""
+    i = rows.depot[row]
     last = users.first[i] + users.length[i] - 1
     place = users.first[i]
     while users.row[place] != row:
         place += 1
     users.row[place], users.customer[place] = users.row[last], users.customer[last]
+    users.cost[place] = users.cost[last]
     users.length[i] -= 1
 
 
-@kernel
-def offer(rows: Rows, state: State, i: int, row: int, j: int) -> None:
-    """Lets row `row` of depot i, which carries something at customer j, offer its exchanges."""
-    first = rows.start[j]
+@part
+def offer(rows: Rows, state: State, row: int, j: int) -> None:
+    """Lets a row that carries something at customer j offer its exchanges with the customer's other rows."""
+    first, last = rows.start[j], rows.start[j + 1]
     given_up = rows.cost[row]
-    handover, via = state.handover[i], state.via[i]
-    if rows.regular[j] and len(rows.room) == 0:
-        for k in range(len(handover)):
-            price = rows.cost[first + k] - given_up
-            better = price < handover[k]
-            handover[k] = price if better else handover[k]
-            via[k] = row if better else via[k]
-        return
-    for other in range(first, rows.start[j + 1]):
-        if len(rows.room) and state.flow[other] == rows.room[other]:
-            continue
-        k = rows.depot[other]
-        price = rows.cost[other] - given_up
-        if price < handover[k]:
-            handover[k] = price
-            via[k] = row
+    i = rows.depot[row]
+    handover, via, cost = state.handover[i], state.via[i], rows.cost
+    limited = rows.kind[j] & LIMITED
+    if rows.kind[j] == COMPLETE:
+        offer_all(cost[first:last], given_up, row, handover, via)
+    else:
+        for other in range(first, last):
+            k = rows.depot[other]
+            change = cost[other] - given_up
+            if change < handover[k] and not (limited and state.flow[other] == rows.room[other]):
+                handover[k] = change
+                via[k] = row
+
+
+@kernel
+def offer_all(cost: Integers, given_up: int, row: int, handover: Integers, via: Integers) -> None:
+    """`offer` for a customer with one unlimited row for each depot, written so that it runs in vectors."""
+    for k in range(len(handover)):
+        price = cost[k] - given_up
+        better = price < handover[k]
+        handover[k] = price if better else handover[k]
+        via[k] = row if better else via[k]
 
 
 @kernel
 def renew(rows: Rows, state: State, users: Users, i: int) -> None:
     """Recomputes all that depot i can hand over."""
-    state.handover[i, :] = FAR
+    handover, via, start, cost = state.handover[i], state.via[i], rows.start, rows.cost
+    for k in range(len(handover)):
+        handover[k] = FAR
+        via[k] = -1
     for place in range(users.first[i], users.first[i] + users.length[i]):
-        offer(rows, state, i, users.row[place], users.customer[place])
+        row, j, given_up = users.row[place], users.customer[place], users.cost[place]
+        if rows.kind[j] != COMPLETE:
+            offer(rows, state, row, j)
+            continue
+        offer_all(cost[start[j] : start[j + 1]], given_up, row, handover, via)
 
 
-@kernel
+@part
+def repair(rows: Rows, state: State, users: Users, i: int, stale: Integers) -> None:
+    """Finds the next best exchanges of depot i where the best is gone.
+
+    stale: scratch space (depots,)
+    """
+    handover, via, start, cost = state.handover[i], state.via[i], rows.start, rows.cost
+    count = 0
+    for k in range(len(handover)):
+        if via[k] == STALE:
+            stale[count] = k
+            handover[k] = FAR
+            count += 1
+    if 8 * count > len(handover):
+        renew(rows, state, users, i)
+        return
+    for place in range(users.first[i], users.first[i] + users.length[i]):
+        row, j, given_up = users.row[place], users.customer[place], users.cost[place]
+        first = start[j]
+        if rows.kind[j] == COMPLETE:
+            for n in range(count):
+                k = stale[n]
+                price = cost[first + k] - given_up
+                if price < handover[k]:
+                    handover[k] = price
+                    via[k] = row
+        elif rows.kind[j] == LISTED or rows.kind[j] == LISTED | LIMITED:
+            offer(rows, state, row, j)
+        else:
+            for n in range(count):
+                k = stale[n]
+                other = row_from(rows, j, k)
+                if other < 0 or cost[other] - given_up >= handover[k]:
+                    continue
+                if not (rows.kind[j] & LIMITED and state.flow[other] == rows.room[other]):
+                    handover[k] = cost[other] - given_up
+                    via[k] = row
+
+
+@part
+def row_from(rows: Rows, j: int, k: int) -> int:
+    """The row from depot k to customer j whose rows are in the order of depots, -1 if there is none."""
+    low, high = rows.start[j], rows.start[j + 1]
+    if high - low == len(rows.supply):
+        return low + k
+    while low < high:
+        middle = (low + high) // 2
+        if rows.depot[middle] < k:
+            low = middle + 1
+        else:
+            high = middle
+    return low if low < rows.start[j + 1] and rows.depot[low] == k else -1
+
+
+@part
 def row_with_room(rows: Rows, state: State, j: int, k: int) -> int:
     """The cheapest row from depot k to customer j that has room."""
-    if rows.regular[j]:
-        return int(rows.start[j] + k)
+    if rows.kind[j] & (ASCENDING | COMPLETE):
+        return row_from(rows, j, k)
+    limited = rows.kind[j] & LIMITED
     chosen, least = -1, FAR
     for row in range(rows.start[j], rows.start[j + 1]):
         if rows.depot[row] == k and rows.cost[row] < least:
-            if len(rows.room) and state.flow[row] == rows.room[row]:
-                continue
-            chosen, least = row, rows.cost[row]
+            if not (limited and state.flow[row] == rows.room[row]):
+                chosen, least = row, rows.cost[row]
     return chosen
 
 
-@kernel
+@part
 def customer_of(rows: Rows, row: int) -> int:
     """The customer of a row, by halving."""
     low, high = 0, len(rows.demand)

@@ -11,15 +11,16 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
-from engine.network.customers import FAR, Rows, State
+from engine.network.compiled import kernel, part
+from engine.network.customers import FAR, LIMITED, SEVERAL, Rows, State
 from engine.network.handover import (
+    STALE,
     Users,
     add_user,
     customer_of,
     offer,
     remove_user,
-    renew,
+    repair,
     row_with_room,
 )
 
@@ -50,6 +51,8 @@ class Search(NamedTuple):
     given: Integers
     taking: Integers
     event: Integers
+    at: Integers
+    stale: Integers
 
 
 @kernel
@@ -63,6 +66,8 @@ def new_search(depots: int) -> Search:
         np.empty(depots, dtype=np.int64),
         np.empty(depots, dtype=np.int64),
         np.empty(depots, dtype=np.int64),
+        np.empty(depots, dtype=np.int64),
+        np.zeros(depots, dtype=np.int64),
     )
 
 
@@ -73,7 +78,9 @@ def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int
     Returns DONE; WIDEN when prices would have to rise further; RELIST when `users` is out of space;
     STUCK when depots with too much reach none with too little; TOO_FAR when prices grow too large.
     """
-    base = state.price.copy()
+    base = np.empty_like(state.price)
+    for k in range(len(base)):
+        base[k] = state.price[k]
     while True:
         targets, limit = find_paths(state, search)
         if limit < 0:
@@ -153,7 +160,7 @@ def find_paths(state: State, search: Search) -> tuple[int, int]:
     return targets, distance
 
 
-@kernel
+@part
 def send(rows: Rows, state: State, users: Users, search: Search, target: int) -> int:
     """Sends as much as possible along the path to `target`, if all its exchanges are still at their price.
 
@@ -166,11 +173,12 @@ def send(rows: Rows, state: State, users: Users, search: Search, target: int) ->
         if state.handover[i, k] + state.price[i] != state.price[k]:
             return WIDEN
         row = state.via[i, k]
-        other = row_with_room(rows, state, customer_of(rows, row), k)
+        j = customer_of(rows, row)
+        other = row_with_room(rows, state, j, k)
         amount = min(amount, state.flow[row])
-        if len(rows.room):
+        if rows.kind[j] & LIMITED:
             amount = min(amount, rows.room[other] - state.flow[other])
-        search.given[length], search.taking[length] = row, other
+        search.given[length], search.taking[length], search.at[length] = row, other, j
         length += 1
         k = i
     amount = min(amount, state.excess[k])
@@ -185,56 +193,58 @@ def send(rows: Rows, state: State, users: Users, search: Search, target: int) ->
 EMPTIED, BEGUN, FREED, FILLED = 1, 2, 4, 8
 
 
-@kernel
+@part
 def move(rows: Rows, state: State, search: Search, length: int, amount: int) -> None:
     """Moves `amount` at every exchange of the path and notes which rows changed their standing."""
-    limited = len(rows.room) > 0
+    flow = state.flow
     for n in range(length):
         row, other = search.given[n], search.taking[n]
+        limited = rows.kind[search.at[n]] & LIMITED
         event = 0
-        if limited and state.flow[row] == rows.room[row]:
+        if limited and flow[row] == rows.room[row]:
             event |= FREED
-        state.flow[row] -= amount
-        if state.flow[row] == 0:
+        flow[row] -= amount
+        state.home[search.at[n]] = SEVERAL
+        if flow[row] == 0:
             event |= EMPTIED
-        if state.flow[other] == 0:
+        if flow[other] == 0:
             event |= BEGUN
-        state.flow[other] += amount
-        if limited and state.flow[other] == rows.room[other]:
+        flow[other] += amount
+        if limited and flow[other] == rows.room[other]:
             event |= FILLED
         search.event[n] = event
 
 
-@kernel
+@part
 def follow(rows: Rows, state: State, users: Users, search: Search, length: int) -> int:
-    """Brings lists and exchange costs up to date after `move`."""
-    stale = search.closed
-    stale[:] = 0
+    """Brings lists and exchange costs up to date after `move`: first what is gone, then what is new."""
+    via = state.via
     for n in range(length):
-        event = search.event[n]
-        if event == 0:
-            continue
-        row, other = search.given[n], search.taking[n]
+        event, row, other, j = search.event[n], search.given[n], search.taking[n], search.at[n]
         i, k = rows.depot[row], rows.depot[other]
-        j = customer_of(rows, row)
         if event & EMPTIED:
-            remove_user(users, i, row)
-            for target in range(len(stale)):
-                if state.via[i, target] == row:
-                    stale[i] = 1
-        if event & BEGUN:
-            if not add_user(users, k, other, j):
-                return RELIST
-            offer(rows, state, k, other, j)
-        if event & (FREED | FILLED):
+            remove_user(rows, users, row)
+            for target in range(len(via)):
+                if via[i, target] == row:
+                    via[i, target] = STALE
+                    search.stale[i] = 1
+        if event & BEGUN and not add_user(rows, users, other, j):
+            return RELIST
+        if event & FILLED:
             for used in range(rows.start[j], rows.start[j + 1]):
-                if state.flow[used] == 0:
-                    continue
-                if event & FREED:
-                    offer(rows, state, rows.depot[used], used, j)
-                if event & FILLED and state.via[rows.depot[used], k] == used:
-                    stale[rows.depot[used]] = 1
-    for i in range(len(stale)):
-        if stale[i]:
-            renew(rows, state, users, i)
+                if state.flow[used] > 0 and via[rows.depot[used], k] == used:
+                    via[rows.depot[used], k] = STALE
+                    search.stale[rows.depot[used]] = 1
+    for i in range(len(via)):
+        if search.stale[i]:
+            search.stale[i] = 0
+            repair(rows, state, users, i, search.closed)
+    for n in range(length):
+        j = search.at[n]
+        if search.event[n] & BEGUN:
+            offer(rows, state, search.taking[n], j)
+        if search.event[n] & FREED:
+            for used in range(rows.start[j], rows.start[j + 1]):
+                if state.flow[used] > 0:
+                    offer(rows, state, used, j)
     return DONE
