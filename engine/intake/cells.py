@@ -2,7 +2,8 @@
 
 import io
 import os
-from collections.abc import Iterable, Sequence
+import struct
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any, BinaryIO
@@ -10,10 +11,14 @@ from typing import Any, BinaryIO
 import python_calamine as calamine
 
 from engine.intake.delimited import rows_of_text
+from engine.intake.marks_ods import ods_marks
+from engine.intake.marks_xls import is_encrypted, xls_marks
+from engine.intake.marks_xlsb import xlsb_marks
 from engine.intake.numbers import ErrorCell, FormulaCell, PercentCell
 from engine.intake.refusal import (
     Limits,
     Unreadable,
+    check_area,
     damaged,
     kind_of,
     not_a_spreadsheet,
@@ -25,6 +30,7 @@ from engine.intake.refusal import (
 )
 from engine.intake.workbook_marks import (
     Marks,
+    Outline,
     has_entities,
     marks_of,
     outline_of,
@@ -100,7 +106,13 @@ def _sheets_of(source: Source, limits: Limits) -> list[Sheet]:
         return [Sheet(name, Path(name).stem, rows_of_text(data, name, limits), is_text=True)]
     if kind == "zip":
         return _zipped(data, name, limits)
-    return _calamine_sheets(data, name, {}, limits)
+    try:
+        encrypted, found = is_encrypted(data), xls_marks(data)
+    except (struct.error, IndexError) as error:
+        raise damaged(name) from error
+    if encrypted:
+        raise protected(name)
+    return _calamine_sheets(data, name, _checked(found, name, limits), limits)
 
 
 def _opened(source: Source, limits: Limits) -> tuple[str, bytes]:
@@ -129,20 +141,32 @@ def _zipped(data: bytes, name: str, limits: Limits) -> list[Sheet]:
             "Open it in a spreadsheet program, save it again and upload that.",
             name,
         )
-    marks: dict[str, Marks] = {}
-    if any(key.casefold() == "xl/workbook.xml" for key in parts):
+    lower = {key.casefold() for key in parts}
+    if "xl/workbook.xml" in lower:
         percent = percent_styles(parts)
+        marks: dict[str, Marks] = {}
         for sheet, part in sheet_parts(parts).items():
             xml = parts.pop(part, b"")
             outline = outline_of(xml)
-            if outline.rows * outline.columns > limits.cells:
-                size = f"{outline.rows} rows by {outline.columns} columns"
-                raise too_large(name, f"The used area of sheet '{sheet}' is {size}.")
+            check_area(outline.rows, outline.columns, outline.cells, sheet, name, limits)
             marks[sheet] = marks_of(xml, percent, outline)
-    elif not {"xl/workbook.bin", "content.xml"} & {key.casefold() for key in parts}:
+    elif "xl/workbook.bin" in lower:
+        try:
+            marks = _checked(xlsb_marks(parts), name, limits)
+        except (struct.error, IndexError) as error:
+            raise damaged(name) from error
+    elif "content.xml" in lower:
+        marks = _checked(ods_marks(parts["content.xml"], name), name, limits)
+    else:
         raise not_a_spreadsheet(name)
     del parts
     return _calamine_sheets(data, name, marks, limits)
+
+
+def _checked(found: Mapping[str, tuple[Marks, Outline]], name: str, limits: Limits) -> dict[str, Marks]:
+    for sheet, (_, outline) in found.items():
+        check_area(outline.rows, outline.columns, outline.cells, sheet, name, limits)
+    return {sheet: marks for sheet, (marks, _) in found.items()}
 
 
 def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Limits) -> list[Sheet]:

@@ -15,6 +15,8 @@ READABLE = ".xlsx, .xlsm, .xlsb, .xls, .ods, .csv, .tsv or .txt"
 MEGABYTE = 1 << 20
 _CONTAINER = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"  # the compound file of .xls and of password protection
 _MOST_MEMBERS = 5000
+_LARGE_AREA = 2_000_000
+_MOST_BLANK = 50
 _SMALL_MEMBER = 8 * MEGABYTE
 """Below this a member is harmless however well it packs."""
 
@@ -104,6 +106,20 @@ def damaged(name: str) -> Unreadable:
 def too_large(name: str, message: str) -> Unreadable:
     """The refusal of a file that would cost too much."""
     return refused("too large", message, "Take out what is not needed, or raise the limit.", name)
+
+
+def check_area(rows: int, columns: int, cells: int, sheet: str, name: str, limits: Limits) -> None:
+    """Refuse a sheet whose used area is larger than the limit, or huge and nearly all of it blank.
+
+    Raises:
+        Unreadable: it is.
+    """
+    area = rows * columns
+    if area > limits.cells or (area > _LARGE_AREA and area > _MOST_BLANK * cells):
+        raise too_large(
+            name,
+            f"The used area of sheet '{sheet}' is {rows} rows by {columns} columns with {cells} cells in it.",
+        )
 
 
 def protected(name: str) -> Unreadable:

@@ -43,10 +43,11 @@ class Marks:
 
 
 class Outline(NamedTuple):
-    """How many rows and columns reach from A1 to the farthest cell, and what a sheet may hold."""
+    """How many rows and columns reach from A1 to the farthest cell, how many cells there are, and which."""
 
     rows: int
     columns: int
+    cells: int
     has_errors: bool
     has_formulas: bool
 
@@ -109,7 +110,7 @@ def outline_of(xml: bytes) -> Outline:
         loose = [(int(row), _column(letters) + 1) for letters, row in _LOOSE.findall(xml)]
         rows = max([rows, xml.count(b"<row"), *(row for row, _ in loose)])
         columns = max([columns, min(16384, cells - len(loose)), *(column for _, column in loose)])
-    return Outline(rows, columns, errors, formulas)
+    return Outline(rows, columns, max(found, cells), errors, formulas)
 
 
 def _quoted(chunk: npt.NDArray[np.uint8], letter: str) -> bool:

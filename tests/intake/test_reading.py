@@ -192,7 +192,10 @@ FAULTS = [
         {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Charge per use"])},
         ("stops", "not planned yet", "Rates", "D2"),
     ),
-    ({"Rates": [["Depot", "Customer", "Rate £/t"], *RATES[1:]]}, ("stops", "column in other currency", "Rates", "C1")),
+    (
+        {"Rates": [["Depot", "Customer", "Rate £/t"], *RATES[1:]]},
+        ("stops", "column in other currency", "Rates", "C1"),
+    ),
     (
         {"Rates": [["Depot", "Customer", "Rate"], ["Northgate", "Aster", "1,234"], *RATES[2:]]},
         ("check", "which mark", "Rates", "C2"),
