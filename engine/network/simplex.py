@@ -35,7 +35,7 @@ def solve(
     first = problem.depots + 1
     tree = first_tree(rows, left, need, _hint(problem, price, quantity, detour), detour + 1)
     improve(tree, rows, first)
-    if np.any(needing & (tree.row[first:-1] == ARTIFICIAL)):
+    if np.any(needing & (tree.link["row"][first:-1] == ARTIFICIAL)):
         raise Contradiction(_cut(problem, tree))
     flow = np.zeros(problem.rows, dtype=np.int64)
     customer_price = np.empty(problem.customers, dtype=np.int64)
@@ -81,6 +81,8 @@ def _cut(problem: Problem, tree: Tree) -> Cut:
     """
     first = problem.depots + 1
     price = tree.price - tree.price[problem.depots]
-    parent = tree.parent[first:-1]
-    customer_price = tree.cost[first:-1] - price[parent]
-    return cut(problem, price[: problem.depots] < 0, (parent != NOBODY) & (customer_price > 0))
+    parent = tree.link["parent"][first:-1]
+    needing = parent != NOBODY
+    lacking = needing.copy()
+    lacking[needing] = tree.link["cost"][first:-1][needing] - price[parent[needing]] > 0
+    return cut(problem, price[: problem.depots] < 0, lacking)

@@ -13,17 +13,18 @@ import numpy as np
 from engine.exact import Integers
 from engine.network.compiled import kernel
 from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature, types
-from engine.network.simplex_tree import ARTIFICIAL, NOBODY, TREE, Tree, pivot
+from engine.network.simplex_tree import ARTIFICIAL, NOBODY, TREE, Tree, as_node, as_place, pivot
 
-CANDIDATES = 16
-"""Length of the list of candidates: between 8 and 32 no difference could be measured, 4 and 64 are slower."""
+FEWEST, MOST, ROWS_TO_READ = 16, 128, 2000
+"""Length of the list of candidates, so that about so many rows are read for each refilling if all customers
+have candidates. Measured on 10 to 1,000 rows a customer; half or twice as long is a tenth slower."""
 
 
 class Candidates(NamedTuple):
     """Rows that may enter the tree.
 
-    row:   (CANDIDATES,) the row
-    node:  (CANDIDATES,) its customer's node
+    row:   the row
+    node:  its customer's node
     found: (2,) how many there are; the customer to look at next
     """
 
@@ -35,14 +36,30 @@ class Candidates(NamedTuple):
 CANDIDATE_LIST: Any = types.NamedUniTuple(INTS, 3, Candidates)
 
 
-@kernel(signature(INT, TREE, ROWS, INT, INT))
-def best_with_limits(tree: Tree, rows: Rows, first: int, j: int) -> int:
-    """The row that saves most of a customer that has full rows, or -1; a full row saves by carrying less."""
-    customer_price = tree.cost[first + j] - tree.price[tree.parent[first + j]]
+@kernel(signature(INT, INTS, INTS, INT))
+def cheapest_of_all(cost: Integers, price: Integers, customer_price: int) -> int:
+    """The depot whose row costs least after depot prices, if less than `customer_price`, or else -1.
+
+    Without a choice to remember, the smallest is found several rows at a time.
+    """
+    least, chosen = customer_price, -1
+    for i in range(len(cost)):
+        least = min(least, cost[i] - price[i])
+    if least < customer_price:
+        chosen = 0
+        while cost[chosen] - price[chosen] != least:
+            chosen += 1
+    return chosen
+
+
+@kernel(signature(INT, ROWS, INTS, INT, INT))
+def most_saving(rows: Rows, price: Integers, j: int, customer_price: int) -> int:
+    """Customer j's row that saves most by carrying more or, where it is full, less; -1 if none does."""
     most, chosen = 0, -1
-    for row in range(rows.start[j], rows.start[j + 1]):
-        saving = customer_price + tree.price[rows.depot[row]] - rows.cost[row]
-        if rows.full[row]:
+    some_full = rows.filled[j] > 0
+    for row in range(as_place(rows.start[j]), as_place(rows.start[j + 1])):
+        saving = customer_price + price[as_place(rows.depot[row])] - rows.cost[row]
+        if some_full and rows.full[row]:
             saving = -saving
         if saving > most:
             most, chosen = saving, row
@@ -53,36 +70,23 @@ def best_with_limits(tree: Tree, rows: Rows, first: int, j: int) -> int:
 def look_further(tree: Tree, rows: Rows, first: int, candidates: Candidates) -> None:
     """Goes from customer to customer until the list is full or everybody was looked at."""
     customers = len(rows.filled)
-    cost, depot, price = rows.cost, rows.depot, tree.price
     count, j = candidates.found[0], candidates.found[1]
     looked = 0
-    while count < CANDIDATES and looked < customers:
-        node, chosen = first + j, -1
-        parent = tree.parent[node]
-        begin, end = rows.start[j], rows.start[j + 1]
-        if parent == NOBODY:
-            pass
-        elif rows.filled[j]:
-            chosen = best_with_limits(tree, rows, first, j)
-        else:
-            # With no choice to remember, the smallest is found several rows at a time.
-            customer_price = tree.cost[node] - price[parent]
-            least = customer_price
-            costs = cost[begin:end]
-            if rows.every:
-                for i in range(len(costs)):
-                    least = min(least, costs[i] - price[i])
+    while count < len(candidates.row) and looked < customers:
+        node = as_node(first + j)
+        parent = tree.link[node].parent
+        if parent != NOBODY:
+            customer_price = tree.link[node].cost - tree.price[parent]
+            if rows.every and rows.filled[j] == 0:
+                costs = rows.cost[rows.start[j] : rows.start[j + 1]]
+                chosen = cheapest_of_all(costs, tree.price, customer_price)
+                if chosen >= 0:
+                    chosen += rows.start[j]
             else:
-                depots = depot[begin:end]
-                for n in range(len(costs)):
-                    least = min(least, costs[n] - price[depots[n]])
-            if least < customer_price:
-                chosen = begin
-                while cost[chosen] - price[depot[chosen]] != least:
-                    chosen += 1
-        if chosen >= 0:
-            candidates.row[count], candidates.node[count] = chosen, node
-            count += 1
+                chosen = most_saving(rows, tree.price, j, customer_price)
+            if chosen >= 0:
+                candidates.row[count], candidates.node[count] = chosen, node
+                count += 1
         j = j + 1 if j + 1 < customers else 0
         looked += 1
     candidates.found[0], candidates.found[1] = count, j
@@ -91,8 +95,9 @@ def look_further(tree: Tree, rows: Rows, first: int, candidates: Candidates) -> 
 @kernel(signature(INT, TREE, ROWS, INT))
 def improve(tree: Tree, rows: Rows, first: int) -> int:
     """Pivots until no row is left that would save anything; how many pivots that took."""
-    row_of = np.empty(CANDIDATES, dtype=np.int64)
-    node_of = np.empty(CANDIDATES, dtype=np.int64)
+    length = min(max(FEWEST, ROWS_TO_READ * len(rows.filled) // (1 + len(rows.cost))), MOST)
+    row_of = np.empty(length, dtype=np.int64)
+    node_of = np.empty(length, dtype=np.int64)
     candidates = Candidates(row_of, node_of, np.zeros(2, dtype=np.int64))
     limited = len(rows.room) > 0
     pivots = 0
@@ -101,12 +106,11 @@ def improve(tree: Tree, rows: Rows, first: int) -> int:
         count = candidates.found[0]
         if count == 0:
             return pivots
-        enough = 1
-        while True:
+        while count > 0:
             most, chosen, place = 0, -1, 0
             while place < count:
-                row, node = row_of[place], node_of[place]
-                price_there = tree.cost[node] - tree.price[tree.parent[node]]
+                row, node = row_of[place], as_node(node_of[place])
+                price_there = tree.link[node].cost - tree.price[tree.link[node].parent]
                 saving = price_there + tree.price[rows.depot[row]] - rows.cost[row]
                 if limited and rows.full[row]:
                     saving = -saving
@@ -117,11 +121,9 @@ def improve(tree: Tree, rows: Rows, first: int) -> int:
                 if saving > most:
                     most, chosen = saving, place
                 place += 1
-            # Rows that save much less than the first of this list did wait until the list is full again.
-            if most < enough:
+            if chosen < 0:
                 break
-            enough = max(enough, most // 4)
-            row, node = row_of[chosen], node_of[chosen]
+            row, node = row_of[chosen], as_node(node_of[chosen])
             count -= 1
             row_of[chosen], node_of[chosen] = row_of[count], node_of[count]
             pivot(tree, rows, first, row, node, most if limited and rows.full[row] else -most)
@@ -135,13 +137,13 @@ def read_off(tree: Tree, rows: Rows, first: int, quantity: Integers, customer_pr
     for row in range(len(rows.full)):
         if rows.full[row]:
             quantity[row] = rows.room[row]
-    for node in range(len(tree.parent) - 1):
-        if tree.row[node] != ARTIFICIAL:
-            quantity[tree.row[node]] = tree.flow[node]
+    for node in range(len(tree.link) - 1):
+        if tree.link[node].row != ARTIFICIAL:
+            quantity[tree.link[node].row] = tree.link[node].flow
     for j in range(len(customer_price)):
-        parent = tree.parent[first + j]
+        parent = tree.link[first + j].parent
         if parent != NOBODY:
-            customer_price[j] = tree.cost[first + j] - tree.price[parent]
+            customer_price[j] = tree.link[first + j].cost - tree.price[parent]
             continue
         # A customer that needs nothing more: any price will do that makes no row attractive.
         least = NEVER

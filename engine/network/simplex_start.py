@@ -18,7 +18,7 @@ import numpy as np
 from engine.exact import Integers
 from engine.network.compiled import kernel
 from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature
-from engine.network.simplex_tree import ARTIFICIAL, NOBODY, TREE, Tree, empty_tree
+from engine.network.simplex_tree import ARTIFICIAL, NOBODY, NODE, TREE, Tree, as_node, empty_tree
 
 
 class Hint(NamedTuple):
@@ -47,10 +47,11 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
     find_regret(rows, left, need, hint.price, regret)
     fill(tree, rows, left, need, hint.price, np.argsort(-regret, kind="stable"), big)
     gate = depots + 1 + customers
-    tree.parent[gate], tree.flow[gate] = depots, kept - int(left.sum())
-    loose = np.flatnonzero(tree.parent[:depots] == NOBODY)
-    tree.parent[loose], tree.flow[loose] = gate, left[loose]
-    tree.cost[loose] = big + hint.price[loose]
+    parent, flow = tree.link["parent"], tree.link["flow"]
+    parent[gate], flow[gate] = depots, kept - int(left.sum())
+    loose = np.flatnonzero(parent[:depots] == NOBODY)
+    parent[loose], flow[loose] = gate, left[loose]
+    tree.link["cost"][loose] = big + hint.price[loose]
     grow(tree, depots + 1)
     return tree
 
@@ -58,10 +59,10 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
 @kernel(signature(VOID, TREE, ROWS, INT, INT, INT, INT))
 def link(tree: Tree, rows: Rows, node: int, parent: int, row: int, amount: int) -> None:
     """Hangs `node` below `parent` by `row`, which carries `amount`."""
-    tree.parent[node], tree.row[node] = parent, row
-    tree.cost[node], tree.flow[node] = rows.cost[row], amount
+    tree.link[node].parent, tree.link[node].row = parent, row
+    tree.link[node].cost, tree.link[node].flow = rows.cost[row], amount
     if len(rows.room):
-        tree.room[node] = rows.room[row]
+        tree.link[node].room = rows.room[row]
 
 
 @kernel(signature(VOID, TREE, ROWS, INTS, INTS, INT, INT))
@@ -117,8 +118,8 @@ def fill(
                 send(tree, rows, left, need, chosen, j)
                 continue
             customer = root + 1 + j
-            tree.parent[customer], tree.row[customer] = root, ARTIFICIAL
-            tree.cost[customer], tree.flow[customer] = big, need[j]
+            tree.link[customer].parent, tree.link[customer].row = root, ARTIFICIAL
+            tree.link[customer].cost, tree.link[customer].flow = big, need[j]
             need[j] = 0
 
 
@@ -185,38 +186,40 @@ def replay(tree: Tree, rows: Rows, left: Integers, need: Integers, quantity: Int
                         height += 1
 
 
-@kernel(signature(VOID, TREE, INT))
+@kernel(signature(VOID, TREE, NODE))
 def grow(tree: Tree, first: int) -> None:
     """Fills in thread, last nodes, sizes and depot prices from the parents."""
-    nodes, root = len(tree.parent), first - 1
-    child = np.full(nodes, NOBODY, dtype=np.int32)
-    sibling = np.full(nodes, NOBODY, dtype=np.int32)
+    nodes, root = len(tree.link), as_node(first - 1)
+    child = np.full(nodes, NOBODY)
+    sibling = np.full(nodes, NOBODY)
     for depot in range(root):
-        customer = tree.parent[depot]
+        customer = tree.link[depot].parent
         if child[customer] == NOBODY:
-            above = tree.parent[customer]
+            above = tree.link[customer].parent
             sibling[customer], child[above] = child[above], customer
         sibling[depot], child[customer] = child[customer], depot
     for node in range(nodes):
-        tree.size[node] = 2 if node < first else 1
+        tree.link[node].size = 2 if node < first else 1
     node, before = root, NOBODY
     while True:
-        parent = tree.parent[node]
+        parent = tree.link[node].parent
         if node < root:
-            tree.price[node] = tree.cost[node] - tree.cost[parent] + tree.price[tree.parent[parent]]
-        tree.before[node] = before
+            price_there = tree.link[parent].cost - tree.price[tree.link[parent].parent]
+            tree.price[node] = tree.link[node].cost - price_there
+        tree.thread[node].before = before
         if before != NOBODY:
-            tree.next[before] = node
+            tree.thread[before].next = node
         before = node
         if child[node] != NOBODY:
             node = child[node]
             continue
         while True:
-            tree.last[node] = before
+            tree.thread[node].last = before
             if node == root:
                 return
-            tree.size[tree.parent[node]] += tree.size[node] & ~1
+            parent = tree.link[node].parent
+            tree.link[parent].size += tree.link[node].size & ~1
             if sibling[node] != NOBODY:
                 break
-            node = tree.parent[node]
+            node = parent
         node = sibling[node]

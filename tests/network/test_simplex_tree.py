@@ -15,14 +15,14 @@ from tests.network.cases import problems
 
 
 def check_tree(problem: Problem, tree: Tree, rows: Rows, left: list[int], need: list[int]) -> None:
-    """Recomputes everything from `tree.parent`; the rules are in the docstring of `Tree`."""
-    first, nodes = problem.depots + 1, len(tree.parent)
+    """Recomputes everything from the parents; the rules are in the docstring of `Tree`."""
+    first, nodes = problem.depots + 1, len(tree.link)
     root, gate = problem.depots, nodes - 1
     children: dict[int, list[int]] = {node: [] for node in range(nodes)}
-    members = [node for node in range(nodes) if node == root or tree.parent[node] != NOBODY]
+    members = [node for node in range(nodes) if node == root or tree.link["parent"][node] != NOBODY]
     for node in members:
         if node != root:
-            children[int(tree.parent[node])].append(node)
+            children[int(tree.link["parent"][node])].append(node)
     threaded = {node for node in members if node < first or any(child < root for child in children[node])}
 
     def below(node: int) -> list[int]:
@@ -30,41 +30,41 @@ def check_tree(problem: Problem, tree: Tree, rows: Rows, left: list[int], need: 
 
     assert sorted(below(root)) == sorted(members)
     order = [root]
-    while tree.next[order[-1]] != NOBODY:
-        order.append(int(tree.next[order[-1]]))
-        assert tree.before[order[-1]] == order[-2]
+    while tree.thread["next"][order[-1]] != NOBODY:
+        order.append(int(tree.thread["next"][order[-1]]))
+        assert tree.thread["before"][order[-1]] == order[-2]
     assert sorted(order) == sorted(threaded)
     for node in members:
         part = [deeper for deeper in below(node) if deeper in threaded]
         depots = [deeper for deeper in part if deeper < first]
-        assert tree.size[node] == 2 * len(depots) + (node >= first)
+        assert tree.link["size"][node] == 2 * len(depots) + (node >= first)
         if node in threaded:
             place = order.index(node)
             assert sorted(order[place : place + len(part)]) == sorted(part)
-            assert tree.last[node] == order[place + len(part) - 1]
+            assert tree.thread["last"][node] == order[place + len(part) - 1]
         else:
-            assert tree.last[node] == node
+            assert tree.thread["last"][node] == node
         if node < root:
-            above = int(tree.parent[node])
-            price_there = tree.cost[above] - tree.price[tree.parent[above]]
-            assert tree.price[node] == tree.cost[node] - price_there
+            above = int(tree.link["parent"][node])
+            price_there = tree.link["cost"][above] - tree.price[tree.link["parent"][above]]
+            assert tree.price[node] == tree.link["cost"][node] - price_there
     sent = dict.fromkeys(range(problem.depots), 0)
     received = dict.fromkeys(range(problem.customers), 0)
     for node in members:
         if node == root:
             continue
         # strongly feasible: a little more can be sent to the root from everywhere
-        flow, row = int(tree.flow[node]), int(tree.row[node])
-        assert 0 <= flow <= tree.room[node]
-        assert flow > 0 if node >= first else flow < tree.room[node]
-        customer = node if node >= first else int(tree.parent[node])
-        depot = int(tree.parent[node]) if node >= first else node
+        flow, row = int(tree.link["flow"][node]), int(tree.link["row"][node])
+        assert 0 <= flow <= tree.link["room"][node]
+        assert flow > 0 if node >= first else flow < tree.link["room"][node]
+        customer = node if node >= first else int(tree.link["parent"][node])
+        depot = int(tree.link["parent"][node]) if node >= first else node
         if depot != root:
             sent[depot] += flow
         if customer != gate:
             received[customer - first] += flow
         if row != ARTIFICIAL:
-            assert (rows.depot[row], tree.cost[node]) == (depot, rows.cost[row])
+            assert (rows.depot[row], tree.link["cost"][node]) == (depot, rows.cost[row])
             assert rows.start[customer - first] <= row < rows.start[customer - first + 1]
             assert len(rows.full) == 0 or rows.full[row] == 0
     filled = dict.fromkeys(range(problem.customers), 0)
@@ -101,9 +101,9 @@ def test_every_pivot_keeps_the_tree(problem: Problem, data: st.DataObject) -> No
         eligible = []
         for row in range(problem.rows):
             node = first + int(problem.customer[row])
-            if tree.parent[node] == NOBODY or rows.cost[row] == NEVER:
+            if tree.link["parent"][node] == NOBODY or rows.cost[row] == NEVER:
                 continue
-            price_there = int(tree.cost[node]) - int(tree.price[tree.parent[node]])
+            price_there = int(tree.link["cost"][node]) - int(tree.price[tree.link["parent"][node]])
             reduced = int(rows.cost[row]) - int(tree.price[rows.depot[row]]) - price_there
             full = len(rows.full) > 0 and rows.full[row]
             if reduced > 0 if full else reduced < 0:
