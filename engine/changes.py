@@ -3,27 +3,27 @@
 from dataclasses import dataclass
 from typing import Any, Literal
 
-from engine.figures import Customer, Depot, RateKey, RateRow
+from engine.figures import Customer, Depot, Gone, RateKey, RateRow
 
-What = Literal["depot", "customer", "rate", "rule"]
+What = Literal["depot", "customer", "rate", "rule", "gone"]
 Key = str | RateKey
 
 
 @dataclass(frozen=True, slots=True)
 class Add:
-    """Put in a depot, a customer or a rate row.
+    """Put in a depot, a customer, a rate row, or a quantity that has gone.
 
-    `place` is a depot's or customer's position among its like, or the id of a rate row that was taken
+    `place` is the position among its like, or the id of a rate row that was taken
     out before and comes back; None puts it last.
     """
 
-    record: Depot | Customer | RateRow
+    record: Depot | Customer | RateRow | Gone
     place: int | None = None
 
 
 @dataclass(frozen=True, slots=True)
 class Remove:
-    """Take out a depot, a customer or a rate row."""
+    """Take out a depot, a customer, a rate row, or a quantity that was said to have gone."""
 
     what: What
     key: Key
@@ -33,7 +33,8 @@ class Remove:
 class Alter:
     """Give one field another value; for a rule, `key` is the empty string.
 
-    The field `name` of a depot or customer renames it everywhere. The lane and haulier of a rate row
+    The field `name` of a depot or customer renames it everywhere. What has gone is altered whole: take it
+    out and put it in again. The lane and haulier of a rate row
     are what names it: to alter those, remove the row and add another.
     """
 

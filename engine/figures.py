@@ -107,6 +107,23 @@ class RateRow:
 
 
 @dataclass(frozen=True, slots=True)
+class Gone:
+    """A quantity that has left: a fact. `name` tells it from others, a load number for instance.
+
+    `rate` is what is payable per unit, surcharge included, by the rate that was valid on `day`. No plan
+    moves or reprices it.
+    """
+
+    name: str
+    depot: str
+    customer: str
+    quantity: Decimal
+    rate: Decimal
+    haulier: str | None = None
+    day: date | None = None
+
+
+@dataclass(frozen=True, slots=True)
 class Rules:
     """The desk's settings for the week; `fuel_surcharge` is in percent, blank charges are 0."""
 

@@ -6,8 +6,8 @@ from decimal import Decimal
 from types import MappingProxyType
 from typing import Any
 
-from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
-from engine.figures import Customer, Depot, Hold, Order, RateKey, RateRow, Rules
+from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together, What
+from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
 from engine.rates import Rates
 
 FIELDS = {
@@ -38,6 +38,7 @@ class Week:
     rates: Rates = field(default_factory=Rates)
     rules: Rules = field(default_factory=Rules)
     holds: Mapping[RateKey, Hold] = field(default_factory=dict)
+    gone: Mapping[str, Gone] = field(default_factory=dict)
 
     @classmethod
     def of(
@@ -47,15 +48,23 @@ class Week:
         rates: Rates | tuple[RateRow, ...],
         rules: Rules | None = None,
         holds: Mapping[RateKey, Hold] | None = None,
+        gone: tuple[Gone, ...] = (),
     ) -> "Week":
         """A week of these figures; names must be distinct."""
-        for what, records in (("depot", depots), ("customer", customers)):
+        for what, records in (("depot", depots), ("customer", customers), ("gone quantity", gone)):
             names = [record.name for record in records]
             twice = next((name for name in names if names.count(name) > 1), None) if _repeats(names) else None
             if twice is not None:
                 raise Refused(f"The {what} '{twice}' is there twice.")
         table = rates if isinstance(rates, Rates) else Rates.of(rates)
-        return cls(_named(depots), _named(customers), table, rules or Rules(), MappingProxyType(holds or {}))
+        return cls(
+            _named(depots),
+            _named(customers),
+            table,
+            rules or Rules(),
+            MappingProxyType(holds or {}),
+            _named(gone),
+        )
 
     def __eq__(self, other: object) -> bool:
         if not isinstance(other, Week):
@@ -65,6 +74,7 @@ class Week:
             and list(self.customers.values()) == list(other.customers.values())
             and self.rules == other.rules
             and self.holds == other.holds
+            and list(self.gone.values()) == list(other.gone.values())
             and self.rates == other.rates
         )
 
@@ -82,7 +92,7 @@ class Week:
             case Add(record=RateRow() as row, place=place):
                 return replace(self, rates=_with_row(self.rates, row, place))
             case Add(record=record, place=place):
-                what = "depot" if isinstance(record, Depot) else "customer"
+                what = _what(record)
                 return self._with(what, _inserted(what, self._of(what), record, place))
             case Remove(what="rate", key=RateKey() as key):
                 if key in self.holds:
@@ -113,10 +123,8 @@ class Week:
             case Add(record=RateRow() as row, place=place):
                 rates = _with_row(self.rates, row, place)
                 return Remove("rate", rates.key_of(rates.end - 1 if place is None else place))
-            case Add(record=Depot() as depot):
-                return Remove("depot", depot.name)
-            case Add(record=Customer() as customer):
-                return Remove("customer", customer.name)
+            case Add(record=Depot() | Customer() | Gone() as record):
+                return Remove(_what(record), record.name)
             case Remove(what="rate", key=RateKey() as key):
                 return Add(self._rate_row(key), place=_row_id(self.rates, key))
             case Remove(what=what, key=str(name)):
@@ -144,10 +152,12 @@ class Week:
         raise Refused(f"This is no change that a week knows: {change!r}.")
 
     def _of(self, what: str) -> Mapping[str, Any]:
-        return self.depots if what == "depot" else self.customers
+        return {"depot": self.depots, "customer": self.customers, "gone": self.gone}[what]
 
     def _with(self, what: str, records: Mapping[str, Any]) -> "Week":
         frozen = MappingProxyType(records)
+        if what == "gone":
+            return replace(self, gone=frozen)
         return replace(self, depots=frozen) if what == "depot" else replace(self, customers=frozen)
 
     def _holding(self, holds: dict[RateKey, Hold]) -> "Week":
@@ -157,7 +167,7 @@ class Week:
         try:
             return self._of(what)[name]
         except KeyError:
-            raise Refused(f"There is no {what} '{name}' in the week.") from None
+            raise Refused(f"There is no {_in_words(what)} '{name}' in the week.") from None
 
     def _rate_row(self, key: RateKey) -> RateRow:
         row = self.rates.row(_row_id(self.rates, key))
@@ -167,7 +177,7 @@ class Week:
 
     def _altered(self, change: Alter) -> "Week":
         what, key, name, value = change.what, change.key, change.field, change.value
-        if name not in FIELDS[what]:
+        if name not in FIELDS.get(what, ()):
             raise Refused(f"A {what} has no figure called '{name}' that can be altered.")
         if what == "rule":
             return replace(self, rules=replace(self.rules, **{name: value}))
@@ -192,7 +202,13 @@ class Week:
             for name, record in self._of(what).items()
         }
         holds = {_key_renamed(key, what, old, new): hold for key, hold in self.holds.items()}
-        week = replace(self._with(what, renamed), rates=self.rates.renamed(what, old, new))._holding(holds)
+        gone = {
+            name: replace(record, **{what: new}) if getattr(record, what) == old else record
+            for name, record in self.gone.items()
+        }
+        week = replace(
+            self._with(what, renamed), rates=self.rates.renamed(what, old, new), gone=MappingProxyType(gone)
+        )._holding(holds)
         if what == "depot":
             tied = [c for c in self.customers.values() if c.one_depot == old]
             for customer in tied:
@@ -225,6 +241,16 @@ def describe(key: RateKey) -> str:
     return f"{key.depot} to {key.customer}{haulier}{count}"
 
 
+def _what(record: Depot | Customer | Gone) -> What:
+    if isinstance(record, Depot):
+        return "depot"
+    return "customer" if isinstance(record, Customer) else "gone"
+
+
+def _in_words(what: str) -> str:
+    return "gone quantity" if what == "gone" else what
+
+
 def _key_renamed(key: RateKey, what: str, old: str, new: str) -> RateKey:
     if getattr(key, what) != old:
         return key
@@ -252,7 +278,7 @@ def _with_row(rates: Rates, row: RateRow, place: int | None) -> Rates:
 
 def _inserted(what: str, records: Mapping[str, Any], record: Any, place: int | None) -> dict[str, Any]:
     if record.name in records:
-        raise Refused(f"There is a {what} '{record.name}' already.")
+        raise Refused(f"There is a {_in_words(what)} '{record.name}' already.")
     items = list(records.items())
     items.insert(len(items) if place is None else place, (record.name, record))
     return dict(items)

@@ -6,7 +6,7 @@ what it has).
 """
 
 from collections import defaultdict
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from decimal import Decimal
 
@@ -15,6 +15,7 @@ import numpy as np
 from engine.exact import canonical, total_of
 from engine.figures import ANY_SINGLE_DEPOT, RateKey
 from engine.findings import Finding, Severity
+from engine.planning.gone import left, remaining
 from engine.week import Week, describe
 
 RULE = "contradiction"
@@ -22,11 +23,12 @@ RULE = "contradiction"
 
 @dataclass(frozen=True, slots=True)
 class Forced:
-    """A quantity that a hold or an *at least* forces onto a rate row."""
+    """A quantity that a hold or an *at least* forces onto a rate row; `rest` is what of it has not gone."""
 
     key: RateKey
     quantity: Decimal
     held: bool
+    rest: Decimal
 
     def words(self, unit: str) -> str:
         kind = "hold" if self.held else "at least"
@@ -42,37 +44,41 @@ def contradictions(week: Week) -> tuple[Finding, ...]:
     findings = [finding for one in forced for finding in _against_one_depot(week, one)]
     if findings:
         return tuple(findings)
-    unit = week.rules.unit
-    for what, limit_word, limits in (
-        ("customer", "ordered", {name: c.ordered for name, c in week.customers.items()}),
-        ("depot", "available", {name: d.available for name, d in week.depots.items()}),
+    unit, gone = week.rules.unit, left(week)
+    for what, limit_word, limits, used in (
+        ("customer", "ordered", {name: c.ordered for name, c in week.customers.items()}, gone.customer),
+        ("depot", "available", {name: d.available for name, d in week.depots.items()}, gone.depot),
     ):
         at: dict[str, list[Forced]] = defaultdict(list)
         for one in forced:
             at[getattr(one.key, what)].append(one)
         for name, there in at.items():
-            limit = limits[name]
-            if total_of(one.quantity for one in there) > limit:
-                findings.append(_beyond(name, limit_word, limit, minimal(there, limit), unit))
+            limit = remaining(limits[name], used.get(name))
+            if total_of(one.rest for one in there) > limit:
+                has = f"{name} has {canonical(limits[name])} {unit} {limit_word}"
+                if name in used:
+                    has += f", of which {canonical(used[name])} {unit} have gone"
+                findings.append(_beyond(has, minimal(there, limit), unit))
     return tuple(findings)
 
 
 def minimal(forced: Iterable[Forced], limit: Decimal) -> list[Forced]:
     """Members that together go beyond the limit while no member less would."""
-    kept = sorted(forced, key=lambda one: one.quantity, reverse=True)
-    total = total_of(one.quantity for one in kept)
+    kept = sorted(forced, key=lambda one: one.rest, reverse=True)
+    total = total_of(one.rest for one in kept)
     for one in reversed(kept.copy()):  # the smallest first, so that few large ones remain
-        if total - one.quantity > limit:
+        if total - one.rest > limit:
             kept.remove(one)
-            total -= one.quantity
+            total -= one.rest
     return kept
 
 
 def _forced(week: Week) -> Iterable[Forced]:
     """What is forced on the rows whose depot and customer are in the week."""
+    gone = left(week).row
     for key, hold in week.holds.items():
         if key.depot in week.depots and key.customer in week.customers:
-            yield Forced(key, hold.quantity, held=True)
+            yield Forced(key, hold.quantity, True, remaining(hold.quantity, _gone_on(gone, key)))
     flat = week.rates.flat
     if "at_least" not in flat.decimals:
         return
@@ -80,7 +86,12 @@ def _forced(week: Week) -> Iterable[Forced]:
         key = week.rates.key_of(int(week.rates.ids_in_order[position]))
         least = flat.decimals["at_least"].get(int(position))
         if least and key not in week.holds and key.depot in week.depots and key.customer in week.customers:
-            yield Forced(key, least, held=False)
+            yield Forced(key, least, False, remaining(least, _gone_on(gone, key)))
+
+
+def _gone_on(gone: Mapping[tuple[str, str, str | None], Decimal], key: RateKey) -> Decimal | None:
+    """What has gone on a row; of rows alike it is counted on the first."""
+    return gone.get((key.depot, key.customer, key.haulier)) if key.number == 1 else None
 
 
 def _against_one_depot(week: Week, forced: Forced) -> Iterable[Finding]:
@@ -93,11 +104,12 @@ def _against_one_depot(week: Week, forced: Forced) -> Iterable[Finding]:
         )
 
 
-def _beyond(name: str, word: str, limit: Decimal, members: list[Forced], unit: str) -> Finding:
-    total = total_of(one.quantity for one in members)
+def _beyond(has: str, members: list[Forced], unit: str) -> Finding:
+    total = total_of(one.rest for one in members)
+    still = "still " if any(one.rest != one.quantity for one in members) or has.endswith("gone") else ""
     listed = "; ".join(one.words(unit) for one in members)
     return _finding(
-        f"{name} has {canonical(limit)} {unit} {word}, but {canonical(total)} {unit} are forced: {listed}.",
+        f"{has}, but {canonical(total)} {unit} are {still}forced: {listed}.",
         "Lower or lift any one of these, or raise the figure.",
     )
 

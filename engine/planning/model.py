@@ -16,6 +16,7 @@ from engine.figures import ANY_SINGLE_DEPOT, PRIORITIES, Customer, Depot, Rules
 from engine.network import Problem
 from engine.network.problem import UNLIMITED
 from engine.planning.aims import MUST_MOVE, Weights, weights
+from engine.planning.gone import left, remaining, superseded
 from engine.rates import RateTable
 from engine.week import Week
 
@@ -80,9 +81,10 @@ def model_of(week: Week) -> Model:
     flat = week.rates.flat
     quantity_places = _quantity_places(week, flat)
     rate, charges, money_places = _money(week, flat)
-    available = _integers((d.available for d in depots), quantity_places)
-    must_move = _integers((d.must_move for d in depots), quantity_places)
-    ordered = _integers((c.ordered for c in customers), quantity_places)
+    gone = left(week)
+    available = _integers((remaining(d.available, gone.depot.get(d.name)) for d in depots), quantity_places)
+    must_move = _integers((remaining(d.must_move, gone.depot.get(d.name)) for d in depots), quantity_places)
+    ordered = _integers((remaining(c.ordered, gone.customer.get(c.name)) for c in customers), quantity_places)
     unsent_charge, short_charge = charges[: len(depots)], charges[len(depots) :]
 
     live, customer_of_row, depot_of_row = _live_rows(week, flat)
@@ -209,6 +211,7 @@ def _quantity_places(week: Week, flat: RateTable) -> int:
     quantities = [q for d in week.depots.values() for q in (d.available, d.must_move)]
     quantities += [c.ordered for c in week.customers.values()]
     quantities += [hold.quantity for hold in week.holds.values()]
+    quantities += [gone.quantity for gone in week.gone.values()]
     if week.rules.when_short == EVEN_SHARE:
         quantities.append(step_of(week.rules))
     limits = [flat.decimals[name].places for name in ("at_least", "at_most") if name in flat.decimals]
@@ -245,7 +248,7 @@ def _indices(names: tuple[str, ...], records: Mapping[str, object]) -> Integers:
 
 
 def _limits(week: Week, flat: RateTable, places: int) -> tuple[Integers, Integers]:
-    """Least and most quantity of each row of `flat`, holds included."""
+    """Least and most still to go on each row of `flat`: limits and holds, less what has gone on it."""
     blank = DecimalColumn.blank(len(flat))
     lower = flat.decimals.get("at_least", blank).rescaled(places)
     upper = flat.decimals.get("at_most", blank).rescaled(places)
@@ -254,11 +257,24 @@ def _limits(week: Week, flat: RateTable, places: int) -> tuple[Integers, Integer
     upper[flat.closed] = 0
     for row in _rows_barred_by_one_depot(week, flat):
         upper[row] = 0
-    positions = {int(number): position for position, number in enumerate(week.rates.ids_in_order)} if week.holds else {}
+    replaced = superseded(flat)
+    upper[replaced] = 0
+    lower[replaced] = 0
+    if not week.holds and not week.gone:
+        return lower, upper
+    positions = {int(number): position for position, number in enumerate(week.rates.ids_in_order)}
     for key, hold in week.holds.items():
         number = week.rates.find(key)
         if number is not None:
             lower[positions[number]] = upper[positions[number]] = to_integer(hold.quantity, places)
+    for lane, quantity in left(week).row.items():
+        used = to_integer(quantity, places)
+        for number in week.rates.ids(*lane):
+            row = positions.get(number)
+            if row is not None and not replaced[row]:
+                lower[row] = max(0, lower[row] - used)
+                upper[row] = upper[row] if upper[row] == UNLIMITED else max(0, upper[row] - used)
+                break
     return lower, upper
 
 

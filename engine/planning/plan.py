@@ -19,7 +19,8 @@ class Shipment:
     """A quantity on a rate row.
 
     `rate` is per unit with the surcharge, never rounded; `cost` is exact; `payable` is `cost` rounded
-    half up to the currency's minor unit. `loads` is None where the row is charged per unit.
+    half up to the currency's minor unit. `loads` is None where the row is charged per unit. `gone` is the
+    name of a quantity that has left already, empty for what is still to go.
     """
 
     key: RateKey
@@ -29,6 +30,7 @@ class Shipment:
     payable: Decimal
     loads: int | None = None
     held: bool = False
+    gone: str = ""
 
     @property
     def depot(self) -> str:

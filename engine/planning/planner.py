@@ -4,12 +4,13 @@ from collections.abc import Callable
 
 import numpy as np
 
-from engine.exact import canonical, to_decimal, to_integer
+from engine.exact import canonical, to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity, by_gravity, stops
 from engine.intake.check import check_week
 from engine.money import minor_places, round_half_up
 from engine.network import Flow, least_cost
 from engine.planning.contradictions import contradictions
+from engine.planning.gone import about_gone, cost_of, key_of, used_up
 from engine.planning.model import EVEN_SHARE, Model, model_of
 from engine.planning.plan import Plan, Proof, Shipment, Short, UnitPrice, Unsent
 from engine.planning.prices import unit_prices
@@ -43,7 +44,7 @@ def plan_week(week: Week, near: Plan | None = None, progress: Progress | None = 
     tell("Checking the figures")
     found = check_week(week)
     if not stops(found):
-        found = (*found, *contradictions(week))
+        found = (*found, *about_gone(week), *used_up(week), *contradictions(week))
     if stops(found):
         raise NotPlannable(tuple(by_gravity(found)))
     tell("Building the problem")
@@ -58,32 +59,34 @@ def plan_week(week: Week, near: Plan | None = None, progress: Progress | None = 
 
 
 def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> Plan:
-    shipments = _shipments(week, model, flow)
+    gone = _gone(week)
+    shipments = (*gone, *_shipments(week, model, flow))
     short, unsent = _short(model, flow), _unsent(model, flow)
     freight, short_cost, unsent_cost = _costs(model, flow)
     minor = minor_places(week.rules.currency)
     payable = sum(to_integer(shipment.payable, minor) for shipment in shipments)
     places = model.quantity_places + model.money_places
-    finest = max(places, minor)
-    rounding = payable * 10 ** (finest - minor) - freight * 10 ** (finest - places)
     prices = unit_prices(model, flow)
+    gone_cost = total_of(one.cost for one in gone)
+    freight_cost = total_of((to_decimal(freight, places), gone_cost))
+    freight_payable = to_decimal(payable, minor)
     total = freight + short_cost + unsent_cost
     return Plan(
         week=week,
         shipments=shipments,
         short=short,
         unsent=unsent,
-        freight_cost=to_decimal(freight, places),
+        freight_cost=freight_cost,
         unsent_cost=to_decimal(unsent_cost, places),
         short_cost=to_decimal(short_cost, places),
-        total_cost=to_decimal(total, places),
-        freight_payable=to_decimal(payable, minor),
+        total_cost=total_of((to_decimal(total, places), gone_cost)),
+        freight_payable=freight_payable,
         status="short" if short else "met",
         proof=Proof(
             exact=flow.proof.exact,
-            lower_bound=to_decimal(prices.lower_bound, places),
+            lower_bound=total_of((to_decimal(prices.lower_bound, places), gone_cost)),
             gap=to_decimal(total - prices.lower_bound, places),
-            rounding=to_decimal(rounding, finest),
+            rounding=total_of((freight_payable, -freight_cost)),
         ),
         depot_prices=_named_prices(model.depots, prices.depot, model.money_places),
         customer_prices=_named_prices(model.customers, prices.customer, model.money_places),
@@ -91,6 +94,18 @@ def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> P
         model=model,
         flow=flow,
     )
+
+
+def _gone(week: Week) -> tuple[Shipment, ...]:
+    """What has gone, at the rates it went at."""
+    minor = minor_places(week.rules.currency)
+    found = []
+    for one in week.gone.values():
+        cost = cost_of(one)
+        found.append(
+            Shipment(key_of(one), one.quantity, one.rate, cost, round_half_up(cost, minor), gone=one.name)
+        )
+    return tuple(found)
 
 
 def _costs(model: Model, flow: Flow) -> tuple[int, int, int]:

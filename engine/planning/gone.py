@@ -1,0 +1,134 @@
+"""What has gone: it counts against stock, orders and limits of the whole week, and nothing moves it."""
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from datetime import date
+from decimal import Decimal
+
+import numpy as np
+
+from engine.exact import canonical, places_needed, to_decimal, to_integer
+from engine.figures import Gone, RateKey, RateRow
+from engine.findings import Finding, Severity
+from engine.rates import NO_CODE, Flags, RateTable
+from engine.week import Week, describe
+
+
+@dataclass(frozen=True, slots=True)
+class Left:
+    """Sums of what has gone: from a depot, to a customer, on a lane by a haulier."""
+
+    depot: dict[str, Decimal]
+    customer: dict[str, Decimal]
+    row: dict[tuple[str, str, str | None], Decimal]
+
+
+def left(week: Week) -> Left:
+    """What has gone, added up."""
+    sums = Left({}, {}, {})
+    for gone in week.gone.values():
+        lane = (gone.depot, gone.customer, gone.haulier)
+        sums.depot[gone.depot] = sums.depot.get(gone.depot, Decimal(0)) + gone.quantity
+        sums.customer[gone.customer] = sums.customer.get(gone.customer, Decimal(0)) + gone.quantity
+        sums.row[lane] = sums.row.get(lane, Decimal(0)) + gone.quantity
+    return sums
+
+
+def remaining(figure: Decimal | None, gone: Decimal | None) -> Decimal:
+    """What is left of a figure of the whole week, never less than nothing."""
+    return max(Decimal(0), (figure or Decimal(0)) - (gone or Decimal(0)))
+
+
+def cost_of(gone: Gone) -> Decimal:
+    """Exactly quantity times rate."""
+    quantity_places, rate_places = places_needed(gone.quantity), places_needed(gone.rate)
+    product = to_integer(gone.quantity, quantity_places) * to_integer(gone.rate, rate_places)
+    return to_decimal(product, quantity_places + rate_places)
+
+
+def rate_on(week: Week, depot: str, customer: str, haulier: str | None, day: date | None) -> Decimal | None:
+    """What a haulier charges per unit on a lane on a day, surcharge included; None where nothing is quoted.
+
+    Of several rows the one that became valid last counts; without a day, the latest of all.
+    """
+    rows = [row for row in _rows(week, depot, customer, haulier) if row.per == "unit"]
+    valid = [row for row in rows if day is None or row.valid_from is None or row.valid_from <= day]
+    if not valid:
+        return None
+    row = max(valid, key=lambda row: row.valid_from or date.min)
+    percent = row.surcharge if row.surcharge is not None else week.rules.fuel_surcharge or Decimal(0)
+    places, percent_places = places_needed(row.rate), places_needed(percent)
+    factor = 100 * 10**percent_places + to_integer(percent, percent_places)
+    return to_decimal(to_integer(row.rate, places) * factor, places + percent_places + 2)
+
+
+def superseded(flat: RateTable) -> Flags:
+    """(rows,) rates that a row of the same lane and haulier with a later *Valid from* has replaced."""
+    replaced = np.zeros(len(flat), dtype=bool)
+    if flat.valid_from is None or not (flat.valid_from != NO_CODE).any():
+        return replaced
+    order = np.lexsort((flat.valid_from, flat.haulier, flat.depot, flat.customer))
+    same = np.ones(len(order) - 1, dtype=bool)
+    for column in (flat.customer, flat.depot, flat.haulier):
+        same &= column[order[1:]] == column[order[:-1]]
+    later = same & (flat.valid_from[order[1:]] > flat.valid_from[order[:-1]])
+    dead = False
+    for place in range(len(order) - 2, -1, -1):  # from the latest of each lane and haulier backwards
+        dead = bool(same[place]) and (bool(later[place]) or dead)
+        replaced[order[place]] = dead
+    return replaced
+
+
+def about_gone(week: Week) -> Iterable[Finding]:
+    """Remarks on what has gone against what the week says."""
+    sums, unit = left(week), week.rules.unit
+    figures = (
+        ("depot", "available", sums.depot, {d.name: d.available for d in week.depots.values()}),
+        ("customer", "ordered", sums.customer, {c.name: c.ordered for c in week.customers.values()}),
+    )
+    for what, word, gone, stated in figures:
+        for name, quantity in gone.items():
+            if name not in stated:
+                yield _finding(
+                    f"{canonical(quantity)} {unit} have gone {_way(what)} {name}, which is not in the week.",
+                    f"Add the {what}, or take the quantity out.",
+                )
+            elif quantity > stated[name]:
+                yield _finding(
+                    f"{canonical(quantity)} {unit} have gone {_way(what)} {name}, but only "
+                    f"{canonical(stated[name])} {unit} are {word}.",
+                    "Ordered and Available state the whole week: raise the figure, or mend what has gone.",
+                )
+
+
+def used_up(week: Week) -> Iterable[Finding]:
+    """Limits and holds that what has gone already breaks."""
+    sums = left(week)
+    for key, hold in week.holds.items():
+        gone = sums.row.get((key.depot, key.customer, key.haulier), Decimal(0))
+        if key.number == 1 and gone > hold.quantity:
+            yield Finding(
+                Severity.STOPS,
+                "contradiction",
+                f"These figures contradict each other: {canonical(hold.quantity)} {week.rules.unit} are held on "
+                f"{describe(key)}, but {canonical(gone)} {week.rules.unit} have gone.",
+                "A hold states the whole week: raise it, or lift it.",
+            )
+
+
+def _rows(week: Week, depot: str, customer: str, haulier: str | None) -> list[RateRow]:
+    rows = (week.rates.row(number) for number in week.rates.ids(depot, customer, haulier))
+    return [row for row in rows if row is not None]
+
+
+def _way(what: str) -> str:
+    return "from" if what == "depot" else "to"
+
+
+def _finding(message: str, mend: str) -> Finding:
+    return Finding(Severity.CHECK, "gone", message, mend)
+
+
+def key_of(gone: Gone) -> RateKey:
+    """The lane and haulier as a rate key."""
+    return RateKey(gone.depot, gone.customer, gone.haulier)
