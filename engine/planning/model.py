@@ -269,8 +269,8 @@ def _limits(week: Week, flat: RateTable, places: int) -> tuple[Integers, Integer
             lower[positions[number]] = upper[positions[number]] = to_integer(hold.quantity, places)
     for lane, quantity in left(week).row.items():
         used = to_integer(quantity, places)
-        for number in week.rates.ids(*lane):
-            row = positions.get(number)
+        for one in week.rates.ids(*lane):
+            row = positions.get(one)
             if row is not None and not replaced[row]:
                 lower[row] = max(0, lower[row] - used)
                 upper[row] = upper[row] if upper[row] == UNLIMITED else max(0, upper[row] - used)

@@ -98,4 +98,4 @@ def _lower_bound(
     for row in np.flatnonzero((spare < 0) | ((spare > 0) & (lower > 0))).tolist():
         money = int(model.money[row]) - depot[problem.depot[row]] - customer[problem.customer[row]]
         bound += money * int(upper[row] if spare[row] < 0 else lower[row])
-    return bound
+    return int(bound)
