@@ -4,6 +4,7 @@ import json
 import sys
 from collections.abc import Iterable
 from pathlib import Path
+from typing import NoReturn
 
 import click
 
@@ -141,7 +142,7 @@ def _earlier(ctx: click.Context, file: Path) -> engine.Quantities:
         _refuse(ctx, [refused.finding])
 
 
-def _refuse(ctx: click.Context, findings: Iterable[Finding]) -> "click.NoReturn":  # type: ignore[name-defined]
+def _refuse(ctx: click.Context, findings: Iterable[Finding]) -> NoReturn:
     _tell(findings)
     ctx.exit(UNUSABLE)
 

@@ -1,4 +1,4 @@
-"""What a grid of figures holds between two runs of a page: its frame, what was typed, what nobody can read."""
+"""What a grid of figures holds between two runs of a page: its frame, and what nobody can read."""
 
 from dataclasses import dataclass, field, replace
 
@@ -31,9 +31,11 @@ class Draft:
 
     def _placed(self, problem: CellProblem) -> Finding:
         frame = self.draft
-        named = frame.loc[problem.row] if problem.row in frame.index else []
-        row = ", ".join(str(text) for text in list(named)[: 2 if problem.table == "rates" else 1] if text)
-        return replace(problem.finding, file="", sheet=problem.table.capitalize(), cell=f"{row}: {problem.column}")
+        named = list(frame.loc[[problem.row]].iloc[0]) if problem.row in frame.index else []
+        row = ", ".join(str(text) for text in named[: 2 if problem.table == "rates" else 1] if text)
+        return replace(
+            problem.finding, file="", sheet=problem.table.capitalize(), cell=f"{row}: {problem.column}"
+        )
 
 
 def opened(week: Week, table: str, unused: tuple[Unused, ...], style: NumberStyle) -> Draft:
@@ -57,7 +59,11 @@ def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
     for label in dict.fromkeys(problem.row for problem in draft.problems if problem.stops):
         if label not in draft.draft.index:
             continue
-        texts = {fields[name]: str(text) for name, text in draft.draft.loc[label].items() if pd.notna(text)}
+        texts = {
+            fields[str(name)]: str(text)
+            for name, text in draft.draft.loc[[label]].iloc[0].items()
+            if pd.notna(text)
+        }
         name = texts.get(columns[0].field, "")
         if name in known:
             faulty = {fields[p.column] for p in draft.problems if p.row == label}

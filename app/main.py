@@ -40,7 +40,9 @@ def toolbar(state: Desk) -> None:
             f"{counted(len(state.week.rates), 'rate')} · "
             + (f"{counted(made, 'change')} since it was opened" if made else "as it was opened")
         )
-        if st.button("↶ Undo", disabled=state.history.can_undo is None, key="undo", help="Take the last change back"):
+        if st.button(
+            "↶ Undo", disabled=state.history.can_undo is None, key="undo", help="Take the last change back"
+        ):
             state.undo()
             st.rerun()
         if st.button("↷ Redo", disabled=state.history.can_redo is None, key="redo", help="Make it again"):

@@ -91,7 +91,7 @@ class Week:
         match change:
             case Add(record=RateRow() as row, place=place):
                 return replace(self, rates=_with_row(self.rates, row, place))
-            case Add(record=record, place=place):
+            case Add(record=Depot() | Customer() | Gone() as record, place=place):
                 what = _what(record)
                 return self._with(what, _inserted(what, self._of(what), record, place))
             case Remove(what="rate", key=RateKey() as key):
@@ -202,10 +202,7 @@ class Week:
             for name, record in self._of(what).items()
         }
         holds = {_key_renamed(key, what, old, new): hold for key, hold in self.holds.items()}
-        gone = {
-            name: replace(record, **{what: new}) if getattr(record, what) == old else record
-            for name, record in self.gone.items()
-        }
+        gone = {name: _gone_renamed(record, what, old, new) for name, record in self.gone.items()}
         week = replace(
             self._with(what, renamed), rates=self.rates.renamed(what, old, new), gone=MappingProxyType(gone)
         )._holding(holds)
@@ -255,6 +252,12 @@ def _key_renamed(key: RateKey, what: str, old: str, new: str) -> RateKey:
     if getattr(key, what) != old:
         return key
     return key._replace(depot=new) if what == "depot" else key._replace(customer=new)
+
+
+def _gone_renamed(gone: Gone, what: str, old: str, new: str) -> Gone:
+    if getattr(gone, what) != old:
+        return gone
+    return replace(gone, depot=new) if what == "depot" else replace(gone, customer=new)
 
 
 def _repeats(names: list[str]) -> bool:

@@ -47,7 +47,9 @@ def opening(state: Desk) -> None:
         key=f"upload-{state.uploads}",
     )
     left, right, _ = st.columns([2, 2, 3])
-    if left.button("Open the sample week", width="stretch", type="primary" if state.week.is_empty else "secondary"):
+    if left.button(
+        "Open the sample week", width="stretch", type="primary" if state.week.is_empty else "secondary"
+    ):
         open_sample(state)
         st.rerun()
     right.download_button(

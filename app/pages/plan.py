@@ -21,7 +21,9 @@ else:
         (st.error if kind == "error" else st.success)(plain(text))
         state.message = None
     if plan is None:
-        st.error("This week cannot be planned as it stands. Mend what is listed here, or undo the last change.")
+        st.error(
+            "This week cannot be planned as it stands. Mend what is listed here, or undo the last change."
+        )
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)

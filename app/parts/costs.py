@@ -11,8 +11,13 @@ def cost_line(plan: Plan, mark: str) -> None:
     """Freight payable, what is delivered, short and unsent, and the charges that are not freight."""
     rules, sums = plan.week.rules, totals(plan)
     freight, delivered, short, unsent = st.columns(4)
-    freight.metric(f"Freight payable, {rules.currency}", money(plan.freight_payable, rules.currency, mark)[: -len(rules.currency) - 1])
-    delivered.metric(f"Delivered, {rules.unit}", number(sums.delivered, mark), help="Of what was ordered this week")
+    freight.metric(
+        f"Freight payable, {rules.currency}",
+        money(plan.freight_payable, rules.currency, mark)[: -len(rules.currency) - 1],
+    )
+    delivered.metric(
+        f"Delivered, {rules.unit}", number(sums.delivered, mark), help="Of what was ordered this week"
+    )
     short.metric(f"Short, {rules.unit}", number(sums.short, mark))
     unsent.metric(f"Unsent, {rules.unit}", number(sums.unsent, mark))
     st.caption(

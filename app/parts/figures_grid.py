@@ -1,7 +1,10 @@
 """A table of figures as a grid of text: what is typed goes through our own reader and becomes changes."""
 
+from typing import Literal
+
 import pandas as pd
 import streamlit as st
+from streamlit.elements.lib.column_types import ColumnConfig
 
 from app.parts.words import plain
 from app.session import Desk
@@ -20,8 +23,8 @@ def figures_grid(state: Desk, table: str) -> None:
     """Depots, customers or rates; rows can be added, pasted and taken out."""
     if table == "rates" and len(state.week.rates) > MOST_ROWS:
         st.info(
-            f"{len(state.week.rates):,} rates are too many for a grid: mend them in your spreadsheet and open "
-            "it again. Quantities, closed rows and holds of single lanes are on *Plan*."
+            f"{len(state.week.rates):,} rates are too many for a grid: mend them in your spreadsheet and "
+            "open it again. Quantities, closed rows and holds of single lanes are on *Plan*."
         )
         return
     columns = GRID_COLUMNS[table]
@@ -31,14 +34,14 @@ def figures_grid(state: Desk, table: str) -> None:
 def rules_grid(state: Desk) -> None:
     """The desk's settings for the week, one a row."""
     st.caption("When short is *charge*, *priority* or *even share*.")
-    config = {
+    config: dict[str, ColumnConfig] = {
         "Rule": st.column_config.TextColumn("Rule", disabled=True),
         "Value": st.column_config.TextColumn("Value"),
     }
     _grid(state, "rules", config, "fixed")
 
 
-def _config(column: Column) -> object:
+def _config(column: Column) -> ColumnConfig:
     return st.column_config.TextColumn(
         column.heading,
         help=column.about,
@@ -47,7 +50,9 @@ def _config(column: Column) -> object:
     )
 
 
-def _grid(state: Desk, table: str, config: dict[str, object], rows: str) -> None:
+def _grid(
+    state: Desk, table: str, config: dict[str, ColumnConfig], rows: Literal["fixed", "dynamic"]
+) -> None:
     key = f"{table}-{state.generation}"
     kept = state.grid(table)
     if kept.key != key or key not in st.session_state:
@@ -57,10 +62,10 @@ def _grid(state: Desk, table: str, config: dict[str, object], rows: str) -> None
     edited = st.data_editor(
         kept.base,
         key=key,
-        num_rows=rows,  # type: ignore[arg-type]
+        num_rows=rows,
         hide_index=True,
         height=520,
-        column_config=config,  # type: ignore[arg-type]
+        column_config=config,
         alt=f"{table.capitalize()} of the week",
     )
     if edited.equals(kept.draft):
@@ -70,7 +75,7 @@ def _grid(state: Desk, table: str, config: dict[str, object], rows: str) -> None
 
 
 def _take_edits(state: Desk, table: str, edited: pd.DataFrame) -> None:
-    """What differs from the last draft, as one change; what cannot be read stays on screen, with a finding."""
+    """What differs from the last draft, as one change; what cannot be read stays on screen."""
     kept = state.grid(table)
     changes, problems = changes_between(state.week, table, kept.draft, edited, state.style)
     kept.draft, kept.problems = edited, tuple(problems)

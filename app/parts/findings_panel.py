@@ -26,9 +26,8 @@ def findings_panel(findings: Sequence[Finding], key: str) -> None:
     for finding in ordered[:SHOWN]:
         place = f" · {plain(finding.place)}" if finding.place else ""
         mend = f" *{plain(finding.mend)}*" if finding.mend else ""
-        st.markdown(
-            f"{SIGNS[finding.severity]} **{WORDS[finding.severity]}**{place}  \n{plain(finding.message)}{mend}"
-        )
+        sign = f"{SIGNS[finding.severity]} **{WORDS[finding.severity]}**"
+        st.markdown(f"{sign}{place}  \n{plain(finding.message)}{mend}")
     if len(ordered) > SHOWN:
         with st.expander(f"All {len(ordered)} findings"):
             st.dataframe(

@@ -42,7 +42,9 @@ def shipments_grid(state: Desk, plan: Plan) -> None:
         view.by,
     )
     if len(shown) > MOST_ROWS:
-        st.caption(f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {view.by} to see all of its rows.")
+        st.caption(
+            f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {view.by} to see all of its rows."
+        )
         shown = shown[:MOST_ROWS]
     base = _frame(state, plan, shown, view.by)
     key = f"shipments-{state.generation}-{view.by}-{view.name}-{view.unused}"
@@ -122,9 +124,7 @@ def _send(lane: Lane, state: Desk) -> str:
     return show_field(SEND, lane.quantity, state.style)
 
 
-def _take_edits(
-    state: Desk, plan: Plan, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame
-) -> None:
+def _take_edits(state: Desk, plan: Plan, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame) -> None:
     """Turn what differs from the plan into one change, and plan again."""
     changes: list[Change] = []
     refused: list[Finding] = []
@@ -176,5 +176,7 @@ def _what_happened(state: Desk, before: Plan, change: Change) -> str:
         return "Done."
     currency, mark = after.week.rules.currency, state.decimal_mark
     verb = {SetHold: "Held", Lift: "Lifted"}.get(type(change), "Done")
-    return f"{verb}. Freight payable was {money(before.freight_payable, currency, mark)}, now " \
-           f"{money(after.freight_payable, currency, mark)}."
+    return (
+        f"{verb}. Freight payable was {money(before.freight_payable, currency, mark)}, now "
+        f"{money(after.freight_payable, currency, mark)}."
+    )

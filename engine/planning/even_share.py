@@ -106,9 +106,7 @@ def rounded(
     ]
     missing = [q - low for q, low in zip(exact, least, strict=True)]
     class_of = {j: number for number, members in enumerate(classes) for j in members}
-    line = sorted(
-        (j for j in class_of if missing[j] > 0), key=lambda j: (class_of[j], -missing[j], j)
-    )
+    line = sorted((j for j in class_of if missing[j] > 0), key=lambda j: (class_of[j], -missing[j], j))
     most, worth = least.copy(), [0] * len(ordered)
     for place, j in enumerate(line):
         most[j] = min(ordered[j], least[j] + step)
@@ -161,7 +159,9 @@ def tightest_cut(sharing: Sharing, free: Integers, needs: list[int], scale: int 
     free: (depots,) grains beyond what is forced; needs: by customer, in grains times `scale`, likewise.
     """
     if sum(free.tolist()) * scale + sum(needs) > LARGEST // 4:
-        raise TooLarge("The even shares have too many digits to be found exactly: use a coarser step or unit.")
+        raise TooLarge(
+            "The even shares have too many digits to be found exactly: use a coarser step or unit."
+        )
     wanted = np.array(needs, dtype=np.int64)
     wide = sharing.room > sum(free.tolist())  # such a row limits nothing
     room = np.where(wide, UNLIMITED, np.where(wide, 0, sharing.room) * scale)

@@ -110,8 +110,8 @@ def used_up(week: Week) -> Iterable[Finding]:
             yield Finding(
                 Severity.STOPS,
                 "contradiction",
-                f"These figures contradict each other: {canonical(hold.quantity)} {week.rules.unit} are held on "
-                f"{describe(key)}, but {canonical(gone)} {week.rules.unit} have gone.",
+                f"These figures contradict each other: {canonical(hold.quantity)} {week.rules.unit} are held "
+                f"on {describe(key)}, but {canonical(gone)} {week.rules.unit} have gone.",
                 "A hold states the whole week: raise it, or lift it.",
             )
 

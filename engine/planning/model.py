@@ -96,9 +96,7 @@ def model_of(week: Week) -> Model:
         {priority_of(c) for c in customers if not c.may_decline},
         must_move=len(must) > 0,
     )
-    short_weight = np.array(
-        [0 if c.may_decline else aims[priority_of(c)] for c in customers], dtype=np.int64
-    )
+    short_weight = np.array([0 if c.may_decline else aims[priority_of(c)] for c in customers], dtype=np.int64)
 
     rows = len(live) + len(customers) + len(depots) + len(must) + 1
     counts = np.bincount(customer_of_row, minlength=len(customers)) + 1
@@ -186,7 +184,9 @@ def rates_with_surcharge(flat: RateTable, rules: Rules) -> DecimalColumn:
     factor = percent + 100 * 10**places
     largest = int(np.abs(flat.rate.values).max(initial=0)) * int(np.abs(factor).max(initial=0))
     if largest > LARGEST:
-        raise TooLarge("A rate with its surcharge has too many digits to be kept exactly: use fewer decimals.")
+        raise TooLarge(
+            "A rate with its surcharge has too many digits to be kept exactly: use fewer decimals."
+        )
     return _trimmed(DecimalColumn(flat.rate.values * factor, flat.rate.places + places + 2))
 
 
@@ -270,8 +270,7 @@ def _limits(week: Week, flat: RateTable, places: int) -> tuple[Integers, Integer
     for lane, quantity in left(week).row.items():
         used = to_integer(quantity, places)
         for one in week.rates.ids(*lane):
-            row = positions.get(one)
-            if row is not None and not replaced[row]:
+            if one in positions and not replaced[row := positions[one]]:
                 lower[row] = max(0, lower[row] - used)
                 upper[row] = upper[row] if upper[row] == UNLIMITED else max(0, upper[row] - used)
                 break

@@ -7,6 +7,7 @@ import numpy as np
 from engine.exact import canonical, to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity, by_gravity, stops
 from engine.intake.check import check_week
+from engine.intake.earlier import Quantities
 from engine.money import minor_places, round_half_up
 from engine.network import Flow, least_cost
 from engine.planning.contradictions import contradictions
@@ -28,7 +29,7 @@ class NotPlannable(ValueError):
         super().__init__(" ".join(f.message for f in findings if f.severity is Severity.STOPS))
 
 
-def plan_week(week: Week, near: Plan | None = None, progress: Progress | None = None) -> Plan:
+def plan_week(week: Week, near: Plan | Quantities | None = None, progress: Progress | None = None) -> Plan:
     """The plan of least cost that serves the aims in order (see `engine.planning.aims`), proved.
 
     Args:
@@ -120,7 +121,9 @@ def _costs(model: Model, flow: Flow) -> tuple[int, int, int]:
 
 
 def _named_prices(names: tuple[str, ...], prices: list[int], places: int) -> tuple[UnitPrice, ...]:
-    return tuple(UnitPrice(name, to_decimal(price, places)) for name, price in zip(names, prices, strict=True))
+    return tuple(
+        UnitPrice(name, to_decimal(price, places)) for name, price in zip(names, prices, strict=True)
+    )
 
 
 def _shipments(week: Week, model: Model, flow: Flow) -> tuple[Shipment, ...]:

@@ -108,7 +108,9 @@ def _groups(
 ) -> Iterable[tuple[set[int], set[int]]]:
     """The cut's customers and depots in parts that share no row."""
     reached_by: dict[int, set[int]] = {j: set() for j in customers}
-    for j, i, room in zip(sharing.customer.tolist(), sharing.depot.tolist(), sharing.room.tolist(), strict=True):
+    for j, i, room in zip(
+        sharing.customer.tolist(), sharing.depot.tolist(), sharing.room.tolist(), strict=True
+    ):
         if j in reached_by and i in depots and room:
             reached_by[j].add(i)
     left = dict(sorted(reached_by.items()))
@@ -125,9 +127,7 @@ def _groups(
         yield members, group
 
 
-def _group(
-    model: Model, sharing: Sharing, needs: Integers, members: set[int], depots: set[int]
-) -> Shortage:
+def _group(model: Model, sharing: Sharing, needs: Integers, members: set[int], depots: set[int]) -> Shortage:
     inside = np.isin(sharing.customer, list(members)) & ~np.isin(sharing.depot, list(depots))
     limited = inside & (sharing.room > 0)
     forced = sum(int(sharing.forced[j]) for j in members)

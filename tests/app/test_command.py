@@ -87,7 +87,11 @@ def test_a_contradiction_is_status_2_and_named(tmp_path: Path) -> None:
     customers, rates = book.create_sheet("Customers"), book.create_sheet("Rates")
     for row in (["Customer", "Ordered"], ["Elm", 20]):
         customers.append(row)
-    for row in (["Depot", "Customer", "Rate", "At least"], ["Quarry", "Elm", 3, 8], ["Harbour", "Elm", 4, None]):
+    for row in (
+        ["Depot", "Customer", "Rate", "At least"],
+        ["Quarry", "Elm", 3, 8],
+        ["Harbour", "Elm", 4, None],
+    ):
         rates.append(row)
     week = tmp_path / "week.xlsx"
     book.save(week)

@@ -32,7 +32,9 @@ def with_sample(name: str = sample_data.SMALL_WEEK) -> Desk:
 
 
 @pytest.mark.parametrize("name", PAGES)
-@pytest.mark.parametrize("sample", [None, sample_data.SMALL_WEEK, sample_data.MESSY_WEEK, sample_data.LARGE_WEEK])
+@pytest.mark.parametrize(
+    "sample", [None, sample_data.SMALL_WEEK, sample_data.MESSY_WEEK, sample_data.LARGE_WEEK]
+)
 def test_every_page_stands_with_every_week(name: str, sample: str | None) -> None:
     page(name, with_sample(sample) if sample else Desk())
 
@@ -79,7 +81,11 @@ def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None
     state = with_sample()
     test = page("pages/figures.py", state)
     key = f"depots-{state.generation}"
-    test.session_state[key] = {"edited_rows": {0: {"Available": "a lot"}}, "added_rows": [], "deleted_rows": []}
+    test.session_state[key] = {
+        "edited_rows": {0: {"Available": "a lot"}},
+        "added_rows": [],
+        "deleted_rows": [],
+    }
     test.run()
     assert not test.exception
     assert state.grid("depots").draft.iloc[0]["Available"] == "a lot"

@@ -71,7 +71,9 @@ def test_from_spreadsheet_to_workbook(page: Page, requests: list[str], tmp_path:
     target = tmp_path / "plan.xlsx"
     download.value.save_as(target)
     book = openpyxl.load_workbook(target)
-    assert {"Plan", "By depot", "By customer", "By haulier", "Costs", "Notes", "Rates"} <= set(book.sheetnames)
+    assert {"Plan", "By depot", "By customer", "By haulier", "Costs", "Notes", "Rates"} <= set(
+        book.sheetnames
+    )
     read_back = engine.read_week(target).week
     assert len(read_back.holds) == 1
     assert engine.plan_week(read_back).freight_payable == held

@@ -17,6 +17,7 @@ ROOMS = [
     "engine.intake",
     "engine.history",
     "engine.week",
+    "engine.touch",
     "engine.changes",
     "engine.rates",
     "engine.columns",
@@ -63,7 +64,9 @@ def test_imports_run_downwards(path: Path) -> None:
 
 @pytest.mark.parametrize("path", [p for p in MODULES if "engine" in p.parts], ids=str)
 def test_the_engine_knows_no_browser(path: Path) -> None:
-    assert not any(name.split(".")[0] in {"streamlit", "app", "pydeck", "altair", "click"} for name in imported(path))
+    assert not any(
+        name.split(".")[0] in {"streamlit", "app", "pydeck", "altair", "click"} for name in imported(path)
+    )
 
 
 def test_every_room_is_there_to_be_checked() -> None:
