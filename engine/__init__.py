@@ -1,8 +1,6 @@
 """Plans a freight desk's week: everything that can be used without a browser.
 
-    reading = engine.read_week("week.xlsx")
-    plan = engine.plan_week(reading.week)
-    engine.write_workbook(plan, "plan.xlsx")
+``read_week`` reads spreadsheets, ``plan_week`` plans what was read, ``write_workbook`` hands it over.
 """
 
 from engine.exact import TooLarge
