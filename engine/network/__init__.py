@@ -3,7 +3,7 @@
 from engine.network.flow import Contradiction, Cut, Flow
 from engine.network.problem import UNLIMITED, Problem
 from engine.network.proof import NotProved, Proof, prove
-from engine.network.solve import least_cost
+from engine.network.solve import least_cost, prepare
 
 __all__ = [
     "UNLIMITED",
@@ -14,5 +14,6 @@ __all__ = [
     "Problem",
     "Proof",
     "least_cost",
+    "prepare",
     "prove",
 ]

@@ -107,7 +107,7 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
         if rows.kind[j] & LIMITED:
             home[j] = SEVERAL
             if not fill_limited(rows, state, j):
-                return j
+                return int(j)
             gap[n] = gap_limited(rows, state, j)
             continue
         cheapest, second = FAR, FAR
@@ -128,7 +128,7 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
             home[j] = SEVERAL
             flow[first:last] = 0
         elif first == last:
-            return j
+            return int(j)
         elif fresh and second > cheapest:
             at = first
             while cost[at] - price[depot[at]] != cheapest:

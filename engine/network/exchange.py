@@ -58,14 +58,17 @@ def solve(
 
     price:    (depots,) prices to start from
     quantity: (rows,) quantities to start from, as far as they suit the prices; None to start afresh
-    Raises Contradiction if there is no flow, TooLarge if prices could leave int64.
+    Raises Contradiction with the cut if there is no flow, TooLarge if prices could leave int64.
     """
     _check_reach(problem)
     rows = _without_lower_limits(problem)
+    if quantity is None:
+        flow = np.zeros(problem.rows, dtype=np.int64)
+    elif problem.at_least is None:
+        flow = quantity.copy()
+    else:
+        flow = np.maximum(quantity - problem.at_least, 0)
     depots = problem.depots
-    flow = np.zeros(problem.rows, dtype=np.int64)
-    if quantity is not None:
-        flow += quantity if problem.at_least is None else np.maximum(quantity - problem.at_least, 0)
     state = State(
         flow,
         price.copy(),
@@ -249,7 +252,7 @@ def slack_for(gap: Integers, wanted: int) -> int:
             some[place] = some[place - 1]
             place -= 1
         some[place] = here
-    return some[wanted * count // len(gap)]
+    return int(some[wanted * count // len(gap)])
 
 
 @kernel

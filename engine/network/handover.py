@@ -191,14 +191,14 @@ def row_from(rows: Rows, j: int, k: int) -> int:
     """The row from depot k to customer j whose rows are in the order of depots, -1 if there is none."""
     low, high = rows.start[j], rows.start[j + 1]
     if high - low == len(rows.supply):
-        return low + k
+        return int(low + k)
     while low < high:
         middle = (low + high) // 2
         if rows.depot[middle] < k:
             low = middle + 1
         else:
             high = middle
-    return low if low < rows.start[j + 1] and rows.depot[low] == k else -1
+    return int(low) if low < rows.start[j + 1] and rows.depot[low] == k else -1
 
 
 @part
@@ -209,9 +209,9 @@ def row_with_room(rows: Rows, state: State, j: int, k: int) -> int:
     limited = rows.kind[j] & LIMITED
     chosen, least = -1, FAR
     for row in range(rows.start[j], rows.start[j + 1]):
-        if rows.depot[row] == k and rows.cost[row] < least:
-            if not (limited and state.flow[row] == rows.room[row]):
-                chosen, least = row, rows.cost[row]
+        full = limited and state.flow[row] == rows.room[row]
+        if rows.depot[row] == k and rows.cost[row] < least and not full:
+            chosen, least = row, rows.cost[row]
     return chosen
 
 

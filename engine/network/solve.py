@@ -2,22 +2,65 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 import numpy as np
 
-from engine.network.exchange import solve
-from engine.network.flow import Flow
+from engine.exact import Integers
+from engine.network import exchange
+from engine.network.flow import Flow, Method
 from engine.network.problem import Problem
 from engine.network.proof import prove
+from engine.network.restart import guess_from
+
+Solver = Callable[[Problem, Integers, Integers | None], tuple[Integers, Integers, Integers]]
+
+FEW_DEPOTS = 250
+"""Up to so many depots the exchange is faster than the simplex on whatever number of customers (measured)."""
+
+MANY_CUSTOMERS = 40
+"""With more depots it still is from so many customers per depot on (measured)."""
 
 
 def least_cost(problem: Problem, start: Flow | None = None) -> Flow:
     """A least-cost flow of `problem`, proved in integers before it is returned.
 
-    start: an earlier flow, of this or a changed problem, whose prices and quantities are reused
+    start: an earlier flow, of this or a changed problem, whose prices and quantities are reused as far as
+           they fit; the answer costs the same without it
     Raises Contradiction, with the cut, if no flow keeps all sums and limits; TooLarge if numbers are so
     large that the arithmetic could leave int64.
     """
-    price = np.zeros(problem.depots, dtype=np.int64)
-    quantity, depot_price, customer_price = solve(problem, price, None)
+    price, quantity = guess_from(problem, start)
+    method = method_for(problem)
+    solve = exchange.solve if method == "exchange" else _simplex()
+    quantity, depot_price, customer_price = solve(problem, price, quantity)
     proof = prove(problem, quantity, depot_price, customer_price)
-    return Flow(problem, quantity, depot_price, customer_price, proof, "exchange")
+    return Flow(problem, quantity, depot_price, customer_price, proof, method)
+
+
+def _simplex() -> Solver:
+    """The simplex is compiled when its module is imported, so not before it is needed."""
+    from engine.network import simplex
+
+    return simplex.solve
+
+
+def method_for(problem: Problem) -> Method:
+    """The kernel that is faster on problems of this shape."""
+    few = problem.depots <= FEW_DEPOTS
+    return "exchange" if few or problem.customers >= MANY_CUSTOMERS * problem.depots else "simplex"
+
+
+def prepare() -> None:
+    """Compiles all kernels, or loads them from the user's cache folder: some seconds the very first time.
+
+    The first solve would do the same. Other threads may go on meanwhile, and may solve: they wait.
+    """
+    supply, demand, cost = np.array([2, 1]), np.array([1, 2]), np.array([[1, 2], [3, 5]])
+    problem = Problem.dense(supply, demand, cost)
+    limits = np.zeros(4, dtype=np.int64)
+    limited = Problem(
+        supply, demand, problem.start, problem.depot, problem.cost, at_least=limits, at_most=limits + 9
+    )
+    flow = least_cost(limited, least_cost(problem))
+    prove(problem, *_simplex()(problem, flow.depot_price, flow.quantity))
