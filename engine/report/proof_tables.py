@@ -36,7 +36,7 @@ CUSTOMER_HEADINGS = (
 RATE_HEADINGS = (
     "Rate row", "Depot", "Customer", "Haulier", "Send", "Rate with surcharge", "Depot price",
     "Customer price", "Rate less prices", "Limit below", "Limit above", "Check", "Exact cost",
-    "Payable", "Forced", "Before cost", None,
+    "Payable", "Forced", "Before cost", "Depot no.",
 )  # fmt: skip
 
 
@@ -188,7 +188,7 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
     """Every listed rate row: what goes on it, its rate less prices, and whether it could improve the plan."""
     model, problem, q, m = plan.model, plan.model.problem, layout.places.quantity, layout.places.money
     yield from _head("Rate rows" if layout.every_row else "Rate rows that are used", RATE_HEADINGS)
-    styles = _styles(plan, layout, "n___qmmmmqqctptn_")
+    styles = _styles(plan, layout, "n___qmmmmqqctptnn")
     flat, barred, held = plan.week.rates.flat, _barred(plan), forced(model, figures)
     aims, codes = figures.aims_matter, check_codes(plan, figures)
     on_row, send = layout.on_plan("Rate row"), layout.on_plan("Send")
@@ -232,6 +232,7 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
                 else None,
                 Formula(worth, _cost(model, int(held[row]) * int(figures.money[row]))) if limited else None,
                 Formula(f"-$P${depot_row}-$P${customer_row}", int(figures.aims[row])) if aims else None,
+                i + 1,
             ],
             styles,
         )
@@ -308,8 +309,8 @@ def _link(layout: Layout, formula: str, value: float | str) -> Value:
 def _sent(layout: Layout, row: int, value: float) -> Value:
     if layout.rates[1] < layout.rates[0]:
         return 0
-    names, quantities = layout.range("B", layout.rates), layout.range("E", layout.rates)
-    return Formula(f"SUMPRODUCT(EXACT({names},B{row})*{quantities})", value)
+    numbers, quantities = layout.range("Q", layout.rates), layout.range("E", layout.rates)
+    return Formula(f"SUMIF({numbers},A{row},{quantities})", value)  # by number: names may hold wildcards
 
 
 def _sum(where: str, value: float) -> Formula:

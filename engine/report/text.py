@@ -25,7 +25,7 @@ def cell_text(text: str) -> str:
     XML 1.0 (W3C), production 2, says which characters are allowed; a carriage return would come back
     as a line feed, so it is written as one.
     """
-    text = _NOT_IN_XML.sub("\ufffd", text.replace("\r\n", "\n").replace("\r", "\n"))
+    text = _clean(text)
     return text if _length(text) <= LONGEST_CELL else _cut(text, LONGEST_CELL - 1) + "…"
 
 
@@ -39,7 +39,7 @@ def csv_text(text: str) -> str:
 
     A CSV file has no types, so the text itself has to say that it is text (OWASP, CSV injection).
     """
-    text = text.replace("\x00", "\ufffd")
+    text = _clean(text)
     return f"'{text}" if starts_a_formula(text.lstrip(" \u00a0")) else text
 
 
@@ -69,6 +69,10 @@ def header_text(text: str) -> str:
     short = cell_text(text).replace("\n", " ")
     short = short if len(short) <= 60 else short[:59] + "…"
     return " " + short.replace("&", "&&")
+
+
+def _clean(text: str) -> str:
+    return _NOT_IN_XML.sub("\ufffd", text.replace("\r\n", "\n").replace("\r", "\n"))
 
 
 def _length(text: str) -> int:
