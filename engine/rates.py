@@ -237,11 +237,23 @@ class Rates:
             overlay[number] = replace(row, **named)
         return replace(self, table=replace(self.table, **names), overlay=MappingProxyType(overlay))
 
-    def name_used(self, what: str, name: str) -> bool:
-        """Whether any row, ever, names this depot or customer."""
-        return name in getattr(self.table, f"{what}_names") or any(
-            getattr(row, what) == name for row in self.overlay.values()
-        )
+    def name_used(self, what: str, name: str, instead_of: str) -> bool:
+        """Whether rows stand in the way of calling the depot or customer `instead_of` by this name.
+
+        Rows that name it do; of those taken out again only the ones that would come to stand before rows of
+        `instead_of`, which would then be counted otherwise.
+        """
+        if name in getattr(self.table, f"{what}_names"):
+            return True
+        for number, row in self.overlay.items():
+            if getattr(row, what) != name:
+                continue
+            if number not in self.removed:
+                return True
+            lane = {"depot": row.depot, "customer": row.customer, what: instead_of}
+            if any(other > number for other in self.ids(lane["depot"], lane["customer"], row.haulier)):
+                return True
+        return False
 
     @cached_property
     def ids_in_order(self) -> npt.NDArray[np.int64]:

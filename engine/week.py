@@ -195,7 +195,7 @@ class Week:
             return self
         if new in self._of(what):
             raise Refused(f"There is a {what} '{new}' already: two of one name cannot be told apart.")
-        if self.rates.name_used(what, new):
+        if self.rates.name_used(what, new, instead_of=old):
             raise Refused(f"Rate rows name a {what} '{new}' already: rename or take out those rows first.")
         renamed = {
             (new if name == old else name): (replace(record, name=new) if name == old else record)

@@ -171,3 +171,12 @@ def test_a_new_change_ends_redo() -> None:
     assert len(history.entries) == 3
     with pytest.raises(Refused, match="nothing to redo"):
         history.redo()
+
+
+def test_a_renaming_is_undone_after_a_row_of_the_old_name_was_added_and_undone() -> None:
+    history = History.of(small_week())
+    history = history.after(Alter("depot", "Quarry", "name", "Pit"))
+    history = history.after(Add(RateRow("Quarry", "Birch", D(2))))
+    history = history.undo().undo()
+    assert history.week == small_week()
+    assert [row.depot for row in history.redo().redo().week.rates][-1] == "Quarry"
