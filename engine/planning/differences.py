@@ -1,0 +1,101 @@
+"""What differs between two plans, row by row, and what a change would make of a plan before it is made."""
+
+from dataclasses import dataclass
+from decimal import Decimal
+
+from engine.changes import Change
+from engine.exact import TooLarge, canonical, total_of
+from engine.figures import RateKey
+from engine.findings import Finding, Severity
+from engine.planning.plan import Plan
+from engine.planning.planner import NotPlannable, plan_week
+from engine.week import Refused, Week, describe
+
+
+@dataclass(frozen=True, slots=True)
+class RowDifference:
+    """A rate row that carries another quantity in the second plan."""
+
+    key: RateKey
+    before: Decimal
+    after: Decimal
+
+    @property
+    def more(self) -> Decimal:
+        """What is added; negative where something is taken away."""
+        return total_of((self.after, -self.before))
+
+    def words(self, unit: str) -> str:
+        """The difference for a person: who sends what more or less to whom."""
+        more = self.more
+        word = "more" if more > 0 else "less"
+        return f"{canonical(abs(more))} {unit} {word} from {describe(self.key)}"
+
+
+@dataclass(frozen=True, slots=True)
+class Difference:
+    """The second plan against the first: positive is dearer, or more.
+
+    `rows` are the rate rows that changed, the largest change first; `to_ring` the depots, customers and
+    hauliers that they concern.
+    """
+
+    freight_payable: Decimal
+    charges: Decimal
+    short: Decimal
+    rows: tuple[RowDifference, ...]
+
+    @property
+    def to_ring(self) -> tuple[str, ...]:
+        """Whom to ring: every depot, customer and haulier of a changed row, once, in order."""
+        names = [name for row in self.rows for name in (row.key.depot, row.key.customer, row.key.haulier)]
+        return tuple(dict.fromkeys(name for name in names if name))
+
+
+def difference(before: Plan, after: Plan) -> Difference:
+    """What the second plan does otherwise than the first."""
+    first, second = (_by_row(plan) for plan in (before, after))
+    rows = [
+        RowDifference(key, first.get(key, Decimal(0)), second.get(key, Decimal(0)))
+        for key in dict.fromkeys([*first, *second])
+        if first.get(key, Decimal(0)) != second.get(key, Decimal(0))
+    ]
+    return Difference(
+        freight_payable=total_of((after.freight_payable, -before.freight_payable)),
+        charges=total_of((after.short_cost, after.unsent_cost, -before.short_cost, -before.unsent_cost)),
+        short=total_of([*(s.quantity for s in after.short), *(-s.quantity for s in before.short)]),
+        rows=tuple(sorted(rows, key=lambda row: -abs(row.more))),
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class Outcome:
+    """What a change would lead to: a plan and its difference, or the findings that stand in the way."""
+
+    week: Week
+    plan: Plan | None
+    difference: Difference | None
+    findings: tuple[Finding, ...] = ()
+
+
+def outcome(plan: Plan, change: Change) -> Outcome:
+    """What a change to a plan's week would cost and move, and whether it can be done at all."""
+    try:
+        week = plan.week.apply(change)
+    except Refused as refused:
+        return Outcome(plan.week, None, None, (Finding(Severity.STOPS, "refused", str(refused)),))
+    try:
+        after = plan_week(week, near=plan)
+    except NotPlannable as stopped:
+        return Outcome(week, None, None, stopped.findings)
+    except TooLarge as too_large:
+        return Outcome(week, None, None, (Finding(Severity.STOPS, "too large", str(too_large)),))
+    return Outcome(week, after, difference(plan, after))
+
+
+def _by_row(plan: Plan) -> dict[RateKey, Decimal]:
+    """Quantities by rate row; what has gone on a row counts into it."""
+    sums: dict[RateKey, list[Decimal]] = {}
+    for shipment in plan.shipments:
+        sums.setdefault(shipment.key, []).append(shipment.quantity)
+    return {key: total_of(quantities) for key, quantities in sums.items()}
