@@ -9,6 +9,7 @@ from engine.intake.fields import text_of
 from engine.intake.grids import Grid
 from engine.intake.headings import COLUMNS_OF, TITLES
 from engine.intake.numbers import is_blank
+from engine.intake.products import product_column
 from engine.intake.recognise import Found, Partial, Table
 from engine.intake.remarks import Counts
 
@@ -62,7 +63,7 @@ def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
     """Columns that nobody knows: not read, and asked about where they hold anything."""
     for table in tables:
         for column in range(table.left, table.right + 1):
-            if column in table.columns.values():
+            if column in table.columns.values() or column == product_column(table):
                 continue
             rows = table.sheet.rows[table.head + 1 : table.end]
             if all(is_blank(row[column]) for row in rows):

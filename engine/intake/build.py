@@ -17,7 +17,15 @@ from engine.intake.manner import in_words, manner_of
 from engine.intake.names import folded
 from engine.intake.numbers import NumberStyle, is_blank
 from engine.intake.places import Places
-from engine.intake.recognise import Found, Table, find_tables, is_total
+from engine.intake.products import (
+    SEVERAL,
+    SUBJECT,
+    of_product,
+    products_in,
+    which_product,
+    without_product,
+)
+from engine.intake.recognise import Found, Table, find_tables, is_total, of_one_depot
 from engine.intake.remarks import Counts
 from engine.week import Week
 
@@ -34,13 +42,31 @@ class Figures:
     places: Places
     unused: tuple[Unused, ...]
     tables: frozenset[str]
+    products: tuple[str, ...] = ()
 
 
 def build_figures(
-    sheets: Sequence[Sheet], answers: Answers, known: Week | None = None, decimal_mark: str = "."
+    sheets: Sequence[Sheet],
+    answers: Answers,
+    known: Week | None = None,
+    decimal_mark: str = ".",
+    product: str | None = None,
 ) -> Figures:
-    """The figures on the sheets, and what there is to say of single cells, headings and sheets."""
-    found = find_tables(sheets, _taught(answers))
+    """The figures on the sheets, and what there is to say of single cells, headings and sheets.
+
+    product: the one to read where the sheets name several; with None an answer given earlier counts
+    """
+    taught = _taught(answers)
+    found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
+    products = products_in(found)
+    product = product or answers.to(SEVERAL, SUBJECT)
+    about_products: list[Finding] = []
+    if len(products) > 1 and product is not None:
+        sheets = of_product(sheets, found, product)
+        found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
+        about_products = without_product(found)
+    elif len(products) > 1:
+        about_products = [which_product(products)]
     of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
     grids = _grids(found, of, sheets, known)
     manner, asked = manner_of([*found.tables, *grids], stated_by(of["rules"], answers), answers, decimal_mark)
@@ -57,6 +83,7 @@ def build_figures(
     return Figures(
         week,
         (
+            *about_products,
             *outside,
             *about_headings(found.tables),
             *asked,
@@ -71,6 +98,26 @@ def build_figures(
         Places({**depots.spots, **customers.spots, **rules.spots}, rates.rows),
         (*depots.unused, *customers.unused, *rates.unused, *rules.unused),
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
+        products,
+    )
+
+
+def _with_sheets_of_one_depot(found: Found, known: Week | None) -> Found:
+    """What was recognised, with lists of rates that name their depot only by sheet or title."""
+    names = list(_names([table for table in found.tables if table.kind == "depots"])) or list(
+        known.depots if known else ()
+    )
+    depots = {folded(name): name for name in names}
+    tables = [(partial, of_one_depot(partial, depots)) for partial in found.partials]
+    more = tuple(table for _, table in tables if table is not None)
+    if not more:
+        return found
+    sheets = {id(table.sheet) for table in more}
+    return Found(
+        (*found.tables, *more),
+        tuple(partial for partial, _ in tables if id(partial.sheet) not in sheets),
+        found.plans,
+        tuple(sheet for sheet in found.others if id(sheet) not in sheets),
     )
 
 

@@ -82,12 +82,16 @@ def read_sheets(sources: Source | Iterable[Source], limits: Limits | None = None
         OSError: a path that cannot be opened.
     """
     limits = limits or Limits()
-    single = isinstance(sources, (str, bytes, os.PathLike)) or hasattr(sources, "read") or _is_named(sources)
     return [
         sheet
-        for source in ([sources] if single else sources)  # type: ignore[union-attr]
+        for source in ([sources] if is_single(sources) else sources)  # type: ignore[union-attr]
         for sheet in _sheets_of(source, limits)  # type: ignore[arg-type]
     ]
+
+
+def is_single(sources: object) -> bool:
+    """Whether this is one file rather than several."""
+    return isinstance(sources, (str, bytes, os.PathLike)) or hasattr(sources, "read") or _is_named(sources)
 
 
 def _is_named(source: object) -> bool:
@@ -100,7 +104,7 @@ def _is_named(source: object) -> bool:
 
 
 def _sheets_of(source: Source, limits: Limits) -> list[Sheet]:
-    name, data = _opened(source, limits)
+    name, data = named_bytes(source, limits)
     kind = kind_of(data, name)
     if kind == "text":
         return [Sheet(name, Path(name).stem, rows_of_text(data, name, limits), is_text=True)]
@@ -115,7 +119,13 @@ def _sheets_of(source: Source, limits: Limits) -> list[Sheet]:
     return _calamine_sheets(data, name, _checked(found, name, limits), limits)
 
 
-def _opened(source: Source, limits: Limits) -> tuple[str, bytes]:
+def named_bytes(source: Source, limits: Limits) -> tuple[str, bytes]:
+    """The name and content of one file.
+
+    Raises:
+        Unreadable: it is larger than the limit, or a folder.
+        OSError: a path that cannot be opened.
+    """
     if isinstance(source, (str, os.PathLike)):
         path = Path(source)
         if path.is_dir():

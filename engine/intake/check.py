@@ -7,6 +7,7 @@ from engine.exact import canonical
 from engine.figures import ANY_SINGLE_DEPOT, WHEN_SHORT
 from engine.findings import Finding, Severity
 from engine.intake.check_rates import contradicting_limits, out_of_reach, same_rows, unknown_names
+from engine.intake.check_sizes import out_of_proportion, swapped_places
 from engine.intake.names import nearly_alike
 from engine.intake.not_yet import not_planned_yet
 from engine.intake.places import Where, nowhere
@@ -30,6 +31,8 @@ def check_week(week: Week, where: Where = nowhere) -> tuple[Finding, ...]:
         *contradicting_limits(week, where),
         *same_rows(week, where),
         *out_of_reach(week, where),
+        *out_of_proportion(week, where),
+        *swapped_places(week, where),
         *_holds(week, where),
         *not_planned_yet(week, where),
     ]

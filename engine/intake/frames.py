@@ -5,7 +5,7 @@ reported, never dropped.
 """
 
 from collections.abc import Hashable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from typing import Any
 
@@ -320,6 +320,7 @@ def _rule_changes(
     problems: list[CellProblem] = []
     by_heading = {column.heading: column for column in RULE_COLUMNS}
     default = Rules()
+    style = _as_stated(after, by_heading, style)
     for label, name, raw in zip(after.index, after["Rule"], after["Value"], strict=True):
         column = by_heading.get(str(name).strip())
         if column is None:
@@ -335,6 +336,17 @@ def _rule_changes(
         if value != getattr(week.rules, column.field):
             changes.append(Alter("rule", "", column.field, value))
     return changes, problems
+
+
+def _as_stated(after: pd.DataFrame, by_heading: Mapping[str, Column], style: NumberStyle) -> NumberStyle:
+    """The style with the unit and currency that the rules themselves name."""
+    for name, raw in zip(after["Rule"], after["Value"], strict=True):
+        column = by_heading.get(str(name).strip())
+        if column is not None and column.field in ("unit", "currency"):
+            value, _ = read_rule(column, "" if _is_nothing(raw) else raw, style)
+            if value is not None:
+                style = replace(style, **{column.field: value})
+    return style
 
 
 def _needed(column: Column, row: Mapping[str, Any]) -> Finding:

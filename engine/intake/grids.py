@@ -152,6 +152,8 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
         if is_blank(row[column]):
             continue
         text = text_of(row[column])
+        if not text:
+            continue
         if is_total(text):
             totals += 1
             far = max(far, column)
@@ -165,10 +167,10 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
         far = max(far, column)
     rows = []
     for number in range(head + 1, end):
-        cell = sheet.rows[number][side]
-        if is_blank(cell):
+        text = text_of(sheet.rows[number][side])
+        if not text:
             continue
-        if is_total(text_of(cell)):
+        if is_total(text):
             totals += 1
             continue
         rows.append(number)

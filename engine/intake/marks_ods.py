@@ -28,7 +28,7 @@ def ods_marks(content: bytes, name: str) -> dict[str, tuple[Marks, Outline]]:
     """
     try:
         return dict(_sheets(content))
-    except (ParseError, ValueError) as error:
+    except (ParseError, ValueError, LookupError) as error:
         raise damaged(name) from error
 
 

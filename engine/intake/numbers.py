@@ -74,6 +74,9 @@ _DAY = re.compile(r"\d{1,4}([-/.])\d{1,2}\1\d{1,4}|\d{1,2}:\d{2}(:\d{2})?", re.A
 
 def plain_text(text: str) -> str:
     """The text with every kind of space, minus and apostrophe made plain, and invisible marks dropped."""
+    if not text.isprintable():
+        text = text.translate(_DROPPED)
+        text = "".join(c if c.isprintable() else _TO_PLAIN.get(ord(c), " ") for c in text)
     if text.isascii():
         return " ".join(text.split())
     text = text.translate(_TO_PLAIN | _DROPPED)

@@ -11,7 +11,7 @@ from engine.findings import Finding, by_gravity
 from engine.intake.answers import Answers
 from engine.intake.build import Figures, build_figures
 from engine.intake.build_lists import Unused
-from engine.intake.cells import Source, read_sheets
+from engine.intake.cells import Source, is_single, named_bytes, read_sheets
 from engine.intake.check import check_week
 from engine.intake.names import folded
 from engine.intake.numbers import NumberStyle
@@ -33,8 +33,11 @@ class Reading:
     unused: the texts of rows that are not in the week, and of cells that nobody could read
     places: where each figure stands
     tables: which tables were on the sheets
+    on_sheets: the findings on cells, headings and sheets, without those on the week as a whole
     lasting: the findings that neither the figures in the grids nor `check_week` will bring up again: they
         stay until they are answered, accepted, or the sheets are uploaded anew
+    accepted: findings that were accepted earlier, for the notes of a plan
+    products: the products that the sheets name
     """
 
     week: Week
@@ -46,6 +49,9 @@ class Reading:
     places: Places = field(default_factory=Places)
     tables: frozenset[str] = frozenset()
     lasting: tuple[Finding, ...] = ()
+    on_sheets: tuple[Finding, ...] = ()
+    accepted: tuple[Finding, ...] = ()
+    products: tuple[str, ...] = ()
 
     @property
     def rows_read(self) -> int:
@@ -67,6 +73,7 @@ def read_week(
     answers: Answers | None = None,
     known: Week | None = None,
     decimal_mark: str = ".",
+    product: str | None = None,
 ) -> Reading:
     """The week in one spreadsheet or several files, with findings; nothing is dropped without a word.
 
@@ -75,28 +82,34 @@ def read_week(
     answers: what the desk has answered before
     known: an earlier week, whose names help to recognise a grid when only rates are uploaded
     decimal_mark: '.' or ',', assumed where the figures do not tell, and then asked
+    product: the one to read where a column Product names several; without it the reading only asks
 
     Raises:
         Unreadable: a file that is no spreadsheet, is damaged, protected or too large.
         OSError: a path that cannot be opened.
     """
     sheets = read_sheets(source, limits)
+    answers = answers or Answers()
     try:
-        figures = build_figures(sheets, answers or Answers(), known, decimal_mark)
+        figures = build_figures(sheets, answers, known, decimal_mark, product)
         found = check_week(figures.week, figures.places.where)
     except TooLarge as error:
         raise refused("too large", str(error), "Mend the figure and upload again.", sheets[0].file) from error
-    findings = tuple(by_gravity([*figures.findings, *_not_said_yet(found, figures)]))
+    on_sheets = frozenset(figures.findings)
+    findings, accepted = answers.parted(by_gravity([*figures.findings, *_not_said_yet(found, figures)]))
     return Reading(
         figures.week,
-        findings,
+        tuple(findings),
         figures.counts,
         summary_of(figures),
         figures.style,
         figures.unused,
         figures.places,
         figures.tables,
-        tuple(by_gravity(f for f in figures.findings if f.options or f.rule not in _IN_GRIDS)),
+        tuple(f for f in findings if f in on_sheets and (f.options or f.rule not in _IN_GRIDS)),
+        tuple(f for f in findings if f in on_sheets),
+        tuple(accepted),
+        figures.products,
     )
 
 
@@ -132,6 +145,28 @@ _IN_GRIDS = frozenset(
     }
 )
 """Rules on single cells whose text is in the draft of a grid, where the same reader says it again."""
+
+
+def read_weeks(
+    source: Source | Iterable[Source],
+    *,
+    limits: Limits | None = None,
+    answers: Answers | None = None,
+    decimal_mark: str = ".",
+) -> dict[str, Reading]:
+    """One reading for each product that a column Product names; under '' where there is no such column.
+
+    The arguments and what is raised are those of `read_week`.
+    """
+    sources = [source] if is_single(source) else list(source)  # type: ignore[arg-type]
+    kept = [named_bytes(one, limits or Limits()) for one in sources]  # type: ignore[arg-type]
+    first = read_week(kept, limits=limits, answers=answers, decimal_mark=decimal_mark)
+    if len(first.products) < 2:
+        return {next(iter(first.products), ""): first}
+    return {
+        product: read_week(kept, limits=limits, answers=answers, decimal_mark=decimal_mark, product=product)
+        for product in first.products
+    }
 
 
 def _not_said_yet(found: Iterable[Finding], figures: Figures) -> list[Finding]:

@@ -16,6 +16,7 @@ _TOP_ROWS = 60
 
 _MOST_HEADINGS = 200
 _ORDER = ("rates", "depots", "customers", "rules")
+_FROM = re.compile(r"^(rates? )?(from|ex|depot)\b[ :]*|[ :]*\brates?$", re.IGNORECASE)
 _TOTAL = re.compile(r"(grand |sub-?|sub )?totals?\b.*|sums?\b.*|all (depots|customers)|.* totals?|σ|∑|Σ")
 
 
@@ -54,7 +55,11 @@ class Partial:
     head: int
     missing: tuple[str, ...]
     headings: Mapping[int, str]
-    known: frozenset[int] = frozenset()
+    columns: Mapping[str, int] = field(default_factory=dict)
+
+    @property
+    def known(self) -> frozenset[int]:
+        return frozenset(self.columns.values())
 
 
 @dataclass(frozen=True, eq=False)
@@ -90,6 +95,39 @@ def find_tables(sheets: Sequence[Sheet], taught: Mapping[str, Mapping[str, str]]
             )
             others.append(sheet)
     return Found(tuple(tables), tuple(partials), tuple(plans), tuple(others))
+
+
+def of_one_depot(partial: Partial, depots: Mapping[str, str]) -> Table | None:
+    """A list of rates without a column for the depot, where the sheet's name or a title says which it is.
+
+    depots: the names that are known, by their folded form
+    """
+    if partial.kind != "rates" or partial.missing != ("Depot",):
+        return None
+    sheet = partial.sheet
+    titles = [
+        sheet.name,
+        *(text_of(c) for row in sheet.rows[: partial.head] for c in row if isinstance(c, str)),
+    ]
+    for title in titles:
+        for text in (title, title.rpartition(":")[2], _FROM.sub("", title)):
+            depot = depots.get(folded(text))
+            if depot is not None:
+                left, right = min(partial.headings), max(partial.headings)
+                unread = tuple(column for column in partial.headings if column not in partial.known)
+                return Table(
+                    "rates",
+                    sheet,
+                    partial.head,
+                    len(sheet.rows),
+                    left,
+                    right,
+                    partial.columns,
+                    partial.headings,
+                    unread,
+                    depot,
+                )
+    return None
 
 
 def candidate_rows(sheet: Sheet) -> list[int]:
@@ -255,7 +293,7 @@ def _partials_at(
         needed = [column for column in COLUMNS_OF[kind] if column.needed]
         missing = tuple(column.heading for column in needed if column.field not in matched)
         if missing and len(missing) < len(needed) and len(matched) >= 2:
-            partials.append(Partial(kind, sheet, head, missing, texts, frozenset(matched.values())))
+            partials.append(Partial(kind, sheet, head, missing, texts, matched))
     return partials
 
 

@@ -67,8 +67,8 @@ def xlsb(sheets, name="week.xlsb"):
     package = "http://schemas.openxmlformats.org/package/2006"
     numbered = list(enumerate(sheets.items(), start=1))
     parts = {
-        "[Content_Types].xml": f'<Types xmlns="{package}/content-types"><Default Extension="rels" ContentType='
-        '"application/vnd.openxmlformats-package.relationships+xml"/><Default Extension="bin" '
+        "[Content_Types].xml": f'<Types xmlns="{package}/content-types"><Default Extension="rels" '
+        'ContentType="application/vnd.openxmlformats-package.relationships+xml"/><Default Extension="bin" '
         f'ContentType="application/vnd.ms-excel.worksheet"/><Override PartName="/xl/workbook.bin" '
         f'ContentType="{kind}"/></Types>',
         "_rels/.rels": f'<Relationships xmlns="{package}/relationships"><Relationship Id="rId1" '
