@@ -1,0 +1,244 @@
+"""What the reasons compute with machine code: thresholds of rates, and the most that tied chains carry.
+
+A rate's thresholds are shortest paths in the residual network between the two ends of its lane without
+the row itself (Ahuja, Magnanti & Orlin 1993, sections 9.11 and 11.10 on sensitivity).
+"""
+
+from typing import NamedTuple
+
+import numpy as np
+
+from engine.exact import Integers
+from engine.network.closure import NO_WAY
+from engine.network.compiled import kernel
+
+MANY = 2**60
+"""A capacity of this or more never limits anything."""
+
+
+class Rows(NamedTuple):
+    """The rows of a flow: customer j's are start[j] up to, not including, start[j+1]; all int64."""
+
+    start: Integers
+    depot: Integers
+    cost: Integers
+    quantity: Integers
+    lower: Integers
+    upper: Integers
+
+
+class Searched(NamedTuple):
+    """Exchanges between depots, all (depots, depots) but the prices.
+
+    direct: cheapest at a single customer; at: that customer; second: cheapest at any other customer
+    price:  (depots,) prices that make every direct[i, k] + price[i] - price[k] 0 or more
+    """
+
+    direct: Integers
+    second: Integers
+    at: Integers
+    price: Integers
+
+
+@kernel
+def second_exchanges(rows: Rows, at: Integers, second: Integers) -> None:
+    """Fills the cheapest exchange of every ordered pair of depots that is not at the customer `at`."""
+    for j in range(len(rows.start) - 1):
+        first, last = rows.start[j], rows.start[j + 1]
+        for row in range(first, last):
+            if rows.quantity[row] <= rows.lower[row]:
+                continue
+            i, given_up = rows.depot[row], rows.cost[row]
+            for other in range(first, last):
+                k, price = rows.depot[other], rows.cost[other] - given_up
+                if price < second[i, k] and at[i, k] != j and rows.quantity[other] < rows.upper[other]:
+                    second[i, k] = price
+
+
+@kernel
+def thresholds(rows: Rows, chains: Integers, low: Integers, high: Integers) -> None:
+    """Fills, for each row, the cost below which more would go on it and above which less would.
+
+    chains: (depots, depots) costs of the cheapest chains
+    low, high: (rows,) receive the costs, -NO_WAY and NO_WAY where there are none; wrong for rows that are
+    neither at a limit nor alone at their customer, see `thresholds_without`
+    """
+    for j in range(len(rows.start) - 1):
+        first, last = rows.start[j], rows.start[j + 1]
+        for row in range(first, last):
+            low[row], high[row] = -NO_WAY, NO_WAY
+        for row in range(first, last):
+            if rows.quantity[row] <= rows.lower[row]:
+                continue
+            i = rows.depot[row]
+            for other in range(first, last):
+                if other == row:
+                    continue
+                onward, back = chains[rows.depot[other], i], rows.cost[row]
+                if onward < NO_WAY:
+                    low[other] = max(low[other], back - onward)
+                    if rows.quantity[other] < rows.upper[other]:
+                        high[row] = min(high[row], rows.cost[other] + onward)
+
+
+@kernel
+def thresholds_without(
+    rows: Rows, searched: Searched, customers: Integers, hard: Integers, low: Integers, high: Integers
+) -> None:
+    """Fills `low` and `high` of the rows `hard`, through chains that do not use the row itself.
+
+    customers: the customer of each hard row
+    """
+    depots = len(searched.price)
+    onward = searched.direct.copy()
+    backward = searched.direct.T.copy()
+    first_hop = np.empty(depots, dtype=np.int64)
+    distance = np.empty(depots, dtype=np.int64)
+    key = np.empty(depots, dtype=np.int64)
+    for n in range(len(hard)):
+        row, j = hard[n], customers[n]
+        i, first, last = rows.depot[row], rows.start[j], rows.start[j + 1]
+        for k in range(depots):
+            first_hop[k] = searched.second[i, k] if searched.at[i, k] == j else searched.direct[i, k]
+        for less in range(first, last):
+            if less == row or rows.depot[less] != i or rows.quantity[less] <= rows.lower[less]:
+                continue
+            for more in range(first, last):
+                if more != less and rows.quantity[more] < rows.upper[more]:
+                    k = rows.depot[more]
+                    first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
+        for k in range(depots):
+            key[k] = -searched.price[k]
+        spread(i, first_hop, onward, key, distance)
+        low[row] = -NO_WAY
+        for less in range(first, last):
+            there = distance[rows.depot[less]]
+            if less != row and rows.quantity[less] > rows.lower[less] and there < NO_WAY:
+                low[row] = max(low[row], rows.cost[less] - there)
+        for k in range(depots):
+            first_hop[k] = searched.second[k, i] if searched.at[k, i] == j else searched.direct[k, i]
+        for more in range(first, last):
+            if more == row or rows.depot[more] != i or rows.quantity[more] >= rows.upper[more]:
+                continue
+            for less in range(first, last):
+                if less != more and rows.quantity[less] > rows.lower[less]:
+                    k = rows.depot[less]
+                    first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
+        for k in range(depots):
+            key[k] = searched.price[k]
+        spread(i, first_hop, backward, key, distance)
+        high[row] = NO_WAY
+        for more in range(first, last):
+            there = distance[rows.depot[more]]
+            if more != row and rows.quantity[more] < rows.upper[more] and there < NO_WAY:
+                high[row] = min(high[row], rows.cost[more] + there)
+
+
+@kernel
+def spread(
+    source: int, first_hop: Integers, step: Integers, key: Integers, distance: Integers
+) -> None:
+    """Shortest distances from a depot whose own hops are `first_hop`, all others `step` (Dijkstra 1959).
+
+    key: (depots,) added to a distance it gives the order in which depots are final
+    """
+    depots = len(first_hop)
+    final = np.zeros(depots, dtype=np.bool_)
+    for k in range(depots):
+        distance[k] = first_hop[k]
+    distance[source] = 0
+    final[source] = True
+    while True:
+        nearest = -1
+        for k in range(depots):
+            if not final[k] and distance[k] < NO_WAY:
+                if nearest < 0 or distance[k] + key[k] < distance[nearest] + key[nearest]:
+                    nearest = k
+        if nearest < 0:
+            return
+        final[nearest] = True
+        here = distance[nearest]
+        for k in range(depots):
+            if step[nearest, k] < NO_WAY and here + step[nearest, k] < distance[k]:
+                distance[k] = here + step[nearest, k]
+
+
+class Ties(NamedTuple):
+    """Rows on shortest paths, each between a customer and a depot.
+
+    depot, customer: (ties,) ends of each, customer by customer
+    of_customer: (customers + 1,) ties of customer j are of_customer[j] up to of_customer[j+1]
+    of_depot: (depots + 1,) and listed: ties of depot i are listed[of_depot[i]:of_depot[i+1]]; only those
+    of customers that have several, since a path leaves a customer on another row than it came by
+    """
+
+    depot: Integers
+    customer: Integers
+    of_customer: Integers
+    of_depot: Integers
+    listed: Integers
+
+
+@kernel
+def most_over(ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integers) -> int:
+    """The most that can go over tied rows from customer j to depot i; MANY if nothing limits it.
+
+    Shortest augmenting paths (Edmonds & Karp 1972). `to_depot` and `to_customer` (ties,) are what each tie
+    can take either way; they are changed to what is left.
+    """
+    customers, depots = len(ties.of_customer) - 1, len(ties.of_depot) - 1
+    came_by = np.empty(customers + depots, dtype=np.int64)
+    queue = np.empty(customers + depots, dtype=np.int64)
+    goal = customers + i
+    whole = 0
+    while True:
+        came_by[:] = -1
+        queue[0], head, tail = j, 0, 1
+        came_by[j] = -2
+        while head < tail and came_by[goal] == -1:
+            node = queue[head]
+            head += 1
+            if node < customers:
+                for tie in range(ties.of_customer[node], ties.of_customer[node + 1]):
+                    there = customers + ties.depot[tie]
+                    if to_depot[tie] > 0 and came_by[there] == -1:
+                        came_by[there] = tie
+                        queue[tail] = there
+                        tail += 1
+            else:
+                k = node - customers
+                for place in range(ties.of_depot[k], ties.of_depot[k + 1]):
+                    tie = ties.listed[place]
+                    there = ties.customer[tie]
+                    if to_customer[tie] > 0 and came_by[there] == -1:
+                        came_by[there] = tie
+                        queue[tail] = there
+                        tail += 1
+        if came_by[goal] == -1:
+            return whole
+        amount, node = MANY, goal
+        while node != j:
+            tie = came_by[node]
+            if node >= customers:
+                amount, node = min(amount, to_depot[tie]), ties.customer[tie]
+            else:
+                amount, node = min(amount, to_customer[tie]), customers + ties.depot[tie]
+        if amount >= MANY:
+            return MANY
+        whole += amount
+        node = goal
+        while node != j:
+            tie = came_by[node]
+            change = amount if node >= customers else -amount
+            to_depot[tie] -= change
+            to_customer[tie] += change
+            node = ties.customer[tie] if node >= customers else customers + ties.depot[tie]
+
+
+@kernel
+def most_for_each(
+    ties: Ties, ends: Integers, depots: Integers, to_depot: Integers, to_customer: Integers, most: Integers
+) -> None:
+    """Fills `most_over` from each customer of `ends` to the depot beside it, each on its own."""
+    for n in range(len(ends)):
+        most[n] = most_over(ties, ends[n], depots[n], to_depot.copy(), to_customer.copy())
