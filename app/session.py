@@ -8,11 +8,12 @@ import streamlit as st
 
 import engine
 from app.drafts import Draft, opened, unread_in
-from engine.changes import Change
+from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
 from engine.history import History
 from engine.intake.frames import TABLES
 from engine.intake.numbers import NumberStyle
+from engine.planning.differences import Outcome, outcome
 from engine.week import Refused, Week
 
 KEY = "desk"
@@ -33,6 +34,8 @@ class Desk:
     plan: engine.Plan | None = None
     stopped: tuple[Finding, ...] = ()
     started: bool = False
+    proposal: Change | None = None
+    proposed: Outcome | None = None
 
     @property
     def week(self) -> Week:
@@ -51,17 +54,49 @@ class Desk:
         self.history = History.of(reading.week)
         self.decimal_mark = reading.style.decimal_mark
         self.drafts = {table: opened(self.week, table, reading.unused, self.style) for table in TABLES}
-        again = {(f.rule, f.message) for f in engine.check_week(self.week)}
-        in_grids = {f.read for draft in self.drafts.values() for f in draft.findings if f.read}
-        self.read = tuple(
-            f
-            for f in reading.findings
-            if (f.rule, f.message) not in again
-            and not (f.severity is Severity.STOPS and f.read and f.read in in_grids)
-        )
+        self.read = reading.lasting
         self.uploads += 1
         self.generation += 1
         self.plan, self.planned_for, self.message = None, None, None
+        self.proposal = self.proposed = None
+
+    @property
+    def working(self) -> Week:
+        """The week with what is proposed: what the grids of figures show."""
+        return self.proposed.week if self.proposed is not None else self.week
+
+    def propose(self, change: Change) -> None:
+        """Put a change up for acceptance, its price beside it; without a plan it is made at once.
+
+        The plan of the outcome is kept, so that accepting plans nothing twice.
+        """
+        plan = self.planned()
+        if plan is None:
+            self.commit(change)
+            return
+        self.proposal = change
+        self.proposed = outcome(plan, change)
+
+    def propose_more(self, change: Change) -> None:
+        """Put up a change on top of what is already proposed."""
+        first = () if self.proposal is None else (self.proposal,)
+        self.propose(change if not first else Together((*first, change)))
+
+    def accept(self, why: str = "") -> None:
+        """Make the proposed change."""
+        if self.proposal is None or self.proposed is None:
+            return
+        change, proposed = self.proposal, self.proposed
+        self.proposal = self.proposed = None
+        if self.commit(reasoned(change, why), why):
+            if proposed.plan is not None and not why:
+                self.planned_for, self.plan, self.stopped = self.week, proposed.plan, ()
+            self.start_afresh()
+
+    def take_back(self) -> None:
+        """Drop what is proposed; the grids show the week as it stands."""
+        self.proposal = self.proposed = None
+        self.start_afresh()
 
     def commit(self, change: Change, why: str = "") -> bool:
         """Make a change; False with a message where it does not fit the week."""
@@ -72,22 +107,6 @@ class Desk:
             self.message = ("error", str(refused))
             return False
         return True
-
-    def settle(self, change: Change, why: str = "") -> tuple[Finding, ...]:
-        """Make a change only if the week can still be planned; otherwise what stands in the way.
-
-        The plan that was made to find out is kept, so it is not made twice.
-        """
-        try:
-            history = self.history.after(change, why=why)
-        except Refused as refused:
-            return (Finding(Severity.STOPS, "refused", str(refused)),)
-        plan, stopped = try_plan(history.week, near=self.plan)
-        if plan is None:
-            return stopped
-        self.history, self.plan, self.planned_for, self.stopped = history, plan, history.week, ()
-        self.start_afresh()
-        return ()
 
     def undo(self) -> None:
         self.history = self.history.undo()
@@ -107,7 +126,7 @@ class Desk:
     def all_findings(self) -> list[Finding]:
         """What there is to say of the figures as they stand: cells of the grids, the week, the upload."""
         cells = [f for draft in self.drafts.values() for f in draft.findings]
-        return by_gravity([*cells, *engine.check_week(self.week), *self.read])
+        return by_gravity([*cells, *engine.check_week(self.working), *self.read])
 
     def planned(self) -> engine.Plan | None:
         """The plan of the week as it stands, made when first asked for; None where it cannot be planned."""
@@ -120,6 +139,15 @@ class Desk:
             plan, self.stopped = try_plan(self.week, near=self.plan)
             self.planned_for, self.plan = self.week, plan
         return self.plan
+
+
+def reasoned(change: Change, why: str) -> Change:
+    """The change with a reason on its holds that have none."""
+    if isinstance(change, SetHold) and not change.reason:
+        return SetHold(change.key, change.quantity, why)
+    if isinstance(change, Together):
+        return Together(tuple(reasoned(one, why) for one in change.changes), change.note)
+    return change
 
 
 def desk() -> Desk:

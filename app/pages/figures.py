@@ -8,6 +8,7 @@ import engine
 import sample_data
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
+from app.parts.proposal import proposal
 from app.parts.words import plain
 from app.session import Desk, desk, read_files
 
@@ -86,6 +87,7 @@ if state.week.is_empty:
 else:
     with st.expander("Open other figures"):
         opening(state)
+    proposal(state)
     grids, remarks = st.columns([13, 7], gap="medium")
     with grids:
         depots, customers, rates, rules = st.tabs(["Depots", "Customers", "Rates", "Rules"])

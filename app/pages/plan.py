@@ -6,6 +6,7 @@ from app.parts.costs import cost_line
 from app.parts.findings_panel import findings_panel
 from app.parts.nothing_yet import nothing_yet
 from app.parts.plan_map import plan_map
+from app.parts.proposal import proposal
 from app.parts.shipments_grid import shipments_grid
 from app.parts.words import plain
 from app.session import desk
@@ -27,6 +28,7 @@ else:
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)
+        proposal(state)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:
             shipments_grid(state, plan)

@@ -6,7 +6,6 @@ import pandas as pd
 import streamlit as st
 from streamlit.elements.lib.column_types import ColumnConfig
 
-from app.parts.words import plain
 from app.session import Desk
 from engine.changes import Change, Together
 from engine.columns import Column, Kind
@@ -57,7 +56,9 @@ def _grid(
     kept = state.grid(table)
     if kept.key != key or key not in st.session_state:
         # A grid starts afresh from one constant frame; what is edited since is kept apart from it.
-        kept.base = kept.draft if kept.key == key else draft_of(state.week, table, kept.unread, state.style)
+        kept.base = (
+            kept.draft if kept.key == key else draft_of(state.working, table, kept.unread, state.style)
+        )
         kept.draft, kept.key = kept.base, key
     edited = st.data_editor(
         kept.base,
@@ -77,9 +78,8 @@ def _grid(
 def _take_edits(state: Desk, table: str, edited: pd.DataFrame) -> None:
     """What differs from the last draft, as one change; what cannot be read stays on screen."""
     kept = state.grid(table)
-    changes, problems = changes_between(state.week, table, kept.draft, edited, state.style)
+    changes, problems = changes_between(state.working, table, kept.draft, edited, state.style)
     kept.draft, kept.problems = edited, tuple(problems)
     if changes:
         change: Change = changes[0] if len(changes) == 1 else Together(tuple(changes), f"edit of {table}")
-        if not state.commit(change) and state.message:
-            st.toast(plain(state.message[1]))
+        state.propose_more(change)

@@ -71,7 +71,7 @@ def shipments_grid(state: Desk, plan: Plan) -> None:
         },
         alt="Shipments of the plan: depot, customer, haulier, quantity, rate and cost",
     )  # fmt: skip
-    _take_edits(state, plan, shown, base, edited)
+    _take_edits(state, shown, base, edited)
 
 
 def _view(state: Desk) -> _View:
@@ -124,8 +124,8 @@ def _send(lane: Lane, state: Desk) -> str:
     return show_field(SEND, lane.quantity, state.style)
 
 
-def _take_edits(state: Desk, plan: Plan, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame) -> None:
-    """Turn what differs from the plan into one change, and plan again."""
+def _take_edits(state: Desk, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame) -> None:
+    """Put up what differs from the plan as one change."""
     changes: list[Change] = []
     refused: list[Finding] = []
     for position in range(len(base)):
@@ -142,13 +142,9 @@ def _take_edits(state: Desk, plan: Plan, shown: list[Lane], base: pd.DataFrame, 
     if not changes or refused:
         return
     change = changes[0] if len(changes) == 1 else Together(tuple(changes))
-    stands_in_the_way = state.settle(change)
-    if stands_in_the_way:
-        for finding in stands_in_the_way:
-            st.error(f"Not done: {plain(finding.message)} {plain(finding.mend)}")
-        return
-    state.message = ("success", _what_happened(state, plan, change))
-    st.rerun()
+    if change != state.proposal:
+        state.propose(change)
+        st.rerun()
 
 
 def _change(
@@ -167,16 +163,3 @@ def _change(
     if not lane.hold and quantity == lane.quantity and not reason:
         return None, None
     return SetHold(lane.key, quantity, reason), None
-
-
-def _what_happened(state: Desk, before: Plan, change: Change) -> str:
-    """What the change did to the freight, in a sentence."""
-    after = state.plan
-    if after is None:
-        return "Done."
-    currency, mark = after.week.rules.currency, state.decimal_mark
-    verb = {SetHold: "Held", Lift: "Lifted"}.get(type(change), "Done")
-    return (
-        f"{verb}. Freight payable was {money(before.freight_payable, currency, mark)}, now "
-        f"{money(after.freight_payable, currency, mark)}."
-    )

@@ -57,7 +57,12 @@ def test_a_typed_quantity_is_held_and_undone() -> None:
     test.session_state[grid] = edited
     test.run()
     assert not test.exception
-    assert [hold.quantity for hold in state.week.holds.values()] == [Decimal("12.5")]
+    assert not state.week.holds
+    assert any("Not made yet" in text.value for text in test.markdown)
+    state.accept("promised")
+    test.run()
+    assert not test.exception
+    assert [(h.quantity, h.reason) for h in state.week.holds.values()] == [(Decimal("12.5"), "promised")]
     state.undo()
     test.run()
     assert not test.exception
@@ -73,8 +78,11 @@ def test_a_quantity_that_cannot_be_is_refused_in_words_and_the_week_stays() -> N
     test.session_state[grid] = edited
     test.run()
     assert not test.exception
-    assert any("Not done" in error.value for error in test.error)
+    assert any("This change cannot be planned" in text.value for text in test.markdown)
     assert not state.week.holds
+    state.take_back()
+    test.run()
+    assert state.proposal is None
 
 
 def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None:
