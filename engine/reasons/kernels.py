@@ -56,6 +56,32 @@ def second_exchanges(rows: Rows, at: Integers, second: Integers) -> None:
 
 
 @kernel
+def most_cheaply(rows: Rows, distance: Integers, cost: Integers, by: Integers) -> None:
+    """Fills, per customer, what one more costs and the row that brings it; NO_WAY and -1 where none can.
+
+    distance: (depots,) what one more at each depot costs
+    """
+    for j in range(len(rows.start) - 1):
+        cost[j], by[j] = NO_WAY, -1
+        for row in range(rows.start[j], rows.start[j + 1]):
+            here = distance[rows.depot[row]]
+            if here < NO_WAY and here + rows.cost[row] < cost[j] and rows.quantity[row] < rows.upper[row]:
+                cost[j], by[j] = here + rows.cost[row], row
+
+
+@kernel
+def least_dearly(rows: Rows, distance: Integers, cost: Integers, by: Integers) -> None:
+    """Fills, per customer, what one less costs (a saving is negative) and the row that brings less."""
+    for j in range(len(rows.start) - 1):
+        cost[j], by[j] = NO_WAY, -1
+        for row in range(rows.start[j], rows.start[j + 1]):
+            if rows.quantity[row] > rows.lower[row]:
+                here = distance[rows.depot[row]]
+                if here < NO_WAY and here - rows.cost[row] < cost[j]:
+                    cost[j], by[j] = here - rows.cost[row], row
+
+
+@kernel
 def thresholds(rows: Rows, chains: Integers, low: Integers, high: Integers) -> None:
     """Fills, for each row, the cost below which more would go on it and above which less would.
 
@@ -180,8 +206,10 @@ class Ties(NamedTuple):
 
 
 @kernel
-def most_over(ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integers) -> int:
-    """The most that can go over tied rows from customer j to depot i; MANY if nothing limits it.
+def most_over(
+    ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integers, at_most: int
+) -> int:
+    """The most, up to `at_most`, that can go over tied rows from customer j to depot i; MANY: no limit.
 
     Shortest augmenting paths (Edmonds & Karp 1972). `to_depot` and `to_customer` (ties,) are what each tie
     can take either way; they are changed to what is left.
@@ -216,7 +244,7 @@ def most_over(ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integ
                         tail += 1
         if came_by[goal] == -1:
             return whole
-        amount, node = MANY, goal
+        amount, node = at_most - whole, goal
         while node != j:
             tie = came_by[node]
             if node >= customers:
@@ -225,6 +253,8 @@ def most_over(ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integ
                 amount, node = min(amount, to_customer[tie]), customers + ties.depot[tie]
         if amount >= MANY:
             return MANY
+        if amount <= 0:
+            return whole
         whole += amount
         node = goal
         while node != j:
@@ -241,4 +271,4 @@ def most_for_each(
 ) -> None:
     """Fills `most_over` from each customer of `ends` to the depot beside it, each on its own."""
     for n in range(len(ends)):
-        most[n] = most_over(ties, ends[n], depots[n], to_depot.copy(), to_customer.copy())
+        most[n] = most_over(ties, ends[n], depots[n], to_depot.copy(), to_customer.copy(), 2 * MANY)
