@@ -1,0 +1,64 @@
+"""Weeks, changes and plans on disk: SQLite in the user's folder by default, PostgreSQL by URL.
+
+records = open_records()
+opened = create_week(records, engine.read_week("week.xlsx"))
+history = opened.history.after(change, who="Ann")
+merged = save(records, opened.listed.id, history, saved=0)      # on disk when this returns
+again = open_week(records, opened.listed.id)                    # again.history.week == history.week
+"""
+
+from engine.records.answers import forget_answer, load_answers, save_answer
+from engine.records.failures import Missing, NotSaved
+from engine.records.journal import Conflict, Made, append, changes_since, version_of
+from engine.records.merging import Clash, Merged, caught_up, merge, save
+from engine.records.opening import Records, default_place, open_records
+from engine.records.plans import Issued, find_plan, issue_plan, list_plans
+from engine.records.remarks import save_remarks
+from engine.records.totals import WeekTotals, note_totals, totals_by_week
+from engine.records.weeks import (
+    Listed,
+    Opened,
+    archive_week,
+    copy_week,
+    create_week,
+    list_weeks,
+    open_week,
+    restore_as_new,
+)
+
+__all__ = [
+    "Clash",
+    "Conflict",
+    "Issued",
+    "Listed",
+    "Made",
+    "Merged",
+    "Missing",
+    "NotSaved",
+    "Opened",
+    "Records",
+    "WeekTotals",
+    "append",
+    "archive_week",
+    "caught_up",
+    "changes_since",
+    "copy_week",
+    "create_week",
+    "default_place",
+    "find_plan",
+    "forget_answer",
+    "issue_plan",
+    "list_plans",
+    "list_weeks",
+    "load_answers",
+    "merge",
+    "note_totals",
+    "open_records",
+    "open_week",
+    "restore_as_new",
+    "save",
+    "save_answer",
+    "save_remarks",
+    "totals_by_week",
+    "version_of",
+]
