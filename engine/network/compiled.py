@@ -13,7 +13,6 @@ from typing import Any, TypeVar, overload
 
 import numba
 import platformdirs
-from numba.extending import register_jitable
 
 Function = TypeVar("Function", bound=Callable[..., object])
 
@@ -35,13 +34,14 @@ def kernel(given: Any, /) -> Any:
 
 
 def part(function: Function) -> Function:
-    """Lets kernels contain `function`, which has no machine code of its own.
+    """Compiles `function` to be called by kernels only; its code is kept with theirs.
 
-    Calling a compiled function with tuples of arrays counts references up and down for each array, which
-    can take longer than what the function does.
+    Each array that it is given, alone or in a tuple, costs a count of references up and down: functions
+    in the innermost loops take few.
     """
-    inlined: Function = register_jitable(inline="always")(function)
-    return inlined
+    options: Any = {"nogil": True, "no_cpython_wrapper": True, "no_cfunc_wrapper": True}
+    compiled: Function = numba.njit(**options)(function)
+    return compiled
 
 
 def _compiled(function: Any, signature: Any) -> Any:

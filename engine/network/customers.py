@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
+from engine.network.compiled import kernel, part
 from engine.network.problem import UNLIMITED
 
 FAR = 2**61
@@ -68,7 +68,7 @@ class State(NamedTuple):
     via: Integers
 
 
-@kernel
+@part
 def classify(rows: Rows) -> None:
     """Fills `Rows.kind`."""
     start, depot, room = rows.start, rows.depot, rows.room
@@ -90,7 +90,7 @@ def classify(rows: Rows) -> None:
         rows.kind[j] = kind
 
 
-@kernel
+@part
 def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers) -> int:
     """Gives the `chosen` customers their cheapest rows, adds that to `excess` and notes their gaps.
 
@@ -126,7 +126,8 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
         if needed == 0:
             gap[n] = FAR
             home[j] = SEVERAL
-            flow[first:last] = 0
+            for row in range(first, last):
+                flow[row] = 0
         elif first == last:
             return int(j)
         elif fresh and second > cheapest:
@@ -144,7 +145,7 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
     return -1
 
 
-@kernel
+@part
 def measure(rows: Rows, state: State, chosen: Integers, gap: Integers) -> None:
     """Notes the gaps of the `chosen` customers at prices that have changed; their flow suits them already."""
     start, depot, cost, price = rows.start, rows.depot, rows.cost, state.price
@@ -171,7 +172,7 @@ def measure(rows: Rows, state: State, chosen: Integers, gap: Integers) -> None:
         gap[n] = second - cheapest
 
 
-@kernel
+@part
 def spread(rows: Rows, state: State, j: int, level: int, quantity: int) -> None:
     """Puts `quantity` on the rows that cost `level` at the prices, where it stood before as far as possible.
 
@@ -211,7 +212,7 @@ def spread(rows: Rows, state: State, j: int, level: int, quantity: int) -> None:
         left -= more
 
 
-@kernel
+@part
 def fill_limited(rows: Rows, state: State, j: int) -> bool:
     """Fills a limited customer's rows, cheapest first, each up to its room; False if that is not enough."""
     level, left = -FAR, rows.demand[j]
@@ -234,7 +235,7 @@ def fill_limited(rows: Rows, state: State, j: int) -> bool:
     return True
 
 
-@kernel
+@part
 def gap_limited(rows: Rows, state: State, j: int) -> int:
     """The least that exchanging two different rows of a limited customer would cost per unit."""
     least_free, second_free, free_row = FAR, FAR, -1

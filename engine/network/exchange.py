@@ -16,7 +16,7 @@ from __future__ import annotations
 import numpy as np
 
 from engine.exact import Integers, TooLarge, total
-from engine.network.compiled import kernel
+from engine.network.compiled import kernel, part
 from engine.network.customers import (
     FAR,
     SEVERAL,
@@ -35,6 +35,7 @@ from engine.network.paths import (
     RELIST,
     STUCK,
     TOO_FAR,
+    Search,
     find_paths,
     level_out,
     new_search,
@@ -77,7 +78,7 @@ def solve(
         np.empty((depots, depots), dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
     )
-    outcome, place = run(rows, state, quantity is not None)
+    outcome, place = run(rows, state, new_search(depots), quantity is not None)
     if outcome == TOO_FAR:
         raise TooLarge("Prices grow beyond what can be computed exactly: use a larger currency unit.")
     if outcome == UNSERVABLE:
@@ -151,9 +152,7 @@ def _without_lower_limits(problem: Problem) -> Rows:
         if at_most is not None:
             room = at_most - at_least
     kind = np.empty(problem.customers, dtype=np.uint8)
-    rows = Rows(supply, demand, problem.start, problem.depot, problem.cost, room, kind)
-    classify(rows)
-    return rows
+    return Rows(supply, demand, problem.start, problem.depot, problem.cost, room, kind)
 
 
 @kernel
@@ -175,11 +174,12 @@ def take_off(figures: Figures, supply: Integers, demand: Integers) -> tuple[int,
 
 
 @kernel
-def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
+def run(rows: Rows, state: State, search: Search, again: bool) -> tuple[int, int]:
     """Samples first, then all customers. Returns the outcome, and the customer that cannot be served.
 
     again: whether `state.flow` holds an earlier flow; then no samples are needed
     """
+    classify(rows)
     depots, customers = len(rows.supply), len(rows.demand)
     stride, known = 1, 1
     if not again:
@@ -187,15 +187,15 @@ def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
         while customers // (stride * STEP) > SAMPLE * depots:
             stride *= STEP
     while True:
-        outcome, place = solve_sample(rows, state, stride, known)
+        outcome, place = solve_sample(rows, state, search, stride, known)
         if stride == 1 or outcome in (UNSERVABLE, TOO_FAR):
             return outcome, place
         known = stride
         stride //= STEP
 
 
-@kernel
-def solve_sample(rows: Rows, state: State, stride: int, known: int) -> tuple[int, int]:
+@part
+def solve_sample(rows: Rows, state: State, search: Search, stride: int, known: int) -> tuple[int, int]:
     """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`.
 
     known: every so many-th customer has flow already
@@ -207,7 +207,6 @@ def solve_sample(rows: Rows, state: State, stride: int, known: int) -> tuple[int
     place = assign(rows, state, chosen, known, gap)
     if place >= 0:
         return UNSERVABLE, place
-    search = new_search(depots)
     wanted = len(chosen) // 16 + 4 * depots
     users = new_users(rows, state, chosen)
     inside = np.zeros(len(chosen), dtype=np.uint8)
@@ -225,11 +224,12 @@ def solve_sample(rows: Rows, state: State, stride: int, known: int) -> tuple[int
         if outcome == RELIST:
             users = new_users(rows, state, chosen)
             clear(state)
-            inside[:] = 0
+            for n in range(len(chosen)):
+                inside[n] = 0
         measure(rows, state, chosen, gap)
 
 
-@kernel
+@part
 def clear(state: State) -> None:
     """Forgets all exchanges."""
     for i in range(len(state.price)):
@@ -238,7 +238,7 @@ def clear(state: State) -> None:
             state.via[i, k] = -1
 
 
-@kernel
+@part
 def slack_for(gap: Integers, wanted: int) -> int:
     """A gap that about `wanted` customers do not exceed, judged by some of them; FAR if it is for most."""
     if 2 * wanted >= len(gap):
@@ -255,7 +255,7 @@ def slack_for(gap: Integers, wanted: int) -> int:
     return int(some[wanted * count // len(gap)])
 
 
-@kernel
+@part
 def share_out(rows: Rows, chosen: Integers, stride: int, excess: Integers) -> None:
     """Sets `excess` to minus each depot's supply, or to minus its share for a sample.
 

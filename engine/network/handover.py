@@ -14,7 +14,7 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import kernel, part
+from engine.network.compiled import part
 from engine.network.customers import ASCENDING, COMPLETE, FAR, LIMITED, LISTED, Rows, State
 
 STALE = -2
@@ -38,7 +38,7 @@ class Users(NamedTuple):
     cost: Integers
 
 
-@kernel
+@part
 def new_users(rows: Rows, state: State, chosen: Integers) -> Users:
     """Empty lists with space for all rows that carry something at the `chosen` customers, and some more."""
     depots = len(rows.supply)
@@ -65,12 +65,13 @@ def new_users(rows: Rows, state: State, chosen: Integers) -> Users:
     )
 
 
-@kernel
+@part
 def let_in(rows: Rows, state: State, users: Users, j: int) -> None:
     """Puts the rows that carry something at customer j on the lists, and lets them offer their exchanges."""
-    if state.home[j] >= 0:
-        add_user(rows, users, state.home[j], j)
-        offer(rows, state, state.home[j], j)
+    home = state.home[j]
+    if home >= 0:
+        add_user(rows, users, home, j)
+        offer(rows, state, home, j)
         return
     for row in range(rows.start[j], rows.start[j + 1]):
         if state.flow[row] > 0:
@@ -91,16 +92,23 @@ def add_user(rows: Rows, users: Users, row: int, j: int) -> bool:
 
 
 @part
-def remove_user(rows: Rows, users: Users, row: int) -> None:
-    """Takes a row out of its depot's list."""
-    i = rows.depot[row]
-    last = users.first[i] + users.length[i] - 1
-    place = users.first[i]
-    while users.row[place] != row:
-        place += 1
+def remove_user(users: Users, i: int, row: int) -> None:
+    """Takes a row out of depot i's list."""
+    listed = users.row[users.first[i] : users.first[i] + users.length[i]]
+    last = users.first[i] + len(listed) - 1
+    place = users.first[i] + place_of(listed, row)
     users.row[place], users.customer[place] = users.row[last], users.customer[last]
     users.cost[place] = users.cost[last]
     users.length[i] -= 1
+
+
+@part
+def place_of(listed: Integers, row: int) -> int:
+    """Where `row` stands in a list that contains it."""
+    place = 0
+    while listed[place] != row:
+        place += 1
+    return place
 
 
 @part
@@ -122,7 +130,7 @@ def offer(rows: Rows, state: State, row: int, j: int) -> None:
                 via[k] = row
 
 
-@kernel
+@part
 def offer_all(cost: Integers, given_up: int, row: int, handover: Integers, via: Integers) -> None:
     """`offer` for a customer with one unlimited row for each depot, written so that it runs in vectors."""
     for k in range(len(handover)):
@@ -132,7 +140,7 @@ def offer_all(cost: Integers, given_up: int, row: int, handover: Integers, via: 
         via[k] = row if better else via[k]
 
 
-@kernel
+@part
 def renew(rows: Rows, state: State, users: Users, i: int) -> None:
     """Recomputes all that depot i can hand over."""
     handover, via, start, cost = state.handover[i], state.via[i], rows.start, rows.cost
@@ -178,7 +186,7 @@ def repair(rows: Rows, state: State, users: Users, i: int, stale: Integers) -> N
         else:
             for n in range(count):
                 k = stale[n]
-                other = row_from(rows, j, k)
+                other = row_from(start, rows.depot, j, k, len(handover))
                 if other < 0 or cost[other] - given_up >= handover[k]:
                     continue
                 if not (rows.kind[j] & LIMITED and state.flow[other] == rows.room[other]):
@@ -187,42 +195,49 @@ def repair(rows: Rows, state: State, users: Users, i: int, stale: Integers) -> N
 
 
 @part
-def row_from(rows: Rows, j: int, k: int) -> int:
+def row_from(start: Integers, depot: Integers, j: int, k: int, depots: int) -> int:
     """The row from depot k to customer j whose rows are in the order of depots, -1 if there is none."""
-    low, high = rows.start[j], rows.start[j + 1]
-    if high - low == len(rows.supply):
+    low, high = start[j], start[j + 1]
+    if high - low == depots:
         return int(low + k)
     while low < high:
         middle = (low + high) // 2
-        if rows.depot[middle] < k:
+        if depot[middle] < k:
             low = middle + 1
         else:
             high = middle
-    return int(low) if low < rows.start[j + 1] and rows.depot[low] == k else -1
+    return int(low) if low < start[j + 1] and depot[low] == k else -1
 
 
 @part
-def row_with_room(rows: Rows, state: State, j: int, k: int) -> int:
+def row_with_room(rows: Rows, flow: Integers, j: int, k: int) -> int:
     """The cheapest row from depot k to customer j that has room."""
     if rows.kind[j] & (ASCENDING | COMPLETE):
-        return row_from(rows, j, k)
+        return row_from(rows.start, rows.depot, j, k, len(rows.supply))
     limited = rows.kind[j] & LIMITED
     chosen, least = -1, FAR
     for row in range(rows.start[j], rows.start[j + 1]):
-        full = limited and state.flow[row] == rows.room[row]
+        full = limited and flow[row] == rows.room[row]
         if rows.depot[row] == k and rows.cost[row] < least and not full:
             chosen, least = row, rows.cost[row]
     return chosen
 
 
 @part
-def customer_of(rows: Rows, row: int) -> int:
+def customer_of(start: Integers, row: int) -> int:
     """The customer of a row, by halving."""
-    low, high = 0, len(rows.demand)
+    low, high = 0, len(start) - 1
     while high - low > 1:
         middle = (low + high) // 2
-        if rows.start[middle] <= row:
+        if start[middle] <= row:
             low = middle
         else:
             high = middle
     return low
+
+
+@part
+def mark_stale(via: Integers, row: int) -> None:
+    """Marks the exchanges that `row` gave as gone."""
+    for k in range(len(via)):
+        via[k] = STALE if via[k] == row else via[k]

@@ -12,13 +12,15 @@ import numpy as np
 
 from engine.exact import Integers
 from engine.network.compiled import kernel, part
-from engine.network.customers import FAR, LIMITED, SEVERAL, Rows, State
+from engine.network.customers import COMPLETE, FAR, LIMITED, SEVERAL, Rows, State
 from engine.network.handover import (
     STALE,
     Users,
     add_user,
     customer_of,
+    mark_stale,
     offer,
+    offer_all,
     remove_user,
     repair,
     row_with_room,
@@ -40,38 +42,26 @@ class Search(NamedTuple):
     closed: 0, or FAR once a depot's distance is known
     before: the depot before it on its path, -1 at the beginning
     target: depots with too little, nearest first
-    given:  rows that give up, receiving: rows that take over, along the path in hand
-    event:  what happened to those two rows, see `send`
+    giving, taking, place: the rows and customers of the exchanges along the path in hand
+    event:  what happened to those rows, see `move`
     """
 
     reach: Integers
     closed: Integers
     before: Integers
     target: Integers
-    given: Integers
+    giving: Integers
     taking: Integers
+    place: Integers
     event: Integers
-    at: Integers
-    stale: Integers
 
 
-@kernel
 def new_search(depots: int) -> Search:
     """Scratch space for `depots` depots."""
-    return Search(
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.empty(depots, dtype=np.int64),
-        np.zeros(depots, dtype=np.int64),
-    )
+    return Search(*(np.zeros(depots, dtype=np.int64) for _ in Search._fields))
 
 
-@kernel
+@part
 def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int) -> int:
     """Moves flow until no depot has too much, with prices rising by no more than `slack` (FAR: any).
 
@@ -166,19 +156,20 @@ def send(rows: Rows, state: State, users: Users, search: Search, target: int) ->
 
     Returns DONE if something was sent, WIDEN if not, RELIST if it was sent but `users` is out of space.
     """
+    price, flow, before = state.price, state.flow, search.before
     amount = -state.excess[target]
     length, k = 0, target
-    while search.before[k] >= 0:
-        i = search.before[k]
-        if state.handover[i, k] + state.price[i] != state.price[k]:
+    while before[k] >= 0:
+        i = before[k]
+        if state.handover[i, k] + price[i] != price[k]:
             return WIDEN
         row = state.via[i, k]
-        j = customer_of(rows, row)
-        other = row_with_room(rows, state, j, k)
-        amount = min(amount, state.flow[row])
+        j = customer_of(rows.start, row)
+        other = row_with_room(rows, flow, j, k)
+        amount = min(amount, flow[row])
         if rows.kind[j] & LIMITED:
-            amount = min(amount, rows.room[other] - state.flow[other])
-        search.given[length], search.taking[length], search.at[length] = row, other, j
+            amount = min(amount, rows.room[other] - flow[other])
+        search.giving[length], search.taking[length], search.place[length] = row, other, j
         length += 1
         k = i
     amount = min(amount, state.excess[k])
@@ -186,7 +177,11 @@ def send(rows: Rows, state: State, users: Users, search: Search, target: int) ->
         return WIDEN
     state.excess[k] -= amount
     state.excess[target] += amount
-    move(rows, state, search, length, amount)
+    for n in range(length):
+        j = search.place[n]
+        state.home[j] = SEVERAL
+        room = rows.room if rows.kind[j] & LIMITED else flow[:0]
+        search.event[n] = move(flow, room, search.giving[n], search.taking[n], amount)
     return follow(rows, state, users, search, length)
 
 
@@ -194,57 +189,55 @@ EMPTIED, BEGUN, FREED, FILLED = 1, 2, 4, 8
 
 
 @part
-def move(rows: Rows, state: State, search: Search, length: int, amount: int) -> None:
-    """Moves `amount` at every exchange of the path and notes which rows changed their standing."""
-    flow = state.flow
-    for n in range(length):
-        row, other = search.given[n], search.taking[n]
-        limited = rows.kind[search.at[n]] & LIMITED
-        event = 0
-        if limited and flow[row] == rows.room[row]:
-            event |= FREED
-        flow[row] -= amount
-        state.home[search.at[n]] = SEVERAL
-        if flow[row] == 0:
-            event |= EMPTIED
-        if flow[other] == 0:
-            event |= BEGUN
-        flow[other] += amount
-        if limited and flow[other] == rows.room[other]:
-            event |= FILLED
-        search.event[n] = event
+def move(flow: Integers, room: Integers, row: int, other: int, amount: int) -> int:
+    """Moves `amount` from one row to another; returns which of them changed its standing."""
+    event = 0
+    if len(room) and flow[row] == room[row]:
+        event |= FREED
+    flow[row] -= amount
+    if flow[row] == 0:
+        event |= EMPTIED
+    if flow[other] == 0:
+        event |= BEGUN
+    flow[other] += amount
+    if len(room) and flow[other] == room[other]:
+        event |= FILLED
+    return event
 
 
 @part
 def follow(rows: Rows, state: State, users: Users, search: Search, length: int) -> int:
-    """Brings lists and exchange costs up to date after `move`: first what is gone, then what is new."""
-    via = state.via
+    """Brings lists and exchange costs up to date: first what is gone, then what is new."""
+    flow, via, depot, start = state.flow, state.via, rows.depot, rows.start
     for n in range(length):
-        event, row, other, j = search.event[n], search.given[n], search.taking[n], search.at[n]
-        i, k = rows.depot[row], rows.depot[other]
+        event, row, other, j = search.event[n], search.giving[n], search.taking[n], search.place[n]
         if event & EMPTIED:
-            remove_user(rows, users, row)
-            for target in range(len(via)):
-                if via[i, target] == row:
-                    via[i, target] = STALE
-                    search.stale[i] = 1
+            remove_user(users, depot[row], row)
+            mark_stale(via[depot[row]], row)
         if event & BEGUN and not add_user(rows, users, other, j):
             return RELIST
         if event & FILLED:
-            for used in range(rows.start[j], rows.start[j + 1]):
-                if state.flow[used] > 0 and via[rows.depot[used], k] == used:
-                    via[rows.depot[used], k] = STALE
-                    search.stale[rows.depot[used]] = 1
-    for i in range(len(via)):
-        if search.stale[i]:
-            search.stale[i] = 0
-            repair(rows, state, users, i, search.closed)
+            for used in range(start[j], start[j + 1]):
+                if flow[used] > 0 and via[depot[used], depot[other]] == used:
+                    via[depot[used], depot[other]] = STALE
     for n in range(length):
-        j = search.at[n]
-        if search.event[n] & BEGUN:
-            offer(rows, state, search.taking[n], j)
+        j = search.place[n]
+        if search.event[n] & FILLED:
+            for used in range(start[j], start[j + 1]):
+                if flow[used] > 0:
+                    repair(rows, state, users, depot[used], search.closed)
+        if search.event[n] & EMPTIED:
+            repair(rows, state, users, depot[search.giving[n]], search.closed)
+    for n in range(length):
+        j, other = search.place[n], search.taking[n]
+        if search.event[n] & BEGUN and rows.kind[j] == COMPLETE:
+            k = depot[other]
+            here = rows.cost[start[j] : start[j + 1]]
+            offer_all(here, rows.cost[other], other, state.handover[k], via[k])
+        elif search.event[n] & BEGUN:
+            offer(rows, state, other, j)
         if search.event[n] & FREED:
-            for used in range(rows.start[j], rows.start[j + 1]):
-                if state.flow[used] > 0:
+            for used in range(start[j], start[j + 1]):
+                if flow[used] > 0:
                     offer(rows, state, used, j)
     return DONE
