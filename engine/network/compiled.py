@@ -39,7 +39,7 @@ def part(function: Function) -> Function:
     Each array that it is given, alone or in a tuple, costs a count of references up and down: functions
     in the innermost loops take few.
     """
-    options: Any = {"nogil": True, "no_cpython_wrapper": True, "no_cfunc_wrapper": True}
+    options: Any = {"nogil": True, "no_cpython_wrapper": True, "no_cfunc_wrapper": True, "_nrt": False}
     compiled: Function = numba.njit(**options)(function)
     return compiled
 

@@ -194,7 +194,7 @@ def run(rows: Rows, state: State, search: Search, again: bool) -> tuple[int, int
         stride //= STEP
 
 
-@part
+@kernel
 def solve_sample(rows: Rows, state: State, search: Search, stride: int, known: int) -> tuple[int, int]:
     """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`.
 
@@ -238,7 +238,7 @@ def clear(state: State) -> None:
             state.via[i, k] = -1
 
 
-@part
+@kernel
 def slack_for(gap: Integers, wanted: int) -> int:
     """A gap that about `wanted` customers do not exceed, judged by some of them; FAR if it is for most."""
     if 2 * wanted >= len(gap):

@@ -14,7 +14,7 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import part
+from engine.network.compiled import kernel, part
 from engine.network.customers import ASCENDING, COMPLETE, FAR, LIMITED, LISTED, Rows, State
 
 STALE = -2
@@ -38,7 +38,7 @@ class Users(NamedTuple):
     cost: Integers
 
 
-@part
+@kernel
 def new_users(rows: Rows, state: State, chosen: Integers) -> Users:
     """Empty lists with space for all rows that carry something at the `chosen` customers, and some more."""
     depots = len(rows.supply)

@@ -61,7 +61,7 @@ def new_search(depots: int) -> Search:
     return Search(*(np.zeros(depots, dtype=np.int64) for _ in Search._fields))
 
 
-@part
+@kernel
 def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int) -> int:
     """Moves flow until no depot has too much, with prices rising by no more than `slack` (FAR: any).
 
