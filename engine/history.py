@@ -143,6 +143,17 @@ class History:
 
     def at(self, version: int) -> Week:
         """The week as it was after the first `version` changes."""
+        week = self.uploaded
+        for entry in self.entries[:version]:
+            week = week.apply(entry.change)
+        return week
+
+    def figures_at(self, version: int) -> Week:
+        """A week with the same figures as `at`, by stepping back: quicker for what was a moment ago.
+
+        Rate rows that were added since are taken out in it, and not as if they had never been: a row of their
+        kind that is added to it is counted otherwise. Read it, and build nothing on it.
+        """
         week = self.week
         for entry in reversed(self.entries[version:]):
             week = week.apply(entry.inverse)

@@ -7,7 +7,7 @@ merged = save(records, opened.listed.id, history, saved=0)      # on disk when t
 again = open_week(records, opened.listed.id)                    # again.history.week == history.week
 """
 
-from engine.records.answers import forget_answer, load_answers, save_answer
+from engine.records.answers import load_answers, save_answers
 from engine.records.failures import Missing, NotSaved
 from engine.records.journal import Conflict, Made, append, changes_since, version_of
 from engine.records.merging import Clash, Merged, caught_up, merge, save
@@ -46,7 +46,6 @@ __all__ = [
     "create_week",
     "default_place",
     "find_plan",
-    "forget_answer",
     "issue_plan",
     "list_plans",
     "list_weeks",
@@ -57,7 +56,7 @@ __all__ = [
     "open_week",
     "restore_as_new",
     "save",
-    "save_answer",
+    "save_answers",
     "save_remarks",
     "totals_by_week",
     "version_of",

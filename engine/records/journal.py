@@ -82,7 +82,7 @@ def append(records: Records, week_id: str, history: History, saved: int) -> int:
                     theirs = load_changes(connection, week_id, saved)
                     raise _lost(connection, week_id, saved, theirs)
                 insert_rows(connection, changes, rows)
-                replace_facts(connection, week_id, history.at(saved), history.week)
+                replace_facts(connection, week_id, history.figures_at(saved), history.week)
         except DBAPIError:
             if not _all_there(records, tokens):
                 raise

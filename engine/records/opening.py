@@ -84,7 +84,7 @@ def open_records(place: str | Path | None = None) -> Records:
         NotSaved: they cannot be opened, or a newer version of Hithe made them.
     """
     url = url_of(default_place() if place is None else place)
-    where = "in " + (url.database or "memory") if _is_sqlite(url) else f"at {url.render_as_string()}"
+    where = f"in {url.database}" if _is_sqlite(url) else f"at {url.set(drivername='postgresql')}"
     try:
         engine = _sqlite(url) if _is_sqlite(url) else _postgresql(url)
     except (ModuleNotFoundError, NoSuchModuleError):

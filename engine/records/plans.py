@@ -9,7 +9,7 @@ from typing import Any
 
 from sqlalchemy import Connection, RowMapping, Table, func, insert, select
 
-from engine.exact import canonical
+from engine.exact import canonical, total_of
 from engine.figures import RateKey
 from engine.planning.plan import Plan, Shipment, Short, Unsent
 from engine.records.bulk import insert_rows
@@ -48,8 +48,11 @@ class Issued:
 
     @property
     def quantities(self) -> Mapping[RateKey, Decimal]:
-        """What goes on each rate row: what later plans stay near to."""
-        return MappingProxyType({shipment.key: shipment.quantity for shipment in self.shipments})
+        """What goes on each rate row, gone goods included: what later plans stay near to."""
+        found: dict[RateKey, Decimal] = {}
+        for shipment in self.shipments:
+            found[shipment.key] = total_of((found.get(shipment.key, Decimal(0)), shipment.quantity))
+        return MappingProxyType(found)
 
 
 def issue_plan(

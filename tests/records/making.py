@@ -95,7 +95,7 @@ def a_change(week: Week, pick: Pick, step: int) -> Change:
 
 def in_any_order(week: Week) -> tuple[Any, ...]:
     """What a week says, whatever the order in which its records were put in."""
-    rows = sorted((repr(row) for row in week.rates))
+    rows = sorted(repr(row) for row in week.rates)
     return dict(week.depots), dict(week.customers), rows, week.rules, dict(week.holds), dict(week.gone)
 
 

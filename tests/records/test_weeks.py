@@ -11,6 +11,7 @@ from engine.changes import Add, Alter, Remove, SetHold
 from engine.figures import Customer, Depot, Gone, RateKey, RateRow, Rules
 from engine.findings import Finding, Severity
 from engine.history import History
+from engine.intake.answers import Answers
 from engine.intake.build_lists import Unused
 from engine.intake.numbers import NumberStyle
 from engine.planning.plan import Shipment, Short, Unsent
@@ -27,10 +28,9 @@ from engine.records import (
     open_week,
     restore_as_new,
     save,
-    save_answer,
+    save_answers,
     save_remarks,
 )
-from engine.records.answers import forget_answer
 from engine.records.decimals import field_names
 from engine.records.schema import (
     customers,
@@ -252,13 +252,20 @@ def test_texts_that_nobody_could_read_are_kept_until_they_are_mended(records: Re
 
 
 def test_answers_are_remembered_for_each_desk(records: Records) -> None:
-    save_answer(records, "which name", "astre", "Aster")
-    save_answer(records, "which name", "astre", "Aster Ltd")
-    save_answer(records, "which mark", "rate", ",", desk="south")
-    assert dict(load_answers(records).given) == {("which name", "astre"): "Aster Ltd"}
-    assert load_answers(records, "south").to("which mark", "Rate") == ","
-    forget_answer(records, "which name", "astre")
-    assert not load_answers(records).given
+    asked = Finding(Severity.CHECK, "unknown name", "Astre?", subject="Astre", options=("Aster", "none"))
+    huge = Finding(Severity.CHECK, "huge", "That is a lot.", subject="Aster")
+    mine = Answers().with_answer(asked, "Aster")
+    save_answers(records, mine)
+    hers = Answers().with_accepted(huge)
+    save_answers(records, hers)
+    save_answers(records, Answers().with_answer(asked, "none"), desk="south")
+    both = load_answers(records)
+    assert both.to("unknown name", "ASTRE") == "Aster"
+    assert both.accepted == hers.accepted
+    assert load_answers(records, "south").to("unknown name", "astre") == "none"
+    save_answers(records, both.with_answer(asked, "none"), both)
+    save_answers(records, Answers(), hers)
+    assert load_answers(records) == Answers().with_answer(asked, "none")
 
 
 def test_other_tools_can_read_the_rates(records: Records) -> None:
@@ -267,8 +274,8 @@ def test_other_tools_can_read_the_rates(records: Records) -> None:
     save(records, made.listed.id, history, saved=0)
     copied = copy_week(records, made.listed.id, "Week 7")
     query = text(
-        "SELECT depot, customer, haulier, per, rate, rate_scale, at_most, at_most_scale FROM rates_as_uploaded "
-        "WHERE week_id = :week ORDER BY row_id"
+        "SELECT depot, customer, haulier, per, rate, rate_scale, at_most, at_most_scale "
+        "FROM rates_as_uploaded WHERE week_id = :week ORDER BY row_id"
     )
     with records.read() as connection:
         first = connection.execute(query, {"week": made.listed.id}).all()
