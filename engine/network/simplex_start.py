@@ -17,8 +17,12 @@ import numpy as np
 
 from engine.exact import Integers
 from engine.network.compiled import kernel
+from engine.network.simplex_guess import cheapest_first, owners
 from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature
 from engine.network.simplex_tree import ARTIFICIAL, NOBODY, NODE, TREE, Tree, as_node, empty_tree
+
+MANY_ROWS = 100
+"""Per depot and customer: with more, sorting all rows takes longer than it saves in pivots (measured)."""
 
 
 class Hint(NamedTuple):
@@ -41,17 +45,22 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
     depots, customers = len(left), len(need)
     tree = empty_tree(depots, customers)
     kept = int(left.sum()) + 1
+    price = hint.price
     if len(hint.quantity):
         replay(tree, rows, left, need, hint.quantity)
+    elif len(rows.cost) < MANY_ROWS * (depots + customers):
+        price, order = cheapest_first(rows, left, need, price)
+        price = np.minimum(price, big)
+        use(tree, rows, left, need, order, owners(rows))
     regret = np.empty(customers, dtype=np.int64)
-    find_regret(rows, left, need, hint.price, regret)
-    fill(tree, rows, left, need, hint.price, np.argsort(-regret, kind="stable"), big)
+    find_regret(rows, left, need, price, regret)
+    fill(tree, rows, left, need, price, np.argsort(-regret, kind="stable"), big)
     gate = depots + 1 + customers
     parent, flow = tree.link["parent"], tree.link["flow"]
     parent[gate], flow[gate] = depots, kept - int(left.sum())
     loose = np.flatnonzero(parent[:depots] == NOBODY)
     parent[loose], flow[loose] = gate, left[loose]
-    tree.link["cost"][loose] = big + hint.price[loose]
+    tree.link["cost"][loose] = big + price[loose]
     grow(tree, depots + 1)
     return tree
 
@@ -81,6 +90,16 @@ def send(tree: Tree, rows: Rows, left: Integers, need: Integers, row: int, j: in
         link(tree, rows, i, customer, row, amount)
     left[i] -= amount
     need[j] -= amount
+
+
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS, INTS))
+def use(tree: Tree, rows: Rows, left: Integers, need: Integers, order: Integers, owner: Integers) -> None:
+    """Sends as much as possible on each row in `order`; owner: (rows,) the customer of each row."""
+    limited = len(rows.room) > 0
+    for row in order:
+        needed = left[rows.depot[row]] > 0 and need[owner[row]] > 0
+        if needed and not (limited and rows.room[row] == 0):
+            send(tree, rows, left, need, row, owner[row])
 
 
 @kernel(signature(VOID, ROWS, INTS, INTS, INTS, INTS))

@@ -163,7 +163,8 @@ def turn(tree: Tree, low: int, high: int, stop: int) -> int:
     row, cost, flow, room = ARTIFICIAL, 0, 0, 0
     whole, below = link[stop].size & ~1, 0
     node, upper = low, high
-    tail = child_before = child_last = child_after = NOBODY
+    tail: int = NOBODY
+    child_before = child_last = child_after = NOBODY
     while True:
         old_parent, old_size = link[node].parent, link[node].size
         old_row, old_cost, old_flow, old_room = (
