@@ -99,5 +99,16 @@ RULE_COLUMNS = (
 HOLD_HEADINGS = ("Hold", "Hold reason")
 """On *Rates* in a workbook we wrote: what a dispatcher fixed on the row, and why."""
 
+GONE_COLUMNS = (
+    Column("Load", "name", Kind.NAME, "What tells it from others, a load number for instance", needed=True),
+    Column("Depot", "depot", Kind.NAME, "Where it left", needed=True),
+    Column("Customer", "customer", Kind.NAME, "Where it went", needed=True),
+    Column("Haulier", "haulier", Kind.TEXT, "Who carried it"),
+    Column("Gone", "quantity", Kind.QUANTITY, "What has left", needed=True),
+    Column("Paid per unit", "rate", Kind.RATE, "By the rate of its day, surcharge included"),
+    Column("Day gone", "day", Kind.DATE, "When it left"),
+)
+"""What has gone: facts that count against Ordered and Available, which state the whole week."""
+
 SEND = Column("Send", "quantity", Kind.QUANTITY, "What goes on the row this week", needed=True)
 """The quantity of a plan: a sheet with this heading is a plan and never read as rates."""

@@ -106,6 +106,16 @@ def _headline(plan: Plan, formats: Formats) -> list[Row]:
         _line(["Freight, exact", plan.freight_cost, None], exact),
         _line([_ROUNDING, plan.proof.rounding, None], exact),
         _line(["Freight, to be invoiced", plan.freight_payable, PAYABLE], exact, "total"),
+        *(
+            [
+                _line(
+                    ["of it for what has gone", total(s.payable for s in plan.shipments if s.gone), PAYABLE],
+                    exact,
+                )
+            ]
+            if plan.week.gone
+            else []
+        ),
         _line(["Charges for what is short", plan.short_cost, NOTIONAL], exact),
         _line(["Charges for what is unsent", plan.unsent_cost, NOTIONAL], exact),
         _line(["Made least: exact freight and charges", plan.total_cost, None], exact, "total"),

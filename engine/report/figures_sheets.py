@@ -11,6 +11,7 @@ from openpyxl.utils import get_column_letter
 from engine.columns import (
     CUSTOMER_COLUMNS,
     DEPOT_COLUMNS,
+    GONE_COLUMNS,
     HOLD_HEADINGS,
     RATE_COLUMNS,
     RULE_COLUMNS,
@@ -54,16 +55,21 @@ def all_fit(week: Week) -> bool:
     others += [depot.charge_if_unsent for depot in week.depots.values()]
     others += [order.quantity for customer in week.customers.values() for order in customer.orders]
     others += [customer.charge_if_short for customer in week.customers.values()]
+    others += [figure for gone in week.gone.values() for figure in (gone.quantity, gone.rate)]
     others += [hold.quantity for hold in week.holds.values()]
     return small and all(figure is None or fits_a_number(figure) for figure in others)
 
 
 def figures_sheets(week: Week, header: str) -> list[Sheet]:
-    """The four sheets; *Rates* goes on in *Rates 2* and so on where one sheet cannot hold all rows."""
+    """The sheets, *Gone* only where anything has.
+
+    *Rates* goes on in *Rates 2* and so on where one sheet cannot hold all rows.
+    """
     return [
         _depots(week, header),
         _customers(week, header),
         *_rates(week, header),
+        *([_gone(week, header)] if week.gone else []),
         _rules(week, header),
     ]
 
@@ -79,6 +85,11 @@ def _customers(week: Week, header: str) -> Sheet:
         for place, order in enumerate(customer.orders or (Order(Decimal(0)),)):
             rows.append([_of_order(customer, order, column, place == 0) for column in CUSTOMER_COLUMNS])
     return _sheet("Customers", CUSTOMER_COLUMNS, rows, header)
+
+
+def _gone(week: Week, header: str) -> Sheet:
+    rows = [[_shown(getattr(gone, c.field)) for c in GONE_COLUMNS] for gone in week.gone.values()]
+    return _sheet("Gone", GONE_COLUMNS, rows, header)
 
 
 def _of_order(customer: Customer, order: Order, column: Column, first: bool) -> Value:

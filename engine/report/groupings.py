@@ -8,15 +8,18 @@ from typing import TypeVar
 from engine.columns import SEND
 from engine.money import minor_places
 from engine.planning.plan import Plan
+from engine.report.figures_sheets import letter
 from engine.report.lines import (
     NO_HAULIER,
     Line,
     ListColumn,
     delivery_days,
+    gone_columns,
     heading_row,
     line_rows,
     order_numbers,
     quantity_format,
+    still_to_go,
     styles_of,
     total,
 )
@@ -47,7 +50,7 @@ def loading_columns(plan: Plan) -> list[ListColumn]:
 def by_depot_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
     """Sheet *By depot*: each depot's loading list on a page of its own, without money."""
     columns = [ListColumn("Depot", 20, lambda line: line.shipment.depot), *loading_columns(plan)]
-    at = _grouped(lines, plan.week.depots, lambda line: line.shipment.depot)
+    at = _grouped(still_to_go(lines), plan.week.depots, lambda line: line.shipment.depot)
     rows, breaks = _in_groups(columns, at, "{}: to load")
     return _list("By depot", columns, rows, header, breaks=breaks)
 
@@ -71,6 +74,7 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
         ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
+        *gone_columns(plan),
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
         columns.insert(5, ListColumn("Loads", 8, lambda line: line.shipment.loads, "0"))
@@ -99,6 +103,7 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ListColumn("Goes short of", 12, lambda _: None, quantity),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
         ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
+        *gone_columns(plan),
     ]
     styles = styles_of(columns)
     at = _grouped(lines, week.customers, lambda line: line.shipment.customer)
@@ -108,7 +113,7 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         short = missing.get(name)
         kind = "short" if short else "plain"
         for place, line in enumerate(at.get(name, ())):
-            values = [column.value(line) for column in columns]
+            values = [one.value(line) for one in columns]
             if place == 0:
                 values[6], values[7] = customer.ordered, short
             rows.append(
@@ -117,10 +122,15 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         if name not in at:
             rest = [customer.ordered, short, delivery_days(customer) or None, order_numbers(customer) or None]
             rows.append(Row([name, None, None, Decimal(0), unit, None, *rest], styles[kind]))
+    rows.extend(  # gone to somebody who is not in the week
+        Row([one.value(line) for one in columns], styles["short"])
+        for line in lines
+        if line.shipment.customer not in week.customers
+    )
     last = len(rows)
     rows.append(Row([]))
     sums: list[Value] = ["Total", None, None]
-    for letter, amounts in (
+    for column, amounts in (
         ("D", [line.shipment.quantity for line in lines]),
         ("E", None),
         ("F", [line.shipment.payable for line in lines]),
@@ -128,10 +138,10 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ("H", list(missing.values())),
     ):
         sums.append(
-            None if amounts is None else Formula(f"SUBTOTAL(109,{letter}2:{letter}{last})", total(amounts))
+            None if amounts is None else Formula(f"SUBTOTAL(109,{column}2:{column}{last})", total(amounts))
         )
-    rows.append(Row([*sums, None, None], styles["total"]))
-    return _list("By customer", columns, rows, header, filtered=f"A1:J{last}")
+    rows.append(Row([*sums, *[None] * (len(columns) - len(sums))], styles["total"]))
+    return _list("By customer", columns, rows, header, filtered=f"A1:{letter(len(columns) - 1)}{last}")
 
 
 def hauliers_of(plan: Plan) -> tuple[str | None, ...]:

@@ -19,12 +19,12 @@ NO_HAULIER = "(no haulier named)"
 class Line:
     """A shipment to be listed.
 
-    `rate_row` counts the week's rate rows from 1, in sheet order; `part` says that the customer gets
-    the rest of its order from elsewhere, or not at all.
+    `rate_row` counts the week's rate rows from 1, in sheet order, None for what has gone; `part` says that
+    the customer gets the rest of its order from elsewhere, or not at all.
     """
 
     shipment: Shipment
-    rate_row: int
+    rate_row: int | None
     orders: str
     days: str
     part: bool
@@ -38,7 +38,6 @@ class Line:
 def lines_of(plan: Plan) -> tuple[Line, ...]:
     """A line for every shipment, depot by depot in sheet order, then customer by customer."""
     week = plan.week
-    ids = week.rates.ids_in_order
     depots = {name: place for place, name in enumerate(week.depots)}
     customers = {name: place for place, name in enumerate(week.customers)}
     told = {
@@ -46,27 +45,52 @@ def lines_of(plan: Plan) -> tuple[Line, ...]:
     }
     lines = []
     for shipment in plan.shipments:
-        number = week.rates.find(shipment.key)
-        if number is None:
-            raise ValueError(f"The plan ships on {shipment.key}, which is no rate row of its week.")
-        hold = week.holds.get(shipment.key)
-        orders, days = told[shipment.customer]
+        hold = week.holds.get(shipment.key) if not shipment.gone else None
+        orders, days = told.get(shipment.customer, ("", ""))
+        if shipment.gone:
+            day = week.gone[shipment.gone].day
+            days = day.isoformat() if day else ""
         lines.append(
             Line(
                 shipment,
-                1 + int(np.searchsorted(ids, number)),
+                None if shipment.gone else _rate_row(plan, shipment),
                 orders,
                 days,
-                part=shipment.quantity < week.customers[shipment.customer].ordered,
+                part=shipment.customer in week.customers
+                and shipment.quantity < week.customers[shipment.customer].ordered,
                 reason=hold.reason if hold else "",
             )
         )
+    nowhere = len(depots), len(customers)
     return tuple(
         sorted(
             lines,
-            key=lambda line: (depots[line.shipment.depot], customers[line.shipment.customer], line.rate_row),
+            key=lambda line: (
+                depots.get(line.shipment.depot, nowhere[0]),
+                customers.get(line.shipment.customer, nowhere[1]),
+                line.rate_row or 0,
+            ),
         )
     )
+
+
+def still_to_go(lines: Iterable[Line]) -> list[Line]:
+    """The lines without those that have gone."""
+    return [line for line in lines if not line.shipment.gone]
+
+
+def gone_columns(plan: Plan) -> list["ListColumn"]:
+    """A column that names what has gone, where anything has."""
+    if not plan.week.gone:
+        return []
+    return [ListColumn("Gone, load", 16, lambda line: line.shipment.gone or None)]
+
+
+def _rate_row(plan: Plan, shipment: Shipment) -> int:
+    number = plan.week.rates.find(shipment.key)
+    if number is None:
+        raise ValueError(f"The plan ships on {shipment.key}, which is no rate row of its week.")
+    return 1 + int(np.searchsorted(plan.week.rates.ids_in_order, number))
 
 
 def order_numbers(customer: Customer) -> str:

@@ -7,7 +7,7 @@ from typing import IO
 from engine.planning.plan import Plan
 from engine.report.book import Target, fixed_zip, open_whole, write_book
 from engine.report.groupings import loading_columns
-from engine.report.lines import Line, heading_row, line_rows, lines_of, styles_of
+from engine.report.lines import Line, heading_row, line_rows, lines_of, still_to_go, styles_of
 from engine.report.look import Style
 from engine.report.notes import CAUTIONS
 from engine.report.plan_sheet import total_values
@@ -29,13 +29,15 @@ def write_loading_list(plan: Plan, depot: str, target: Target) -> None:
         KeyError: the week has no such depot.
         OSError: the file cannot be written.
     """
-    _write(plan, depot, [line for line in lines_of(plan) if line.shipment.depot == depot], target)
+    _write(
+        plan, depot, [line for line in still_to_go(lines_of(plan)) if line.shipment.depot == depot], target
+    )
 
 
 def write_loading_zip(plan: Plan, target: Target) -> None:
     """Write every depot's loading list into one zip file, under the names of `loading_file_names`."""
     lines: dict[str, list[Line]] = {depot: [] for depot in plan.week.depots}
-    for line in lines_of(plan):
+    for line in still_to_go(lines_of(plan)):
         lines[line.shipment.depot].append(line)
     members = []
     for depot, name in loading_file_names(plan.week.depots).items():

@@ -6,7 +6,16 @@ from decimal import Decimal
 from engine.columns import SEND
 from engine.money import minor_places
 from engine.planning.plan import Plan
-from engine.report.lines import Line, ListColumn, heading_row, line_rows, quantity_format, styles_of, total
+from engine.report.lines import (
+    Line,
+    ListColumn,
+    gone_columns,
+    heading_row,
+    line_rows,
+    quantity_format,
+    styles_of,
+    total,
+)
 from engine.report.look import DEEP, number_format, places_of
 from engine.report.sheet import Formula, Row, Sheet, Value
 
@@ -31,6 +40,7 @@ def plan_columns(plan: Plan) -> list[ListColumn]:
         ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
         ListColumn("Rate row", 9, lambda line: line.rate_row, "0"),
+        *gone_columns(plan),
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
         columns.insert(5, ListColumn("Loads", 8, lambda line: line.shipment.loads, "0"))

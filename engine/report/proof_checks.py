@@ -12,6 +12,7 @@ import numpy as np
 
 from engine.exact import to_decimal, total_of
 from engine.money import round_half_up
+from engine.planning.gone import cost_of
 from engine.planning.plan import Plan
 from engine.report.proof_figures import ProofFigures, check_codes, left_over, lower_bound
 from engine.report.proof_layout import Layout
@@ -36,7 +37,7 @@ class Check(NamedTuple):
 
 
 class _FromFlow(NamedTuple):
-    """Sums over the rate rows of the flow: sent, exact cost, payable."""
+    """Sums over what has gone and the rate rows of the flow: sent, exact cost, payable."""
 
     sent: Decimal
     cost: Decimal
@@ -92,14 +93,16 @@ def _sums_agree(plan: Plan, figures: ProofFigures, layout: Layout, costs: dict[s
     """Sums that should be the same on both sides."""
     depots, customers, rates, places = layout.depots, layout.customers, layout.rates, layout.places
     flow = _from_flow(plan, figures)
-    sent, cost, payable = (f"SUM({layout.range(column, rates)})" for column in "EMN")
+    sent, cost, payable = (_sum_of(layout, column) for column in "EMN")
     plan_sent, plan_cost, plan_payable = (
         f"SUM({layout.on_plan(heading)})" for heading in ("Send", "Cost", "Payable")
     )
     charges = _products(layout, "E", "I", (depots, customers))
     stand_ins = ((depots[0], depots[1] + 1), (customers[0], customers[1] + 1))
-    by_prices = _products(layout, "C", "H", stand_ins)
+    by_prices = _products(layout, "N", "H", stand_ins)
     by_limits = "+".join(f"SUM({layout.range('O', table)})" for table in (depots, customers, rates))
+    if plan.week.gone:
+        by_limits += f"+SUM({layout.range('M', layout.gone)})"
     listed = plan.shipments
     return [
         Check(
@@ -123,7 +126,7 @@ def _sums_agree(plan: Plan, figures: ProofFigures, layout: Layout, costs: dict[s
             f"{cost}+{charges}",
             f"{by_prices}+{by_limits}",
             total_of((flow.cost, plan.short_cost, plan.unsent_cost)),
-            lower_bound(plan, figures),
+            total_of((lower_bound(plan, figures), *(cost_of(one) for one in plan.week.gone.values()))),
             places.total,
         ),
         Check(
@@ -153,6 +156,12 @@ def _sums_agree(plan: Plan, figures: ProofFigures, layout: Layout, costs: dict[s
     ]
 
 
+def _sum_of(layout: Layout, column: str) -> str:
+    """A column of the rate rows, and of what has gone, added up."""
+    tables = [layout.rates] if layout.gone[1] < layout.gone[0] else [layout.gone, layout.rates]
+    return f"SUM({','.join(layout.range(column, table) for table in tables)})"
+
+
 def _products(layout: Layout, left: str, right: str, tables: Sequence[tuple[int, int]]) -> str:
     return "+".join(
         f"SUMPRODUCT({layout.range(left, table)},{layout.range(right, table)})" for table in tables
@@ -167,8 +176,10 @@ def _from_flow(plan: Plan, figures: ProofFigures) -> _FromFlow:
         to_decimal(sent * rate, places)
         for sent, rate in zip(quantity[used].tolist(), model.money[used].tolist(), strict=True)
     ]
+    costs += [cost_of(one) for one in plan.week.gone.values()]
+    sent = to_decimal(sum(quantity[used].tolist()), model.quantity_places)
     return _FromFlow(
-        to_decimal(sum(quantity[used].tolist()), model.quantity_places),
+        total_of((sent, *(one.quantity for one in plan.week.gone.values()))),
         total_of(costs),
         total_of(round_half_up(cost, figures.payable_places) for cost in costs),
     )

@@ -6,12 +6,13 @@ from typing import NamedTuple
 
 import numpy as np
 
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, RULE_COLUMNS, Column
+from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, GONE_COLUMNS, RULE_COLUMNS, Column
 from engine.exact import Integers
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.report.figures_sheets import RATE_HEADINGS, all_fit, letter, rates_place
 from engine.report.lines import Line
+from engine.report.look import places_of
 from engine.report.proof_figures import ProofFigures
 
 MOST_ROWS_LISTED = 100_000
@@ -22,7 +23,7 @@ class Layout(NamedTuple):
     """Sheet rows (from 1) of each table's first and last line, and how to point elsewhere.
 
     listed:  rows of the problem that are listed, customer by customer
-    depots, customers, rates: first and last sheet row; an empty table has last < first
+    depots, customers, gone, rates: first and last sheet row; an empty table has last < first
     linked:  whether formulas point at the other sheets; else figures are copies
     plan:    letters of the columns of *Plan*, by heading; its lines stand in rows 2 to `plan_last`
     places:  decimal places of quantities, money per unit, cost and payable amounts, as far as a
@@ -33,6 +34,7 @@ class Layout(NamedTuple):
     every_row: bool
     depots: tuple[int, int]
     customers: tuple[int, int]
+    gone: tuple[int, int]
     rates: tuple[int, int]
     linked: bool
     plan: dict[str, str]
@@ -66,12 +68,16 @@ def layout_of(
     listed = figures.rows if every_row else figures.rows[plan.flow.quantity[figures.rows] > 0]
     depots = (first + 2, first + 1 + len(model.depots))
     customers = (depots[1] + 5, depots[1] + 4 + len(model.customers))
-    rates = (customers[1] + 5, customers[1] + 4 + len(listed))
+    many = len(plan.week.gone)
+    gone = (customers[1] + 5, customers[1] + 4 + many)
+    above = gone[1] + 1 if many else customers[1] + 2
+    rates = (above + 3, above + 2 + len(listed))
     return Layout(
         listed,
         every_row,
         depots,
         customers,
+        gone,
         rates,
         all_fit(plan.week),
         plan_letters,
@@ -85,7 +91,7 @@ def _places(plan: Plan) -> Places:
     rates = int(np.abs(model.money).max(initial=0)) // 10**model.money_places
     cost = max((abs(shipment.cost) for shipment in plan.shipments), default=Decimal(0))
     quantity = max((shipment.quantity for shipment in plan.shipments), default=Decimal(0))
-    places = model.quantity_places + model.money_places
+    places = max(model.quantity_places + model.money_places, places_of(s.cost for s in plan.shipments))
     minor = minor_places(plan.week.rules.currency)
     total = max(abs(plan.freight_cost), abs(plan.total_cost))
     return Places(
@@ -117,6 +123,11 @@ def on_rates(heading: str, position: int) -> str:
     """The cell of *Rates* under a heading, for the rate row at a position."""
     sheet, row = rates_place(position)
     return f"{sheet}!${letter(RATE_HEADINGS.index(heading))}${row}"
+
+
+def on_gone(field: str, place: int) -> str:
+    """The cell of *Gone* that holds a field of what has gone, at a position."""
+    return f"Gone!${_letter_of(GONE_COLUMNS, field)}${place + 2}"
 
 
 def on_rules(field: str) -> str:

@@ -18,7 +18,7 @@ from engine.report.look import DEEP, WARN, WARN_INK, Style, number_format
 from engine.report.proof_checks import NUMBER_OF_CHECKS, Check, checks_of
 from engine.report.proof_figures import ProofFigures, proof_figures
 from engine.report.proof_layout import Layout, layout_of
-from engine.report.proof_tables import customer_rows, depot_rows, rate_rows
+from engine.report.proof_tables import customer_rows, depot_rows, gone_rows, rate_rows
 from engine.report.sheet import Formula, Row, Sheet, Value
 
 PROVED = "No lane can improve this plan"
@@ -26,7 +26,7 @@ BROKEN = "Warning: these figures no longer prove the plan, see the checks marked
 NOT_PROVED = "Not proved to be the cheapest plan: Notes say how far it may be above the least cost"
 
 VERDICT = "B3"
-_WIDTHS = (8, 20, 20, 16, 14, 12, 12, 14, 14, 12, 12, 8, 16, 14, 14, 10, 10)
+_WIDTHS = (8, 20, 20, 16, 14, 12, 12, 14, 14, 12, 12, 8, 16, 14, 14, 10, 10, 10)
 _FIRST_CHECK = 7
 
 _HOW_TO_READ = (
@@ -56,6 +56,7 @@ def proof_sheet(
         [Row([])],
         depot_rows(plan, figures, layout),
         customer_rows(plan, figures, layout),
+        gone_rows(plan, layout),
         rate_rows(plan, figures, layout),
     )
     return Sheet(

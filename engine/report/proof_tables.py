@@ -5,32 +5,38 @@ its limits. What a line's cost less prices means for its quantity is said in `en
 """
 
 from collections.abc import Iterator, Sequence
+from decimal import Decimal
 
 import numpy as np
 
-from engine.exact import to_decimal
+from engine.exact import canonical, to_decimal
 from engine.figures import ANY_SINGLE_DEPOT
 from engine.money import round_half_up
 from engine.network.problem import UNLIMITED
+from engine.planning.gone import cost_of, left, superseded
 from engine.planning.model import NO_RATE, Model
 from engine.planning.plan import Plan
 from engine.report.figures_sheets import HOLD
 from engine.report.lines import quantity_format
 from engine.report.look import Style, number_format
 from engine.report.proof_figures import ProofFigures, check_codes, forced, kept, kept_of_must, left_over
-from engine.report.proof_layout import Layout, on_customers, on_depots, on_rates, on_rules
+from engine.report.proof_layout import Layout, on_customers, on_depots, on_gone, on_rates, on_rules
 from engine.report.sheet import Formula, Row, Value
 
 MISSING, STAYS = "(goods that are missing)", "(goods that stay)"
 
 DEPOT_HEADINGS = (
     "No.", "Depot", "Could send", "Sent", "Unsent", "Of it, must move", "Left over", "Price",
-    "Charge if kept", "Charge less price", "Should move", "Check", None, None, "Forced",
+    "Charge if kept", "Charge less price", "Should move", "Check", "Gone", "Still to send", "Forced",
     "Before cost", "Before cost, kept",
+)  # fmt: skip
+GONE_HEADINGS = (
+    "No.", "Depot", "Customer", "Haulier", "Send", "Paid per unit", *[None] * 6, "Exact cost", "Payable",
+    None, None, "Depot no.", "Customer no.",
 )  # fmt: skip
 CUSTOMER_HEADINGS = (
     "No.", "Customer", "Whole order", "Received", "Short", None, "Left over", "Price",
-    "Charge, short", "Charge less price", "Fixed share", "Check", None, None, "Forced",
+    "Charge, short", "Charge less price", "Fixed share", "Check", "Gone", "Still to bring", "Forced",
     "Before cost", "Before cost, short",
 )  # fmt: skip
 RATE_HEADINGS = (
@@ -44,9 +50,9 @@ def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Ro
     """What each depot sends and keeps, its price, and whether keeping less or more would pay."""
     model, q = plan.model, layout.places.quantity
     yield from _head("Depots", DEPOT_HEADINGS)
-    styles = _styles(plan, layout, "n_qqqqqmmmqc__tnn")
-    unsent, must, left = kept(plan), kept_of_must(plan), left_over(plan, figures)[0]
-    held, codes = forced(model, figures), check_codes(plan, figures)
+    styles = _styles(plan, layout, "n_qqqqqmmmqcqqtnn")
+    unsent, must, over = kept(plan), kept_of_must(plan), left_over(plan, figures)[0]
+    held, codes, gone = forced(model, figures), check_codes(plan, figures), left(plan.week)
     stays = layout.customers[1] + 1
     for i, name in enumerate(model.depots):
         r = layout.depots[0] + i
@@ -58,28 +64,28 @@ def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Ro
         free_aims, must_aims = f"(P{r}+$P${stays})", f"(Q{r}-P{r}-$P${stays})"
         free, bound = f"IF({free_aims}<>0,-{free_aims},J{r})", f"IF({must_aims}<>0,{must_aims},J{r})"
         check = (
-            f"IF({free}>0,IF(ROUND(E{r}-F{r},{q})>0,1,0),IF({free}<0,IF(ROUND(E{r}-F{r}-C{r}+K{r},{q})<0,1,0),0))"
+            f"IF({free}>0,IF(ROUND(E{r}-F{r},{q})>0,1,0),IF({free}<0,IF(ROUND(E{r}-F{r}-N{r}+K{r},{q})<0,1,0),0))"
             f"+IF(K{r}>0,IF({bound}>0,IF(F{r}>0,1,0),IF({bound}<0,IF(ROUND(F{r}-K{r},{q})<0,1,0),0)),0)"
         )
-        worth = f"IF({free}<0,J{r}*(C{r}-K{r}),0)+IF(K{r}>0,IF({bound}<0,J{r}*K{r},0),0)"
+        worth = f"IF({free}<0,J{r}*(N{r}-K{r}),0)+IF(K{r}>0,IF({bound}<0,J{r}*K{r},0),0)"
         values: list[Value] = [
             i + 1,
             name,
-            _link(layout, f"N({on_depots('available', i)})", _quantity(model, supply)),
-            _sent(layout, r, _quantity(model, supply - int(unsent[i]) - int(left[i]))),
+            _link(layout, f"N({on_depots('available', i)})", float(plan.week.depots[name].available)),
+            _sent(layout, r, _quantity(model, supply - int(unsent[i]) - int(over[i]))),
             _quantity(model, int(unsent[i])),
             _quantity(model, int(must[i])),
-            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[i]))),
+            Formula(f"ROUND(N{r}-D{r}-E{r},{q})", _quantity(model, int(over[i]))),
             _money(model, int(figures.depot.money[i])),
             _link(layout, f"N({on_depots('charge_if_unsent', i)})", _money(model, int(model.money[rows[0]]))),
             Formula(
                 f"ROUND(I{r}-H{r}-$H${stays},{layout.places.money})",
                 _money(model, int(figures.money[rows[0]])),
             ),
-            _link(layout, f"N({on_depots('must_move', i)})", _quantity(model, should)),
+            _link(layout, f"MAX(0,N({on_depots('must_move', i)})-M{r})", _quantity(model, should)),
             Formula(check, sum(int(codes[row]) for row in rows)),
-            None,
-            None,
+            _has_gone(layout, "Q", r, gone.depot.get(name, Decimal(0))),
+            Formula(f"MAX(0,C{r}-M{r})", _quantity(model, supply)),
             Formula(worth, _cost(model, sum(int(held[row]) * int(figures.money[row]) for row in rows))),
             int(figures.depot.aims[i]),
             figures.must_aim,
@@ -99,7 +105,7 @@ def _missing_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequ
     values: list[Value] = [
         None,
         MISSING,
-        _sum(layout.range("C", layout.customers), _quantity(model, ordered)),
+        _sum(layout.range("N", layout.customers), _quantity(model, ordered)),
         _sum(layout.range("E", layout.customers), _quantity(model, short)),
         *[None] * 3,
         _money(model, int(figures.depot.money[-1])),
@@ -108,7 +114,9 @@ def _missing_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequ
             f"IF({joined}>0,IF(C{r}-D{r}>0,1,0),IF({joined}<0,1,0))",
             int(check_codes(plan, figures)[model.joining_row]),
         ),
-        *[None] * 3,
+        None,
+        Formula(f"C{r}", _quantity(model, ordered)),
+        None,
         int(figures.depot.aims[-1]),
     ]
     return Row(values, [style._replace(kind="quiet") for style in styles])
@@ -118,9 +126,9 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
     """What each customer gets and goes short of, its price, and whether more or less short would pay."""
     model, q = plan.model, layout.places.quantity
     yield from _head("Customers", CUSTOMER_HEADINGS)
-    styles = _styles(plan, layout, "n_qqq_qmmmqc__tnn")
-    missing, left = layout.depots[1] + 1, left_over(plan, figures)[1]
-    held, codes = forced(model, figures), check_codes(plan, figures)
+    styles = _styles(plan, layout, "n_qqq_qmmmqcqqtnn")
+    missing, over = layout.depots[1] + 1, left_over(plan, figures)[1]
+    held, codes, gone = forced(model, figures), check_codes(plan, figures), left(plan.week)
     of_listed = model.problem.customer[layout.listed]
     firsts = np.searchsorted(of_listed, np.arange(len(model.customers) + 1))
     order_row = 0
@@ -133,18 +141,18 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
         first_order, last_order = (on_customers("ordered", at) for at in (order_row, order_row + orders - 1))
         aims = f"(Q{r}-P{r}-$P${missing})"
         sign = f"IF({aims}<>0,{aims},J{r})"
-        received = _quantity(model, ordered - short - int(left[j]))
+        received = _quantity(model, ordered - short - int(over[j]))
         least, most = _limits(model, row)
         share = _quantity(model, short) if least or most is not None else None
         free = f"IF({sign}>0,IF(E{r}>0,1,0),IF({sign}<0,1,0))"
         values: list[Value] = [
             j + 1,
             name,
-            _link(layout, f"SUM({first_order}:{last_order.split('!')[1]})", _quantity(model, ordered)),
+            _link(layout, f"SUM({first_order}:{last_order.split('!')[1]})", float(customer.ordered)),
             Formula(f"SUM(E{first}:E{last})", received) if last >= first else 0,
             _quantity(model, short),
             None,
-            Formula(f"ROUND(C{r}-D{r}-E{r},{q})", _quantity(model, int(left[j]))),
+            Formula(f"ROUND(N{r}-D{r}-E{r},{q})", _quantity(model, int(over[j]))),
             _money(model, int(figures.customer.money[j])),
             _link(layout, f'IF({own}="",N({week}),{own})', _money(model, int(model.money[row]))),
             Formula(
@@ -152,8 +160,8 @@ def customer_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator
             ),
             share,
             Formula(free if share is None else f"IF(ROUND(E{r}-K{r},{q})=0,0,2)", int(codes[row])),
-            None,
-            None,
+            _has_gone(layout, "R", r, gone.customer.get(name, Decimal(0))),
+            Formula(f"MAX(0,C{r}-M{r})", _quantity(model, ordered)),
             None
             if share is None
             else Formula(f"J{r}*K{r}", _cost(model, int(held[row]) * int(figures.money[row]))),
@@ -174,14 +182,47 @@ def _stays_row(plan: Plan, figures: ProofFigures, layout: Layout, styles: Sequen
     values: list[Value] = [
         None,
         STAYS,
-        _sum(layout.range("C", layout.depots), _quantity(model, available)),
+        _sum(layout.range("N", layout.depots), _quantity(model, available)),
         _sum(layout.range("E", layout.depots), _quantity(model, unsent)),
         *[None] * 3,
         _money(model, int(figures.customer.money[-1])),
-        *[None] * 7,
+        *[None] * 5,
+        Formula(f"C{layout.customers[1] + 1}", _quantity(model, available)),
+        None,
         int(figures.customer.aims[-1]),
     ]
     return Row(values, [style._replace(kind="quiet") for style in styles])
+
+
+def gone_rows(plan: Plan, layout: Layout) -> Iterator[Row]:
+    """What has gone, and what it costs; nothing where nothing has."""
+    week = plan.week
+    if not week.gone:
+        return
+    yield from _head("Gone", GONE_HEADINGS)
+    styles = _styles(plan, layout, "n___qm______tp__nn")
+    depots, customers = list(week.depots), list(week.customers)
+    for place, one in enumerate(week.gone.values()):
+        r, cost = layout.gone[0] + place, cost_of(one)
+        yield Row(
+            [
+                place + 1,
+                one.depot,
+                one.customer,
+                one.haulier,
+                _link(layout, f"N({on_gone('quantity', place)})", float(one.quantity)),
+                _link(layout, f"N({on_gone('rate', place)})", float(one.rate)),
+                *[None] * 6,
+                Formula(f"ROUND(E{r}*F{r},{layout.places.cost})", cost),
+                Formula(f"ROUND(M{r},{layout.places.payable})", round_half_up(cost, layout.places.payable)),
+                None,
+                None,
+                1 + depots.index(one.depot) if one.depot in week.depots else 0,
+                1 + customers.index(one.customer) if one.customer in week.customers else 0,
+            ],
+            styles,
+        )
+    yield Row([])
 
 
 def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row]:
@@ -190,6 +231,7 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
     yield from _head("Rate rows" if layout.every_row else "Rate rows that are used", RATE_HEADINGS)
     styles = _styles(plan, layout, "n___qmmmmqqctptnn")
     flat, barred, held = plan.week.rates.flat, _barred(plan), forced(model, figures)
+    replaced, used_up = superseded(flat), _gone_on_rows(plan)
     aims, codes = figures.aims_matter, check_codes(plan, figures)
     on_row, send = layout.on_plan("Rate row"), layout.on_plan("Send")
     for r, row in enumerate(layout.listed.tolist(), layout.rates[0]):
@@ -219,10 +261,16 @@ def rate_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Row
                 Formula(f"$H${depot_row}", _money(model, int(figures.depot.money[i]))),
                 Formula(f"$H${customer_row}", _money(model, int(figures.customer.money[j]))),
                 Formula(f"ROUND(F{r}-G{r}-H{r},{m})", _money(model, int(figures.money[row]))),
-                _link(layout, _least_formula(position), _quantity(model, least)),
                 _link(
                     layout,
-                    _most_formula(position, position in barred),
+                    _least_formula(position, bool(replaced[position]), used_up.get(position)),
+                    _quantity(model, least),
+                ),
+                _link(
+                    layout,
+                    _most_formula(
+                        position, position in barred or bool(replaced[position]), used_up.get(position)
+                    ),
                     "" if most is None else _quantity(model, most),
                 ),
                 Formula(check, int(codes[row])),
@@ -244,15 +292,38 @@ def _rate_formula(position: int, places: int) -> str:
     return f"ROUND({on_rates('Rate', position)}*(1+{percent}/100),{places})"
 
 
-def _least_formula(position: int) -> str:
+def _least_formula(position: int, replaced: bool, gone: Decimal | None) -> str:
     hold = on_rates(HOLD, position)
-    return f'IF({hold}<>"",{hold},N({on_rates("At least", position)}))'
+    open_row = "0" if replaced else f"N({on_rates('At least', position)})"
+    limit = f'IF({hold}<>"",{hold},{open_row})'
+    return limit if gone is None else f"MAX(0,{limit}-{canonical(gone)})"
 
 
-def _most_formula(position: int, barred: bool) -> str:
+def _most_formula(position: int, barred: bool, gone: Decimal | None) -> str:
     hold, most, closed = (on_rates(heading, position) for heading in (HOLD, "At most", "Closed"))
     open_row = "0" if barred else f'IF({closed}="yes",0,IF({most}="","",{most}))'
-    return f'IF({hold}<>"",{hold},{open_row})'
+    limit = f'IF({hold}<>"",{hold},{open_row})'
+    return limit if gone is None else f'IF({limit}="","",MAX(0,{limit}-{canonical(gone)}))'
+
+
+def _gone_on_rows(plan: Plan) -> dict[int, Decimal]:
+    """What has gone on the lane and by the haulier of a rate row, by the row's position.
+
+    It uses up the limits of the first row of that kind that no later rate has replaced.
+    """
+    week = plan.week
+    positions = (
+        {int(number): position for position, number in enumerate(week.rates.ids_in_order)}
+        if week.gone
+        else {}
+    )
+    replaced, found = superseded(week.rates.flat), {}
+    for lane, quantity in left(week).row.items():
+        there = (positions[number] for number in week.rates.ids(*lane) if number in positions)
+        first = next((position for position in there if not replaced[position]), None)
+        if first is not None:
+            found[first] = quantity
+    return found
 
 
 def _barred(plan: Plan) -> set[int]:
@@ -304,6 +375,14 @@ def _styles(plan: Plan, layout: Layout, kinds: str) -> list[Style]:
 def _link(layout: Layout, formula: str, value: float | str) -> Value:
     """A formula that points at another sheet, or a copy where the figures are too long for that."""
     return Formula(formula, value) if layout.linked else value
+
+
+def _has_gone(layout: Layout, column: str, row: int, value: Decimal) -> Value:
+    """What has gone from a depot or to a customer, by its number in the table of what has gone."""
+    if layout.gone[1] < layout.gone[0]:
+        return 0
+    numbers, quantities = layout.range(column, layout.gone), layout.range("E", layout.gone)
+    return Formula(f"SUMIF({numbers},A{row},{quantities})", float(value))
 
 
 def _sent(layout: Layout, row: int, value: float) -> Value:

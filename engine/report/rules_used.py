@@ -6,6 +6,7 @@ from typing import NamedTuple
 from engine.exact import canonical
 from engine.figures import ANY_SINGLE_DEPOT, Customer, Depot
 from engine.money import is_known, minor_places
+from engine.planning.gone import superseded
 from engine.planning.plan import Plan
 
 
@@ -196,6 +197,21 @@ _RULES = (
             "A held quantity was fixed by a dispatcher; the rest is planned around it. Below is each, with "
             "its reason."
         ),
+    ),
+    Rule(
+        "Gone",
+        lambda plan: bool(plan.week.gone),
+        lambda _: (
+            "What has gone is a fact: it counts against Ordered, Available, limits and holds, which state "
+            "the whole week; it is paid by the rate of its day; no plan moves or reprices it. Loading lists "
+            "show "
+            "only what is still to go."
+        ),
+    ),
+    Rule(
+        "Later rates",
+        lambda plan: bool(superseded(plan.week.rates.flat).any()),
+        lambda _: "Of a haulier's rates on a lane the one with the latest Valid from is planned with.",
     ),
     Rule(
         "Several rates on a lane",

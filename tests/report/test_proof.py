@@ -22,7 +22,7 @@ from engine.report.workbook import write_workbook
 from engine.week import Week
 from tests.planning.weeks import weeks
 from tests.report.libreoffice import calculated, without_results
-from tests.report.weeks import busy_week, harmful_week, met_week
+from tests.report.weeks import busy_week, gone_week, harmful_week, met_week
 
 EDITS = {
     "a quantity sent": ("Plan", "D2", 1),
@@ -54,7 +54,12 @@ HARMLESS = {
 def results(tmp_path_factory: pytest.TempPathFactory) -> dict[str, openpyxl.Workbook]:
     """Every workbook of this module, calculated in one go: starting the program takes the time."""
     folder = tmp_path_factory.mktemp("proof")
-    for name, week in {"busy": busy_week(), "met": met_week(), "harmful": harmful_week()}.items():
+    for name, week in {
+        "busy": busy_week(),
+        "met": met_week(),
+        "harmful": harmful_week(),
+        "gone": gone_week(),
+    }.items():
         write_workbook(plan_week(week), folder / f"{name}.xlsx")
     files = [without_results(folder / f"{name}.xlsx", folder / f"afresh {name}.xlsx") for name in WEEKS]
     for about, edit in {**EDITS, **HARMLESS}.items():
@@ -66,7 +71,7 @@ def results(tmp_path_factory: pytest.TempPathFactory) -> dict[str, openpyxl.Work
     return books
 
 
-WEEKS = ("busy", "met", "harmful")
+WEEKS = ("busy", "met", "harmful", "gone")
 
 
 @pytest.mark.parametrize("name", WEEKS)

@@ -3,7 +3,7 @@
 from datetime import date
 from decimal import Decimal as D
 
-from engine.figures import Customer, Depot, Hold, Order, RateKey, RateRow, Rules
+from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
 from engine.week import Week
 
 HARM = (
@@ -107,3 +107,19 @@ def long_week() -> Week:
     customers = (Customer("Near", (Order(D("1234567890100.375")),)),)
     rates = (RateRow("East", "Near", D("1.23")), RateRow("West", "Near", D(2)))
     return Week.of(depots, customers, rates)
+
+
+def gone_week() -> Week:
+    """The busy week on Wednesday: some has gone, and a haulier's earlier rate is replaced by a later one."""
+    week = busy_week()
+    gone = (
+        Gone("L1", "Northgate", "Alder", D("12.25"), D("7.5"), "Drayman", date(2026, 12, 1)),
+        Gone("L2", "Quarry", "Cole", D(5), D("9.4572"), "Drayman", date(2026, 12, 2)),
+        Gone("=L3", "Millrace", "Elm", D(10), D(9)),
+    )
+    later = (
+        RateRow("Quarry", "Alder", D(3), haulier="Oxcart", valid_from=date(2026, 1, 1)),
+        RateRow("Quarry", "Alder", D(33), haulier="Oxcart", valid_from=date(2026, 2, 1)),
+    )
+    depots, customers = tuple(week.depots.values()), tuple(week.customers.values())
+    return Week.of(depots, customers, (*week.rates, *later), week.rules, week.holds, gone)
