@@ -1,19 +1,18 @@
 """A plan as its reasons see it: the residual network, shrunk to the depots, and every row's room in it."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
 import numpy.typing as npt
 
-from engine.network.closure import NO_WAY, Closure, close
-from engine.network.flow import Flow
+from engine.network.closure import NO_WAY, Closure, close, close_chains, exchange_directly
 from engine.network.problem import Problem
 from engine.planning.aims import Weights
 from engine.planning.model import EVEN_SHARE, Integers, Model
 from engine.planning.plan import Plan
 from engine.planning.prices import limits_of
-from engine.reasons.kernels import Rows, Searched, second_exchanges
+from engine.reasons.kernels import Rows, Searched, second_exchanges, take_apart
 
 Flags = npt.NDArray[np.bool_]
 
@@ -58,6 +57,28 @@ class Ground:
         return self.quantity > self.lower
 
     @cached_property
+    def to_keeper(self) -> Integers:
+        """(depots,) what one more at each depot costs that may stay anywhere."""
+        rows = self._keeper_rows(self.has_room)
+        return self._least(self.closure.cost[self.problem.depot[rows]], self.problem.cost[rows])
+
+    @cached_property
+    def from_keeper(self) -> Integers:
+        """(depots,) what one less at each depot costs that may be taken from what stays anywhere."""
+        rows = self._keeper_rows(self.has_spare)
+        return self._least(self.closure.cost[:, self.problem.depot[rows]].T, -self.problem.cost[rows])
+
+    def _keeper_rows(self, usable: Flags) -> Integers:
+        rows = np.arange(self.problem.start[self.keeper], self.problem.start[self.keeper + 1])
+        return rows[usable[rows]]
+
+    def _least(self, chains: Integers, cost: Integers) -> Integers:
+        if not len(cost):
+            return np.full(self.problem.depots, NO_WAY)
+        least: Integers = np.where(chains < NO_WAY, chains + cost[:, None], NO_WAY).min(axis=0)
+        return least
+
+    @cached_property
     def rows(self) -> Rows:
         """The rows as kernels take them."""
         problem = self.problem
@@ -75,12 +96,20 @@ def ground_of(plan: Plan) -> Ground:
     Raises:
         TooLarge: a chain's cost could leave the exact integers.
     """
-    return grounded(plan.model, plan.flow, *limits_of(plan.model))
+    return Ground(plan.model, close(plan.flow), *limits_of(plan.model))
 
 
-def grounded(model: Model, flow: Flow, lower: Integers, upper: Integers) -> Ground:
-    """The same for any least-cost flow within these limits, which must be those of its problem."""
-    return Ground(model, close(flow), lower, upper)
+def grounded_again(ground: Ground, quantity: Integers, lower: Integers, upper: Integers) -> Ground:
+    """The same week with other quantities or limits; the quantities must be of least cost within them."""
+    figures = ground.problem.figures._replace(at_least=lower, at_most=upper)
+    shape = ground.closure.direct.shape
+    direct = np.full(shape, NO_WAY, dtype=np.int64)
+    less_on, more_on = np.full(shape, -1, dtype=np.int64), np.full(shape, -1, dtype=np.int64)
+    exchange_directly(figures, quantity, direct, less_on, more_on)
+    chains = direct.copy()
+    close_chains(chains)
+    flow = replace(ground.closure.flow, quantity=quantity)
+    return Ground(ground.model, Closure(flow, direct, less_on, more_on, chains), lower, upper)
 
 
 def searched(ground: Ground) -> Searched:
@@ -102,10 +131,7 @@ def money_of(weights: Weights, values: Integers) -> tuple[Integers, Flags]:
 
     values: any shape; NO_WAY and -NO_WAY are answered with False.
     """
-    rest = values.copy()
-    pure = np.abs(values) < NO_WAY
-    for weight in weights.of.values():
-        times = (2 * rest + weight) // (2 * weight)
-        pure &= times == 0
-        rest -= times * weight
-    return rest, pure
+    flat = np.ascontiguousarray(values, dtype=np.int64).ravel()
+    money, pure = np.empty_like(flat), np.empty_like(flat)
+    take_apart(np.array(list(weights.of.values()), dtype=np.int64), flat, money, pure)
+    return money.reshape(values.shape), pure.reshape(values.shape).astype(bool)

@@ -41,6 +41,22 @@ class Searched(NamedTuple):
 
 
 @kernel
+def take_apart(weights: Integers, values: Integers, money: Integers, pure: Integers) -> None:
+    """Fills the money in sums of weights and money, and 1 where no weight is in one; see `aims.Weights`.
+
+    weights: the largest first. Values beyond NO_WAY are no sums.
+    """
+    for n in range(len(values)):
+        money[n], pure[n] = values[n], 1 if abs(values[n]) < NO_WAY else 0
+        if pure[n]:
+            for weight in weights:
+                if 2 * abs(money[n]) >= weight:
+                    times = (2 * money[n] + weight) // (2 * weight)
+                    pure[n] &= times == 0
+                    money[n] -= times * weight
+
+
+@kernel
 def second_exchanges(rows: Rows, at: Integers, second: Integers) -> None:
     """Fills the cheapest exchange of every ordered pair of depots that is not at the customer `at`."""
     for j in range(len(rows.start) - 1):
@@ -272,3 +288,20 @@ def most_for_each(
     """Fills `most_over` from each customer of `ends` to the depot beside it, each on its own."""
     for n in range(len(ends)):
         most[n] = most_over(ties, ends[n], depots[n], to_depot.copy(), to_customer.copy(), 2 * MANY)
+
+
+@kernel
+def more_at_both_ends(rows: Rows, chains: Integers, first: int, cost: Integers) -> None:
+    """Fills what one more ordered and one more available cost together.
+
+    cost: (customers from `first` on, depots)
+    """
+    for n in range(len(cost)):
+        best = cost[n]
+        best[:] = NO_WAY
+        for row in range(rows.start[first + n], rows.start[first + n + 1]):
+            if rows.quantity[row] < rows.upper[row]:
+                onward, price = chains[rows.depot[row]], rows.cost[row]
+                for i in range(len(best)):
+                    there = min(NO_WAY, onward[i] + price) if onward[i] < NO_WAY else NO_WAY
+                    best[i] = min(best[i], there)

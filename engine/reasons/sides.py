@@ -82,7 +82,7 @@ def more_available(ground: Ground, holds: bool) -> Side:
     """(depots,) one more available at each."""
     problem, stand_in, keeper = ground.problem, ground.model.stand_in, ground.keeper
     stays = ground.model.stay_rows
-    distance, _ = ground.closure.one_more(keeper)
+    distance = ground.to_keeper
     charge, path = problem.cost[stays], distance[:stand_in]
     sent = path < charge
     first = _first(ground, ground.has_room)
@@ -99,7 +99,7 @@ def less_available(ground: Ground, holds: bool) -> Side:
     """(depots,) one less available at each."""
     problem, stand_in, keeper = ground.problem, ground.model.stand_in, ground.keeper
     stays = ground.model.stay_rows
-    distance, _ = ground.closure.one_less(keeper)
+    distance = ground.from_keeper
     may_stay, full = ground.upper[stays], ground.quantity[stays] == ground.upper[stays]
     cost = np.where(full, -problem.cost[stays], distance[:stand_in])
     joined = _joined(ground, distance, (_first(ground, ground.has_spare), -1), forward=True)[:stand_in]

@@ -94,11 +94,12 @@ def _columns(model: Model, side: Side, shares: bool) -> list[_Cell]:
         known &= side.short == 0
     money, _ = money_of(model.weights, side.cost)
     holds = np.full(len(money), MANY) if side.holds is None else side.holds
-    whole = {number: Decimal(number) for number in (-1, 0, 1)}
+    amounts = {amount: to_decimal(amount, model.money_places) for amount in set(money[known].tolist())}
+    units = {number: Decimal(number) for number in set(side.short.tolist())}
     return [
         (
-            to_decimal(cost, model.money_places),
-            whole.get(short) or Decimal(short),
+            amounts[cost],
+            units[short],
             None if most >= MANY else to_decimal(most, model.quantity_places),
         )
         if there
