@@ -11,7 +11,7 @@ from engine.intake.headings import COLUMNS_OF, TITLES
 from engine.intake.numbers import is_blank
 from engine.intake.products import product_column
 from engine.intake.recognise import Found, Partial, Table
-from engine.intake.remarks import Counts
+from engine.intake.remarks import Counts, counted
 
 WHICH_COLUMN = "which column"
 LEAVE_OUT = "none of these"
@@ -125,8 +125,8 @@ def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:
         Finding(
             Severity.CHECK if numbers else Severity.NOTE,
             "cells left out",
-            f"Cells of {len(places)} rows on sheet '{sheet.name}' belong to no table and were not read, "
-            f"first '{text}'.",
+            f"Cells of {counted(len(places), 'row')} on sheet '{sheet.name}' belong to no table and were "
+            f"not read, first '{text}'.",
             "Give them a heading beside the others if they are figures." if numbers else "",
             sheet.file,
             sheet.name,
@@ -162,7 +162,7 @@ def _not_understood(sheet: Sheet, rows: int) -> Finding:
     return Finding(
         Severity.CHECK if numbers else Severity.NOTE,
         "sheet left out",
-        f"On sheet '{sheet.name}' no table was recognised; it was not read ({rows} rows).",
+        f"On sheet '{sheet.name}' no table was recognised; it was not read ({counted(rows, 'row')}).",
         "Give it the headings of Depots, Customers, Rates or Rules if it holds figures.",
         sheet.file,
         sheet.name,

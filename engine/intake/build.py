@@ -67,9 +67,13 @@ def build_figures(
         about_products = without_product(found)
     elif len(products) > 1:
         about_products = [which_product(products)]
+        sheets, found = [], Found()
     of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
     grids = _grids(found, of, sheets, known)
-    manner, asked = manner_of([*found.tables, *grids], stated_by(of["rules"], answers), answers, decimal_mark)
+    stated = stated_by(of["rules"], answers)
+    if known is not None:
+        stated = {"unit": known.rules.unit, "currency": known.rules.currency, **stated}
+    manner, asked = manner_of([*found.tables, *grids], stated, answers, decimal_mark)
     depots = build_depots(of["depots"], manner)
     customers = build_customers(of["customers"], manner)
     rules = build_rules(of["rules"], manner.base, answers)
@@ -142,12 +146,14 @@ def _grids(
         names["customers"] = names["customers"] or {folded(name) for name in known.customers}
     plans = {id(sheet) for sheet in found.plans}
     listed = {id(table.sheet) for table in found.tables}
+    lists = {id(p.sheet): p.head for p in found.partials if {"depot", "customer"} <= set(p.columns)}
     grids = []
     for sheet in sheets:
         if id(sheet) in plans or id(sheet) in listed:
             continue
         grid = find_grid(sheet, names["depots"], names["customers"])
-        if grid is not None:
+        # Below the headings of a list that lacks its rate, rows of names are rows of the list
+        if grid is not None and grid.head <= lists.get(id(sheet), grid.head):
             grids.append(grid)
     return grids
 

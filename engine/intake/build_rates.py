@@ -12,6 +12,7 @@ from engine.exact import BLANK, DecimalColumn
 from engine.figures import Hold, RateKey
 from engine.findings import Finding, Severity
 from engine.intake.build_lists import Unused
+from engine.intake.cells import address
 from engine.intake.column_reader import Problems, read_decimals, read_values
 from engine.intake.conversion import converted
 from engine.intake.fields import CLOSED_WORDS, NUMBER_KINDS, text_of
@@ -243,9 +244,10 @@ def _grid_notes(grid: Grid) -> list[Finding]:
         Finding(
             Severity.NOTE,
             "total left out",
-            f"{grid.totals} rows or columns of totals in the grid were left out.",
+            f"Totals in the grid were left out: {', '.join(address(*place) for place in grid.totals[:5])}.",
             file=grid.sheet.file,
             sheet=grid.sheet.name,
+            cell=address(*grid.totals[0]),
         )
     ]
 

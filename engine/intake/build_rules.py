@@ -16,7 +16,7 @@ from engine.intake.numbers import NumberStyle, is_blank
 from engine.intake.places import Spot
 from engine.intake.recognise import Table
 from engine.intake.remarks import Counts, Remark, gathered
-from engine.intake.units import currencies_of, unclear_unit
+from engine.intake.units import currencies_of, plain_unit, unclear_unit
 
 
 def stated_by(tables: Sequence[Table], answers: Answers) -> dict[str, str]:
@@ -29,7 +29,7 @@ def stated_by(tables: Sequence[Table], answers: Answers) -> dict[str, str]:
                 continue
             text = text_of(raw)
             if column.field == "unit":
-                unit = answers.to("unclear unit", text) if unclear_unit(text) else text
+                unit = answers.to("unclear unit", text) if unclear_unit(text) else plain_unit(text)
                 if unit:
                     stated["unit"] = unit
             elif column.field == "currency":
@@ -67,7 +67,9 @@ def build_rules(tables: Sequence[Table], style: NumberStyle, answers: Answers) -
                 continue
             read += 1
             column = rule_of(text_of(name)) if not is_blank(name) else None
-            if column is None:
+            if column is None and is_blank(raw):
+                remarks.append(Remark(number, "rule", _note(text_of(name)), True))
+            elif column is None:
                 remarks.append(Remark(number, "rule", _unknown(text_of(name)), True))
             elif ("rules", column.field) in spots:
                 remarks.append(Remark(number, "rule", _twice(column), True))
@@ -115,10 +117,10 @@ def _value(column: Column, raw: Any, style: NumberStyle, answers: Answers) -> tu
             if answer:
                 return answer, None
             return None, Finding(
-                Severity.STOPS, "unclear unit", f"Unit {text}: a {text} may be a {' or a '.join(meanings)}.",
+                Severity.STOPS, "unclear unit", f"Unit: {text} may mean {' or '.join(meanings)}.",
                 "Say which unit is meant.", read=text, subject=text, options=meanings,
             )  # fmt: skip
-        return text, None
+        return plain_unit(text), None
     value, finding = read_field(column, raw, style)
     if column.field in ("load_size", "step") and value is not None and value <= 0:
         return None, _no_rule(column, raw, "takes a number above 0")
@@ -139,6 +141,15 @@ def _unknown(name: str) -> Finding:
         Severity.CHECK, "unknown rule", f"'{name[:60]}' is no rule that is known; it was left out.",
         "Check the spelling, or clear the row.", read=name[:60],
     )  # fmt: skip
+
+
+def _note(text: str) -> Finding:
+    return Finding(
+        Severity.NOTE,
+        "remark left out",
+        f"'{text[:60]}' was taken as a remark, not as a rule.",
+        read=text[:60],
+    )
 
 
 def _twice(column: Column) -> Finding:

@@ -24,8 +24,8 @@ class Grid:
 
     head: row of the names across; side: column of the names down; columns: the columns with a name across;
     rows: the rows with a name down; depots_down: whether the names down are depots; title: texts above and
-    in the corner, which may say what the rates are in; totals: how many rows and columns of totals were
-    left out; last_row, last_column: where it ends, totals included. Rows and columns count from 0.
+    in the corner, which may say what the rates are in; totals: the names of rows and columns of totals
+    that were left out; last_row, last_column: where it ends, totals included. Rows and columns count from 0.
     """
 
     sheet: Sheet
@@ -35,7 +35,7 @@ class Grid:
     rows: tuple[int, ...]
     depots_down: bool
     title: str
-    totals: int = 0
+    totals: tuple[tuple[int, int], ...] = ()
     sure: bool = True
     last_row: int = 0
     last_column: int = 0
@@ -146,7 +146,7 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
     row = sheet.rows[head]
     end = _end(sheet, head, side)
     columns = []
-    totals = 0
+    totals: list[tuple[int, int]] = []
     last = far = side
     for column in range(side + 1, len(row)):
         if is_blank(row[column]):
@@ -155,7 +155,7 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
         if not text:
             continue
         if is_total(text):
-            totals += 1
+            totals.append((head, column))
             far = max(far, column)
             continue
         if column > last + 1 and not _has_rates(sheet, head, end, column):
@@ -171,7 +171,7 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
         if not text:
             continue
         if is_total(text):
-            totals += 1
+            totals.append((number, side))
             continue
         rows.append(number)
     titles = [
@@ -180,7 +180,7 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
     titles += [text_of(row[column]) for column in range(side + 1) if isinstance(row[column], str)]
     title = " ".join([sheet.name, *(text for text in titles if text)])
     return Grid(
-        sheet, head, side, tuple(columns), tuple(rows), depots_down, title, totals, sure, end - 1, far
+        sheet, head, side, tuple(columns), tuple(rows), depots_down, title, tuple(totals), sure, end - 1, far
     )
 
 

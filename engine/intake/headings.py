@@ -41,8 +41,8 @@ PLAN_HEADINGS = frozenset(
 """Headings of a plan that was handed out: a sheet with one of them holds results, never figures."""
 
 _DEPOT_WORDS = (
-    "depot|depots|depot name|from|from depot|origin|source|site|warehouse|plant|silo|terminal|works|quarry|"
-    "loading point|loading place|ship from|supplier|supply point|store|yard|mill"
+    "depot|depots|depot name|from|from depot|origin|source|site|warehouse|plant|silo|terminal|"
+    "loading point|loading place|ship from|supplier|supply point"
 )
 _CUSTOMER_WORDS = (
     "customer|customers|customer name|to|to customer|destination|dest|consignee|client|ship to|deliver to|"

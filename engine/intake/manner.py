@@ -166,8 +166,8 @@ def _checked(
             findings.append(
                 Finding(
                     Severity.STOPS, "unclear unit",
-                    f"The heading '{text}': a {heading.unclear} may be a "
-                    f"{' or a '.join(unclear_unit(heading.unclear))}.",
+                    f"The heading '{text}': {heading.unclear} may mean "
+                    f"{' or '.join(unclear_unit(heading.unclear))}.",
                     "Say which unit is meant.", *place, read=text,
                     subject=heading.unclear, options=unclear_unit(heading.unclear),
                 )

@@ -377,7 +377,7 @@ def _unclear(text: str, word: str) -> Finding:
     return Finding(
         Severity.STOPS,
         "unclear unit",
-        f"'{text}': a {word} may be a {meanings}.",
+        f"'{text}': {word} may mean {meanings}.",
         "Say which unit is meant.",
         read=text,
     )

@@ -121,7 +121,8 @@ def _records(
                 )
     left = len(old) - len({folded(name) for name in new} & set(spelled))
     if left:
-        told.append(f"{left} {what}s are not in the upload and stay as they are.")
+        many = f"{left} {what}s are not in the upload and stay as they are."
+        told.append(many if left > 1 else f"1 {what} is not in the upload and stays as it is.")
     return changes, told
 
 

@@ -16,8 +16,9 @@ from engine.intake.check import check_week
 from engine.intake.names import folded
 from engine.intake.numbers import NumberStyle
 from engine.intake.places import Places
+from engine.intake.products import SEVERAL
 from engine.intake.refusal import Limits, Unreadable, refused
-from engine.intake.remarks import Counts
+from engine.intake.remarks import Counts, counted
 from engine.week import Week
 
 __all__ = ["Answers", "Limits", "Reading", "Unreadable", "read_week"]
@@ -92,7 +93,8 @@ def read_week(
     answers = answers or Answers()
     try:
         figures = build_figures(sheets, answers, known, decimal_mark, product)
-        found = check_week(figures.week, figures.places.where)
+        asks_product = any(finding.rule == SEVERAL for finding in figures.findings)
+        found = () if asks_product else check_week(figures.week, figures.places.where)
     except TooLarge as error:
         raise refused("too large", str(error), "Mend the figure and upload again.", sheets[0].file) from error
     on_sheets = frozenset(figures.findings)
@@ -193,9 +195,9 @@ def summary_of(figures: Figures) -> str:
     table = week.rates.flat
     lanes = _open_lanes(week)
     possible = len(week.depots) * len(week.customers)
-    parts = [_count(len(week.depots), "depot"), _count(len(week.customers), "customer")]
+    parts = [counted(len(week.depots), "depot"), counted(len(week.customers), "customer")]
     rates = f" ({len(table)} rates)" if len(table) > lanes else ""
-    parts.append(f"{_count(lanes, 'lane')} of {possible}{rates}")
+    parts.append(f"{counted(lanes, 'lane')} of {possible}{rates}")
     ordered = sum((customer.ordered for customer in week.customers.values()), Decimal(0))
     available = sum((depot.available for depot in week.depots.values()), Decimal(0))
     unit = week.rules.unit
@@ -218,7 +220,3 @@ def _open_lanes(week: Week) -> int:
     seen = np.zeros(len(table.depot_names) * len(table.customer_names), dtype=bool)
     seen[table.customer[rows].astype(np.int64) * len(table.depot_names) + table.depot[rows]] = True
     return int(seen.sum())
-
-
-def _count(number: int, word: str) -> str:
-    return f"{number} {word}{'' if number == 1 else 's'}"

@@ -16,7 +16,7 @@ _TOP_ROWS = 60
 
 _MOST_HEADINGS = 200
 _ORDER = ("rates", "depots", "customers", "rules")
-_FROM = re.compile(r"^(rates? )?(from|ex|depot)\b[ :]*|[ :]*\brates?$", re.IGNORECASE)
+_FROM = re.compile(r"^(rates?\b[ :]*)?((from|ex|of|depot)\b[ :]*)?|[ :]*\brates?$", re.IGNORECASE)
 _TOTAL = re.compile(r"(grand |sub-?|sub )?totals?\b.*|sums?\b.*|all (depots|customers)|.* totals?|σ|∑|Σ")
 
 
@@ -160,7 +160,7 @@ def _heads(sheet: Sheet, taught: Mapping[str, Mapping[str, str]]) -> list[tuple[
     A heading cell left blank takes the text above it: headings merged over two rows.
     """
     own_words = {word for words in taught.values() for word in words}
-    heads = []
+    heads: list[tuple[int, dict[int, str]]] = []
     whole: set[int] = set()
     for number in candidate_rows(sheet):
         row = sheet.rows[number]
@@ -176,12 +176,20 @@ def _heads(sheet: Sheet, taught: Mapping[str, Mapping[str, str]]) -> list[tuple[
         }
         if len(known) < 2 and not (known and number and _heading_above(sheet.rows[number - 1])):
             continue
-        if number and number - 1 not in whole:
+        if number and number - 1 in whole and _second_row(sheet.rows[number], texts, known):
+            texts = dict(sorted((heads.pop()[1] | texts).items()))
+        elif number and number - 1 not in whole:
             texts |= _from_above(sheet, number, texts)
         if any(_complete(kind, _matched(kind, list(texts), texts, taught)) for kind in _ORDER):
             whole.add(number)
         heads.append((number, dict(sorted(texts.items()))))
     return heads
+
+
+def _second_row(row: Sequence[Any], texts: Mapping[int, str], known: set[int]) -> bool:
+    """Whether a row below headings holds nothing but headings: the second row of merged ones."""
+    filled = sum(not is_blank(cell) for cell in row)
+    return len(known) == len(texts) == filled and len(known) >= 2
 
 
 def _from_above(sheet: Sheet, number: int, texts: Mapping[int, str]) -> dict[int, str]:

@@ -31,6 +31,11 @@ class Counts(NamedTuple):
         return Counts(self.read + other.read, self.used + other.used, self.named + other.named)
 
 
+def counted(number: int, word: str) -> str:
+    """A number of things in words: 1 row, 2 rows."""
+    return f"{number} {word}{'' if number == 1 else 's'}"
+
+
 def gathered(
     remarks: Iterable[Remark], sheet: Sheet, column_of: Callable[[Remark], int]
 ) -> tuple[list[Finding], int]:

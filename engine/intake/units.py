@@ -49,7 +49,7 @@ UNCLEAR = {"ton": ("t", "short ton", "long ton"), "tons": ("t", "short ton", "lo
 """Words that mean different units in different places: asked about, never guessed."""
 
 _SIGNS = {
-    "€": ("EUR",), "£": ("GBP", "EGP"), "$": ("USD", "CAD", "AUD", "NZD", "SGD", "HKD", "MXN", "CLP"),
+    "€": ("EUR",), "£": ("GBP",), "$": ("USD", "CAD", "AUD", "NZD", "SGD", "HKD", "MXN", "CLP"),
     "us$": ("USD",), "a$": ("AUD",), "c$": ("CAD",), "¥": ("JPY", "CNY"), "zł": ("PLN",), "zl": ("PLN",),
     "kr": ("SEK", "NOK", "DKK", "ISK"), "kr.": ("DKK", "SEK", "NOK", "ISK"), "kč": ("CZK",), "ft": ("HUF",),
     "fr.": ("CHF",), "sfr.": ("CHF",), "₹": ("INR",), "₺": ("TRY",), "₩": ("KRW",), "₴": ("UAH",),
@@ -67,6 +67,12 @@ _CODES = frozenset(_CODE_LIST.split())
 def unit_of(word: str) -> str | None:
     """The unit a word stands for, None where it is no unit that is known or is an unclear one."""
     return _WORDS.get(" ".join(word.casefold().rstrip(".").split()))
+
+
+def plain_unit(word: str) -> str:
+    """A unit by its symbol where it has one ('tonnes' is t), else as it was typed."""
+    unit = unit_of(word) or ""
+    return unit if len(unit) <= 2 and unit else word
 
 
 def unclear_unit(word: str) -> tuple[str, ...]:

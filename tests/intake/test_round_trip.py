@@ -8,7 +8,7 @@ from tests.intake.layouts import written
 
 
 @settings(
-    max_examples=120, deadline=None, suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large]
+    max_examples=80, deadline=None, suppress_health_check=[HealthCheck.too_slow, HealthCheck.data_too_large]
 )
 @given(written())
 def test_the_same_week_comes_back(case):
