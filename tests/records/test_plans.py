@@ -1,13 +1,15 @@
 """Issued plans on disk, and the totals of the latest plan of each week."""
 
 from concurrent.futures import ThreadPoolExecutor
+from datetime import date
 
 import pytest
 
 import engine
 import sample_data
-from engine.changes import SetHold
+from engine.changes import Add, SetHold
 from engine.exact import total_of
+from engine.figures import Gone
 from engine.planning.plan import Plan
 from engine.records import (
     Missing,
@@ -82,3 +84,14 @@ def test_totals_are_those_of_the_latest_version(records: Records, plan: Plan) ->
     assert totals_by_week(records)[0].freight_payable == plan.freight_payable
     archive_week(records, six.id)
     assert [one.week.name for one in totals_by_week(records)] == ["Week 7"]
+
+
+def test_gone_goods_are_part_of_an_issued_plan(records: Records, plan: Plan) -> None:
+    first = plan.shipments[0]
+    left = Gone("L1", first.depot, first.customer, D(1), D("3.25"), first.haulier, date(2031, 2, 4))
+    with_gone = engine.plan_week(plan.week.apply(Add(left)))
+    week = create_week(records, read(with_gone.week)).listed
+    issued = issue_plan(records, week.id, with_gone, 0)
+    assert issued.shipments == with_gone.shipments
+    assert [one.quantity for one in issued.shipments if one.gone == "L1"] == [1]
+    assert total_of(issued.quantities.values()) == total_of(one.quantity for one in with_gone.shipments)
