@@ -22,10 +22,7 @@ Area = tuple[int, int, int, int]
 
 def about_sheets(found: Found, grids: Sequence[Grid]) -> tuple[list[Finding], Counts]:
     """Findings on sheets and on cells that belong to no table, with the rows that they name."""
-    findings = [
-        _note(sheet, "plan left out", f"Sheet '{sheet.name}' holds a plan and was not read.")
-        for sheet in found.plans
-    ]
+    findings = list(_plans(found.plans))
     counts = Counts()
     in_grids = {id(grid.sheet) for grid in grids}
     read_kinds = {table.kind for table in found.tables} | ({"rates"} if grids else set())
@@ -83,6 +80,17 @@ def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
                 subject=f"{table.kind}: {text}" if text else "",
                 options=(*free, LEAVE_OUT) if text else (),
             )
+
+
+def _plans(sheets: Sequence[Sheet]) -> Iterator[Finding]:
+    """One note for the sheets of each file that hold a plan."""
+    for file in dict.fromkeys(sheet.file for sheet in sheets):
+        here = [sheet for sheet in sheets if sheet.file == file]
+        names = ", ".join(f"'{sheet.name}'" for sheet in here)
+        many = (
+            f"Sheets {names} hold a plan and were" if len(here) > 1 else f"Sheet {names} holds a plan and was"
+        )
+        yield _note(here[0], "plan left out", f"{many} not read.")
 
 
 def _hidden(sheet: Sheet) -> Iterator[Finding]:

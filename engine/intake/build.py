@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from engine.findings import Finding
 from engine.intake.about_sheets import WHICH_COLUMN, about_headings, about_sheets
 from engine.intake.answers import Answers
+from engine.intake.build_gone import build_gone
 from engine.intake.build_lists import Unused, build_customers, build_depots, with_depot_spelling
 from engine.intake.build_rates import build_rates
 from engine.intake.build_rules import build_rules, stated_by
@@ -81,8 +82,9 @@ def build_figures(
     depot_names = [depot.name for depot in depots.records] or list(known.depots if known else ())
     customer_names = [customer.name for customer in spelled] or list(known.customers if known else ())
     rates = build_rates(of["rates"], grids, depot_names, customer_names, manner)
-    week = Week.of(depots.records, spelled, rates.rates, rules.records[0], rates.holds)
-    counts = depots.counts.plus(customers.counts).plus(rules.counts).plus(rates.counts)
+    gone = build_gone(of["gone"], depot_names, customer_names, manner)
+    week = Week.of(depots.records, spelled, rates.rates, rules.records[0], rates.holds, gone.records)
+    counts = depots.counts.plus(customers.counts).plus(rules.counts).plus(rates.counts).plus(gone.counts)
     outside, left_out = about_sheets(found, grids)
     return Figures(
         week,
@@ -94,13 +96,14 @@ def build_figures(
             *depots.findings,
             *customers.findings,
             *rates.findings,
+            *gone.findings,
             *rules.findings,
         ),
         counts.plus(left_out),
         manner.base,
         in_words(manner.marks, manner.usual),
-        Places({**depots.spots, **customers.spots, **rules.spots}, rates.rows),
-        (*depots.unused, *customers.unused, *rates.unused, *rules.unused),
+        Places({**depots.spots, **customers.spots, **rules.spots, **gone.spots}, rates.rows),
+        (*depots.unused, *customers.unused, *rates.unused, *rules.unused, *gone.unused),
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
         products,
     )

@@ -90,6 +90,8 @@ def same_rows(week: Week, where: Where) -> Iterator[Finding]:
     order = np.argsort(key, kind="stable")
     again = np.zeros(len(table), dtype=bool)
     again[order[1:]] = key[order[1:]] == key[order[:-1]]
+    if table.valid_from is not None:  # a row that is valid from a later day takes the other's place
+        again[order[1:]] &= table.valid_from[order[1:]] == table.valid_from[order[:-1]]
     before = np.full(len(table), -1, dtype=np.int64)
     before[order[1:]] = order[:-1]
     for row in _some(again):

@@ -11,6 +11,7 @@ from functools import lru_cache
 from engine.columns import (
     CUSTOMER_COLUMNS,
     DEPOT_COLUMNS,
+    GONE_COLUMNS,
     HOLD_HEADINGS,
     RATE_COLUMNS,
     RULE_COLUMNS,
@@ -30,10 +31,11 @@ COLUMNS_OF: Mapping[str, tuple[Column, ...]] = {
     "customers": CUSTOMER_COLUMNS,
     "rates": (*RATE_COLUMNS, HOLD_COLUMN, HOLD_REASON_COLUMN),
     "rules": (RULE_COLUMN, VALUE_COLUMN),
+    "gone": GONE_COLUMNS,
 }
 """The columns that a sheet of each table may have."""
 
-TITLES = {"depots": "Depots", "customers": "Customers", "rates": "Rates", "rules": "Rules"}
+TITLES = {"depots": "Depots", "customers": "Customers", "rates": "Rates", "rules": "Rules", "gone": "Gone"}
 
 PLAN_HEADINGS = frozenset(
     {"send", "sent", "short", "unsent", "delivered", "payable", "freight payable", "one more", "one less"}
@@ -127,6 +129,15 @@ _WORDS: dict[str, dict[str, str]] = {
         "km": "km|distance|kilometres|kilometers|distance km|miles",
         "hold": "hold|held",
         "hold_reason": "hold reason|reason for hold|reason",
+    },
+    "gone": {
+        "name": "load|load number|load no|ticket|ticket number|delivery note|trip number",
+        "depot": _DEPOT_WORDS,
+        "customer": _CUSTOMER_WORDS,
+        "haulier": "haulier|carrier|transporter|transport company|contractor",
+        "quantity": "gone|has gone|gone already|loaded|left",
+        "rate": "paid per unit|paid|rate paid|rate",
+        "day": "day gone|gone on|left on|day|date",
     },
     "rules": {
         "rule": "rule|rules|setting|settings|parameter|option",

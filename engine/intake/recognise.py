@@ -15,7 +15,7 @@ _TOP_ROWS = 60
 """Headings are looked for in so many rows from the top, and below every blank row."""
 
 _MOST_HEADINGS = 200
-_ORDER = ("rates", "depots", "customers", "rules")
+_ORDER = ("gone", "rates", "depots", "customers", "rules")
 _FROM = re.compile(r"^(rates?\b[ :]*)?((from|ex|of|depot)\b[ :]*)?|[ :]*\brates?$", re.IGNORECASE)
 _TOTAL = re.compile(r"(grand |sub-?|sub )?totals?\b.*|sums?\b.*|all (depots|customers)|.* totals?|σ|∑|Σ")
 
@@ -231,7 +231,7 @@ def _tables_at(
     for run in runs:
         kinds = [kind for kind in _ORDER if _complete(kind, _matched(kind, run, texts, taught))]
         if kinds:
-            if kinds[0] == "rates" or len(kinds) == 1:
+            if kinds[0] in ("gone", "rates") or len(kinds) == 1:
                 kinds = kinds[:1]
             tables.extend(_split(sheet, head, texts, run, kinds, taught))
         elif tables:  # headings past a blank column go with the list on their left
@@ -300,6 +300,8 @@ def _partials_at(
         matched = _matched(kind, list(texts), texts, taught)
         needed = [column for column in COLUMNS_OF[kind] if column.needed]
         missing = tuple(column.heading for column in needed if column.field not in matched)
+        if kind == "gone" and "quantity" not in matched:
+            continue  # a depot, a customer and a haulier are in many lists
         if missing and len(missing) < len(needed) and len(matched) >= 2:
             partials.append(Partial(kind, sheet, head, missing, texts, matched))
     return partials

@@ -352,7 +352,8 @@ CASES = [
         "text_with_notes_below",
         csv(
             "all",
-            "Weekly stock;;\n;;\nDepot;Available;Must move\nNorthgate;120;\nQuarry;viel;5\n;;\nas of Monday;;\n",
+            "Weekly stock;;\n;;\nDepot;Available;Must move\nNorthgate;120;\nQuarry;viel;5\n"
+            ";;\nas of Monday;;\n",
         ),
     ),
 ]

@@ -1,13 +1,17 @@
 """What a desk answers, accepts, uploads in part, or splits by product."""
 
+import datetime
+import io
 from dataclasses import replace
 from decimal import Decimal
 
 import openpyxl
 import pytest
 
+import engine
+import sample_data
 from engine.changes import Add, Alter, SetHold
-from engine.figures import Order, RateKey
+from engine.figures import Gone, Order, RateKey
 from engine.findings import Finding, Severity
 from engine.intake.answers import Answers
 from engine.intake.part import read_part
@@ -155,3 +159,42 @@ def test_a_repaired_text_file_keeps_its_separator():
     )
     with pytest.raises(Unreadable, match="Only"):
         repaired_copy(ods(plain()), {})
+
+
+GONE = [
+    ["Load", "Depot", "Customer", "Haulier", "Gone", "Paid per unit", "Day gone"],
+    ["L-1", "northgate", "Aster", "Ore", 24, 12.5, datetime.date(2026, 12, 1)],
+    ["L-2", "Quarry", "Birch", None, "16 t", "EUR 11/t", "2026-12-02"],
+]
+
+
+def test_what_has_gone_is_read_and_every_fault_named():
+    reading = read_week(workbook(plain(Gone=GONE)))
+    assert reading.findings == ()
+    assert list(reading.week.gone.values()) == [
+        Gone("L-1", "Northgate", "Aster", Decimal(24), Decimal("12.5"), "Ore", datetime.date(2026, 12, 1)),
+        Gone("L-2", "Quarry", "Birch", Decimal(16), Decimal(11), None, datetime.date(2026, 12, 2)),
+    ]
+    faulty = [
+        *GONE,
+        ["L-1", "Quarry", "Aster", None, 3, 9, None],
+        ["L-3", "Quarry", "Aster", None, "some", 9, None],
+    ]
+    reading = read_week(workbook(plain(Gone=[*faulty, ["L-4", "Quarry", None, None, 3, 9, None]])))
+    assert said(reading) == {
+        ("stops", "same load twice", "Gone", "A4"),
+        ("stops", "not a number", "Gone", "E5"),
+        ("stops", "figure missing", "Gone", "C6"),
+    }
+    assert reading.rows_read == reading.rows_used + reading.rows_named
+
+
+@pytest.mark.parametrize("name", ["small_week.xlsx", "small_week_grid.xlsx"])
+def test_a_workbook_that_the_tool_wrote_reads_back_as_the_same_week(name):
+    week = read_week(sample_data.path(name)).week
+    row = next(row for row in week.rates if not row.closed)
+    gone = Gone("L-1", row.depot, row.customer, Decimal("0.5"), row.rate, row.haulier)
+    week = week.apply(Add(gone))
+    stream = io.BytesIO()
+    engine.write_workbook(engine.plan_week(week), stream)
+    assert read_week(("plan.xlsx", stream.getvalue())).week == week
