@@ -7,6 +7,7 @@ import statistics
 import sys
 import time
 from collections.abc import Callable
+from decimal import Decimal
 
 import numpy as np
 
@@ -41,8 +42,6 @@ def dense_week(depots: int, customers: int, seed: int = 1) -> Week:
         per_load=np.zeros(depots * customers, dtype=bool),
         closed=np.zeros(depots * customers, dtype=bool),
     )
-    from decimal import Decimal
-
     return Week.of(
         tuple(Depot(name, Decimal(int(q))) for name, q in zip(names[0], available, strict=True)),
         tuple(Customer(name, (Order(Decimal(int(q))),)) for name, q in zip(names[1], ordered, strict=True)),
@@ -61,7 +60,7 @@ def seconds(work: Callable[[], object], times: int = 5) -> float:
     return statistics.median(taken)
 
 
-def measure(depots: int, customers: int) -> None:
+def measure(depots: int, customers: int, say: Callable[[str], None] = print) -> None:
     plan: Plan = plan_week(dense_week(depots, customers))
     name, order = plan.model.customers[0], plan.week.customers[plan.model.customers[0]].ordered
     first = plan.model.depots[0]
@@ -76,12 +75,16 @@ def measure(depots: int, customers: int) -> None:
         ("the 50 lanes nearest to paying", lambda: rate_intervals(plan).nearest(50)),
         ("pairs", lambda: pairs(plan)),
         ("curve of an order, 0 to double", lambda: curve(plan, name, 0 * order, 2 * order)),
-        ("curve of a stock, 2 % down and up", lambda: curve(plan, first, stock * 98 // 100, stock * 102 // 100)),
+        (
+            "curve of a stock, 2 % down and up",
+            lambda: curve(plan, first, stock * 98 // 100, stock * 102 // 100),
+        ),
     ]
-    print(f"{depots} depots x {customers} customers, {plan.flow.problem.rows} rows; one cold solve {solve * 1000:.1f} ms")
+    rows = plan.flow.problem.rows
+    say(f"{depots} x {customers}, {rows} rows; one cold solve {solve * 1000:.1f} ms")
     for what, work in tasks:
         taken = seconds(work, 3)
-        print(f"  {what:36} {taken * 1000:9.1f} ms  {taken / solve:6.2f} cold solves")
+        say(f"  {what:36} {taken * 1000:9.1f} ms  {taken / solve:6.2f} cold solves")
 
 
 if __name__ == "__main__":

@@ -107,7 +107,10 @@ def _walk(plan: Plan, ground: Ground, end: End, distance: Decimal) -> tuple[list
         one = stretch(ground, end, left)
         if one is None:
             figure = "available" if end.what == "depot" else "ordered"
-            return walked, f"No {'more' if end.more else 'less'} can be {figure}: limits, holds or what must move."
+            return (
+                walked,
+                f"No {'more' if end.more else 'less'} can be {figure}: limits, holds or what must move.",
+            )
         if shares and _short_of(ground.model.stand_in, one, ground):
             return walked, f"From there on somebody goes short. {SHARED}"
         walked.append(one)
@@ -145,25 +148,28 @@ def _costs_of(one: Stretch) -> _Costs:
     return _Costs(freight, short, unsent, quantity)
 
 
+_Place = tuple[Decimal, Decimal, Decimal, Decimal, Decimal]
+"""A figure, what freight, short and unsent cost there, and what is short."""
+
+
 def _points(plan: Plan, today: Decimal, down: list[Stretch], up: list[Stretch]) -> list[CurvePoint]:
     """Corners in order of the figure; stretches of equal value on either side of a point are one."""
     model = plan.model
     grain, money = model.quantity_places, model.quantity_places + model.money_places
     short = total_of(one.quantity for one in plan.short)
-    here = (today, plan.freight_cost, plan.short_cost, plan.unsent_cost, short)
+    here: _Place = (today, plan.freight_cost, plan.short_cost, plan.unsent_cost, short)
     places = [here]
     slopes: list[tuple[int, Decimal]] = []
 
-    def after(place: tuple[Decimal, ...], one: Stretch, sign: int) -> tuple[Decimal, ...]:
+    def after(place: _Place, one: Stretch, sign: int) -> _Place:
         costs = _costs_of(one)
-        changes = (
-            to_decimal(sign * one.amount, grain),
-            to_decimal(costs.freight, money),
-            to_decimal(costs.short, money),
-            to_decimal(costs.unsent, money),
-            to_decimal(costs.quantity_short, grain),
+        return (
+            total_of((place[0], to_decimal(sign * one.amount, grain))),
+            total_of((place[1], to_decimal(costs.freight, money))),
+            total_of((place[2], to_decimal(costs.short, money))),
+            total_of((place[3], to_decimal(costs.unsent, money))),
+            total_of((place[4], to_decimal(costs.quantity_short, grain))),
         )
-        return tuple(total_of(pair) for pair in zip(place, changes, strict=True))
 
     def rise(one: Stretch, sign: int) -> tuple[int, Decimal]:
         costs = _costs_of(one)
@@ -182,7 +188,7 @@ def _points(plan: Plan, today: Decimal, down: list[Stretch], up: list[Stretch]) 
     return [_point(plan, places[n], slopes[n] if n < len(slopes) else None) for n in kept]
 
 
-def _point(plan: Plan, place: tuple[Decimal, ...], rise: tuple[int, Decimal] | None) -> CurvePoint:
+def _point(plan: Plan, place: _Place, rise: tuple[int, Decimal] | None) -> CurvePoint:
     figure, freight, short_cost, unsent_cost, short = place
     model = plan.model
     return CurvePoint(
@@ -217,5 +223,13 @@ def _between(before: CurvePoint, after: CurvePoint, figure: Decimal) -> CurvePoi
         start, end = getattr(before, name), getattr(after, name)
         return Decimal(start + (end - start) * part)
 
-    names = ("total_cost", "freight_cost", "short_cost", "unsent_cost", "short")
-    return CurvePoint(figure, *(at(name) for name in names), before.next_unit, before.next_short)
+    return CurvePoint(
+        figure,
+        at("total_cost"),
+        at("freight_cost"),
+        at("short_cost"),
+        at("unsent_cost"),
+        at("short"),
+        before.next_unit,
+        before.next_short,
+    )

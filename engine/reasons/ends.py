@@ -15,7 +15,7 @@ What = Literal["depot", "customer"]
 
 @dataclass(frozen=True, slots=True)
 class End:
-    """One more (or less) ordered by a customer, or available at a depot; `index` is its place in the model."""
+    """One more (or less) ordered by a customer or available at a depot; `index`: its place in the model."""
 
     what: What
     index: int

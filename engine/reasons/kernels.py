@@ -177,9 +177,7 @@ def thresholds_without(
 
 
 @kernel
-def spread(
-    source: int, first_hop: Integers, step: Integers, key: Integers, distance: Integers
-) -> None:
+def spread(source: int, first_hop: Integers, step: Integers, key: Integers, distance: Integers) -> None:
     """Shortest distances from a depot whose own hops are `first_hop`, all others `step` (Dijkstra 1959).
 
     key: (depots,) added to a distance it gives the order in which depots are final
@@ -193,9 +191,10 @@ def spread(
     while True:
         nearest = -1
         for k in range(depots):
-            if not final[k] and distance[k] < NO_WAY:
-                if nearest < 0 or distance[k] + key[k] < distance[nearest] + key[nearest]:
-                    nearest = k
+            if final[k] or distance[k] >= NO_WAY:
+                continue
+            if nearest < 0 or distance[k] + key[k] < distance[nearest] + key[nearest]:
+                nearest = k
         if nearest < 0:
             return
         final[nearest] = True
@@ -222,9 +221,7 @@ class Ties(NamedTuple):
 
 
 @kernel
-def most_over(
-    ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integers, at_most: int
-) -> int:
+def most_over(ties: Ties, j: int, i: int, to_depot: Integers, to_customer: Integers, at_most: int) -> int:
     """The most, up to `at_most`, that can go over tied rows from customer j to depot i; MANY: no limit.
 
     Shortest augmenting paths (Edmonds & Karp 1972). `to_depot` and `to_customer` (ties,) are what each tie

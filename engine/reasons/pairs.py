@@ -57,5 +57,6 @@ def pairs(plan: Plan, most: int = 20) -> tuple[Pair, ...]:
         found += zip(cost[js, i_s].tolist(), i_s.tolist(), (js + first).tolist(), strict=True)
         found = sorted(found)[:most]
     return tuple(
-        Pair(model.depots[i], model.customers[j], to_decimal(cost, model.money_places)) for cost, i, j in found
+        Pair(model.depots[i], model.customers[j], to_decimal(cost, model.money_places))
+        for cost, i, j in found
     )

@@ -21,6 +21,7 @@ from engine.planning.model import NO_RATE, Integers
 from engine.planning.plan import Plan
 from engine.reasons.ground import Flags, Ground, ground_of, money_of
 from engine.reasons.kernels import thresholds, thresholds_without
+from engine.reasons.rows import key_at
 
 FINEST = 6
 """Decimal places of a threshold that a surcharge makes endless; it is rounded to the side that is true."""
@@ -76,14 +77,14 @@ class RateIntervals:
 
     def at(self, row: int) -> RateInterval:
         """The thresholds of one row of the problem."""
-        model, ground, week = self.plan.model, self.ground, self.plan.week
+        model, ground = self.plan.model, self.ground
         position = int(model.rate_row[row])
         used = bool(ground.quantity[row] > 0)
         low, high = int(self.low[row]), int(self.high[row])
-        may_rise, may_fall = bool(self._has_low[row]), bool(self._has_high[row])
-        rate = week.rates.flat.rate.get(position)
+        may_rise, may_fall = bool(self.has_low[row]), bool(self.has_high[row])
+        rate = self.plan.week.rates.flat.rate.get(position)
         return RateInterval(
-            week.rates.key_of(int(week.rates.ids_in_order[position])),
+            key_at(self.plan, row),
             to_decimal(int(ground.quantity[row]), model.quantity_places),
             Decimal(0) if rate is None else rate,
             stays_from=self.before_surcharge(row, low, up=True) if may_rise else None,
@@ -91,19 +92,18 @@ class RateIntervals:
             pays_below=self.before_surcharge(row, low, up=False) if may_rise and not used else None,
         )
 
-    def nearest(self, most: int) -> tuple[RateInterval, ...]:
-        """The unused rows that are nearest to paying, by what a unit on them costs too much."""
-        places = np.flatnonzero(self._has_low[self.rows] & (self.ground.quantity[self.rows] == 0))
-        rows = self.rows[places]
+    def nearest_rows(self, most: int) -> Integers:
+        """The unused rows of the problem that are nearest to paying, by what a unit costs too much."""
+        rows = self.rows[self.has_low[self.rows] & (self.ground.quantity[self.rows] == 0)]
         gap = self.plan.model.money[rows] - self.low[rows]
         if len(gap) > most:
             chosen = np.argpartition(gap, most - 1)[:most]
             rows, gap = rows[chosen], gap[chosen]
-        order = np.lexsort((self.plan.model.rate_row[rows], gap))
-        return tuple(self.at(row) for row in rows[order].tolist())
+        nearest: Integers = rows[np.lexsort((self.plan.model.rate_row[rows], gap))]
+        return nearest
 
     def before_surcharge(self, row: int, money: int, up: bool) -> Decimal | None:
-        """The rate before surcharge that comes to this money; where it has no last digit, rounded up or down."""
+        """The rate before surcharge that comes to this money; one without a last digit is rounded."""
         factor = self._factor[self.plan.model.rate_row[row]]
         return without_surcharge(money, self.plan.model.money_places, factor, up)
 
@@ -112,12 +112,12 @@ class RateIntervals:
         return Factors.of(self.plan)
 
     @cached_property
-    def _has_low(self) -> Flags:
+    def has_low(self) -> Flags:
         """Whether a lower rate can bring more onto a row."""
         return self.low_is_money & self.ground.has_room
 
     @cached_property
-    def _has_high(self) -> Flags:
+    def has_high(self) -> Flags:
         """Whether a higher rate can take something off a row."""
         return self.high_is_money & self.ground.has_spare
 
@@ -186,10 +186,10 @@ def _rows_between(ground: Ground) -> Integers:
     """
     closure, problem = ground.closure, ground.problem
     there = closure.direct < NO_WAY
-    part = np.unique(np.concatenate([closure.more_on[there], closure.less_on[there]]))
+    part: Integers = np.unique(np.concatenate([closure.more_on[there], closure.less_on[there]]))
     part = part[ground.has_room[part] & ground.has_spare[part]]
     if not len(part):
         return part
     several = np.add.reduceat(ground.has_spare.astype(np.int64), problem.start[:-1]) > 1
-    return part[several[problem.customer[part]]]
-
+    hard: Integers = part[several[problem.customer[part]]]
+    return hard

@@ -85,8 +85,7 @@ def more_available(ground: Ground, holds: bool) -> Side:
     distance = ground.to_keeper
     charge, path = problem.cost[stays], distance[:stand_in]
     sent = path < charge
-    first = _first(ground, ground.has_room)
-    joined = _joined(ground, distance, (first, 1), forward=False)[:stand_in]
+    joined = _joined(ground, distance, (_first(ground, 1), 1), forward=False)[:stand_in]
     most = None
     if holds:
         ends = np.arange(stand_in)
@@ -102,7 +101,7 @@ def less_available(ground: Ground, holds: bool) -> Side:
     distance = ground.from_keeper
     may_stay, full = ground.upper[stays], ground.quantity[stays] == ground.upper[stays]
     cost = np.where(full, -problem.cost[stays], distance[:stand_in])
-    joined = _joined(ground, distance, (_first(ground, ground.has_spare), -1), forward=True)[:stand_in]
+    joined = _joined(ground, distance, (_first(ground, -1), -1), forward=True)[:stand_in]
     most = None
     if holds:
         ends = np.arange(stand_in)
@@ -118,20 +117,17 @@ def _just(ground: Ground, depot: int) -> tuple[Integers, int]:
     return first, 0
 
 
-def _first(ground: Ground, usable: Integers) -> Integers:
-    """(depots,) what one more (one less, where that is asked) directly at the stand-in customer costs."""
+def _first(ground: Ground, sign: int) -> Integers:
+    """(depots,) what one more (sign 1) or one less (-1) directly at the stand-in customer costs."""
     problem, keeper = ground.problem, ground.keeper
     rows = np.arange(problem.start[keeper], problem.start[keeper + 1])
-    rows = rows[usable[rows]]
+    rows = rows[(ground.has_room if sign > 0 else ground.has_spare)[rows]]
     first = np.full(problem.depots, NO_WAY)
-    sign = 1 if usable is ground.has_room else -1
     np.minimum.at(first, problem.depot[rows], sign * problem.cost[rows])
     return first
 
 
-def _joined(
-    ground: Ground, distance: Integers, end: tuple[Integers, int], forward: bool
-) -> Integers:
+def _joined(ground: Ground, distance: Integers, end: tuple[Integers, int], forward: bool) -> Integers:
     """(depots,) by how much each cheapest chain changes the row that joins the stand-ins.
 
     What goes short is the stand-in depot's stock less what goes on that row.

@@ -106,9 +106,13 @@ def most_out_of(tied: Tied, customers: Integers, depots: Integers) -> Integers:
     return _each(tied, customers, depots, tied.less, tied.more)
 
 
-def _each(tied: Tied, customers: Integers, depots: Integers, to_depot: Integers, to_customer: Integers) -> Integers:
+def _each(
+    tied: Tied, customers: Integers, depots: Integers, to_depot: Integers, to_customer: Integers
+) -> Integers:
     most = np.zeros(len(customers), dtype=np.int64)
-    most_for_each(tied.ties, np.ascontiguousarray(customers), np.ascontiguousarray(depots), to_depot, to_customer, most)
+    most_for_each(
+        tied.ties, np.ascontiguousarray(customers), np.ascontiguousarray(depots), to_depot, to_customer, most
+    )
     return most
 
 

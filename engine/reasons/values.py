@@ -61,8 +61,11 @@ def values(plan: Plan, holds: bool = False) -> Values:
         TooLarge: a chain's cost could leave the exact integers.
     """
     if is_shared(plan):
-        bare = (tuple(UnitValue(p.name, p.price) for p in some) for some in (plan.depot_prices, plan.customer_prices))
-        return Values(*bare, withheld=SHARED)
+        depots, customers = (
+            tuple(UnitValue(p.name, p.price) for p in some)
+            for some in (plan.depot_prices, plan.customer_prices)
+        )
+        return Values(depots, customers, withheld=SHARED)
     return values_on(plan, ground_of(plan), holds)
 
 

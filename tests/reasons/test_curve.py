@@ -2,6 +2,7 @@
 
 from dataclasses import replace
 from decimal import Decimal
+from itertools import pairwise
 
 import pytest
 from hypothesis import given, settings
@@ -19,7 +20,7 @@ D = Decimal
 
 def cost_at(found: Curve, figure: Decimal) -> Decimal | None:
     """The total cost that the curve says at a figure, None outside its range."""
-    for before, after in zip(found.points, found.points[1:], strict=False):
+    for before, after in pairwise(found.points):
         if before.figure <= figure <= after.figure and before.next_unit is not None:
             return before.total_cost + before.next_unit * (figure - before.figure)
     return next((p.total_cost for p in found.points if p.figure == figure), None)
@@ -27,7 +28,7 @@ def cost_at(found: Curve, figure: Decimal) -> Decimal | None:
 
 def assert_shape(points: tuple[CurvePoint, ...]) -> None:
     """Corners rise in figure; the value of the next unit falls nowhere where the aims stay as they are."""
-    for before, after in zip(points, points[1:], strict=False):
+    for before, after in pairwise(points):
         assert before.figure < after.figure
         assert before.next_unit is not None
         assert after.total_cost - before.total_cost == before.next_unit * (after.figure - before.figure)
@@ -88,7 +89,9 @@ def test_a_range_beside_today_and_one_that_ends_early() -> None:
     beside = curve(plan_week(stepped()), "Elm", D(12), D(14))
     assert [(p.figure, p.total_cost, p.next_unit) for p in beside.points] == [(12, 54, 7), (14, 68, None)]
     must = replace(stepped().depots["Quarry"], must_move=D(4))
-    week = Week.of((must, stepped().depots["Northgate"]), tuple(stepped().customers.values()), stepped().rates)
+    week = Week.of(
+        (must, stepped().depots["Northgate"]), tuple(stepped().customers.values()), stepped().rates
+    )
     early = curve(plan_week(week), "Quarry", D(0), D(12))
     assert early.points[0].figure == 4
     assert early.ends_early

@@ -45,10 +45,9 @@ def test_pairs_are_all_that_cost_less_together_and_are_news(week: Week) -> None:
 
 
 def test_more_costs_less_worked_by_hand() -> None:
-    """Quarry (10) serves Elm at 9 though Ash is next door at 1, since Northgate (10) reaches Ash alone.
+    """Elm's eleventh tonne comes from Northgate at 20, since Quarry has no more; Northgate serves Ash at 1.
 
-    Northgate to Ash costs 8. One more at Quarry and one more for Ash bring... Quarry to Ash at 1 instead:
-    the tied-up chain is undone where Elm can be served by Northgate.
+    Now 10*1 + 1*20 + 9*1 = 39. With one more at Quarry and one more for Ash: 11*1 + 10*1 = 21, 18 less.
     """
     week = Week.of(
         (Depot("Quarry", D(10)), Depot("Northgate", D(10))),

@@ -1,10 +1,7 @@
 """Thresholds of rates against brute force: alter the rate and plan again."""
 
-from dataclasses import replace
 from decimal import Decimal
-from fractions import Fraction
 
-import numpy as np
 from hypothesis import given, settings
 
 from engine.changes import Alter
@@ -20,15 +17,17 @@ LITTLE = D("0.001")
 FAR = D(5000)
 
 
-def cost_of(plan: Plan, key: RateKey, at: Plan) -> int:
+def cost_of(plan: Plan, at: Plan) -> int:
     """What the quantities of `plan` cost at the figures of `at`, in money and in aims together."""
-    return sum(q * c for q, c in zip(plan.flow.quantity.tolist(), at.model.problem.cost.tolist(), strict=True))
+    return sum(
+        q * c for q, c in zip(plan.flow.quantity.tolist(), at.model.problem.cost.tolist(), strict=True)
+    )
 
 
 def stays(plan: Plan, key: RateKey, rate: Decimal) -> bool:
     """Whether the plan's quantities are still the best at this rate."""
     after = plan_week(plan.week.apply(Alter("rate", key, "rate", rate)))
-    return cost_of(plan, key, after) == after.flow.cost
+    return cost_of(plan, after) == after.flow.cost
 
 
 def assert_true_interval(plan: Plan, one: RateInterval) -> None:

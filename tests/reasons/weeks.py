@@ -20,7 +20,11 @@ def weeks_with_limits(draw: st.DrawFn) -> Week:
     week = draw(weeks())
     surcharge = st.sampled_from([None, None, D(25), D(-20)])
     rows = [
-        replace(row, at_least=draw(st.sampled_from([None, None, None, None, D(1), D(2)])), surcharge=draw(surcharge))
+        replace(
+            row,
+            at_least=draw(st.sampled_from([None, None, None, None, D(1), D(2)])),
+            surcharge=draw(surcharge),
+        )
         for row in week.rates
     ]
     rows = [replace(row, at_least=None) if row.closed or row.at_most in (0, 1) else row for row in rows]
