@@ -37,6 +37,7 @@ class Rows(NamedTuple):
     room:   (rows,) most that a row can carry, or empty if no limit can ever bind
     full:   (rows,) int8, 1 where a row outside the tree carries all of `room`; empty like `room`
     filled: (customers,) int32, how many rows of the customer are full
+    binding: how many rows have a limit above 0 that can bind
     every:  whether each customer has exactly one row from each depot, in the order of the depots
     """
 
@@ -46,10 +47,11 @@ class Rows(NamedTuple):
     room: Integers
     full: NDArray[np.int8]
     filled: NDArray[np.int32]
+    binding: int
     every: bool
 
 
-ROWS: Any = types.NamedTuple([INTS] * 4 + [types.int8[::1], types.int32[::1], BOOL], Rows)
+ROWS: Any = types.NamedTuple([INTS] * 4 + [types.int8[::1], types.int32[::1], INT, BOOL], Rows)
 
 
 def above_lower_limits(problem: Problem) -> tuple[Rows, Integers, Integers]:
@@ -58,7 +60,7 @@ def above_lower_limits(problem: Problem) -> tuple[Rows, Integers, Integers]:
     Raises Contradiction if the lower limits alone are too much for a depot or a customer.
     """
     left, need = problem.supply.copy(), problem.demand.copy()
-    room, cost = np.empty(0, dtype=np.int64), problem.cost
+    room, cost, binding = np.empty(0, dtype=np.int64), problem.cost, 0
     if problem.at_least is not None:
         row = take_out(problem.start, problem.depot, problem.at_least, left, need)
         if row >= 0:
@@ -68,7 +70,7 @@ def above_lower_limits(problem: Problem) -> tuple[Rows, Integers, Integers]:
         binding, closed = count_limits(problem.start, problem.depot, room, left, need)
         if closed:
             cost = np.where(room > 0, cost, NEVER)
-        if not binding:
+        if binding + closed == 0:
             room = np.empty(0, dtype=np.int64)
     rows = Rows(
         start=problem.start,
@@ -77,6 +79,7 @@ def above_lower_limits(problem: Problem) -> tuple[Rows, Integers, Integers]:
         room=room,
         full=np.zeros(len(room), dtype=np.int8),
         filled=np.zeros(problem.customers, dtype=np.int32),
+        binding=binding,
         every=bool(is_every(problem.start, problem.depot, problem.depots)),
     )
     return rows, left, need
@@ -104,16 +107,16 @@ def take_out(start: Integers, depot: Integers, at_least: Integers, left: Integer
     return -1
 
 
-@kernel(signature(types.UniTuple(BOOL, 2), INTS, INTS, INTS, INTS, INTS))
+@kernel(signature(PAIR, INTS, INTS, INTS, INTS, INTS))
 def count_limits(
     start: Integers, depot: Integers, room: Integers, left: Integers, need: Integers
-) -> tuple[bool, bool]:
-    """Whether any upper limit can bind, and whether any row can carry nothing at all."""
-    binding = closed = False
+) -> tuple[int, int]:
+    """How many rows have a limit above 0 that can bind, and how many can carry nothing at all."""
+    binding = closed = 0
     for j in range(len(need)):
         for row in range(start[j], start[j + 1]):
-            binding |= room[row] < min(left[depot[row]], need[j])
-            closed |= room[row] == 0
+            closed += room[row] == 0
+            binding += 0 < room[row] < min(left[depot[row]], need[j])
     return binding, closed
 
 
