@@ -73,9 +73,17 @@ def desk(week: tuple[Path, ...] = (), sample: bool = False, port: int = 8507, br
               help="Write the plan as a workbook.")  # fmt: skip
 @click.option("--json", "as_json", type=click.Path(dir_okay=False, allow_dash=True), metavar="FILE",
               help="Write the plan as JSON; - is stdout.")  # fmt: skip
+@click.option("--values", "detail", type=click.Choice(["brief", "full"]), default="brief",
+              show_default=True,
+              help="full: the JSON says how far values hold and within which rates the plan stays.")  # fmt: skip
 @click.pass_context
 def plan(
-    ctx: click.Context, week: tuple[Path, ...], near: Path | None, out: Path | None, as_json: str | None
+    ctx: click.Context,
+    week: tuple[Path, ...],
+    near: Path | None,
+    out: Path | None,
+    as_json: str | None,
+    detail: str,
 ) -> None:
     """Plan the week in these files (one workbook, or separate tables)."""
     reading = _read(ctx, week)
@@ -91,7 +99,7 @@ def plan(
         engine.write_workbook(made, out)
         click.echo(f"Wrote {out}", err=True)
     if as_json is not None:
-        text = json.dumps(engine.plan_as_json(made), ensure_ascii=False, indent=1)
+        text = json.dumps(engine.plan_as_json(made, full=detail == "full"), ensure_ascii=False, indent=1)
         if as_json == "-":
             click.echo(text)
         else:

@@ -6,14 +6,20 @@ from typing import Any
 
 from engine.exact import canonical
 from engine.planning.plan import Plan
-from engine.reasons.values import UnitValue, values
+from engine.reasons import RateInterval, UnitValue, rate_intervals, values
 
 
-def plan_as_json(plan: Plan) -> dict[str, Any]:
-    """The plan as a dictionary that `json.dumps` takes."""
+def plan_as_json(plan: Plan, full: bool = False) -> dict[str, Any]:
+    """The plan as a dictionary that `json.dumps` takes.
+
+    Args:
+        plan: what is written.
+        full: whether to say as well how far values hold (null: without limit, or no value) and within which
+            rates, before surcharge, the plan stays as it is (null: no limit).
+    """
     rules = plan.week.rules
-    value_of = values(plan)
-    return {
+    value_of = values(plan, holds=full)
+    written = {
         "week": rules.week,
         "unit": rules.unit,
         "currency": rules.currency,
@@ -55,6 +61,19 @@ def plan_as_json(plan: Plan) -> dict[str, Any]:
             }
             for finding in plan.findings
         ],
+    }
+    return {**written, "rates": [_rate(one) for one in rate_intervals(plan)]} if full else written
+
+
+def _rate(one: RateInterval) -> dict[str, str | None]:
+    return {
+        "depot": one.key.depot,
+        "customer": one.key.customer,
+        "haulier": one.key.haulier,
+        "rate": canonical(one.rate),
+        "stays_from": _text(one.stays_from),
+        "stays_to": _text(one.stays_to),
+        "pays_below": _text(one.pays_below),
     }
 
 
