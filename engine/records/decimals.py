@@ -6,7 +6,7 @@ from decimal import Decimal
 from functools import cache
 from typing import Any, get_args, get_type_hints
 
-from engine.exact import MOST_PLACES, TooLarge, canonical, places_needed, to_decimal, to_integer
+from engine.exact import LARGEST, MOST_PLACES, TooLarge, canonical, places_needed, to_decimal, to_integer
 
 Row = dict[str, Any]
 
@@ -66,6 +66,8 @@ def decimal_fields(kind: Any) -> tuple[str, ...]:
 def _split(name: str, decimal: Decimal | None) -> tuple[int | None, int | None]:
     if decimal is None:
         return None, None
+    if decimal.as_tuple().exponent == 0 and -LARGEST <= decimal <= LARGEST:  # a whole number, as most are
+        return int(decimal), 0
     scale = places_needed(decimal)
     if scale > MOST_PLACES:
         raise TooLarge(

@@ -11,10 +11,10 @@ from sqlalchemy.dialects import postgresql, sqlite
 
 from engine.exact import BLANK, DecimalColumn
 from engine.rates import DECIMAL_FIELDS, NO_CODE, RateTable
-from engine.records.bulk import insert_columns, insert_rows
+from engine.records.bulk import CHUNK, insert_columns, insert_rows, read_columns
 from engine.records.schema import name_lists, names, rate_rows, rate_tables
 
-CHUNK = 20_000
+_NEVER_BLANK = ("depot", "customer", "per_load", "closed")
 
 
 class RateIds(NamedTuple):
@@ -161,19 +161,15 @@ def _none_where(values: npt.NDArray[Any], blank: int) -> list[int | None]:
 
 def _read(connection: Connection, number: int, wanted: list[str], count: int) -> dict[str, Any]:
     """The columns of a rate table as int64 arrays, blanks as BLANK."""
-    columns = {name: np.empty(count, dtype=np.int64) for name in wanted}
-    found = connection.execution_options(yield_per=CHUNK).execute(
-        select(*(rate_rows.c[name] for name in wanted))
-        .where(rate_rows.c.table_id == number)
-        .order_by(rate_rows.c.position)
-    )
+    found = np.empty((count, len(wanted)), dtype=np.int64)
+    cells = ", ".join(name if name in _NEVER_BLANK else f"COALESCE({name}, ?)" for name in wanted)
+    blanks = (BLANK,) * sum(name not in _NEVER_BLANK for name in wanted)
+    query = f"SELECT {cells} FROM {rate_rows.name} WHERE table_id = ? ORDER BY position"
     start = 0
-    for rows in found.partitions(CHUNK):
-        part = slice(start, start + len(rows))
-        for name, values in zip(wanted, zip(*rows, strict=True), strict=True):
-            columns[name][part] = [BLANK if value is None else value for value in values]
+    for rows in read_columns(connection, query, (*blanks, number)):
+        found[start : start + len(rows)] = rows
         start += len(rows)
-    return columns
+    return {name: np.ascontiguousarray(found[:, place]) for place, name in enumerate(wanted)}
 
 
 def _or_no_code(values: npt.NDArray[np.int64]) -> npt.NDArray[np.int32]:

@@ -8,7 +8,7 @@ from sqlalchemy import func, select, text
 import engine
 import sample_data
 from engine.changes import Add, Alter, Remove, SetHold
-from engine.figures import Customer, Depot, Gone, RateKey, RateRow, Rules
+from engine.figures import Customer, Depot, Gone, Order, RateKey, RateRow, Rules
 from engine.findings import Finding, Severity
 from engine.history import History
 from engine.intake.answers import Answers
@@ -294,3 +294,14 @@ def test_history_of_a_week_without_changes_is_the_week(records: Records) -> None
     made = create_week(records, read(small_week()))
     assert save(records, made.listed.id, made.history, saved=0).history is made.history
     assert open_week(records, made.listed.id).history.entries == History.of(small_week()).entries
+
+
+def test_names_with_every_kind_of_character_come_back_from_large_weeks(records: Records) -> None:
+    odd = ["tab\there", "line\nbreak", "back\\slash", "\\N", "quote'\"", "=1+1", "%s ? :x", "Ünïcode €", " ", "\r"]
+    names = [f"{odd[n % len(odd)]} {n}" for n in range(120)]
+    week = Week.of(
+        tuple(Depot(name, D(n)) for n, name in enumerate(names)),
+        tuple(Customer(name, (Order(D(n), name, name),), one_depot=name) for n, name in enumerate(names)),
+        tuple(RateRow(name, name, D(n), haulier=name) for n, name in enumerate(names)),
+    )
+    assert afresh(records, create_week(records, read(week)).listed.id) == week
