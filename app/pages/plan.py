@@ -4,6 +4,8 @@ import streamlit as st
 
 from app.parts.costs import cost_line
 from app.parts.findings_panel import findings_panel
+from app.parts.holds_list import holds_list
+from app.parts.matrix_grid import matrix_grid
 from app.parts.nothing_yet import nothing_yet
 from app.parts.plan_map import plan_map
 from app.parts.proposal import proposal
@@ -31,7 +33,17 @@ else:
         proposal(state)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:
-            shipments_grid(state, plan)
+            views = {"depot": "By depot", "customer": "By customer", "matrix": "Matrix", "holds": "Holds"}
+            view = st.segmented_control(
+                "View", list(views), default="depot", format_func=views.__getitem__, required=True,
+                label_visibility="collapsed", key="plan-view",
+            )  # fmt: skip
+            if view == "matrix":
+                matrix_grid(state, plan)
+            elif view == "holds":
+                holds_list(state, plan)
+            else:
+                shipments_grid(state, plan, view or "depot")
         with chart:
             plan_map(plan, state.decimal_mark)
         findings_panel(plan.findings, key="plan")

@@ -5,6 +5,7 @@ import streamlit as st
 from app.parts.words import counted, money, number, plain
 from app.session import Desk
 from engine.changes import Change, SetHold, Together
+from engine.findings import Severity
 from engine.planning.differences import Difference, Outcome
 
 SHOWN = 6
@@ -19,6 +20,8 @@ def proposal(state: Desk) -> None:
         if state.proposed.difference is not None:
             _moves(state, state.proposed.difference)
         for finding in state.proposed.findings:
+            if finding.severity is not Severity.STOPS:
+                continue
             st.markdown(f":red[■] {plain(finding.message)} *{plain(finding.mend)}*")
         possible = state.proposed.plan is not None
         with st.container(horizontal=True, vertical_alignment="bottom"):

@@ -1,142 +1,140 @@
-"""The shipments of a plan as a grid: a quantity typed into it is held, and the rest is planned again."""
+"""The rate rows of a plan as a grid: a quantity typed into it is put up as a hold, a limit as a new limit."""
 
 from dataclasses import dataclass
 
 import pandas as pd
 import streamlit as st
+from streamlit.elements.lib.column_types import ColumnConfig
 
 from app.parts.words import money, number, plain
 from app.session import Desk
-from engine.changes import Change, Lift, SetHold, Together
-from engine.columns import SEND
+from engine.changes import Alter, Change, Lift, SetHold, Together
+from engine.columns import RATE_COLUMNS, SEND
 from engine.findings import Finding
 from engine.intake.fields import read_field, show_field
+from engine.planning.holds import all_lifted, held_as_planned
 from engine.planning.lanes import Lane, lanes
 from engine.planning.plan import Plan
 
 EVERY = "All"
-NO_FILTER = "used lanes"
-HOLD_REASON = "Hold reason"
+REASON = "Hold reason"
 MOST_ROWS = 2_000
+LIMITS = tuple(column for column in RATE_COLUMNS if column.field in ("at_least", "at_most", "closed"))
 
 
 @dataclass(frozen=True, slots=True)
 class _View:
-    """Which rows are shown, and in whose order."""
+    """Which rows are shown, in whose order, and whether with their limits."""
 
     by: str
     name: str | None
     unused: bool
+    limits: bool
 
 
-def shipments_grid(state: Desk, plan: Plan) -> None:
-    """The grid with its filters; every edit is one change, refused in words where it cannot be planned."""
-    view = _view(state)
-    shown = _sorted(
-        lanes(
-            plan,
-            depot=view.name if view.by == "depot" else None,
-            customer=view.name if view.by == "customer" else None,
-            unused=view.unused,
-        ),
-        view.by,
-    )
+def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
+    """The rows by depot or by customer, with filters; what is typed is put up as one change."""
+    view = _view(state, by)
+    shown = _shown(plan, view)
     if len(shown) > MOST_ROWS:
-        st.caption(
-            f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {view.by} to see all of its rows."
-        )
+        st.caption(f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {by} to see all of its rows.")
         shown = shown[:MOST_ROWS]
-    base = _frame(state, plan, shown, view.by)
-    key = f"shipments-{state.generation}-{view.by}-{view.name}-{view.unused}"
+    base = _frame(state, plan, shown, view)
+    typed = (SEND.heading, REASON, *(column.heading for column in LIMITS))
     edited = st.data_editor(
         base,
-        key=key,
+        key=f"shipments-{state.generation}-{by}-{view.name}-{view.unused}-{view.limits}",
         hide_index=True,
-        height=560,
-        disabled=[name for name in base.columns if name not in (SEND.heading, HOLD_REASON)],
-        column_config={
-            SEND.heading: st.column_config.TextColumn(
-                f"{SEND.heading}, {plan.week.rules.unit}", alignment="right", width="small",
-                help="Type a quantity to hold it; empty the cell to lift the hold",
-            ),
-            "Rate": st.column_config.TextColumn(
-                f"Rate, {plan.week.rules.currency}", alignment="right", width="small",
-                help="Per unit, with the surcharge",
-            ),
-            "Cost": st.column_config.TextColumn(
-                f"Cost, {plan.week.rules.currency}", alignment="right", width="small"
-            ),
-            "Held": st.column_config.TextColumn("Held", width="small"),
-            HOLD_REASON: st.column_config.TextColumn(HOLD_REASON, help="Why the quantity is held"),
-        },
+        height=520,
+        disabled=[name for name in base.columns if name not in typed],
+        column_config=_config(plan),
         alt="Shipments of the plan: depot, customer, haulier, quantity, rate and cost",
-    )  # fmt: skip
-    _take_edits(state, shown, base, edited)
-
-
-def _view(state: Desk) -> _View:
-    left, middle, right = st.columns([2, 3, 2], vertical_alignment="bottom")
-    by = left.segmented_control(
-        "Order by", ["depot", "customer"], default="depot", format_func=str.capitalize, required=True
     )
-    by = by or "depot"
+    _take_edits(state, shown, base, edited)
+    _hold_many(state, shown, view)
+
+
+def _view(state: Desk, by: str) -> _View:
     names = list(state.week.depots if by == "depot" else state.week.customers)
-    name = middle.selectbox(f"Show {by}", [EVERY, *names], key=f"shown-{by}")
+    left, middle, right = st.columns([3, 2, 2], vertical_alignment="bottom")
+    name = left.selectbox(f"Show {by}", [EVERY, *names], key=f"shown-{by}")
     one = None if name == EVERY or name not in names else name
-    unused = right.toggle(
-        "Unused lanes too", disabled=one is None, key=f"unused-{by}",
-        help="Choose one depot or customer to see the lanes that carry nothing",
+    unused = middle.toggle(
+        "Unused rates", disabled=one is None, key=f"unused-{by}",
+        help="Choose one depot or customer to see the rates that carry nothing as well",
     )  # fmt: skip
-    return _View(by, one, bool(unused and one is not None))
+    limits = right.toggle("Limits", key=f"limits-{by}", help="Show and set At least, At most and Closed")
+    return _View(by, one, bool(unused and one is not None), bool(limits))
 
 
-def _sorted(shown: tuple[Lane, ...], by: str) -> list[Lane]:
+def _shown(plan: Plan, view: _View) -> list[Lane]:
     """Grouped by depot or customer in order of first appearance; sheet order within."""
+    found = lanes(
+        plan,
+        depot=view.name if view.by == "depot" else None,
+        customer=view.name if view.by == "customer" else None,
+        unused=view.unused,
+    )
     place: dict[str, int] = {}
-    for lane in shown:
-        place.setdefault(getattr(lane.key, by), len(place))
-    return sorted(shown, key=lambda lane: place[getattr(lane.key, by)])
+    for lane in found:
+        place.setdefault(getattr(lane.key, view.by), len(place))
+    return sorted(found, key=lambda lane: place[getattr(lane.key, view.by)])
 
 
-def _frame(state: Desk, plan: Plan, shown: list[Lane], by: str) -> pd.DataFrame:
+def _config(plan: Plan) -> dict[str, ColumnConfig]:
+    text, rules = st.column_config.TextColumn, plan.week.rules
+    return {
+        SEND.heading: text(
+            f"{SEND.heading}, {rules.unit}", alignment="right", width="small",
+            help="Type a quantity to hold it; empty the cell to lift the hold",
+        ),
+        "Rate": text(
+            f"Rate, {rules.currency}", alignment="right", width="small", help="Per unit, with the surcharge"
+        ),
+        "Cost": text(f"Cost, {rules.currency}", alignment="right", width="small"),
+        "Held": text("Held", width="small"),
+        REASON: text(REASON, help="Why the quantity is held"),
+        **{c.heading: text(c.heading, help=c.about, alignment="right", width="small") for c in LIMITS},
+    }  # fmt: skip
+
+
+def _frame(state: Desk, plan: Plan, shown: list[Lane], view: _View) -> pd.DataFrame:
     mark, currency = state.decimal_mark, plan.week.rules.currency
-    ends = {
+    columns = {
         "Depot": [lane.key.depot for lane in shown],
         "Customer": [lane.key.customer for lane in shown],
     }
-    if by == "customer":
-        ends = dict(reversed(ends.items()))
-    return pd.DataFrame(
-        {
-            **ends,
-            "Haulier": [lane.key.haulier or "" for lane in shown],
-            SEND.heading: [_send(lane, state) for lane in shown],
-            "Rate": [number(lane.rate, mark) for lane in shown],
-            "Cost": [money(lane.cost, currency, mark).removesuffix(f" {currency}") for lane in shown],
-            "Held": ["held" if lane.hold else "" for lane in shown],
-            HOLD_REASON: [lane.hold.reason if lane.hold else "" for lane in shown],
-        },
-        dtype="string",
-    )
+    if view.by == "customer":
+        columns = dict(reversed(columns.items()))
+    columns |= {
+        "Haulier": [lane.key.haulier or "" for lane in shown],
+        SEND.heading: [show_field(SEND, lane.quantity, state.style) for lane in shown],
+        "Rate": [number(lane.rate, mark) for lane in shown],
+        "Cost": [money(lane.cost, currency, mark).removesuffix(f" {currency}") for lane in shown],
+    }
+    if view.limits:
+        columns |= {c.heading: [_limit(state, lane, c.field) for lane in shown] for c in LIMITS}
+    columns |= {
+        "Held": ["held" if lane.hold else "" for lane in shown],
+        REASON: [lane.hold.reason if lane.hold else "" for lane in shown],
+    }
+    return pd.DataFrame(columns, dtype="string")
 
 
-def _send(lane: Lane, state: Desk) -> str:
-    return show_field(SEND, lane.quantity, state.style)
+def _limit(state: Desk, lane: Lane, field: str) -> str:
+    column = next(column for column in LIMITS if column.field == field)
+    return show_field(column, getattr(lane, field), state.style)
 
 
 def _take_edits(state: Desk, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame) -> None:
     """Put up what differs from the plan as one change."""
     changes: list[Change] = []
     refused: list[Finding] = []
-    for position in range(len(base)):
-        before, after = base.iloc[position], edited.iloc[position]
-        if after.equals(before):
-            continue
-        change, finding = _change(state, shown[position], before, after)
-        if finding is not None:
-            refused.append(finding)
-        elif change is not None:
-            changes.append(change)
+    differing = (base.fillna("") != edited.fillna("")).any(axis=1)
+    for position in differing.to_numpy().nonzero()[0].tolist():
+        more, findings = _changes(state, shown[position], _texts(edited, position))
+        changes.extend(more)
+        refused.extend(findings)
     for finding in refused:
         st.error(f"{plain(finding.message)} {plain(finding.mend)}")
     if not changes or refused:
@@ -147,19 +145,49 @@ def _take_edits(state: Desk, shown: list[Lane], base: pd.DataFrame, edited: pd.D
         st.rerun()
 
 
-def _change(
-    state: Desk, lane: Lane, before: pd.Series, after: pd.Series
-) -> tuple[Change | None, Finding | None]:
-    """What an edited row asks for: a hold, another reason, or the hold lifted."""
-    text = "" if pd.isna(after[SEND.heading]) else str(after[SEND.heading])
-    reason = "" if pd.isna(after[HOLD_REASON]) else str(after[HOLD_REASON]).strip()
-    if not text.strip():
-        return (Lift(lane.key) if lane.hold else None), None
-    quantity, finding = read_field(SEND, text, state.style)
-    if quantity is None:
-        return None, finding
-    if lane.hold and quantity == lane.hold.quantity and reason == lane.hold.reason:
-        return None, None
-    if not lane.hold and quantity == lane.quantity and not reason:
-        return None, None
-    return SetHold(lane.key, quantity, reason), None
+def _texts(edited: pd.DataFrame, position: int) -> dict[str, str]:
+    """A row of the grid by heading, blank cells as empty text."""
+    return {str(name): "" if pd.isna(cell) else str(cell) for name, cell in edited.iloc[position].items()}
+
+
+def _changes(state: Desk, lane: Lane, row: dict[str, str]) -> tuple[list[Change], list[Finding]]:
+    """What an edited row asks for: a hold, another reason, the hold lifted, other limits."""
+    changes: list[Change] = []
+    findings: list[Finding] = []
+    text, reason = row[SEND.heading].strip(), row[REASON].strip()
+    if not text:
+        changes += [Lift(lane.key)] if lane.hold else []
+    else:
+        quantity, finding = read_field(SEND, text, state.style)
+        findings += [finding] if quantity is None and finding else []
+        if quantity is not None and _is_new(lane, quantity, reason):
+            changes.append(SetHold(lane.key, quantity, reason))
+    for column in LIMITS:
+        if column.heading not in row:
+            continue
+        value, finding = read_field(column, row[column.heading], state.style)
+        if finding is not None and value is None:
+            findings.append(finding)
+        elif value != getattr(lane, column.field):
+            changes.append(Alter("rate", lane.key, column.field, value))
+    return changes, findings
+
+
+def _is_new(lane: Lane, quantity: object, reason: str) -> bool:
+    if lane.hold is not None:
+        return (quantity, reason) != (lane.hold.quantity, lane.hold.reason)
+    return quantity != lane.quantity or bool(reason)
+
+
+def _hold_many(state: Desk, shown: list[Lane], view: _View) -> None:
+    """Hold or lift all that is shown as one act."""
+    with st.container(horizontal=True):
+        whole = f"all of {view.name}" if view.name else "everything shown"
+        hold = held_as_planned(lane for lane in shown if lane.quantity)
+        if st.button(f"Hold {plain(whole)}", disabled=hold is None, key=f"hold-many-{view.by}") and hold:
+            state.propose(hold)
+            st.rerun()
+        lift = all_lifted(lane.key for lane in shown if lane.hold)
+        if st.button(f"Lift {plain(whole)}", disabled=lift is None, key=f"lift-many-{view.by}") and lift:
+            state.propose(lift)
+            st.rerun()

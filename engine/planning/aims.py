@@ -14,6 +14,8 @@ from engine.exact import LARGEST, TooLarge
 from engine.figures import PRIORITIES
 
 MUST_MOVE = "must move"
+OUT_OF_REACH = "out of reach"
+"""Above all aims: marks the price of a place from which no chain of exchanges leads to the stand-in depot."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,9 +61,10 @@ def weights(largest_money: int, depots: int, priorities: Iterable[str], must_mov
     used = set(priorities)
     for aim in (MUST_MOVE, *reversed(PRIORITIES)):
         if (aim == MUST_MOVE and must_move) or aim in used:
-            weight = 1 + 2 * reach
-            rising.append((aim, weight))
-            reach += weight
+            rising.append((aim, 1 + 2 * reach))
+            reach += 1 + 2 * reach
+    rising.append((OUT_OF_REACH, 1 + 2 * reach))
+    reach += 1 + 2 * reach
     if 4 * reach > LARGEST:
         raise TooLarge(
             "The rates and charges are too large or too finely divided to keep the aims in order exactly: "

@@ -14,6 +14,7 @@ import numpy.typing as npt
 from engine.network import Flow, prove
 from engine.network.closure import NO_WAY, Closure, close
 from engine.network.problem import UNLIMITED
+from engine.planning.aims import OUT_OF_REACH
 from engine.planning.model import Model
 
 Integers = npt.NDArray[np.int64]
@@ -48,29 +49,26 @@ def unit_prices(model: Model, flow: Flow) -> UnitPrices:
 def chain_prices(model: Model, closure: Closure) -> tuple[Integers, Integers]:
     """Prices of all depots and customers, stand-ins included, as costs of chains to the stand-in depot.
 
-    A depot that has nothing it could shift gets the price at which its best row would begin to pay; a
-    customer whose rows are all full, the price of its dearest.
+    Where no chain leads there, one is thought of that costs more than all aims together: the prices of
+    such places agree among themselves, and the mark is taken off with the aims. A depot that has nothing
+    it could shift gets the price at which its best row would begin to pay.
     """
     problem, quantity = model.problem, closure.flow.quantity
     lower, upper = limits_of(model)
     has_room, may_give = quantity < upper, quantity > lower
-    to_stand_in = closure.cost[:, model.stand_in]
-    tied = to_stand_in < NO_WAY
-    depot_price = np.where(tied, -to_stand_in, 0)
-    rest = problem.cost - depot_price[problem.depot]
-    customer_price = least_by_customer(model, np.where(has_room & tied[problem.depot], rest, NO_WAY))
-    open_rows = has_room & ~tied[problem.depot] & (customer_price[problem.customer] < NO_WAY)
-    begins = np.full(problem.depots, NO_WAY)
-    np.minimum.at(
-        begins,
-        problem.depot[open_rows],
-        problem.cost[open_rows] - customer_price[problem.customer[open_rows]],
-    )
-    depot_price = np.where(tied, depot_price, np.where(begins < NO_WAY, begins, 0))
-    rest = problem.cost - depot_price[problem.depot]
+    chain = closure.cost[:, model.stand_in]
+    out_of_reach = model.weights[OUT_OF_REACH] + closure.cost.min(axis=1)
+    chain = np.where(chain < NO_WAY, chain, out_of_reach)
+    rest = problem.cost + chain[problem.depot]
+    cheapest = least_by_customer(model, np.where(has_room, rest, NO_WAY))
     dearest = -least_by_customer(model, np.where(may_give, -rest, NO_WAY))
-    full = np.where(dearest > -NO_WAY, dearest, 0)
-    return depot_price, np.where(customer_price < NO_WAY, customer_price, full)
+    full = np.where(dearest > -NO_WAY, dearest, 0)  # a customer whose rows are all full: its dearest row
+    customer_price = np.where(cheapest < NO_WAY, cheapest, full)
+    begins = np.full(problem.depots, NO_WAY)
+    spare = problem.cost - customer_price[problem.customer]
+    np.minimum.at(begins, problem.depot[has_room], spare[has_room])
+    shifts = np.bincount(problem.depot[may_give], minlength=problem.depots) > 0
+    return np.where(shifts | (begins == NO_WAY), -chain, begins), customer_price
 
 
 def limits_of(model: Model) -> tuple[Integers, Integers]:

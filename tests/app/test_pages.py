@@ -52,7 +52,7 @@ def test_a_typed_quantity_is_held_and_undone() -> None:
     test = page("pages/plan.py", state)
     before = state.planned()
     assert before is not None
-    grid = f"shipments-{state.generation}-depot-None-False"
+    grid = f"shipments-{state.generation}-depot-None-False-False"
     edited = {"edited_rows": {0: {"Send": "12.5"}}, "added_rows": [], "deleted_rows": []}
     test.session_state[grid] = edited
     test.run()
@@ -73,7 +73,7 @@ def test_a_typed_quantity_is_held_and_undone() -> None:
 def test_a_quantity_that_cannot_be_is_refused_in_words_and_the_week_stays() -> None:
     state = with_sample()
     test = page("pages/plan.py", state)
-    grid = f"shipments-{state.generation}-depot-None-False"
+    grid = f"shipments-{state.generation}-depot-None-False-False"
     edited = {"edited_rows": {0: {"Send": "999999"}}, "added_rows": [], "deleted_rows": []}
     test.session_state[grid] = edited
     test.run()

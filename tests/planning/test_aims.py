@@ -1,5 +1,6 @@
 """Plans of small random weeks against HiGHS (scipy.optimize.linprog), one linear programme an aim."""
 
+from dataclasses import replace
 from decimal import Decimal
 
 from hypothesis import given, settings
@@ -36,6 +37,24 @@ def test_the_aims_are_reached_in_order_at_the_cost_that_highs_finds(week: Week) 
     assert plan.proof.gap == 0
     assert plan.proof.lower_bound == plan.total_cost
     assert plan.total_cost == plan.freight_cost + plan.short_cost + plan.unsent_cost
+    _figures_hold(week, plan)
+
+
+@settings(max_examples=400, deadline=None)
+@given(weeks())
+def test_shared_weeks_are_planned_and_proved(week: Week) -> None:
+    shared = replace(week, rules=replace(week.rules, when_short="even share", unit="pallets"))
+    expected = best_outcome(week)
+    try:
+        plan = plan_week(shared)
+    except NotPlannable:
+        assert expected is None
+        return
+    assert expected is not None
+    assert plan.proof.gap == 0
+    assert plan.proof.lower_bound == plan.total_cost
+    short = sum((s.quantity for s in plan.short if not week.customers[s.customer].may_decline), Decimal(0))
+    assert short == sum(expected.missing)
     _figures_hold(week, plan)
 
 

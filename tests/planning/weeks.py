@@ -17,7 +17,7 @@ D = Decimal
 class Outcome:
     """What the aims come to, in order, all whole numbers here."""
 
-    delivered: tuple[int, ...]
+    missing: tuple[int, ...]
     must_move_kept: int
     total_cost: int
 

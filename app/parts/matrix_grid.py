@@ -1,0 +1,83 @@
+"""The plan as a matrix, customers down and depots across: a quantity typed for a lane is put up as a hold."""
+
+from decimal import Decimal
+
+import pandas as pd
+import streamlit as st
+from streamlit.elements.lib.column_types import ColumnConfig
+
+from app.parts.words import plain
+from app.session import Desk
+from engine.changes import Change, Together
+from engine.columns import SEND
+from engine.intake.fields import read_field, show_field
+from engine.planning.holds import NoSingleRow, hold_on_lane
+from engine.planning.plan import Plan
+from engine.planning.totals import flows
+
+MOST_CELLS = 20_000
+CUSTOMER = "Customer"
+
+
+def matrix_grid(state: Desk, plan: Plan) -> None:
+    """Who sends how much to whom, as one table; for weeks of a size that can be looked at so."""
+    depots, customers = list(plan.week.depots), list(plan.week.customers)
+    if len(depots) * len(customers) > MOST_CELLS:
+        st.info(
+            f"{len(depots):,} depots and {len(customers):,} customers are too many for one table: "
+            "choose a depot or a customer instead."
+        )
+        return
+    base = _frame(state, plan, depots, customers)
+    text = st.column_config.TextColumn
+    config: dict[str, ColumnConfig] = {CUSTOMER: text(CUSTOMER, pinned=True, disabled=True)}
+    config |= {f"{i}": text(name, alignment="right", width="small") for i, name in enumerate(depots)}
+    edited = st.data_editor(
+        base,
+        key=f"matrix-{state.generation}",
+        hide_index=True,
+        height=560,
+        column_config=config,
+        alt="Plan as a matrix: customers down, depots across",
+    )
+    _take_edits(state, plan, depots, customers, base, edited)
+
+
+def _frame(state: Desk, plan: Plan, depots: list[str], customers: list[str]) -> pd.DataFrame:
+    """One text column a depot, named by its position, since two names may look alike."""
+    sent = {(flow.depot, flow.customer): flow.quantity for flow in flows(plan)}
+    columns = {CUSTOMER: customers}
+    for i, depot in enumerate(depots):
+        quantities: list[Decimal | None] = [sent.get((depot, customer)) for customer in customers]
+        columns[f"{i}"] = [show_field(SEND, q, state.style) if q else "" for q in quantities]
+    return pd.DataFrame(columns, dtype="string")
+
+
+def _take_edits(
+    state: Desk,
+    plan: Plan,
+    depots: list[str],
+    customers: list[str],
+    base: pd.DataFrame,
+    edited: pd.DataFrame,
+) -> None:
+    changes: list[Change] = []
+    cells = edited.fillna("")
+    differing = (base.fillna("") != cells).to_numpy()
+    for row, column in zip(*differing.nonzero(), strict=True):
+        quantity, finding = read_field(SEND, str(cells.iat[row, column]) or "0", state.style)
+        if quantity is None:
+            if finding is not None:
+                st.error(f"{plain(finding.message)} {plain(finding.mend)}")
+            return
+        try:
+            changes.append(hold_on_lane(plan, depots[column - 1], customers[row], quantity))
+        except NoSingleRow as unclear:
+            st.error(plain(str(unclear)))
+            return
+    if not changes:
+        return
+    change = changes[0] if len(changes) == 1 else Together(tuple(changes))
+    if change != state.proposal:
+        state.propose(change)
+        st.rerun()
