@@ -222,6 +222,8 @@ def _says_per_load(title: str) -> bool:
 
 
 def _unused_cells(grid: Grid, positions: Sequence[int]) -> list[Unused]:
+    if not positions:
+        return []
     down, across = grid.names_down(), grid.names_across()
     names = ("depot", "customer") if grid.depots_down else ("customer", "depot")
     return [

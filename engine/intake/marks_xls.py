@@ -17,7 +17,11 @@ _PERCENT_FORMATS = frozenset({9, 10})
 
 
 def xls_marks(data: bytes) -> dict[str, tuple[Marks, Outline]]:
-    """Marks and outline of each sheet, by the sheet's name; empty where the file is none of this kind."""
+    """Marks and outline of each sheet, by the sheet's name; empty where the file is none of this kind.
+
+    Raises:
+        IndexError, struct.error: a record is cut short, or rows stand out of order.
+    """
     book = _stream(data, ("Workbook", "Book"))
     percent_formats = set(_PERCENT_FORMATS)
     percent_styles: set[int] = set()
@@ -69,6 +73,8 @@ def _sheet(book: bytes, start: int, percent_styles: set[int]) -> tuple[Marks, Ou
             and len(body) >= 6
         ):
             row, column, style = struct.unpack_from("<HHH", body)
+            if row < rows - 1:
+                raise IndexError("rows out of order")
             width = max(1, (len(body) - 6) // 6) if kind == _MANY_RK else 1
             rows, columns, cells = max(rows, row + 1), max(columns, column + width), cells + width
             if kind == _BOOL_OR_ERROR and len(body) >= 8 and body[7]:

@@ -17,7 +17,11 @@ ERROR_TEXTS = {0x00: "#NULL!", 0x07: "#DIV/0!", 0x0F: "#VALUE!", 0x17: "#REF!", 
 
 
 def xlsb_marks(parts: Mapping[str, bytes]) -> dict[str, tuple[Marks, Outline]]:
-    """Marks and outline of each sheet of a binary workbook, by the sheet's name."""
+    """Marks and outline of each sheet of a binary workbook, by the sheet's name.
+
+    Raises:
+        IndexError, struct.error: a record is cut short, or rows stand out of order.
+    """
     links = parts.get("xl/_rels/workbook.bin.rels", b"").decode("utf-8", "replace")
     targets = {}
     for tag in re.findall(r"<Relationship\b([^>]*)>", links):
@@ -40,12 +44,15 @@ def _sheet(part: bytes) -> tuple[Marks, Outline]:
     hidden: set[int] = set()
     row = rows = columns = cells = 0
     for kind, data in _records(part):
-        if kind == _ROW and len(data) >= 13:
+        if kind == _ROW:
+            before = row
             (row,) = struct.unpack_from("<I", data)
+            if row < before or len(data) < 13:
+                raise IndexError("rows out of order, or cut short")
             if data[11] & 0x10:  # fDyZero: the row is not shown
                 hidden.add(row)
-        elif _BLANK < kind <= _LAST_CELL and len(data) >= 8:
-            (column,) = struct.unpack_from("<I", data)
+        elif _BLANK <= kind <= _LAST_CELL:
+            column, _ = struct.unpack_from("<II", data)
             rows, columns, cells = max(rows, row + 1), max(columns, column + 1), cells + 1
             if kind in (_ERROR, _FORMULA_ERROR) and len(data) >= 9:
                 errors[row, column] = ERROR_TEXTS.get(data[8], "an error")
