@@ -10,10 +10,10 @@ from __future__ import annotations
 
 import numpy as np
 
-from engine.exact import Integers, TooLarge
+from engine.exact import Integers, TooLarge, total
 from engine.network.exchange import cut
 from engine.network.flow import Contradiction, Cut
-from engine.network.problem import Problem
+from engine.network.problem import UNLIMITED, Problem
 from engine.network.simplex_rows import above_lower_limits
 from engine.network.simplex_search import improve, read_off
 from engine.network.simplex_start import Hint, first_tree
@@ -50,27 +50,31 @@ def solve(
 def _longest_detour(problem: Problem) -> int:
     """More than any way from node to node over rows can cost or save; raises TooLarge if int64 is too short.
 
-    Such a way meets no depot and no customer twice. The link to the root costs one detour more, and a hint
-    may add one more: no two prices differ by more than six.
+    Such a way meets no depot and no customer twice, and so uses at most two rows of each depot. The link to
+    the root costs one detour more, and a hint may add one more: no two prices differ by more than six.
     """
     dearest = max(int(problem.cost.max(initial=0)), -int(problem.cost.min(initial=0)))
     detour = (2 * min(problem.depots, problem.customers) + 2) * dearest + 1
     if 6 * detour > LARGEST_PRICE:
+        # a bound depot by depot takes longer; it helps where only a stand-in depot has large costs
+        dearest_of = np.zeros(problem.depots, dtype=np.int64)
+        np.maximum.at(dearest_of, problem.depot, np.abs(problem.cost))
+        detour = 2 * total(dearest_of) + 1
+    if 6 * detour > LARGEST_PRICE:
         raise TooLarge(
-            f"A cost of {dearest} is too large for {problem.depots} depots, {problem.customers} customers: "
-            f"prices could reach {6 * detour}, up to {LARGEST_PRICE} can be computed with exactly. "
-            f"Use a larger currency unit."
+            f"A cost of {dearest} is too large for {problem.depots} depots: prices could reach {6 * detour}, "
+            f"up to {LARGEST_PRICE} can be computed with exactly. Use a larger currency unit."
         )
     return detour
 
 
 def _hint(problem: Problem, price: Integers, quantity: Integers | None, detour: int) -> Hint:
     """The caller's guess, made safe: prices from 0 to `detour`, quantities above the lower limits."""
-    lowest = price.min(initial=0) if len(price) == 0 else price.min()
-    safe_price = np.minimum(price - lowest, detour)
+    lowest = int(price.min(initial=0))
+    safe_price = np.minimum(price, min(lowest + detour, UNLIMITED)) - lowest
     if quantity is None:
         return Hint(safe_price, np.empty(0, dtype=np.int64))
-    return Hint(safe_price, quantity.copy() if problem.at_least is None else quantity - problem.at_least)
+    return Hint(safe_price, quantity if problem.at_least is None else quantity - problem.at_least)
 
 
 def _cut(problem: Problem, tree: Tree) -> Cut:

@@ -48,7 +48,9 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
     kept = int(left.sum()) + 1
     price = hint.price
     if len(hint.quantity):
-        replay(tree, rows, left, need, hint.quantity)
+        again = np.flatnonzero(hint.quantity > 0)
+        owner = np.searchsorted(rows.start, again, side="right") - 1
+        replay(tree, rows, left, need, again, owner, hint.quantity[again])
     elif 8 * rows.binding > len(rows.cost) and len(rows.cost) < MANY_ROWS * (depots + customers):
         price, order = cheapest_first(rows, left, need, price)
         price = np.minimum(price, big)
@@ -143,67 +145,63 @@ def fill(
             need[j] = 0
 
 
-@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS))
-def replay(tree: Tree, rows: Rows, left: Integers, need: Integers, quantity: Integers) -> None:
-    """Sends again what an earlier flow sent, as far as it still fits; `quantity` is used up.
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS, INTS, INTS))
+def replay(
+    tree: Tree,
+    rows: Rows,
+    left: Integers,
+    need: Integers,
+    again: Integers,
+    owner: Integers,
+    quantity: Integers,
+) -> None:
+    """Sends again what an earlier flow sent on the rows `again`, as far as it still fits.
 
     Rows that were full come first. The others are taken from the leaves of their forest inwards, since only
     in that order sending as much as possible on each row gives the same quantities again.
+
+    owner: customer of each row in `again`; quantity: what was sent on it
     """
-    depots, customers = len(left), len(need)
+    depots = len(left)
     limited = len(rows.room) > 0
-    degree = np.zeros(depots + customers, dtype=np.int64)
-    row_key = np.zeros(depots + customers, dtype=np.int64)  # exclusive or of the rows that remain at a node
-    customer_key = np.zeros(depots, dtype=np.int64)  # the same of their customers
-    for j in range(customers):
-        for row in range(rows.start[j], rows.start[j + 1]):
-            if quantity[row] <= 0:
-                continue
-            i = rows.depot[row]
-            if limited and rows.room[row] <= quantity[row]:
-                room = rows.room[row]
-                quantity[row] = 0
-                if room == 0 or left[i] == 0:
-                    continue
-                if room <= left[i] and room < need[j]:
-                    send(tree, rows, left, need, row, j)
-                    continue
-                quantity[row] = room
+    waiting = np.zeros(len(again), dtype=np.bool_)
+    degree = np.zeros(depots + len(need), dtype=np.int64)
+    key = np.zeros(depots + len(need), dtype=np.int64)  # exclusive or of the rows that wait at a node
+    for n in range(len(again)):
+        row, i, j = again[n], rows.depot[again[n]], owner[n]
+        full = limited and rows.room[row] <= quantity[n]
+        if full and rows.room[row] <= left[i] and rows.room[row] < need[j]:
+            if rows.room[row] > 0:
+                send(tree, rows, left, need, row, j)
+        elif not limited or rows.room[row] > 0:
+            waiting[n] = True
             for node in (i, depots + j):
                 degree[node] += 1
-                row_key[node] ^= row
-            customer_key[i] ^= j
-    stack = np.empty(depots + customers, dtype=np.int64)
+                key[node] ^= n
+    stack = np.empty(len(degree), dtype=np.int64)
     height = 0
-    for node in range(depots + customers):
+    for node in range(len(degree)):
         if degree[node] == 1:
             stack[height] = node
             height += 1
-    for start in range(customers):
-        # Where no leaf is left there is a cycle; any row at a customer then breaks it.
-        for spare in range(rows.start[start], rows.start[start + 1]):
-            while True:
-                if height:
-                    height -= 1
-                    node = stack[height]
-                    if degree[node] != 1:
-                        continue
-                    row, j = row_key[node], node - depots if node >= depots else customer_key[node]
-                elif quantity[spare] > 0:
-                    row, j = spare, start
-                else:
-                    break
-                i = rows.depot[row]
-                quantity[row] = 0
-                if left[i] > 0 and need[j] > 0:
-                    send(tree, rows, left, need, row, j)
-                customer_key[i] ^= j
-                for node in (i, depots + j):
-                    row_key[node] ^= row
-                    degree[node] -= 1
-                    if degree[node] == 1:
-                        stack[height] = node
-                        height += 1
+    for spare in range(len(again)):
+        while height > 0 or waiting[spare]:
+            n = spare  # where no leaf is left there is a cycle, which any row breaks
+            if height > 0:
+                height -= 1
+                if degree[stack[height]] != 1:
+                    continue
+                n = key[stack[height]]
+            waiting[n] = False
+            i, j = rows.depot[again[n]], owner[n]
+            if left[i] > 0 and need[j] > 0:
+                send(tree, rows, left, need, again[n], j)
+            for node in (i, depots + j):
+                key[node] ^= n
+                degree[node] -= 1
+                if degree[node] == 1:
+                    stack[height] = node
+                    height += 1
 
 
 @kernel(signature(VOID, TREE, NODE))

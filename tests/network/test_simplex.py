@@ -69,24 +69,24 @@ def check_cut(problem: Problem, contradiction: Contradiction) -> None:
     assert cut.needed - (cut.brought + limited - bound) > 0
 
 
-@settings(max_examples=2000, deadline=None)
+@settings(max_examples=1000, deadline=None)
 @given(problems())
 def test_costs_what_the_twin_costs(problem: Problem) -> None:
     assert cost(problem) == least_cost_or_none(problem)
 
 
-@settings(max_examples=200, deadline=None)
+@settings(max_examples=100, deadline=None)
 @given(problems(largest_depots=9, largest_customers=30))
 def test_larger_problems_cost_what_the_twin_costs(problem: Problem) -> None:
     assert cost(problem) == least_cost_or_none(problem)
 
 
-@settings(max_examples=1000, deadline=None)
+@settings(max_examples=500, deadline=None)
 @given(problems(), st.data())
 def test_any_start_ends_at_the_same_cost(problem: Problem, data: st.DataObject) -> None:
     """Prices and quantities to start from are only a guess: senseless ones change nothing but the way."""
     figures = st.sampled_from([0, 1, 2, 7, 10**6, 10**13])
-    prices = st.sampled_from([0, 1, -3, 10**6, -(10**15)])
+    prices = st.sampled_from([0, 1, -3, 10**6, -(10**15), 2**62, -(2**62)])
     price = data.draw(st.lists(prices, min_size=problem.depots, max_size=problem.depots))
     quantity = data.draw(st.lists(figures, min_size=problem.rows, max_size=problem.rows))
     expected = least_cost_or_none(problem)
@@ -94,21 +94,19 @@ def test_any_start_ends_at_the_same_cost(problem: Problem, data: st.DataObject) 
     assert cost(problem, np.array(price, dtype=np.int64), None) == expected
 
 
-@settings(max_examples=500, deadline=None)
+@settings(max_examples=300, deadline=None)
 @given(problems())
 def test_a_finished_answer_is_kept(problem: Problem) -> None:
+    """Its quantities, taken from the leaves of the tree inwards, come out the same; its prices stay proof."""
     try:
         quantity, depot_price, _ = answered(problem)
     except Contradiction:
         return
-    again = answered(problem, depot_price, quantity)
-    assert (again[0] * 1.0 @ problem.cost, cost(problem)) == (
-        quantity * 1.0 @ problem.cost,
-        cost(problem, depot_price, quantity),
-    )
+    assert answered(problem, depot_price, quantity)[0].tolist() == quantity.tolist()
+    assert cost(problem, depot_price, quantity) == prove(problem, *answered(problem)).cost
 
 
-@settings(max_examples=500, deadline=None)
+@settings(max_examples=300, deadline=None)
 @given(problems(largest_depots=6, largest_customers=12))
 def test_costs_what_the_exchange_costs(problem: Problem) -> None:
     none = np.zeros(problem.depots, dtype=np.int64)
@@ -190,6 +188,14 @@ def test_huge_figures_stay_exact() -> None:
 def test_costs_beyond_the_bounds_are_refused_and_never_wrap() -> None:
     with pytest.raises(TooLarge, match="too large"):
         answered(Problem.dense([1, 1], [1, 1], [[2**61, 0], [0, 2**61]]))
+
+
+def test_a_stand_in_depot_may_cost_what_no_other_may() -> None:
+    """Too large if every depot were as dear as the dearest, small enough depot by depot."""
+    large = 2**53
+    rate = np.tile(np.array([[3], [5], [2], [7], [4], [6], [1], [8], [9], [large]]), (1, 12))
+    problem = Problem.dense([1] * 9 + [3], [1] * 12, rate)
+    assert cost(problem) == sum(range(1, 10)) + 3 * large
 
 
 def test_nothing_to_send() -> None:
