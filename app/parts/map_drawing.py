@@ -61,13 +61,19 @@ class MapFlow:
 
 @dataclass(frozen=True, slots=True)
 class Focus:
-    """What the desk looks at: a depot, some customers, or what goes from the one to the others."""
+    """What the desk looks at: a depot, some customers, what goes from the one to the others, or some lanes.
+
+    Where `lanes` (depot, customer) are given, they alone say which flows are part of it.
+    """
 
     depot: str | None = None
     customers: tuple[str, ...] = ()
+    lanes: frozenset[tuple[str, str]] = frozenset()
 
     def holds(self, flow: MapFlow) -> bool:
         """Whether a flow is part of it."""
+        if self.lanes:
+            return (flow.depot, flow.customer) in self.lanes
         return self.depot in (None, flow.depot) and (not self.customers or flow.customer in self.customers)
 
 

@@ -83,6 +83,12 @@ def curve(plan: Plan, name: str, low: Decimal, high: Decimal, what: What | None 
     return Curve(what, name, today, tuple(inside), " ".join(part for part in (no_less, no_more) if part))
 
 
+def usual_range(today: Decimal) -> tuple[Decimal, Decimal]:
+    """From half of a figure to half as much again, in whole units; a small figure from 0 to 10."""
+    half = (today / 2).to_integral_value()
+    return (half, today.to_integral_value() + half) if today >= 2 else (Decimal(0), Decimal(10))
+
+
 def _what(plan: Plan, name: str, what: What | None) -> What:
     is_depot, is_customer = name in plan.week.depots, name in plan.week.customers
     if what is None and is_depot and is_customer:

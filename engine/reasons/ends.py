@@ -1,12 +1,15 @@
 """What a question is about: an order or a stock that grows or shrinks, and how far it can."""
 
 from dataclasses import dataclass
+from decimal import Decimal
 from typing import Literal
 
 import numpy as np
 
+from engine.changes import Alter
 from engine.network.closure import NO_WAY
 from engine.planning.model import Integers
+from engine.planning.plan import Plan
 from engine.reasons.ground import Ground, grounded_again
 from engine.reasons.tied import Tied, pushed_into, pushed_out_of, tied_from, tied_to
 
@@ -20,6 +23,13 @@ class End:
     what: What
     index: int
     more: bool
+
+
+def altered_by(plan: Plan, what: What, name: str, amount: Decimal, more: bool) -> Alter:
+    """The change that lets a stock or an order grow or shrink by an amount, down to 0 at least."""
+    today = plan.week.depots[name].available if what == "depot" else plan.week.customers[name].ordered
+    new = today + amount if more else max(Decimal(0), today - amount)
+    return Alter(what, name, "available" if what == "depot" else "ordered", new)
 
 
 @dataclass(frozen=True, eq=False)

@@ -42,6 +42,14 @@ class RateInterval:
     stays_from: Decimal | None
     stays_to: Decimal | None
     pays_below: Decimal | None
+    load_size: Decimal | None = None
+
+    @property
+    def pays_below_per_load(self) -> Decimal | None:
+        """What a whole load must cost less than to pay, where a load size is known."""
+        if self.pays_below is None or self.load_size is None:
+            return None
+        return self.pays_below * self.load_size
 
     @property
     def gap(self) -> Decimal | None:
@@ -90,7 +98,13 @@ class RateIntervals:
             stays_from=self.before_surcharge(row, low, up=True) if may_rise else None,
             stays_to=self.before_surcharge(row, high, up=False) if may_fall else None,
             pays_below=self.before_surcharge(row, low, up=False) if may_rise and not used else None,
+            load_size=self._load_size(position),
         )
+
+    def _load_size(self, position: int) -> Decimal | None:
+        own = self.plan.week.rates.flat.decimals.get("load_size")
+        size = None if own is None else own.get(position)
+        return self.plan.week.rules.load_size if size is None else size
 
     def nearest_rows(self, most: int) -> Integers:
         """The unused rows of the problem that are nearest to paying, by what a unit costs too much."""

@@ -1,0 +1,79 @@
+"""Tables of reasons: numbers that sort as numbers and read as the desk writes them, rows to pick."""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from decimal import Decimal
+from functools import partial
+from math import isnan
+from typing import Any
+
+import pandas as pd
+import streamlit as st
+
+from app.parts.words import number
+
+MOST_ROWS = 5_000
+"""A browser is given no more rows than this; the rest are counted below the table."""
+
+Cell = str | Decimal | None
+
+
+@dataclass(frozen=True, slots=True)
+class Heading:
+    """A column of a table; `places` fixes the decimals of its numbers, `about` is said beside it."""
+
+    name: str
+    about: str = ""
+    places: int | None = None
+
+
+def reasons_table(
+    headings: Sequence[Heading],
+    rows: Sequence[Sequence[Cell]],
+    key: str,
+    mark: str,
+    *,
+    pick: bool = True,
+    height: int | None = None,
+) -> int | None:
+    """Shows rows of texts and decimals (None: blank); answers which row is picked, None for none."""
+    shown = list(rows[:MOST_ROWS])
+    kinds = [any(isinstance(row[n], Decimal) for row in shown) for n in range(len(headings))]
+    frame = pd.DataFrame(
+        {
+            heading.name: pd.Series(
+                [_sortable(row[n]) for row in shown], dtype="float" if kinds[n] else "object"
+            )
+            for n, heading in enumerate(headings)
+        }
+    )
+    formats: Any = {
+        heading.name: partial(_written, mark, heading.places)
+        for heading, is_number in zip(headings, kinds, strict=True)
+        if is_number
+    }
+    about = {h.name: st.column_config.Column(help=h.about or None) for h in headings if h.about}
+    styled: Any = frame.style.format(formats)
+    settings: Any = {"height": height} if height else {}
+    if not pick:
+        st.dataframe(styled, key=key, hide_index=True, placeholder="", column_config=about, **settings)
+    else:
+        event = st.dataframe(
+            styled, key=key, hide_index=True, placeholder="", column_config=about,
+            on_select="rerun", selection_mode="single-row", **settings,
+        )  # fmt: skip
+    if len(rows) > MOST_ROWS:
+        st.caption(f"The first {MOST_ROWS:,} of {len(rows):,} rows.")
+    if not pick:
+        return None
+    picked = [row for row in event.selection.rows if 0 <= row < len(shown)]
+    return picked[0] if picked else None
+
+
+def _sortable(cell: Cell) -> str | float | None:
+    return float(cell) if isinstance(cell, Decimal) else cell
+
+
+def _written(mark: str, places: int | None, value: float) -> str:
+    """A number of the table; blank where there is none."""
+    return "" if value is None or isnan(value) else number(Decimal(repr(float(value))), mark, places)
