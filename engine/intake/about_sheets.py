@@ -50,6 +50,7 @@ def about_sheets(found: Found, grids: Sequence[Grid]) -> tuple[list[Finding], Co
         areas.setdefault(id(grid.sheet), (grid.sheet, []))[1].append(area)
     for sheet, here in areas.values():
         findings.extend(_hidden(sheet))
+        findings.extend(_merged(sheet, here))
         outside, rows = _outside(sheet, here)
         findings.extend(outside)
         counts = counts.plus(Counts(rows, 0, rows))
@@ -103,6 +104,24 @@ def _hidden(sheet: Sheet) -> Iterator[Finding]:
         which = ", ".join(str(row + 1) for row in rows[:5]) + (" …" if len(rows) > 5 else "")
         message = f"Hidden rows of sheet '{sheet.name}' were read: {which}."
         yield _note(sheet, "hidden rows", message, address(rows[0], 0))
+
+
+def _merged(sheet: Sheet, areas: Sequence[Area]) -> Iterator[Finding]:
+    """Numbers that are merged over several rows of a table: they were read for the first row only."""
+    for (top, left), (bottom, _) in sheet.merged:
+        inside = any(area[0] < top < area[1] and area[2] <= left <= area[3] for area in areas)
+        cell = sheet.rows[top][left] if inside and left < sheet.width and top < len(sheet.rows) else ""
+        if bottom > top and isinstance(cell, (int, float)) and not isinstance(cell, bool):
+            yield Finding(
+                Severity.CHECK,
+                "merged figure",
+                f"{text_of(cell)} is merged over {bottom - top + 1} rows and was read for the first only.",
+                "Type a figure into each row.",
+                sheet.file,
+                sheet.name,
+                address(top, left),
+                text_of(cell),
+            )
 
 
 def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:

@@ -1,13 +1,13 @@
 """Sheets of raw cells to the figures of a week: recognise the tables, settle how to read, build each."""
 
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
-from engine.findings import Finding
+from engine.findings import Finding, Severity
 from engine.intake.about_sheets import WHICH_COLUMN, about_headings, about_sheets
 from engine.intake.answers import Answers
 from engine.intake.build_gone import build_gone
-from engine.intake.build_lists import Unused, build_customers, build_depots, with_depot_spelling
+from engine.intake.build_lists import Built, Unused, build_customers, build_depots, with_depot_spelling
 from engine.intake.build_rates import build_rates
 from engine.intake.build_rules import build_rules, stated_by
 from engine.intake.cells import Sheet
@@ -78,6 +78,7 @@ def build_figures(
     depots = build_depots(of["depots"], manner)
     customers = build_customers(of["customers"], manner)
     rules = build_rules(of["rules"], manner.base, answers)
+    depots, customers, remembered = _with_places(depots, customers, known)
     spelled = with_depot_spelling(customers.records, depots.records)
     depot_names = [depot.name for depot in depots.records] or list(known.depots if known else ())
     customer_names = [customer.name for customer in spelled] or list(known.customers if known else ())
@@ -90,6 +91,7 @@ def build_figures(
         week,
         (
             *about_products,
+            *remembered,
             *outside,
             *about_headings(found.tables),
             *asked,
@@ -107,6 +109,28 @@ def build_figures(
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
         products,
     )
+
+
+def _with_places(depots: Built, customers: Built, known: Week | None) -> tuple[Built, Built, list[Finding]]:
+    """The records with the places that an earlier week has for their names, where they have none."""
+    if known is None:
+        return depots, customers, []
+    filled = 0
+    both = []
+    for built, earlier in ((depots, known.depots), (customers, known.customers)):
+        places = {folded(name): record for name, record in earlier.items() if record.latitude is not None}
+        records = []
+        for record in built.records:
+            place = places.get(folded(record.name))
+            if place is not None and record.latitude is None and record.longitude is None:
+                record = replace(record, latitude=place.latitude, longitude=place.longitude)
+                filled += 1
+            records.append(record)
+        both.append(replace(built, records=tuple(records)))
+    note = Finding(
+        Severity.NOTE, "places remembered", f"Places of {filled} names were taken from an earlier week."
+    )
+    return both[0], both[1], [note] if filled else []
 
 
 def _with_sheets_of_one_depot(found: Found, known: Week | None) -> Found:

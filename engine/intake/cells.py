@@ -193,6 +193,8 @@ def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Li
                 known = marks.get(meta.name)
                 if known is not None:
                     rows = _marked(rows, known)
+                merged = tuple(sheet.merged_cell_ranges or ())
+                _fill_down(rows, merged)
                 sheets.append(
                     Sheet(
                         name,
@@ -200,7 +202,7 @@ def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Li
                         rows,
                         hidden=meta.visible != calamine.SheetVisibleEnum.Visible,
                         hidden_rows=known.hidden_rows if known else frozenset(),
-                        merged=tuple(sheet.merged_cell_ranges or ()),
+                        merged=merged,
                     )
                 )
     except calamine.PasswordError as error:
@@ -216,6 +218,16 @@ def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Li
             raise
         raise damaged(name) from error
     return sheets
+
+
+def _fill_down(rows: list[list[Any]], merged: Iterable[tuple[tuple[int, int], tuple[int, int]]]) -> None:
+    """A name merged over several rows stands in each of them; numbers are left where they are."""
+    for (top, left), (bottom, _) in merged:
+        if top >= len(rows) or left >= len(rows[top]) or type(rows[top][left]) is not str:
+            continue
+        for number in range(top + 1, min(bottom + 1, len(rows))):
+            if rows[number][left] == "":
+                rows[number][left] = rows[top][left]
 
 
 def _marked(rows: list[list[Any]], marks: Marks) -> list[list[Any]]:

@@ -6,7 +6,13 @@ from decimal import Decimal
 from engine.exact import canonical
 from engine.figures import ANY_SINGLE_DEPOT, WHEN_SHORT
 from engine.findings import Finding, Severity
-from engine.intake.check_rates import contradicting_limits, out_of_reach, same_rows, unknown_names
+from engine.intake.check_rates import (
+    contradicting_limits,
+    loads_without_size,
+    out_of_reach,
+    same_rows,
+    unknown_names,
+)
 from engine.intake.check_sizes import out_of_proportion, swapped_places
 from engine.intake.names import nearly_alike
 from engine.intake.not_yet import not_planned_yet
@@ -29,6 +35,7 @@ def check_week(week: Week, where: Where = nowhere) -> tuple[Finding, ...]:
         *_rules(week, where),
         *unknown_names(week, where),
         *contradicting_limits(week, where),
+        *loads_without_size(week, where),
         *same_rows(week, where),
         *out_of_reach(week, where),
         *out_of_proportion(week, where),

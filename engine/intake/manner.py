@@ -1,6 +1,6 @@
 """How the columns of an upload are read: unit, currency and decimal mark of each, and what was asked."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from decimal import Decimal
 from fractions import Fraction
@@ -14,7 +14,7 @@ from engine.intake.decimal_marks import CALLED, mark_of, told_by, usual_mark
 from engine.intake.fields import NUMBER_KINDS
 from engine.intake.grids import Grid
 from engine.intake.headings import Heading, column_of, heading_of
-from engine.intake.numbers import NumberStyle
+from engine.intake.numbers import NumberStyle, currency_beside
 from engine.intake.recognise import Table
 from engine.intake.units import currencies_of, factor, same_unit, times, unclear_unit
 
@@ -69,7 +69,7 @@ def manner_of(
         for name, text in _number_headings(part).items()
     ]
     unit = stated.get("unit") or _told_unit(headings, answers, findings)
-    currency = stated.get("currency") or _told_currency(headings, findings)
+    currency = stated.get("currency") or _told_currency(headings, parts, findings)
     base = NumberStyle(otherwise, unit, currency)
     units: dict[tuple[int, str], str] = {}
     for part, name, text, heading in headings:
@@ -115,27 +115,34 @@ def _told_unit(headings: _Headings, answers: Answers, findings: list[Finding]) -
         if told:
             unit = "t" if "t" in told else told[0]
             findings.append(
-                Finding(
-                    Severity.NOTE, "unit from headings", f"Quantities are in {unit}, as the headings say."
-                )
+                Finding(Severity.NOTE, "unit told", f"Quantities are in {unit}, as the headings say.")
             )
             return unit
     return "t"
 
 
-def _told_currency(headings: _Headings, findings: list[Finding]) -> str:
-    told = {heading.currency: currencies_of(heading.currency) for *_, heading in headings if heading.currency}
+def _told_currency(headings: _Headings, parts: Sequence[Part], findings: list[Finding]) -> str:
+    """The currency that headings tell of, else the cells of money; EUR where neither does."""
+    told = [heading.currency for *_, heading in headings if heading.currency] or list(_beside_cells(parts))
     if not told:
         return "EUR"
-    sign, meant = next(iter(told.items()))
+    sign, meant = told[0], currencies_of(told[0])
     severity = Severity.NOTE if len(meant) == 1 else Severity.CHECK
     findings.append(
         Finding(
-            severity, "currency from headings", f"Amounts are in {meant[0]}, as '{sign}' in a heading says.",
+            severity, "currency told", f"Amounts are in {meant[0]}, as '{sign}' beside them says.",
             "Name the currency on Rules if another is meant.", read=sign,
         )
     )  # fmt: skip
     return meant[0]
+
+
+def _beside_cells(parts: Sequence[Part]) -> Iterator[str]:
+    for part in parts:
+        for name, cells in _number_cells(part).items():
+            if _column(part, name).kind in MONEY:
+                texts = list(dict.fromkeys(cell for cell in cells if type(cell) is str))
+                yield from (sign for sign in map(currency_beside, texts[:200]) if sign)
 
 
 def _checked(

@@ -305,6 +305,15 @@ def both_readings(text: str) -> tuple[str, str]:
     return first, second
 
 
+def currency_beside(raw: Any) -> str:
+    """The sign or code of a currency that stands beside a number in a text; empty where there is none."""
+    parts = _parts(raw) if isinstance(raw, str) else None
+    if parts is None:
+        return ""
+    words = (parts.before, *re.split(r"/|\bper\b", parts.behind))
+    return next((word.strip() for word in words if currencies_of(word)), "")
+
+
 def marks_told_by(cells: Iterable[Any]) -> tuple[dict[str, int], int | None]:
     """How many cells of a column tell of each mark, and where the first undecided one stands."""
     told = {".": 0, ",": 0, "?": 0}

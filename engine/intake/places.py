@@ -69,5 +69,5 @@ def nowhere(table: str, key: Any, name: str) -> tuple[str, str, str]:
 
 
 def _cell(row: int, columns: Mapping[str, int], name: str) -> str:
-    column = columns.get(name, min(columns.values(), default=0))
+    column = columns.get(name, columns.get("rate", min(columns.values(), default=0)))
     return address(row, column)

@@ -46,6 +46,7 @@ EXPECTED = {
     "grid_per_load": (
         "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available",
         [
+            ("stops", "load size missing", "Rates", "B2"),
             ("stops", "not planned yet", "Rates", "B2"),
         ],
     ),
@@ -106,15 +107,16 @@ EXPECTED = {
     "currency_from_the_heading": (
         "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available",
         [
-            ("note", "unit from headings", "", ""),
-            ("note", "currency from headings", "", ""),
+            ("note", "unit told", "", ""),
+            ("note", "currency told", "", ""),
             ("note", "no rules", "", ""),
         ],
     ),
     "rates_per_load_in_the_heading": (
         "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available",
         [
-            ("stops", "not planned yet", "Rates", "A2"),
+            ("stops", "load size missing", "Rates", "C2"),
+            ("stops", "not planned yet", "Rates", "C2"),
         ],
     ),
     "a_rate_heading_nobody_knows": (
@@ -301,6 +303,7 @@ EXPECTED = {
     "what_is_not_planned_yet": (
         "2 depots, 2 customers, 2 lanes of 4; 100 t ordered, 200 t available",
         [
+            ("stops", "load size missing", "Rates", "D2"),
             ("stops", "not planned yet", "Rates", "D2"),
             ("stops", "not planned yet", "Rates", "E3"),
             ("stops", "not planned yet", "Rates", "F3"),

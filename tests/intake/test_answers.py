@@ -198,3 +198,27 @@ def test_a_workbook_that_the_tool_wrote_reads_back_as_the_same_week(name):
     stream = io.BytesIO()
     engine.write_workbook(engine.plan_week(week), stream)
     assert read_week(("plan.xlsx", stream.getvalue())).week == week
+
+
+def test_places_are_remembered_by_name():
+    places = [["Depot", "Available", "Latitude", "Longitude"], ["Northgate", 1, 57.5, -3.25]]
+    earlier = read_week(workbook(plain(Depots=places))).week
+    reading = read_week(workbook(plain(Depots=[DEPOTS[0], ["NORTHGATE", 120], DEPOTS[2]])), known=earlier)
+    assert reading.week.depots["NORTHGATE"].longitude == Decimal("-3.25")
+    assert ("note", "places remembered", "", "") in said(reading)
+
+
+def test_the_currency_that_cells_carry_and_names_merged_over_rows():
+    def prepare(book):
+        sheet = book["Rates"]
+        for row, rate in enumerate(("£12.50", "£13", "£ 9.75", "11 GBP"), start=2):
+            sheet.cell(row, 3, rate)
+        sheet["A3"], sheet["A5"] = None, None
+        sheet["D1"], sheet["D2"] = "At most", 30
+        for area in ("A2:A3", "A4:A5", "D2:D3"):
+            sheet.merge_cells(area)
+
+    reading = read_week(workbook(plain(Rules=None), prepare=prepare))
+    assert reading.week.rules.currency == "GBP"
+    assert [(r.depot, r.customer) for r in reading.week.rates] == [(r.depot, r.customer) for r in WEEK.rates]
+    assert {("check", "merged figure", "Rates", "D2"), ("note", "currency told", "", "")} <= said(reading)

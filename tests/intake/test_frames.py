@@ -237,6 +237,9 @@ def test_a_filled_blank_workbook_is_a_week(tmp_path):
 
 def test_a_week_is_checked_without_any_sheet():
     week = WEEK.apply(Alter("rate", RateKey("Northgate", "Aster"), "per", "load"))
-    assert [(f.rule, f.sheet, f.cell) for f in check_week(week)] == [("not planned yet", "Rates", "")]
+    assert [(f.rule, f.sheet, f.cell) for f in check_week(week)] == [
+        ("load size missing", "Rates", ""),
+        ("not planned yet", "Rates", ""),
+    ]
     assert check_week(WEEK) == ()
     assert pd.DataFrame(frame_of(WEEK, "rules")).shape == (8, 2)

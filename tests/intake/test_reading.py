@@ -182,7 +182,7 @@ FAULTS = [
     ),
     (
         {"Rates": [["Depot", "Customer", "Rate EUR/load"], *RATES[1:]]},
-        ("stops", "not planned yet", "Rates", "A2"),
+        ("stops", "not planned yet", "Rates", "C2"),
     ),
     (
         {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Trip minimum"])},
