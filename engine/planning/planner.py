@@ -13,6 +13,7 @@ from engine.network import Flow, least_cost
 from engine.planning.contradictions import contradictions
 from engine.planning.gone import about_gone, cost_of, key_of, used_up
 from engine.planning.model import EVEN_SHARE, Model, model_of
+from engine.planning.near import nearest_flow
 from engine.planning.plan import Plan, Proof, Shipment, Short, UnitPrice, Unsent
 from engine.planning.prices import unit_prices
 from engine.planning.shortage import evenly_shared, shortages
@@ -54,7 +55,7 @@ def plan_week(week: Week, near: Plan | Quantities | None = None, progress: Progr
         tell("Sharing evenly")
         model = evenly_shared(week, model)
     tell("Solving")
-    flow = least_cost(model.problem)
+    flow = nearest_flow(week, model, least_cost(model.problem), near)
     tell("Writing the plan down")
     return _plan(week, model, flow, found)
 
