@@ -9,6 +9,7 @@ from engine.history import History
 from engine.intake.blank import write_blank
 from engine.intake.check import check_week
 from engine.intake.earlier import Quantities, read_quantities
+from engine.intake.part import Part, read_part
 from engine.intake.reading import Reading, Unreadable, read_week
 from engine.planning.contradictions import contradictions
 from engine.planning.plan import Plan, with_findings
@@ -21,6 +22,7 @@ __all__ = [
     "Finding",
     "History",
     "NotPlannable",
+    "Part",
     "Plan",
     "Quantities",
     "Reading",
@@ -33,6 +35,7 @@ __all__ = [
     "contradictions",
     "plan_as_json",
     "plan_week",
+    "read_part",
     "read_quantities",
     "read_week",
     "with_findings",

@@ -9,10 +9,12 @@ import sample_data
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
 from app.parts.proposal import proposal
-from app.parts.words import plain
+from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
 
 TYPES = ["xlsx", "xlsm", "xls", "xlsb", "ods", "csv", "tsv", "txt"]
+WHOLE = {"depots", "customers", "rates"}
+SHOWN = 12
 WORKBOOK = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
 
 
@@ -58,7 +60,8 @@ def opening(state: Desk) -> None:
     )
     if not files:
         return
-    reading, findings = read_files([(file.name, file.getvalue()) for file in files])
+    uploaded = [(file.name, file.getvalue()) for file in files]
+    reading, findings = read_files(uploaded)
     if reading is None:
         st.error(f"{plain(findings[0].message)} {plain(findings[0].mend)}")
         return
@@ -69,10 +72,29 @@ def opening(state: Desk) -> None:
     if reading.week.is_empty:
         findings_panel(findings, key="upload")
         return
-    if st.button("Put these figures in place of the week on screen", type="primary"):
+    _part_of_a_week(state, uploaded)
+    if WHOLE <= reading.tables and st.button("Put these figures in place of the week on screen"):
         state.open(reading)
         st.rerun()
     findings_panel(findings, key="upload")
+
+
+def _part_of_a_week(state: Desk, uploaded: list[tuple[str, bytes]]) -> None:
+    """What an upload says otherwise than the week on screen, to be put up as one change."""
+    part = engine.read_part(uploaded, state.week, decimal_mark=state.decimal_mark)
+    if part.is_empty:
+        st.markdown("These files say the same as the week on screen.")
+        return
+    st.markdown(f"**{counted(len(part.differences), 'difference')} from the week on screen:**")
+    lines = [f"- {plain(sentence)}" for sentence in part.differences[:SHOWN]]
+    if len(part.differences) > SHOWN:
+        lines.append(f"- and {len(part.differences) - SHOWN:,} more")
+    st.markdown("\n".join(lines))
+    st.caption("As one change, holds and gone goods stay. The price is shown before it is made.")
+    if st.button("Put these differences up as one change", type="primary"):
+        state.uploads += 1
+        state.propose(part.change)
+        st.rerun()
 
 
 state = desk()

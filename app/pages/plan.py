@@ -4,6 +4,7 @@ import streamlit as st
 
 from app.parts.costs import cost_line
 from app.parts.findings_panel import findings_panel
+from app.parts.gone_list import gone_list
 from app.parts.holds_list import holds_list
 from app.parts.matrix_grid import matrix_grid
 from app.parts.nothing_yet import nothing_yet
@@ -33,7 +34,13 @@ else:
         proposal(state)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:
-            views = {"depot": "By depot", "customer": "By customer", "matrix": "Matrix", "holds": "Holds"}
+            views = {
+                "depot": "By depot",
+                "customer": "By customer",
+                "matrix": "Matrix",
+                "holds": "Holds",
+                "gone": "Gone",
+            }
             view = st.segmented_control(
                 "View", list(views), default="depot", format_func=views.__getitem__, required=True,
                 label_visibility="collapsed", key="plan-view",
@@ -42,6 +49,8 @@ else:
                 matrix_grid(state, plan)
             elif view == "holds":
                 holds_list(state, plan)
+            elif view == "gone":
+                gone_list(state, plan)
             else:
                 shipments_grid(state, plan, view or "depot")
         with chart:

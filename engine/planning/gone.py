@@ -10,7 +10,7 @@ import numpy as np
 from engine.exact import canonical, places_needed, to_decimal, to_integer
 from engine.figures import Gone, RateKey, RateRow
 from engine.findings import Finding, Severity
-from engine.rates import NO_CODE, Flags, RateTable
+from engine.rates import NO_CODE, Codes, Flags, RateTable
 from engine.week import Week, describe
 
 
@@ -60,6 +60,23 @@ def rate_on(week: Week, depot: str, customer: str, haulier: str | None, day: dat
     places, percent_places = places_needed(row.rate), places_needed(percent)
     factor = 100 * 10**percent_places + to_integer(percent, percent_places)
     return to_decimal(to_integer(row.rate, places) * factor, places + percent_places + 2)
+
+
+def hauliers_of(week: Week, depot: str, customer: str) -> list[str | None]:
+    """The hauliers that quote a rate per unit on a lane, in sheet order."""
+    flat = week.rates.flat
+    rows = np.flatnonzero(
+        _named(flat.depot_names, flat.depot, depot) & _named(flat.customer_names, flat.customer, customer)
+    )
+    return list(dict.fromkeys(flat.haulier_of(int(row)) for row in rows if not flat.per_load[row]))
+
+
+def unused_name(week: Week) -> str:
+    """A name for the next quantity that goes: Load 1, Load 2 and so on."""
+    number = len(week.gone) + 1
+    while f"Load {number}" in week.gone:
+        number += 1
+    return f"Load {number}"
 
 
 def superseded(flat: RateTable) -> Flags:
@@ -114,6 +131,11 @@ def used_up(week: Week) -> Iterable[Finding]:
                 f"on {describe(key)}, but {canonical(gone)} {week.rules.unit} have gone.",
                 "A hold states the whole week: raise it, or lift it.",
             )
+
+
+def _named(names: tuple[str, ...], codes: Codes, name: str) -> Flags:
+    """Which rows carry a name."""
+    return np.equal(codes, names.index(name) if name in names else NO_CODE)
 
 
 def _rows(week: Week, depot: str, customer: str, haulier: str | None) -> list[RateRow]:
