@@ -73,7 +73,7 @@ def opening(state: Desk) -> None:
         findings_panel(findings, key="upload")
         return
     _part_of_a_week(state, uploaded)
-    if WHOLE <= reading.tables and st.button("Put these figures in place of the week on screen"):
+    if reading.tables.issuperset(WHOLE) and st.button("Put these figures in place of the week on screen"):
         state.open(reading)
         st.rerun()
     findings_panel(findings, key="upload")

@@ -65,4 +65,5 @@ def _grains(quantity: Decimal, places: int) -> int:
     needed = places_needed(quantity)
     if needed <= places:
         return to_integer(quantity, places)
-    return to_integer(quantity, needed) // 10 ** (needed - places)
+    finer: int = 10 ** (needed - places)
+    return to_integer(quantity, needed) // finer
