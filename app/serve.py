@@ -54,8 +54,10 @@ def serve(port: int, open_browser: bool, files: Sequence[Path] = (), sample: boo
 def _prepare() -> None:
     """Compile the solver while the desk opens; the very first start takes some seconds."""
     from engine.network import prepare
+    from engine.reasons.prepare import prepare as prepare_reasons
 
     prepare()
+    prepare_reasons()
 
 
 def _open_when_ready(address: str, patience: float = 30.0) -> None:

@@ -50,7 +50,7 @@ def straight(
             y=alt.Y("height:Q", title=up),
             color=alt.Color(
                 "what:N", title=None, scale=alt.Scale(domain=names, range=tones),
-                legend=alt.Legend(orient="top"),
+                legend=alt.Legend(orient="top", symbolType="stroke", symbolStrokeWidth=3),
             ),
             strokeDash=alt.StrokeDash("what:N", title=None, scale=alt.Scale(domain=names), legend=None),
             tooltip=[alt.Tooltip("what:N", title="What"), *_tooltip(across, up)],

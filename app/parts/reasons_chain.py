@@ -9,7 +9,7 @@ from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import counted, money, number, plain, quantity
 from engine.planning.plan import Plan
 from engine.reasons import Chain, sentences
-from engine.reasons.lanes import LaneChange, cost_of, lane_changes
+from engine.reasons.lanes import LaneChange, cost_of, lane_changes, net_by_lane
 
 MOST_SENTENCES = 6
 
@@ -45,7 +45,8 @@ def chain_panel(plan: Plan, chain: Chain, mark: str, key: str) -> None:
 
 def _map(plan: Plan, changes: tuple[LaneChange, ...], mark: str, key: str) -> None:
     unit, depots, customers = plan.week.rules.unit, plan.week.depots, plan.week.customers
-    concerned = {one.depot for one in changes}, {one.customer for one in changes}
+    net = net_by_lane(changes)
+    concerned = {depot for depot, _ in net}, {customer for _, customer in net}
     points = [
         MapPoint("depot", d.name, d.latitude, d.longitude, d.available)
         for d in depots.values()
@@ -56,13 +57,10 @@ def _map(plan: Plan, changes: tuple[LaneChange, ...], mark: str, key: str) -> No
         for c in customers.values()
         if c.name in concerned[1]
     ]
-    if not any(point.place for point in points):
+    if not net or not any(point.place for point in points):
         return
-    lines = [
-        MapFlow(one.depot, one.customer, abs(one.change), "more" if one.change > 0 else "less")
-        for one in changes
-    ]
-    gain = frozenset((one.depot, one.customer) for one in changes if one.change > 0)
+    lines = [MapFlow(*lane, abs(change), "more" if change > 0 else "less") for lane, change in net.items()]
+    gain = frozenset(lane for lane, change in net.items() if change > 0)
     focus = Focus(customers=tuple(concerned[1]), lanes=gain or frozenset({("", "")}))
     flow_map(points, lines, unit, key=key, focus=focus, number=partial(number, mark=mark), height=380)
     st.caption("Strong lines would carry more, faint ones less.")

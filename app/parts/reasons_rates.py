@@ -56,7 +56,7 @@ def _near(state: Desk, plan: Plan) -> None:
             )
         picked = reasons_table(
             headings, [_near_row(lane, with_loads) for lane in found], f"near-{state.generation}",
-            state.decimal_mark, height=520,
+            state.decimal_mark, most_height=520,
         )  # fmt: skip
     with right:
         if picked is None:
@@ -99,7 +99,7 @@ def _used(state: Desk, plan: Plan) -> None:
     rows: list[list[Cell]] = [
         [*_names(one), one.quantity, one.rate, one.stays_from, one.stays_to] for one in found
     ]
-    reasons_table(headings, rows, f"used-{state.generation}", state.decimal_mark, pick=False, height=560)
+    reasons_table(headings, rows, f"used-{state.generation}", state.decimal_mark, pick=False, most_height=560)
 
 
 def _without_quote(state: Desk, plan: Plan) -> None:
@@ -128,5 +128,5 @@ def _without_quote(state: Desk, plan: Plan) -> None:
     ]  # fmt: skip
     rows: list[list[Cell]] = [[one.depot, one.customer, one.pays_below, one.carries] for one in found]
     reasons_table(
-        headings, rows, f"unquoted-{state.generation}-{what}", state.decimal_mark, pick=False, height=480
+        headings, rows, f"unquoted-{state.generation}-{what}", state.decimal_mark, pick=False, most_height=480
     )

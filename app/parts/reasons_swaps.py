@@ -30,7 +30,7 @@ def swaps_view(state: Desk, plan: Plan) -> None:
     found = asked(plan, ("options", within), lambda: options(plan, within))
     if not found:
         st.info(
-            "Nothing can be swapped for nothing: this plan is the only one at its cost."
+            "Nothing can be swapped for nothing: no lane could carry more at the same cost."
             if not within
             else "No lane could carry more within this amount."
         )
@@ -48,7 +48,7 @@ def swaps_view(state: Desk, plan: Plan) -> None:
         ]  # fmt: skip
         picked = reasons_table(
             headings, [_row(one) for one in found], f"swaps-{state.generation}-{within}", state.decimal_mark,
-            height=480,
+            most_height=480,
         )  # fmt: skip
     with right:
         if picked is None:

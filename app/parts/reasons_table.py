@@ -12,6 +12,9 @@ import streamlit as st
 
 from app.parts.words import number
 
+ROW = 35
+"""Pixels of a row in a table."""
+
 MOST_ROWS = 5_000
 """A browser is given no more rows than this; the rest are counted below the table."""
 
@@ -34,7 +37,7 @@ def reasons_table(
     mark: str,
     *,
     pick: bool = True,
-    height: int | None = None,
+    most_height: int = 520,
 ) -> int | None:
     """Shows rows of texts and decimals (None: blank); answers which row is picked, None for none."""
     shown = list(rows[:MOST_ROWS])
@@ -54,13 +57,13 @@ def reasons_table(
     }
     about = {h.name: st.column_config.Column(help=h.about or None) for h in headings if h.about}
     styled: Any = frame.style.format(formats)
-    settings: Any = {"height": height} if height else {}
+    height = min(most_height, ROW * (len(shown) + 1) + 3)
     if not pick:
-        st.dataframe(styled, key=key, hide_index=True, placeholder="", column_config=about, **settings)
+        st.dataframe(styled, key=key, hide_index=True, placeholder="", column_config=about, height=height)
     else:
         event = st.dataframe(
             styled, key=key, hide_index=True, placeholder="", column_config=about,
-            on_select="rerun", selection_mode="single-row", **settings,
+            on_select="rerun", selection_mode="single-row", height=height,
         )  # fmt: skip
     if len(rows) > MOST_ROWS:
         st.caption(f"The first {MOST_ROWS:,} of {len(rows):,} rows.")

@@ -37,10 +37,13 @@ def values_view(state: Desk, plan: Plan) -> None:
             "larger or smaller, after everything this displaces. Pick a row to see what that is."
         )
         listed = found.depots if what == "depot" else found.customers
+        with_short = any(one.one_more_short or one.one_less_short for one in listed)
         picked = reasons_table(
-            _headings(what, unit, currency), [_row(plan, what, one) for one in listed],
-            f"values-{what}-{state.generation}", state.decimal_mark, height=520,
-        )  # fmt: skip
+            _headings(what, unit, currency, with_short),
+            [_row(plan, what, one, with_short) for one in listed],
+            f"values-{what}-{state.generation}",
+            state.decimal_mark,
+        )
         _pairs_note(state, plan)
     with right:
         if picked is None:
@@ -49,37 +52,32 @@ def values_view(state: Desk, plan: Plan) -> None:
             _picked(state, plan, what, listed[picked])
 
 
-def _headings(what: str, unit: str, currency: str) -> list[Heading]:
+def _headings(what: str, unit: str, currency: str, with_short: bool) -> list[Heading]:
     figure = "Available" if what == "depot" else "Ordered"
     beyond = "Up to this quantity each unit costs the same; beyond it, other lanes take over. Blank: no end"
-    return [
-        Heading("Depot" if what == "depot" else "Customer"),
-        Heading(f"{figure}, {unit}"),
-        Heading(f"One more costs, {currency}", "Cost after less cost before, charges included"),
-        Heading(f"holds for, {unit}", beyond),
-        Heading(f"One less costs, {currency}", "A minus is a saving. Blank: nothing is there to take away"),
-        Heading(f"holds for, {unit} ", beyond),
-        Heading("Short", "Whether one more or one less changes what goes short"),
-    ]
+    short = f"What one {{}} changes in what goes short, in {unit}"
+    headings = [Heading("Depot" if what == "depot" else "Customer"), Heading(f"{figure}, {unit}")]
+    for side, space in (("more", ""), ("less", " ")):  # headings must differ
+        about = "Cost after less cost before, charges included; a minus is a saving"
+        headings.append(Heading(f"One {side} costs, {currency}", f"{about}. Blank: there is no answer"))
+        headings.append(Heading(f"holds for, {unit}{space}", beyond))
+        if with_short:
+            headings.append(Heading(f"short by{space}", short.format(side)))
+    return headings
 
 
-def _row(plan: Plan, what: str, one: UnitValue) -> list[Cell]:
+def _row(plan: Plan, what: str, one: UnitValue, with_short: bool) -> list[Cell]:
     week = plan.week
     figure = week.depots[one.name].available if what == "depot" else week.customers[one.name].ordered
-    return [
-        one.name, figure, one.one_more, one.one_more_holds_for, one.one_less, one.one_less_holds_for,
-        _short_words(one),
-    ]  # fmt: skip
-
-
-def _short_words(one: UnitValue) -> str:
-    """In words what a unit more or less does to what goes short."""
-    said = [
-        f"one {side}: {'1 more' if change > 0 else '1 less'}"
-        for side, change in (("more", one.one_more_short), ("less", one.one_less_short))
-        if change
-    ]
-    return ", ".join(said)
+    row: list[Cell] = [one.name, figure]
+    for cost, holds, short in (
+        (one.one_more, one.one_more_holds_for, one.one_more_short),
+        (one.one_less, one.one_less_holds_for, one.one_less_short),
+    ):
+        row += [cost, holds]
+        if with_short:
+            row.append(short or None)
+    return row
 
 
 def _picked(state: Desk, plan: Plan, what: str, one: UnitValue) -> None:

@@ -42,7 +42,7 @@ def why_view(state: Desk, plan: Plan) -> None:
         ]  # fmt: skip
         picked = reasons_table(
             headings, [_row(one) for one in found.alternatives], f"why-{state.generation}-{customer}",
-            state.decimal_mark, height=480,
+            state.decimal_mark, most_height=480,
         )  # fmt: skip
     with right:
         one = None if picked is None else found.alternatives[picked]
@@ -56,8 +56,15 @@ def why_view(state: Desk, plan: Plan) -> None:
 
 
 def _row(one: Alternative) -> list[Cell]:
-    instead = "" if one.chain is None else one.instead or "goods that are short"
     return [
-        one.key.depot, one.key.haulier or "", STANDING[one.standing], one.quantity, one.rate, instead,
+        one.key.depot, one.key.haulier or "", STANDING[one.standing], one.quantity, one.rate, _instead(one),
         one.displaced, one.dearer,
     ]  # fmt: skip
+
+
+def _instead(one: Alternative) -> str:
+    if one.chain is None:
+        return ""
+    if one.instead is None:
+        return "goods that are short"
+    return f"{one.instead}, {one.instead_haulier}" if one.instead_haulier else one.instead

@@ -10,6 +10,15 @@ from engine.exact import total_of
 from engine.reasons.chains import Chain
 
 
+def net_by_lane(changes: Iterable[LaneChange]) -> dict[tuple[str, str], Decimal]:
+    """What each lane gains or loses over all its hauliers; lanes where that is nothing are left out."""
+    net: dict[tuple[str, str], Decimal] = {}
+    for one in changes:
+        lane = (one.depot, one.customer)
+        net[lane] = net.get(lane, Decimal(0)) + one.change
+    return {lane: change for lane, change in net.items() if change}
+
+
 def cost_of(changes: Iterable[LaneChange]) -> Decimal:
     """What some rate rows come to together."""
     return total_of(one.cost for one in changes)

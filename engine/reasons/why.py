@@ -30,6 +30,7 @@ class Alternative:
     rate: Decimal
     dearer: Decimal | None = None
     instead: str | None = None
+    instead_haulier: str | None = None
     displaced: Decimal | None = None
     chain: Chain | None = None
 
@@ -95,6 +96,7 @@ def _alternative(plan: Plan, ground: Ground, row: int) -> Alternative:
         rate,
         dearer=found.legs[0].cost,
         instead=other.depot,
+        instead_haulier=other.haulier,
         displaced=found.legs[0].cost - rate + other.cost,
         chain=found,
     )
