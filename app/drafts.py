@@ -55,6 +55,7 @@ def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
     columns = GRID_COLUMNS[table]
     fields = {column.heading: column.field for column in columns}
     known = {"depots": week.depots, "customers": week.customers}.get(table, {})
+    firsts = draft.draft[columns[0].heading].drop_duplicates().index  # a repeat is no row of the week
     found = []
     for label in dict.fromkeys(problem.row for problem in draft.problems if problem.stops):
         if label not in draft.draft.index:
@@ -65,7 +66,7 @@ def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
             if pd.notna(text)
         }
         name = texts.get(columns[0].field, "")
-        if name in known:
+        if name in known and label in firsts:
             faulty = {fields[p.column] for p in draft.problems if p.row == label}
             found.append(Unused(table, {f: text for f, text in texts.items() if f in faulty}, name))
         elif table != "rates" or not _in_rates(week, texts):

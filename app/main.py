@@ -6,26 +6,35 @@ from pathlib import Path
 import streamlit as st
 
 import sample_data
+from app.keeping import catch_up, keep_rest, keep_up, made_at_start, named_in_address
+from app.parts.others import clashes, news, watch
 from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
 
 HERE = Path(__file__).parent
+TO_CHANGE = ("Figures", "Weeks")  # pages that somebody who only reads does not get
 
 
-def opened_at_start(state: Desk) -> None:
-    """The week named when the desk was started, once a session."""
+def opened_at_start(state: Desk) -> tuple[str, ...]:
+    """The week that the address names, or that was named when the desk was started, once a session.
+
+    Returns the files that a week was read from.
+    """
     if state.started:
-        return
-    files = [Path(argument) for argument in sys.argv[1:] if argument != "--sample"]
-    if "--sample" in sys.argv[1:]:
-        files = [sample_data.path("small_week.xlsx")]
-    if files:
-        reading, findings = read_files(files)
-        if reading is None:
-            state.message = ("error", findings[0].message)
-        else:
-            state.open(reading)
+        return ()
     state.started = True
+    named = tuple(sys.argv[1:])
+    if named_in_address(state) or not named or made_at_start(state, named):
+        return ()
+    files = [Path(argument) for argument in named if argument != "--sample"]
+    if "--sample" in named:
+        files = [sample_data.path("small_week.xlsx")]
+    reading, findings = read_files(files)
+    if reading is None:
+        state.message = ("error", findings[0].message)
+        return ()
+    state.open(reading)
+    return named
 
 
 def toolbar(state: Desk) -> None:
@@ -39,13 +48,16 @@ def toolbar(state: Desk) -> None:
             f"{counted(len(state.week.depots), 'depot')}, {counted(len(state.week.customers), 'customer')}, "
             f"{counted(len(state.week.rates), 'rate')} · "
             + (f"{counted(made, 'change')} since it was opened" if made else "as it was opened")
+            + ("" if state.kept is None else " · kept" if state.kept.may_change else " · for reading only")
         )
-        if st.button(
-            "↶ Undo", disabled=state.history.can_undo is None, key="undo", help="Take the last change back"
-        ):
+        if state.kept is not None and not state.kept.may_change:
+            return
+        nothing_done = state.history.undoable(state.who) is None
+        nothing_undone = state.history.redoable(state.who) is None
+        if st.button("↶ Undo", disabled=nothing_done, key="undo", help="Take your last change back"):
             state.undo()
             st.rerun()
-        if st.button("↷ Redo", disabled=state.history.can_redo is None, key="redo", help="Make it again"):
+        if st.button("↷ Redo", disabled=nothing_undone, key="redo", help="Make it again"):
             state.redo()
             st.rerun()
 
@@ -54,17 +66,26 @@ def main() -> None:
     st.set_page_config(page_title="Hithe", page_icon="⚓", layout="wide", initial_sidebar_state="collapsed")
     st.html(HERE / "desk.css")
     state = desk()
-    opened_at_start(state)
-    page = st.navigation(
-        [
-            st.Page(HERE / "pages" / "figures.py", title="Figures", default=True),
-            st.Page(HERE / "pages" / "plan.py", title="Plan"),
-            st.Page(HERE / "pages" / "handover.py", title="Hand over"),
-        ],
-        position="top",
-    )
+    files = opened_at_start(state)
+    keep_up(state, files)
+    pages = [
+        st.Page(HERE / "pages" / "figures.py", title="Figures", default=True),
+        st.Page(HERE / "pages" / "plan.py", title="Plan"),
+        st.Page(HERE / "pages" / "reasons.py", title="Reasons"),
+        st.Page(HERE / "pages" / "handover.py", title="Hand over"),
+        st.Page(HERE / "pages" / "weeks.py", title="Weeks"),
+    ]
+    if state.kept is not None and not state.kept.may_change:
+        pages = [page for page in pages if page.title not in TO_CHANGE]
+    page = st.navigation(pages, position="top")
     toolbar(state)
+    watch(state)
+    news(state)
+    clashes(state)
     page.run()
+    keep_rest(state)
+    if catch_up(state):
+        st.rerun()
 
 
 main()

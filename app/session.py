@@ -1,6 +1,6 @@
 """One desk's state in one browser session: the list of changes, the plan it leads to, what was said."""
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -8,12 +8,15 @@ import streamlit as st
 
 import engine
 from app.drafts import Draft, opened, unread_in
+from app.kept import Kept
 from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
-from engine.history import History
+from engine.history import Entry, History
+from engine.intake.build_lists import Unused
 from engine.intake.frames import TABLES
 from engine.intake.numbers import NumberStyle
 from engine.planning.differences import Outcome, outcome
+from engine.records import Clash, Missing, NotSaved
 from engine.week import Refused, Week
 
 KEY = "desk"
@@ -21,7 +24,11 @@ KEY = "desk"
 
 @dataclass
 class Desk:
-    """What a session holds. `generation` counts what makes the grids start afresh from the week."""
+    """What a session holds. `generation` counts what makes the grids start afresh from the week.
+
+    `kept` is where the week is in the records; `fresh` a week that was read and is not there yet, `unsaved`
+    why not. `news` are changes of others that were not shown yet, `clashes` ours that touch theirs.
+    """
 
     history: History = field(default_factory=lambda: History.of(Week()))
     read: tuple[Finding, ...] = ()
@@ -36,6 +43,12 @@ class Desk:
     started: bool = False
     proposal: Change | None = None
     proposed: Outcome | None = None
+    who: str = ""
+    kept: Kept | None = None
+    fresh: engine.Reading | None = None
+    unsaved: str = ""
+    news: tuple[Entry, ...] = ()
+    clashes: tuple[Clash, ...] = ()
 
     @property
     def week(self) -> Week:
@@ -51,14 +64,20 @@ class Desk:
 
     def open(self, reading: engine.Reading) -> None:
         """Put the week that was read on the desk; the list of changes starts anew."""
-        self.history = History.of(reading.week)
-        self.decimal_mark = reading.style.decimal_mark
-        self.drafts = {table: opened(self.week, table, reading.unused, self.style) for table in TABLES}
-        self.read = reading.lasting
+        self.show(History.of(reading.week), reading.style.decimal_mark, reading.lasting, reading.unused)
+        self.fresh, self.kept = reading, None
+
+    def show(
+        self, history: History, mark: str, said: tuple[Finding, ...], unused: tuple[Unused, ...]
+    ) -> None:
+        """Put a week with its list of changes on the desk, in place of the one that was there."""
+        self.history, self.decimal_mark, self.read = history, mark, said
+        self.drafts = {table: opened(self.week, table, unused, self.style) for table in TABLES}
         self.uploads += 1
         self.generation += 1
         self.plan, self.planned_for, self.message = None, None, None
         self.proposal = self.proposed = None
+        self.fresh, self.kept, self.unsaved, self.news, self.clashes = None, None, "", (), ()
 
     @property
     def working(self) -> Week:
@@ -86,10 +105,11 @@ class Desk:
         """Make the proposed change."""
         if self.proposal is None or self.proposed is None:
             return
-        change, proposed = self.proposal, self.proposed
+        change, proposed, made = self.proposal, self.proposed, len(self.history.entries)
         self.proposal = self.proposed = None
         if self.commit(reasoned(change, why), why):
-            if proposed.plan is not None and not why:
+            alone = len(self.history.entries) == made + 1
+            if proposed.plan is not None and not why and alone:
                 self.planned_for, self.plan, self.stopped = self.week, proposed.plan, ()
             self.start_afresh()
 
@@ -99,22 +119,58 @@ class Desk:
         self.start_afresh()
 
     def commit(self, change: Change, why: str = "") -> bool:
-        """Make a change; False with a message where it does not fit the week."""
-        try:
-            self.history = self.history.after(change, why=why)
-        except Refused as refused:
-            self.start_afresh()
-            self.message = ("error", str(refused))
-            return False
-        return True
+        """Make a change; False with a message where it does not fit the week or cannot be saved."""
+        return self.make(lambda history: history.after(change, self.who, why))
 
     def undo(self) -> None:
-        self.history = self.history.undo()
-        self.start_afresh()
+        """Take back the latest change of this desk that stands."""
+        if self.make(lambda history: history.undo(self.who, by=self.who)):
+            self.start_afresh()
 
     def redo(self) -> None:
-        self.history = self.history.redo()
+        """Make again what this desk took back last."""
+        if self.make(lambda history: history.redo(self.who, by=self.who)):
+            self.start_afresh()
+
+    def make(self, act: Callable[[History], History]) -> bool:
+        """Lengthen the list of changes; True once it is on disk.
+
+        False with a message where it does not fit the week or cannot be saved, and False with `clashes` where
+        others changed the same figures meanwhile.
+        """
+        try:
+            history = act(self.history)
+            if self.kept is None:
+                self.history = history
+                return True
+            merged = self.kept.take(history)
+        except (Refused, NotSaved, Missing) as failure:
+            self.start_afresh()
+            self.message = ("error", str(failure))
+            return False
+        self.history, self.clashes = merged.history, merged.clashes
+        if merged.theirs:
+            self.hear(merged.theirs)
+        return not merged.clashes
+
+    def hear(self, theirs: tuple[Entry, ...]) -> None:
+        """Take note of changes that others made; what is proposed is worked out anew."""
+        self.news += theirs
         self.start_afresh()
+        if self.proposal is None:
+            return
+        if self.planned() is None:  # a proposal is never made without being asked for
+            self.proposal = self.proposed = None
+            self.message = ("error", "The week cannot be planned any more, so what you proposed was left.")
+        else:
+            self.propose(self.proposal)
+
+    def unread_texts(self) -> list[tuple[Unused, ...]]:
+        """The texts on the desk that are not in the week, by table."""
+        return [
+            unread_in(draft, self.week, table) if draft.key else draft.unread
+            for table, draft in self.drafts.items()
+        ]
 
     def start_afresh(self) -> None:
         """Let every grid show the week anew, with the texts that could not be read."""

@@ -16,6 +16,7 @@ ROOMS = [
     "engine.planning",
     "engine.intake",
     "engine.history",
+    "engine.altered",
     "engine.week",
     "engine.touch",
     "engine.changes",

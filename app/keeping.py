@@ -1,0 +1,165 @@
+"""The desk and the records: the address names the week, and what is on screen as made is on disk."""
+
+import itertools
+
+import streamlit as st
+
+from app.kept import Kept
+from app.session import Desk
+from engine.intake.build_lists import Unused
+from engine.records import (
+    Missing,
+    NotSaved,
+    Opened,
+    Records,
+    caught_up,
+    changes_since,
+    create_week,
+    default_place,
+    note_totals,
+    open_records,
+    open_week,
+    save_remarks,
+    version_of,
+)
+
+WATCH_SECONDS = 2.0
+WEEK, READ, WHO = "week", "read", "who"
+"""What the address says: the week's id, its id for reading only, and who works here."""
+
+_numbers = itertools.count(1)
+
+
+@st.cache_resource(show_spinner=False)
+def _opened(place: str) -> Records:
+    return open_records(place)
+
+
+@st.cache_resource(show_spinner=False)
+def _at_start() -> dict[tuple[str, ...], str]:
+    """The weeks that were made from the files named when the desk was started."""
+    return {}
+
+
+def records() -> Records:
+    """The records of this desk, shared by all sessions.
+
+    Raises:
+        NotSaved: they cannot be opened.
+    """
+    return _opened(default_place())
+
+
+def named_in_address(state: Desk) -> bool:
+    """Bring back the week that the address names, if it names one that is there."""
+    state.who = st.query_params.get(WHO, "") or f"Desk {next(_numbers)}"
+    any_id = st.query_params.get(WEEK) or st.query_params.get(READ)
+    if not any_id:
+        return False
+    try:
+        show(state, open_week(records(), any_id))
+    except (Missing, NotSaved) as failure:
+        st.query_params.clear()
+        state.message = ("error", str(failure))
+        return False
+    return True
+
+
+def made_at_start(state: Desk, files: tuple[str, ...]) -> bool:
+    """Bring back the week that an earlier session made of the files named at the start."""
+    week_id = _at_start().get(files)
+    if week_id is None:
+        return False
+    try:
+        show(state, open_week(records(), week_id))
+    except (Missing, NotSaved):
+        return False
+    return True
+
+
+def show(state: Desk, opened: Opened) -> None:
+    """Put a week from the records on the desk."""
+    state.show(opened.history, opened.decimal_mark, opened.findings, opened.unused)
+    listed = opened.listed
+    state.kept = Kept(
+        records(),
+        listed.id,
+        listed.read_id,
+        len(opened.history.entries),
+        opened.may_change,
+        opened.unused,
+        opened.findings,
+    )
+
+
+def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
+    """Put a week that was just read into the records, and its id into the address."""
+    if state.fresh is not None and not state.week.is_empty:
+        try:
+            opened = create_week(records(), state.fresh)
+            ids = opened.listed.id, opened.listed.read_id
+            state.kept = Kept(records(), *ids, unread=opened.unused, said=opened.findings)
+            state.fresh, state.unsaved = None, ""
+            if state.history.entries:
+                state.kept.take(state.history)
+            if files:
+                _at_start()[files] = opened.listed.id
+        except (NotSaved, ValueError) as failure:
+            state.unsaved = str(failure)
+    if state.kept is not None:
+        name, value = (WEEK, state.kept.week_id) if state.kept.may_change else (READ, state.kept.read_id)
+        wanted = {name: value} | ({WHO: state.who} if state.kept.may_change else {})
+        if any(st.query_params.get(key) != said for key, said in wanted.items()):
+            st.query_params.from_dict(wanted)
+
+
+def catch_up(state: Desk) -> bool:
+    """Work in what others changed; whether there was anything."""
+    kept = state.kept
+    if kept is None:
+        return False
+    try:
+        if version_of(kept.records, kept.week_id) == kept.saved:
+            return False
+        theirs = changes_since(kept.records, kept.week_id, kept.saved)
+    except (NotSaved, Missing) as failure:
+        state.unsaved = str(failure)
+        return False
+    before = len(state.history.entries)
+    state.history = caught_up(state.history, theirs)
+    kept.saved = len(state.history.entries)
+    state.hear(state.history.entries[before:])
+    return True
+
+
+def keep_rest(state: Desk) -> None:
+    """Keep what is no change: cells that nobody can read yet, and what the plan adds up to."""
+    kept = state.kept
+    if kept is None or not kept.may_change:
+        return
+    texts = _unread(state)
+    version = kept.saved
+    try:
+        if texts != kept.unread or state.read != kept.said:
+            save_remarks(kept.records, kept.week_id, texts, state.read)
+            kept.unread, kept.said = texts, state.read
+        if state.plan is not None and state.planned_for is state.week and kept.noted != version:
+            note_totals(kept.records, kept.week_id, version, state.plan)
+            kept.noted = version
+        state.unsaved = ""
+    except (NotSaved, ValueError) as failure:
+        state.unsaved = str(failure)
+
+
+def is_behind(kept: Kept) -> bool:
+    """Whether others changed the week since we looked.
+
+    Raises:
+        NotSaved: the records cannot be reached.
+        Missing: the week is gone.
+    """
+    return version_of(kept.records, kept.week_id) != kept.saved
+
+
+def _unread(state: Desk) -> tuple[Unused, ...]:
+    return tuple(one for texts in state.unread_texts() for one in texts)

@@ -1,0 +1,54 @@
+"""Weeks: what is in the records, what was changed, what it added up to, and who else may look."""
+
+from urllib.parse import urlsplit
+
+import streamlit as st
+
+from app.keeping import READ, WEEK
+from app.parts.changes_list import changes_list
+from app.parts.totals_chart import totals_chart
+from app.parts.weeks_list import weeks_list
+from app.parts.words import plain
+from app.session import Desk, desk
+from engine.records import Missing, NotSaved
+
+
+def together(state: Desk) -> None:
+    """Addresses to hand on, and the name that changes are made under."""
+    name = st.text_input("Your name, beside your changes", value=state.who, key="who", width=320)
+    if name.strip() and name.strip() != state.who:
+        state.who = name.strip()
+        st.rerun()
+    if state.kept is None:
+        st.caption("Open a week first: then its addresses stand here.")
+        return
+    here = urlsplit(st.context.url or "")
+    desk_address = f"{here.scheme}://{here.netloc}/" if here.netloc else "/"
+    st.markdown("Whoever has this address can change this week:")
+    st.code(f"{desk_address}?{WEEK}={state.kept.week_id}", language=None)
+    st.markdown("Whoever has this one can look at the plan and take its files, and change nothing:")
+    st.code(f"{desk_address}?{READ}={state.kept.read_id}", language=None)
+
+
+state = desk()
+st.title("Weeks")
+if state.message:
+    kind, text = state.message
+    (st.error if kind == "error" else st.success)(plain(text))
+    state.message = None
+VIEWS = {"weeks": "Weeks", "changes": "Changes", "totals": "Totals", "together": "Together"}
+view = st.segmented_control(
+    "View", list(VIEWS), default="weeks", format_func=VIEWS.__getitem__, required=True,
+    label_visibility="collapsed", key="weeks-view",
+)  # fmt: skip
+try:
+    if view == "changes":
+        changes_list(state)
+    elif view == "totals":
+        totals_chart(state.decimal_mark)
+    elif view == "together":
+        together(state)
+    else:
+        weeks_list(state)
+except (NotSaved, Missing) as failure:
+    st.error(plain(str(failure)))
