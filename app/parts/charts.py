@@ -10,6 +10,9 @@ import streamlit as st
 
 from app.parts.map_colours import colours
 
+MOST_POINTS = 40
+"""With more points than this only the lines are drawn."""
+
 
 def steps(
     figures: Sequence[Decimal], heights: Sequence[Decimal | None], today: Decimal, across: str, up: str
@@ -26,7 +29,7 @@ def steps(
         .encode(x=_across(across), y=alt.Y("height:Q", title=up), tooltip=_tooltip(across, up))
     )
     points = line.mark_point(filled=True, size=45, color=_tone(0))
-    _show(line + points + _today(today))
+    _show((line + points if len(frame) <= MOST_POINTS else line) + _today(today))
 
 
 def straight(
@@ -44,10 +47,10 @@ def straight(
     tones = [_tone(place) for place in range(len(names))]
     line = (
         alt.Chart(frame)
-        .mark_line(point=True, strokeWidth=2)
+        .mark_line(point=len(figures) <= MOST_POINTS, strokeWidth=2)
         .encode(
             x=_across(across),
-            y=alt.Y("height:Q", title=up),
+            y=alt.Y("height:Q", title=up, scale=alt.Scale(zero=False)),
             color=alt.Color(
                 "what:N", title=None, scale=alt.Scale(domain=names, range=tones),
                 legend=alt.Legend(orient="top", symbolType="stroke", symbolStrokeWidth=3),

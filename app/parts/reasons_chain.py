@@ -72,9 +72,13 @@ def _table(plan: Plan, changes: tuple[LaneChange, ...], mark: str, key: str) -> 
         [one.depot, one.customer, one.haulier or "", one.change, one.rate, one.cost] for one in changes
     ]
     headings = [
-        Heading("Depot"), Heading("Customer"), Heading("Haulier"), Heading(f"More or less, {unit}"),
-        Heading(f"Rate, {currency}", "Per unit, with the surcharge"), Heading(f"Cost, {currency}", places=2),
-    ]  # fmt: skip
+        Heading("Depot"),
+        Heading("Customer"),
+        Heading("Haulier"),
+        Heading(f"More or less, {unit}"),
+        Heading(f"Rate, {currency}", "Per unit, with the surcharge", money=True),
+        Heading(f"Cost, {currency}", places=2),
+    ]
     with st.expander("The lanes that change, and what each adds"):
         reasons_table(headings, rows, key, mark, pick=False)
         st.caption(

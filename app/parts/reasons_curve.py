@@ -78,12 +78,14 @@ def _shown(state: Desk, found: Curve, unit: str, currency: str) -> None:
             straight(figures, _series(found.points), found.today, across, currency)
     st.caption("Every corner is exact; between two corners each unit costs the same.")
     headings = [
-        Heading(across), Heading(f"Next unit, {currency}", "What one more costs from here, charges included"),
-        Heading(f"Total, {currency}", places=2), Heading(f"Freight, {currency}", places=2),
+        Heading(across),
+        Heading(f"Next unit, {currency}", "What one more costs from here, charges included", money=True),
+        Heading(f"Total, {currency}", places=2),
+        Heading(f"Freight, {currency}", places=2),
         Heading(f"Charge for short, {currency}", places=2),
         Heading(f"Charge for unsent, {currency}", places=2),
         Heading(f"Short, {unit}"),
-    ]  # fmt: skip
+    ]
     rows: list[list[Cell]] = [
         [p.figure, p.next_unit, p.total_cost, p.freight_cost, p.short_cost, p.unsent_cost, p.short]
         for p in found.points
@@ -92,10 +94,6 @@ def _shown(state: Desk, found: Curve, unit: str, currency: str) -> None:
 
 
 def _series(points: tuple[CurvePoint, ...]) -> dict[str, list[Decimal]]:
-    """Total and freight; charges only where there are any."""
-    series = {"Total": [p.total_cost for p in points], "Freight": [p.freight_cost for p in points]}
-    if any(p.short_cost for p in points):
-        series["Charge for short"] = [p.short_cost for p in points]
-    if any(p.unsent_cost for p in points):
-        series["Charge for unsent"] = [p.unsent_cost for p in points]
-    return series
+    """Total and, where charges set them apart, freight."""
+    total, freight = [p.total_cost for p in points], [p.freight_cost for p in points]
+    return {"Freight": total} if total == freight else {"Total": total, "Freight": freight}

@@ -45,14 +45,19 @@ def _near(state: Desk, plan: Plan) -> None:
         )
         with_loads = any(lane.interval.pays_below_per_load is not None for lane in found)
         headings = [
-            Heading("Depot"), Heading("Customer"), Heading("Haulier"),
-            Heading(f"Rate, {currency}", BEFORE), Heading(f"Pays below, {currency}", BEFORE),
-            Heading("Too high by", "The rate less what it pays below"),
+            Heading("Depot"),
+            Heading("Customer"),
+            Heading("Haulier"),
+            Heading(f"Rate, {currency}", BEFORE, money=True),
+            Heading(f"Pays below, {currency}", BEFORE, money=True),
+            Heading("Too high by", "The rate less what it pays below", money=True),
             Heading(f"Would carry, {unit}", "What the lane takes over once it pays"),
-        ]  # fmt: skip
+        ]
         if with_loads:
             headings.append(
-                Heading(f"Pays below a load, {currency}", "By the load size of the row or the week")
+                Heading(
+                    f"Pays below a load, {currency}", "By the load size of the row or the week", money=True
+                )
             )
         picked = reasons_table(
             headings, [_near_row(lane, with_loads) for lane in found], f"near-{state.generation}",
@@ -93,9 +98,14 @@ def _used(state: Desk, plan: Plan) -> None:
         "the lane loses goods; below the lower one it wins more. Blank: no rate changes anything."
     )
     headings = [
-        Heading("Depot"), Heading("Customer"), Heading("Haulier"), Heading(f"Send, {unit}"),
-        Heading(f"Rate, {currency}", BEFORE), Heading("Stays from", BEFORE), Heading("Stays to", BEFORE),
-    ]  # fmt: skip
+        Heading("Depot"),
+        Heading("Customer"),
+        Heading("Haulier"),
+        Heading(f"Send, {unit}"),
+        Heading(f"Rate, {currency}", BEFORE, money=True),
+        Heading("Stays from", BEFORE, money=True),
+        Heading("Stays to", BEFORE, money=True),
+    ]
     rows: list[list[Cell]] = [
         [*_names(one), one.quantity, one.rate, one.stays_from, one.stays_to] for one in found
     ]
@@ -123,9 +133,11 @@ def _without_quote(state: Desk, plan: Plan) -> None:
         "Nobody quotes for these lanes. A quote below this rate would pay, before the week's surcharge."
     )
     headings = [
-        Heading("Depot"), Heading("Customer"), Heading(f"Pays below, {currency}", BEFORE),
+        Heading("Depot"),
+        Heading("Customer"),
+        Heading(f"Pays below, {currency}", BEFORE, money=True),
         Heading(f"Would carry, {unit}"),
-    ]  # fmt: skip
+    ]
     rows: list[list[Cell]] = [[one.depot, one.customer, one.pays_below, one.carries] for one in found]
     reasons_table(
         headings, rows, f"unquoted-{state.generation}-{what}", state.decimal_mark, pick=False, most_height=480

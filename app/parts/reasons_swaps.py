@@ -20,8 +20,8 @@ def swaps_view(state: Desk, plan: Plan) -> None:
     """Options within an amount; the picked one is told."""
     unit, currency = plan.week.rules.unit, plan.week.rules.currency
     text = st.text_input(
-        "A swap may cost", "0", key="swaps-within", width=200,
-        help="Money, in all. 0 shows what could be swapped for nothing",
+        f"A swap may cost, {plain(currency)}", "0", key="swaps-within", width=200,
+        help="In all. 0 shows what could be swapped for nothing",
     )  # fmt: skip
     within, finding = read_field(AMOUNT, text, state.style)
     if within is None:
@@ -42,10 +42,14 @@ def swaps_view(state: Desk, plan: Plan) -> None:
             "driver must be kept: these choices cost nothing or little."
         )
         headings = [
-            Heading("Depot"), Heading("Customer"), Heading("Haulier"), Heading(f"Send now, {unit}"),
-            Heading(f"Could carry more, {unit}"), Heading(f"Each unit costs, {currency}"),
+            Heading("Depot"),
+            Heading("Customer"),
+            Heading("Haulier"),
+            Heading(f"Send now, {unit}"),
+            Heading(f"Could carry more, {unit}"),
+            Heading(f"Each unit costs, {currency}", money=True),
             Heading(f"In all, {currency}", places=2),
-        ]  # fmt: skip
+        ]
         picked = reasons_table(
             headings, [_row(one) for one in found], f"swaps-{state.generation}-{within}", state.decimal_mark,
             most_height=480,

@@ -11,6 +11,7 @@ import pandas as pd
 import streamlit as st
 
 from app.parts.words import number
+from engine.exact import places_needed
 
 ROW = 35
 """Pixels of a row in a table."""
@@ -23,11 +24,15 @@ Cell = str | Decimal | None
 
 @dataclass(frozen=True, slots=True)
 class Heading:
-    """A column of a table; `places` fixes the decimals of its numbers, `about` is said beside it."""
+    """A column of a table; `about` is said beside it.
+
+    `places` fixes the decimals of its numbers; `money` shows as many as any of them needs, two at least.
+    """
 
     name: str
     about: str = ""
     places: int | None = None
+    money: bool = False
 
 
 def reasons_table(
@@ -51,8 +56,8 @@ def reasons_table(
         }
     )
     formats: Any = {
-        heading.name: partial(_written, mark, heading.places)
-        for heading, is_number in zip(headings, kinds, strict=True)
+        heading.name: partial(_written, mark, _places(heading, [row[n] for row in shown]))
+        for n, (heading, is_number) in enumerate(zip(headings, kinds, strict=True))
         if is_number
     }
     about = {h.name: st.column_config.Column(help=h.about or None) for h in headings if h.about}
@@ -71,6 +76,12 @@ def reasons_table(
         return None
     picked = [row for row in event.selection.rows if 0 <= row < len(shown)]
     return picked[0] if picked else None
+
+
+def _places(heading: Heading, cells: Sequence[Cell]) -> int | None:
+    if not heading.money:
+        return heading.places
+    return max(2, *(places_needed(cell) for cell in cells if isinstance(cell, Decimal)), 2)
 
 
 def _sortable(cell: Cell) -> str | float | None:

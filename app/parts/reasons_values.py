@@ -59,7 +59,7 @@ def _headings(what: str, unit: str, currency: str, with_short: bool) -> list[Hea
     headings = [Heading("Depot" if what == "depot" else "Customer"), Heading(f"{figure}, {unit}")]
     for side, space in (("more", ""), ("less", " ")):  # headings must differ
         about = "Cost after less cost before, charges included; a minus is a saving"
-        headings.append(Heading(f"One {side} costs, {currency}", f"{about}. Blank: there is no answer"))
+        headings.append(Heading(f"One {side} costs, {currency}", f"{about}. Blank: no answer", money=True))
         headings.append(Heading(f"holds for, {unit}{space}", beyond))
         if with_short:
             headings.append(Heading(f"short by{space}", short.format(side)))

@@ -34,12 +34,21 @@ def why_view(state: Desk, plan: Plan) -> None:
             "whole week would cost more for each unit on that lane, everything it displaces included."
         )
         headings = [
-            Heading("Depot"), Heading("Haulier"), Heading("Now"), Heading(f"Send, {unit}"),
-            Heading(f"Rate, {currency}", "Per unit, with the surcharge"),
+            Heading("Depot"),
+            Heading("Haulier"),
+            Heading("Now"),
+            Heading(f"Send, {unit}"),
+            Heading(f"Rate, {currency}", "Per unit, with the surcharge", money=True),
             Heading("In place of", "The depot that would bring a unit less to this customer"),
-            Heading("Displaced elsewhere", "What the moved goods cost or save at other customers, per unit"),
-            Heading(f"One more here, {currency}", "Rate less the rate it replaces, plus what is displaced"),
-        ]  # fmt: skip
+            Heading(
+                "Displaced elsewhere", "What the moved goods cost or save elsewhere, per unit", money=True
+            ),
+            Heading(
+                f"One more here, {currency}",
+                "Rate less the rate it replaces, plus what is displaced",
+                money=True,
+            ),
+        ]
         picked = reasons_table(
             headings, [_row(one) for one in found.alternatives], f"why-{state.generation}-{customer}",
             state.decimal_mark, most_height=480,
@@ -57,9 +66,15 @@ def why_view(state: Desk, plan: Plan) -> None:
 
 def _row(one: Alternative) -> list[Cell]:
     return [
-        one.key.depot, one.key.haulier or "", STANDING[one.standing], one.quantity, one.rate, _instead(one),
-        one.displaced, one.dearer,
-    ]  # fmt: skip
+        one.key.depot,
+        one.key.haulier or "",
+        STANDING[one.standing],
+        one.quantity,
+        one.rate,
+        _instead(one),
+        one.displaced,
+        one.dearer,
+    ]
 
 
 def _instead(one: Alternative) -> str:
