@@ -131,3 +131,35 @@ def _packed(parts):
         for part, content in parts.items():
             archive.writestr(part, content)
     return stream.getvalue()
+
+
+def compound(streams):
+    """A compound file with these streams, by [MS-CFB]: sectors of 512 bytes, every stream in the long table."""
+    end, free, table_mark = 0xFFFFFFFE, 0xFFFFFFFF, 0xFFFFFFFD
+    bodies = [content.ljust(max(4096, -(-len(content) // 512) * 512), b"\0") for content in streams.values()]
+    table, starts = [table_mark, end], []  # sector 0 holds the table, sector 1 the directory
+    for body in bodies:
+        starts.append(len(table))
+        count = len(body) // 512
+        table += [*range(len(table) + 1, len(table) + count), end]
+    entries = [_entry("Root Entry", 5, end, 0, child=1)]
+    for number, (name, body) in enumerate(zip(streams, bodies, strict=True), start=1):
+        right = number + 1 if number < len(bodies) else free
+        entries.append(_entry(name, 2, starts[number - 1], len(body), right=right))
+    head = bytes.fromhex("d0cf11e0a1b11ae1") + bytes(16)
+    head += struct.pack("<HHHHH", 0x3E, 3, 0xFFFE, 9, 6) + bytes(10)
+    head += struct.pack("<IIIIIIIII", 1, 1, 0, 4096, end, 0, end, 0, 0) + struct.pack("<I", free) * 108
+    fat = struct.pack(f"<{len(table)}I", *table).ljust(512, b"\xff")
+    return head.ljust(512, b"\xff") + fat + b"".join(entries).ljust(512, b"\0") + b"".join(bodies)
+
+
+def _entry(name, kind, start, size, right=0xFFFFFFFF, child=0xFFFFFFFF):
+    text = (name + "\0").encode("utf-16-le")
+    links = struct.pack("<III", 0xFFFFFFFF, right, child)
+    return (
+        text.ljust(64, b"\0")
+        + struct.pack("<HBB", len(text), kind, 1)
+        + links
+        + bytes(36)
+        + struct.pack("<IQ", start, size)
+    )

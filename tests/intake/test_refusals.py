@@ -10,6 +10,7 @@ import pytest
 from engine.intake.cells import address, read_sheets
 from engine.intake.reading import read_week
 from engine.intake.refusal import Limits, Unreadable
+from tests.intake.books import compound
 from tests.intake.sheets import plain, with_part, workbook
 
 NAME, GOOD = workbook(plain())
@@ -65,6 +66,9 @@ REFUSED = [
     ("bomb.xlsx", archive(**{SHEET: b"0" * 100_000_000}), "too large"),
     ("bomb.xlsx", understated(), "damaged file"),
     ("week.xlsx", with_part((NAME, GOOD), SHEET, b"<worksheet><sheetData>")[1], "damaged file"),
+    ("secret.xlsx", compound({"EncryptionInfo": b"4", "EncryptedPackage": b"?" * 5000}), "password"),
+    ("secret.xls", compound({"Workbook": struct.pack("<HHHHHH", 0x809, 4, 0x600, 5, 0x2F, 0)}), "password"),
+    ("letter.doc", compound({"WordDocument": b"Dear Tom"}), "damaged file"),
     (
         "laughs.xlsx",
         with_part((NAME, GOOD), "xl/workbook.xml", lambda old: b"<!DOCTYPE x [<!ENTITY a 'b'>]>" + old)[1],
