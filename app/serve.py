@@ -1,5 +1,6 @@
 """Starts the desk: Streamlit on this machine only, with every setting that matters said here."""
 
+import socket
 import threading
 import time
 import urllib.error
@@ -35,29 +36,37 @@ def flags(port: int) -> dict[str, object]:
 def serve(port: int, open_browser: bool, files: Sequence[Path] = (), sample: bool = False) -> None:
     """Run the desk until it is interrupted."""
     from streamlit import config
+    from streamlit.runtime.pages_manager import PagesManager
     from streamlit.web import bootstrap
 
+    from app.preparing import begin
+
+    _refuse_taken(port)
     script = Path(__file__).with_name("main.py")
     settings = flags(port)
     config._main_script_path = str(script)
+    # A folder called pages would be taken for a menu by itself, past main.py, by whoever comes first.
+    PagesManager.uses_pages_directory = False
     bootstrap.load_config_options(flag_options=settings)
     address = f"http://{ADDRESS}:{port}"
     click.echo(f"The desk opens at {address} (Ctrl-C ends it)", err=True)
     if open_browser:
         threading.Thread(target=_open_when_ready, args=(address,), daemon=True).start()
-    threading.Thread(target=_prepare, daemon=True).start()
+    begin()
     arguments = ["--sample"] if sample else []
     arguments += [str(file.resolve()) for file in files]
     bootstrap.run(str(script), False, arguments, settings)
 
 
-def _prepare() -> None:
-    """Compile the solver while the desk opens; the very first start takes some seconds."""
-    from engine.network import prepare
-    from engine.reasons.prepare import prepare as prepare_reasons
-
-    prepare()
-    prepare_reasons()
+def _refuse_taken(port: int) -> None:
+    with socket.socket() as tried:
+        tried.setsockopt(socket.SOL_SOCKET, socket.SO_REUSEADDR, 1)
+        try:
+            tried.bind((ADDRESS, port))
+        except OSError:
+            raise click.ClickException(
+                f"Port {port} is taken, perhaps by a desk that is open already. Choose another with --port."
+            ) from None
 
 
 def _open_when_ready(address: str, patience: float = 30.0) -> None:

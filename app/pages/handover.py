@@ -9,6 +9,7 @@ import engine
 from app.parts.findings_panel import findings_panel
 from app.parts.nothing_yet import nothing_yet
 from app.parts.words import counted, plain
+from app.preparing import prepared
 from app.session import desk
 from engine.report.loading import write_loading_zip
 from engine.report.notes import notes_of
@@ -34,7 +35,8 @@ st.title("Hand over")
 if state.week.is_empty:
     nothing_yet("There is no plan to hand over yet.")
 else:
-    plan = state.planned()
+    with prepared():
+        plan = state.planned()
     if plan is None:
         st.error("This week cannot be planned as it stands, so there is nothing to hand over.")
         findings_panel(state.stopped, key="stopped")

@@ -12,6 +12,7 @@ from app.parts.plan_map import plan_map
 from app.parts.proposal import proposal
 from app.parts.shipments_grid import shipments_grid
 from app.parts.words import plain
+from app.preparing import prepared
 from app.session import desk
 
 state = desk()
@@ -19,7 +20,8 @@ st.title("Plan")
 if state.week.is_empty:
     nothing_yet("There is no week to plan yet.")
 else:
-    plan = state.planned()
+    with prepared():
+        plan = state.planned()
     if state.message:
         kind, text = state.message
         (st.error if kind == "error" else st.success)(plain(text))

@@ -117,6 +117,12 @@ def test_a_figure_typed_in_a_grid_is_read_by_our_reader(page: Page) -> None:
     assert freight(page) == engine.plan_week(changed).freight_payable
 
 
+def test_an_address_of_a_page_leads_to_that_page_with_the_menu(page: Page, desk: str) -> None:
+    page.goto(f"{desk}/plan")
+    page.get_by_role("heading", name="Plan", exact=True).wait_for(timeout=30_000)
+    page.get_by_role("link", name="Hand over", exact=True).wait_for()
+
+
 def test_what_is_no_spreadsheet_is_refused_and_the_week_stays(page: Page, tmp_path: Path) -> None:
     page.get_by_role("button", name="Open the sample week").click()
     page.get_by_text("6 depots, 48 customers, 352 rates").wait_for(timeout=30_000)

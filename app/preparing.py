@@ -1,0 +1,37 @@
+"""The solver's machine code is made once after installation; what the desk shows while that goes on."""
+
+import threading
+from collections.abc import Iterator
+from contextlib import contextmanager
+
+import streamlit as st
+
+_begun, _done = threading.Event(), threading.Event()
+
+
+def begin() -> None:
+    """Prepare in the background; at every later start the code lies ready and this takes a moment."""
+    _begun.set()
+    threading.Thread(target=_prepare, daemon=True).start()
+
+
+def _prepare() -> None:
+    from engine.network import prepare
+    from engine.reasons.prepare import prepare as prepare_reasons
+
+    try:
+        prepare()
+        prepare_reasons()
+    finally:
+        _done.set()
+
+
+@contextmanager
+def prepared() -> Iterator[None]:
+    """Whatever plans: says that the solver is being prepared as long as it is."""
+    if _begun.is_set() and not _done.is_set():
+        with st.spinner(
+            "Preparing the solver: only at the first start after it was installed", show_time=True
+        ):
+            _done.wait()
+    yield
