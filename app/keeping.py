@@ -6,8 +6,11 @@ import streamlit as st
 
 from app.kept import Kept
 from app.session import Desk
+from engine.exact import TooLarge
 from engine.intake.build_lists import Unused
+from engine.planning.plan import Plan
 from engine.records import (
+    Issued,
     Missing,
     NotSaved,
     Opened,
@@ -16,6 +19,8 @@ from engine.records import (
     changes_since,
     create_week,
     default_place,
+    find_plan,
+    issue_plan,
     note_totals,
     open_records,
     open_week,
@@ -90,6 +95,10 @@ def show(state: Desk, opened: Opened) -> None:
         opened.unused,
         opened.findings,
     )
+    try:
+        state.issued = find_plan(records(), listed.id)
+    except Missing:
+        state.issued = None
 
 
 def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
@@ -111,6 +120,24 @@ def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
         wanted = {name: value} | ({WHO: state.who} if state.kept.may_change else {})
         if any(st.query_params.get(key) != said for key, said in wanted.items()):
             st.query_params.from_dict(wanted)
+
+
+def issue(state: Desk, plan: Plan, note: str = "") -> Issued | None:
+    """Freeze the plan under the next number; None with a message where it could not be kept."""
+    if state.kept is None:
+        state.message = (
+            "error",
+            state.unsaved or "The week is not in the records, so no plan can be issued.",
+        )
+        return None
+    try:
+        state.issued = issue_plan(
+            state.kept.records, state.kept.week_id, plan, state.kept.saved, state.who, note
+        )
+    except (Missing, NotSaved, TooLarge) as failure:
+        state.message = ("error", str(failure))
+        return None
+    return state.issued
 
 
 def catch_up(state: Desk) -> bool:

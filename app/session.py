@@ -13,10 +13,12 @@ from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
 from engine.history import Entry, History
 from engine.intake.build_lists import Unused
+from engine.intake.earlier import Quantities
 from engine.intake.frames import TABLES
 from engine.intake.numbers import NumberStyle
 from engine.planning.differences import Outcome, outcome
-from engine.records import Clash, Missing, NotSaved
+from engine.records import Clash, Issued, Missing, NotSaved
+from engine.touch import touch_each_other
 from engine.week import Refused, Week
 
 KEY = "desk"
@@ -49,6 +51,7 @@ class Desk:
     unsaved: str = ""
     news: tuple[Entry, ...] = ()
     clashes: tuple[Clash, ...] = ()
+    issued: Issued | None = None
 
     @property
     def week(self) -> Week:
@@ -78,6 +81,12 @@ class Desk:
         self.plan, self.planned_for, self.message = None, None, None
         self.proposal = self.proposed = None
         self.fresh, self.kept, self.unsaved, self.news, self.clashes = None, None, "", (), ()
+        self.issued = None
+
+    @property
+    def near(self) -> Quantities | None:
+        """What later plans stay nearest to: the plan issued last, None before the first."""
+        return None if self.issued is None else self.issued.quantities
 
     @property
     def working(self) -> Week:
@@ -94,7 +103,7 @@ class Desk:
             self.commit(change)
             return
         self.proposal = change
-        self.proposed = outcome(plan, change)
+        self.proposed = outcome(plan, change, self.near)
 
     def propose_more(self, change: Change) -> None:
         """Put up a change on top of what is already proposed."""
@@ -154,12 +163,17 @@ class Desk:
         return not merged.clashes
 
     def hear(self, theirs: tuple[Entry, ...]) -> None:
-        """Take note of changes that others made; what is proposed is worked out anew."""
+        """Take note of changes that others made; what is proposed is worked out anew, or asked about."""
         self.news += theirs
         self.start_afresh()
         if self.proposal is None:
             return
-        if self.planned() is None:  # a proposal is never made without being asked for
+        touching = tuple(entry for entry in theirs if touch_each_other(self.proposal, entry.change))
+        if touching:
+            mine = Entry(self.proposal, Together(()), self.who)
+            self.clashes += (Clash(mine, touching, "They changed the same figures before you did."),)
+            self.proposal = self.proposed = None
+        elif self.planned() is None:  # a proposal is never made without being asked for
             self.proposal = self.proposed = None
             self.message = ("error", "The week cannot be planned any more, so what you proposed was left.")
         else:
@@ -192,7 +206,7 @@ class Desk:
             self.stopped, self.planned_for = tuple(stopping), None
             return None
         if self.planned_for is not self.week:
-            plan, self.stopped = try_plan(self.week, near=self.plan)
+            plan, self.stopped = try_plan(self.week, near=self.near or self.plan)
             self.planned_for, self.plan = self.week, plan
         return self.plan
 
@@ -214,7 +228,9 @@ def desk() -> Desk:
     return found
 
 
-def try_plan(week: Week, near: engine.Plan | None) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
+def try_plan(
+    week: Week, near: engine.Plan | Quantities | None
+) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
     """The week's plan, or the findings that stop it."""
     try:
         return engine.plan_week(week, near=near), ()

@@ -7,6 +7,7 @@ import streamlit as st
 
 import engine
 from app.parts.findings_panel import findings_panel
+from app.parts.issue import issue_panel
 from app.parts.nothing_yet import nothing_yet
 from app.parts.words import counted, plain
 from app.preparing import prepared
@@ -32,6 +33,10 @@ def written(write: Callable[[engine.Plan, BytesIO], None], plan: engine.Plan) ->
 
 state = desk()
 st.title("Hand over")
+if state.message:
+    kind, text = state.message
+    (st.error if kind == "error" else st.success)(plain(text))
+    state.message = None
 if state.week.is_empty:
     nothing_yet("There is no plan to hand over yet.")
 else:
@@ -60,6 +65,7 @@ else:
                 "Plan as CSV", written(write_plan_csv, plan), f"plan_{name}.csv", "text/csv",
                 on_click="ignore", width="stretch",
             )  # fmt: skip
+            issue_panel(state, plan)
         with right:
             st.subheader("Notes that go with it", anchor=False)
             for title, pairs in notes_of(plan):

@@ -2,12 +2,14 @@
 
 from dataclasses import dataclass
 from decimal import Decimal
+from typing import Protocol
 
 from engine.changes import Change
 from engine.exact import TooLarge, canonical, total_of
 from engine.figures import RateKey
 from engine.findings import Finding, Severity
-from engine.planning.plan import Plan
+from engine.intake.earlier import Quantities
+from engine.planning.plan import Plan, Shipment, Short
 from engine.planning.planner import NotPlannable, plan_week
 from engine.week import Refused, Week, describe
 
@@ -52,7 +54,22 @@ class Difference:
         return tuple(dict.fromkeys(name for name in names if name))
 
 
-def difference(before: Plan, after: Plan) -> Difference:
+class Costed(Protocol):
+    """A plan as it stands, or as it was issued."""
+
+    @property
+    def shipments(self) -> tuple[Shipment, ...]: ...
+    @property
+    def short(self) -> tuple[Short, ...]: ...
+    @property
+    def freight_payable(self) -> Decimal: ...
+    @property
+    def short_cost(self) -> Decimal: ...
+    @property
+    def unsent_cost(self) -> Decimal: ...
+
+
+def difference(before: Costed, after: Costed) -> Difference:
     """What the second plan does otherwise than the first."""
     first, second = (_by_row(plan) for plan in (before, after))
     rows = [
@@ -78,14 +95,17 @@ class Outcome:
     findings: tuple[Finding, ...] = ()
 
 
-def outcome(plan: Plan, change: Change) -> Outcome:
-    """What a change to a plan's week would cost and move, and whether it can be done at all."""
+def outcome(plan: Plan, change: Change, near: Plan | Quantities | None = None) -> Outcome:
+    """What a change to a plan's week would cost and move, and whether it can be done at all.
+
+    near: the plan that the changed one stays nearest to; None: `plan` itself
+    """
     try:
         week = plan.week.apply(change)
     except Refused as refused:
         return Outcome(plan.week, None, None, (Finding(Severity.STOPS, "refused", str(refused)),))
     try:
-        after = plan_week(week, near=plan)
+        after = plan_week(week, near=plan if near is None else near)
     except NotPlannable as stopped:
         return Outcome(week, None, None, stopped.findings)
     except TooLarge as too_large:
@@ -93,7 +113,7 @@ def outcome(plan: Plan, change: Change) -> Outcome:
     return Outcome(week, after, difference(plan, after))
 
 
-def _by_row(plan: Plan) -> dict[RateKey, Decimal]:
+def _by_row(plan: Costed) -> dict[RateKey, Decimal]:
     """Quantities by rate row; what has gone on a row counts into it."""
     sums: dict[RateKey, list[Decimal]] = {}
     for shipment in plan.shipments:

@@ -4,10 +4,12 @@ from decimal import Decimal
 
 import numpy as np
 
-from engine.exact import places_needed, to_integer
+from engine.exact import places_needed, to_integer, total_of
+from engine.figures import RateKey
 from engine.intake.earlier import Quantities
 from engine.network import Flow
 from engine.network.ties import nearest
+from engine.planning.gone import left, remaining
 from engine.planning.model import NO_RATE, Integers, Model
 from engine.planning.plan import Plan
 from engine.week import Week
@@ -24,18 +26,22 @@ def nearest_flow(week: Week, model: Model, flow: Flow, near: Plan | Quantities |
 
 
 def sent_by(near: Plan | Quantities) -> Quantities:
-    """What an earlier plan still sends on each rate row; what had gone is no longer a choice."""
+    """What an earlier plan sends on each rate row in the whole week, what had gone included."""
     if not isinstance(near, Plan):
         return near
-    return {one.key: one.quantity for one in near.shipments if not one.gone}
+    sums: dict[RateKey, list[Decimal]] = {}
+    for one in near.shipments:
+        sums.setdefault(one.key, []).append(one.quantity)
+    return {key: total_of(quantities) for key, quantities in sums.items()}
 
 
 def earlier_quantities(week: Week, model: Model, sent: Quantities) -> Integers:
     """(rows,) the earlier plan's quantities on the rows of a model, in its grains, rounded down to them.
 
-    What is short and unsent follows from the quantities sent and today's figures.
+    What has gone on a row by now is no longer a choice and taken off. What is short and unsent follows
+    from the quantities sent and today's figures.
     """
-    problem, rates = model.problem, week.rates
+    problem, rates, gone = model.problem, week.rates, left(week).row
     quantities = np.zeros(problem.rows, dtype=np.int64)
     position = {int(number): place for place, number in enumerate(rates.ids_in_order)} if sent else {}
     row_of = np.full(len(rates.flat), -1, dtype=np.int64)
@@ -44,7 +50,8 @@ def earlier_quantities(week: Week, model: Model, sent: Quantities) -> Integers:
     for key, quantity in sent.items():
         number = rates.find(key)
         if number is not None and row_of[position[number]] >= 0:
-            quantities[row_of[position[number]]] = _grains(quantity, model.quantity_places)
+            still = remaining(quantity, gone.get(key[:3]) if key.number == 1 else None)
+            quantities[row_of[position[number]]] = _grains(still, model.quantity_places)
     to_customer = np.add.reduceat(quantities, problem.start[:-2]) if model.customers else quantities[:0]
     from_depot = np.zeros(problem.depots, dtype=np.int64)
     np.add.at(from_depot, problem.depot[rows], quantities[rows])
