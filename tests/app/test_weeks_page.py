@@ -129,6 +129,22 @@ def test_changes_that_do_not_touch_merge_and_those_that_do_are_asked(week_id: st
     assert "Yours: Cole" not in said(ann)
 
 
+def test_what_is_proposed_is_asked_about_when_others_changed_the_same(week_id: str) -> None:
+    ann, ben = visit(week=week_id, who="Ann"), visit(week=week_id, who="Ben")
+    state_of(ann).propose(Alter("customer", "Cole", "ordered", D(30)))
+    assert state_of(ben).commit(Alter("depot", "Northgate", "loads_a_day", D(9)))
+    whole(ann).run()
+    assert state_of(ann).proposed is not None
+    assert state_of(ann).proposed.week.depots["Northgate"].loads_a_day == 9
+    assert state_of(ben).commit(Alter("customer", "Cole", "ordered", D(20)))
+    whole(ann).run()
+    assert state_of(ann).proposal is None
+    assert "Yours: Cole: Ordered set to 30" in said(ann)
+    assert "Theirs: Ben: Cole: Ordered set to 20" in said(ann)
+    click(ann, "Make mine")
+    assert open_week(records(), week_id).history.week.customers["Cole"].ordered == 30
+
+
 def test_leaving_theirs_changes_nothing(week_id: str) -> None:
     ann, ben = visit(week=week_id, who="Ann"), visit(week=week_id, who="Ben")
     state_of(ben).commit(Alter("customer", "Cole", "ordered", D(50)))
