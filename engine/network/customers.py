@@ -130,10 +130,13 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
                 flow[row] = 0
         elif first == last:
             return int(j)
-        elif fresh and second > cheapest:
+        elif second > cheapest and (fresh or home[j] == SEVERAL):
             at = first
             while cost[at] - price[depot[at]] != cheapest:
                 at += 1
+            if not fresh and (flow[at] != needed or sum_of(flow[first:last]) != needed):
+                spread(rows, state, j, cheapest, needed)
+                continue
             flow[at] = needed
             excess[depot[at]] += needed
             home[j] = at
@@ -143,6 +146,15 @@ def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers
             home[j] = SEVERAL
             spread(rows, state, j, cheapest, needed)
     return -1
+
+
+@part
+def sum_of(flow: Integers) -> int:
+    """The sum of a customer's quantities."""
+    sent = 0
+    for quantity in flow:
+        sent += quantity
+    return sent
 
 
 @part

@@ -42,8 +42,8 @@ from engine.network.paths import (
 )
 from engine.network.problem import Figures, Problem
 
-SAMPLE = 50
-"""Customers per depot in the smallest sample; with fewer, solving all at once is faster (measured)."""
+SAMPLE = 8
+"""Customers per depot in the smallest sample."""
 
 STEP = 4
 """Each sample is so many times larger than the one before."""

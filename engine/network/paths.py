@@ -103,7 +103,7 @@ def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int
 
 @kernel
 def find_paths(state: State, search: Search) -> tuple[int, int]:
-    """Dijkstra from all depots with too much at once (Dijkstra 1959), as far as all that have too little.
+    """Dijkstra from all depots with too much at once (1959), to the nearest of those with too little.
 
     Returns how many of these were reached and the distance of the farthest; a negative distance if no
     depot has too much.
@@ -122,6 +122,8 @@ def find_paths(state: State, search: Search) -> tuple[int, int]:
             wanting += 1
     if sources == 0:
         return 0, -1
+    # the first paths that are used change the others: of many only the shorter ones are worth finding
+    wanting = min(wanting, 1 + wanting // 4)
     nearest, targets, distance = 0, 0, 0
     while targets < wanting:
         i = 0

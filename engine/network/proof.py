@@ -100,19 +100,21 @@ def check_rows(
     bound: receives the rows' share of the lower bound, likewise
     Returns the first rule that is broken and the row or customer where, or (0, 0).
     """
+    start, depot, cost = figures.start, figures.depot, figures.cost
+    quantity, depot_price = answer.quantity, answer.depot_price
+    bounded, capped = len(figures.at_least) > 0, len(figures.at_most) > 0
     lower, upper = 0, UNLIMITED
     for j in range(len(figures.demand)):
-        missing = figures.demand[j]
-        for row in range(figures.start[j], figures.start[j + 1]):
-            if len(figures.at_least):
+        missing, price = figures.demand[j], answer.customer_price[j]
+        for row in range(start[j], start[j + 1]):
+            i, x = depot[row], quantity[row]
+            r = cost[row] - depot_price[i] - price
+            if bounded:
                 lower = figures.at_least[row]
-            if len(figures.at_most):
-                upper = figures.at_most[row]
-            i = figures.depot[row]
-            x = answer.quantity[row]
-            r = figures.cost[row] - answer.depot_price[i] - answer.customer_price[j]
             if x == 0 and lower == 0 and r >= 0:
                 continue
+            if capped:
+                upper = figures.at_most[row]
             if x < lower:
                 return BELOW, row
             if x > upper:
@@ -125,7 +127,7 @@ def check_rows(
                 return RECEIVED, j
             missing -= x
             sent[i] += x
-            add_product(paid, x, figures.cost[row])
+            add_product(paid, x, cost[row])
             if r > 0:
                 add_product(bound, lower, r)
             if r < 0:
@@ -190,9 +192,12 @@ def _sentence(figures: Figures, answer: Answer, rule: int, place: int) -> str:
         received = total(answer.quantity[rows])
         return f"Customer {place} receives {received}, its demand is {figures.demand[place]}."
     sends = f"Row {place} (depot {figures.depot[place]}) sends {answer.quantity[place]}, "
-    return sends + {
-        BELOW: "less than its lower limit.",
-        ABOVE: "more than its upper limit.",
-        DEAR: "above its lower limit, although its prices say that it is too dear.",
-        CHEAP: "below its upper limit, although its prices say that more of it would be cheaper.",
-    }[rule]
+    return (
+        sends
+        + {
+            BELOW: "less than its lower limit.",
+            ABOVE: "more than its upper limit.",
+            DEAR: "above its lower limit, although its prices say that it is too dear.",
+            CHEAP: "below its upper limit, although its prices say that more of it would be cheaper.",
+        }[rule]
+    )
