@@ -129,10 +129,11 @@ def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:
     top = min(area[0] for area in areas)
     places: list[tuple[int, int]] = []
     numbers = rows = 0
-    for number, row in enumerate(sheet.rows):
+    whole = [area for area in areas if area[2] == 0 and area[3] >= sheet.width - 1]
+    within = {number for area in whole for number in range(area[0], area[1])}
+    for number in sorted(set(range(len(sheet.rows))) - within):
+        row = sheet.rows[number]
         here = [area for area in areas if area[0] <= number < area[1]]
-        if len(here) == 1 and here[0][2] == 0 and here[0][3] >= len(row) - 1:
-            continue
         cells = [
             (column, cell)
             for column, cell in enumerate(row)

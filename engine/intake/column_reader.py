@@ -180,20 +180,27 @@ def _joined(
     """Both sorts of cells at one number of places; what cannot stand beside the others is refused."""
     known = values[values != BLANK]
     largest = int(np.abs(known).max(initial=0))
-    most = max([places, *(places_needed(number) for _, number in decimals)])
-    reach = max([Decimal(largest).scaleb(-places), *(abs(number) for _, number in decimals)])
+    distinct = list(dict.fromkeys(number for _, number in decimals))
+    most = max([places, *map(places_needed, distinct)])
+    reach = max([Decimal(largest).scaleb(-places), *map(abs, distinct)])
     while most > places and int(reach.scaleb(most)) > LARGEST // 4:
         most -= 1
     if most > places:
         values = DecimalColumn(values, places).rescaled(most)
     column_values = values.copy()
+    integers = {number: to_integer(number, most) for number in distinct if _fits(number, most)}
     for position, number in decimals:
-        if places_needed(number) > most or abs(number.scaleb(most)) > LARGEST:
+        integer = integers.get(number)
+        if integer is None:
             problems.append((position, _too_fine(column, number)))
         else:
-            column_values[position] = to_integer(number, most)
+            column_values[position] = integer
     problems.sort(key=lambda problem: problem[0])
     return DecimalColumn(column_values, most), problems
+
+
+def _fits(number: Decimal, places: int) -> bool:
+    return places_needed(number) <= places and abs(number.scaleb(places)) <= LARGEST
 
 
 def _too_fine(column: Column, number: Decimal) -> Finding:

@@ -134,7 +134,7 @@ def _packed(parts):
 
 
 def compound(streams):
-    """A compound file with these streams, by [MS-CFB]: sectors of 512 bytes, every stream in the long table."""
+    """A compound file with these streams, by [MS-CFB]: sectors of 512 bytes, no short streams."""
     end, free, table_mark = 0xFFFFFFFE, 0xFFFFFFFF, 0xFFFFFFFD
     bodies = [content.ljust(max(4096, -(-len(content) // 512) * 512), b"\0") for content in streams.values()]
     table, starts = [table_mark, end], []  # sector 0 holds the table, sector 1 the directory
