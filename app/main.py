@@ -68,6 +68,9 @@ def main() -> None:
     state = desk()
     files = opened_at_start(state)
     keep_up(state, files)
+    only_reads = state.kept is not None and not state.kept.may_change
+    if only_reads:  # nothing is being typed that could be lost
+        catch_up(state)
     pages = [
         st.Page(HERE / "pages" / "figures.py", title="Figures", default=True),
         st.Page(HERE / "pages" / "plan.py", title="Plan"),
@@ -75,7 +78,7 @@ def main() -> None:
         st.Page(HERE / "pages" / "handover.py", title="Hand over"),
         st.Page(HERE / "pages" / "weeks.py", title="Weeks"),
     ]
-    if state.kept is not None and not state.kept.may_change:
+    if only_reads:
         pages = [page for page in pages if page.title not in TO_CHANGE]
     page = st.navigation(pages, position="top")
     toolbar(state)
