@@ -19,6 +19,7 @@ from engine.planning.plan import Plan
 from engine.planning.planner import plan_week
 from engine.rates import Rates, RateTable
 from engine.reasons.curve import curve
+from engine.reasons.options import nearest_to_paying
 from engine.reasons.pairs import pairs
 from engine.reasons.rates import rate_intervals
 from engine.reasons.values import values
@@ -72,7 +73,7 @@ def measure(depots: int, customers: int, say: Callable[[str], None] = print) -> 
         ("rate intervals", lambda: rate_intervals(plan)),
         ("values and rate intervals", lambda: (values(plan), rate_intervals(plan))),
         ("values and how far they hold", lambda: values(plan, holds=True)),
-        ("the 50 lanes nearest to paying", lambda: rate_intervals(plan).nearest(50)),
+        ("the 50 lanes nearest to paying", lambda: nearest_to_paying(plan, 50)),
         ("pairs", lambda: pairs(plan)),
         ("curve of an order, 0 to double", lambda: curve(plan, name, 0 * order, 2 * order)),
         (

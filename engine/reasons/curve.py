@@ -120,7 +120,9 @@ def _walk(plan: Plan, ground: Ground, end: End, distance: Decimal) -> tuple[list
         if shares and _short_of(ground.model.stand_in, one, ground):
             return walked, f"From there on somebody goes short. {SHARED}"
         walked.append(one)
-        ground, left = one.after, left - one.amount
+        left -= one.amount
+        if left:
+            ground = one.after
     return walked, ""
 
 
@@ -141,7 +143,7 @@ class _Costs:
 
 
 def _costs_of(one: Stretch) -> _Costs:
-    ground, model = one.after, one.after.model
+    ground, model = one.before, one.before.model
     freight = short = unsent = quantity = 0
     for row, change in zip(one.rows.tolist(), one.change.tolist(), strict=True):
         money = change * int(model.money[row])

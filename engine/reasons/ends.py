@@ -2,12 +2,12 @@
 
 from dataclasses import dataclass
 from decimal import Decimal
+from functools import cached_property
 from typing import Literal
 
 import numpy as np
 
 from engine.changes import Alter
-from engine.network.closure import NO_WAY
 from engine.planning.model import Integers
 from engine.planning.plan import Plan
 from engine.reasons.ground import Ground, grounded_again
@@ -38,14 +38,20 @@ class Stretch:
 
     amount: in grains; cost: of one unit, weights included
     rows, change: what the rows gain, in grains
-    after: the plan at the far end
+    before: the plan at the near end
     """
 
     amount: int
     cost: int
     rows: Integers
     change: Integers
-    after: Ground
+    before: Ground
+    end: End
+
+    @cached_property
+    def after(self) -> Ground:
+        """The plan at the far end."""
+        return moved(self.before, self.end, self.amount, self.rows, self.change)
 
 
 def stretch(ground: Ground, end: End, at_most: int) -> Stretch | None:
@@ -96,7 +102,7 @@ def _over(ground: Ground, end: End, tied: Tied, amount: int, change: Integers) -
 
 
 def _stretch(ground: Ground, end: End, amount: int, cost: int, rows: Integers, change: Integers) -> Stretch:
-    return Stretch(amount, cost, rows, change, moved(ground, end, amount, rows, change))
+    return Stretch(amount, cost, rows, change, ground, end)
 
 
 def moved(ground: Ground, end: End, amount: int, rows: Integers, change: Integers) -> Ground:
@@ -107,22 +113,3 @@ def moved(ground: Ground, end: End, amount: int, rows: Integers, change: Integer
         upper = upper.copy()
         upper[ground.model.stay_rows[end.index]] += amount if end.more else -amount
     return grounded_again(ground, quantity, ground.lower, upper)
-
-
-def cheapest(ground: Ground, end: End) -> int:
-    """What the next unit costs, weights included; NO_WAY if there is no way."""
-    problem, chains, stand_in = ground.problem, ground.closure.cost, ground.model.stand_in
-    if end.what == "depot":
-        stay = int(ground.model.stay_rows[end.index])
-        charge = int(problem.cost[stay])
-        if end.more:
-            return min(charge, int(ground.to_keeper[end.index]))
-        if ground.upper[stay] == 0:
-            return NO_WAY
-        return -charge if ground.quantity[stay] > 0 else int(ground.from_keeper[end.index])
-    rows = np.arange(problem.start[end.index], problem.start[end.index + 1])
-    usable = ground.has_room if end.more else ground.has_spare
-    rows = rows[usable[rows]]
-    onward = chains[problem.depot[rows], stand_in] if end.more else chains[stand_in, problem.depot[rows]]
-    cost = problem.cost[rows] if end.more else -problem.cost[rows]
-    return int(np.where(onward < NO_WAY, cost + onward, NO_WAY).min(initial=NO_WAY))

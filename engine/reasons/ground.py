@@ -132,6 +132,6 @@ def money_of(weights: Weights, values: Integers) -> tuple[Integers, Flags]:
     values: any shape; NO_WAY and -NO_WAY are answered with False.
     """
     flat = np.ascontiguousarray(values, dtype=np.int64).ravel()
-    money, pure = np.empty_like(flat), np.empty_like(flat)
+    money, pure = np.empty_like(flat), np.empty(len(flat), dtype=np.bool_)
     take_apart(np.array(list(weights.of.values()), dtype=np.int64), flat, money, pure)
-    return money.reshape(values.shape), pure.reshape(values.shape).astype(bool)
+    return money.reshape(values.shape), pure.reshape(values.shape)

@@ -7,10 +7,16 @@ the row itself (Ahuja, Magnanti & Orlin 1993, sections 9.11 and 11.10 on sensiti
 from typing import NamedTuple
 
 import numpy as np
+import numpy.typing as npt
 
 from engine.exact import Integers
 from engine.network.closure import NO_WAY
 from engine.network.compiled import kernel
+
+Flags = npt.NDArray[np.bool_]
+
+LOW, HIGH = 1, 2
+"""Which thresholds of a row are to be filled."""
 
 MANY = 2**60
 """A capacity of this or more never limits anything."""
@@ -41,18 +47,18 @@ class Searched(NamedTuple):
 
 
 @kernel
-def take_apart(weights: Integers, values: Integers, money: Integers, pure: Integers) -> None:
-    """Fills the money in sums of weights and money, and 1 where no weight is in one; see `aims.Weights`.
+def take_apart(weights: Integers, values: Integers, money: Integers, pure: Flags) -> None:
+    """Fills the money in sums of weights and money, and whether no weight is in one; see `aims.Weights`.
 
     weights: the largest first. Values beyond NO_WAY are no sums.
     """
     for n in range(len(values)):
-        money[n], pure[n] = values[n], 1 if abs(values[n]) < NO_WAY else 0
+        money[n], pure[n] = values[n], abs(values[n]) < NO_WAY
         if pure[n]:
             for weight in weights:
                 if 2 * abs(money[n]) >= weight:
                     times = (2 * money[n] + weight) // (2 * weight)
-                    pure[n] &= times == 0
+                    pure[n] = pure[n] and times == 0
                     money[n] -= times * weight
 
 
@@ -123,57 +129,62 @@ def thresholds(rows: Rows, chains: Integers, low: Integers, high: Integers) -> N
                         high[row] = min(high[row], rows.cost[other] + onward)
 
 
-@kernel
-def thresholds_without(
-    rows: Rows, searched: Searched, customers: Integers, hard: Integers, low: Integers, high: Integers
-) -> None:
-    """Fills `low` and `high` of the rows `hard`, through chains that do not use the row itself.
+class Hard(NamedTuple):
+    """Rows whose cheapest replacement may seem to be themselves: the row, its customer, LOW and HIGH."""
 
-    customers: the customer of each hard row
-    """
+    row: Integers
+    customer: Integers
+    which: Integers
+
+
+@kernel
+def thresholds_without(rows: Rows, searched: Searched, hard: Hard, low: Integers, high: Integers) -> None:
+    """Fills `low` and `high` of hard rows, through chains that do not use the row itself."""
     depots = len(searched.price)
     onward = searched.direct.copy()
     backward = searched.direct.T.copy()
     first_hop = np.empty(depots, dtype=np.int64)
     distance = np.empty(depots, dtype=np.int64)
     key = np.empty(depots, dtype=np.int64)
-    for n in range(len(hard)):
-        row, j = hard[n], customers[n]
+    for n in range(len(hard.row)):
+        row, j = hard.row[n], hard.customer[n]
         i, first, last = rows.depot[row], rows.start[j], rows.start[j + 1]
-        for k in range(depots):
-            first_hop[k] = searched.second[i, k] if searched.at[i, k] == j else searched.direct[i, k]
-        for less in range(first, last):
-            if less == row or rows.depot[less] != i or rows.quantity[less] <= rows.lower[less]:
-                continue
-            for more in range(first, last):
-                if more != less and rows.quantity[more] < rows.upper[more]:
-                    k = rows.depot[more]
-                    first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
-        for k in range(depots):
-            key[k] = -searched.price[k]
-        spread(i, first_hop, onward, key, distance)
-        low[row] = -NO_WAY
-        for less in range(first, last):
-            there = distance[rows.depot[less]]
-            if less != row and rows.quantity[less] > rows.lower[less] and there < NO_WAY:
-                low[row] = max(low[row], rows.cost[less] - there)
-        for k in range(depots):
-            first_hop[k] = searched.second[k, i] if searched.at[k, i] == j else searched.direct[k, i]
-        for more in range(first, last):
-            if more == row or rows.depot[more] != i or rows.quantity[more] >= rows.upper[more]:
-                continue
+        if hard.which[n] & LOW:
+            low[row] = -NO_WAY
+            for k in range(depots):
+                first_hop[k] = searched.second[i, k] if searched.at[i, k] == j else searched.direct[i, k]
             for less in range(first, last):
-                if less != more and rows.quantity[less] > rows.lower[less]:
-                    k = rows.depot[less]
-                    first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
-        for k in range(depots):
-            key[k] = searched.price[k]
-        spread(i, first_hop, backward, key, distance)
-        high[row] = NO_WAY
-        for more in range(first, last):
-            there = distance[rows.depot[more]]
-            if more != row and rows.quantity[more] < rows.upper[more] and there < NO_WAY:
-                high[row] = min(high[row], rows.cost[more] + there)
+                if less == row or rows.depot[less] != i or rows.quantity[less] <= rows.lower[less]:
+                    continue
+                for more in range(first, last):
+                    if more != less and rows.quantity[more] < rows.upper[more]:
+                        k = rows.depot[more]
+                        first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
+            for k in range(depots):
+                key[k] = -searched.price[k]
+            spread(i, first_hop, onward, key, distance)
+            for less in range(first, last):
+                there = distance[rows.depot[less]]
+                if less != row and rows.quantity[less] > rows.lower[less] and there < NO_WAY:
+                    low[row] = max(low[row], rows.cost[less] - there)
+        if hard.which[n] & HIGH:
+            for k in range(depots):
+                first_hop[k] = searched.second[k, i] if searched.at[k, i] == j else searched.direct[k, i]
+            for more in range(first, last):
+                if more == row or rows.depot[more] != i or rows.quantity[more] >= rows.upper[more]:
+                    continue
+                for less in range(first, last):
+                    if less != more and rows.quantity[less] > rows.lower[less]:
+                        k = rows.depot[less]
+                        first_hop[k] = min(first_hop[k], rows.cost[more] - rows.cost[less])
+            for k in range(depots):
+                key[k] = searched.price[k]
+            spread(i, first_hop, backward, key, distance)
+            high[row] = NO_WAY
+            for more in range(first, last):
+                there = distance[rows.depot[more]]
+                if more != row and rows.quantity[more] < rows.upper[more] and there < NO_WAY:
+                    high[row] = min(high[row], rows.cost[more] + there)
 
 
 @kernel
@@ -202,6 +213,24 @@ def spread(source: int, first_hop: Integers, step: Integers, key: Integers, dist
         for k in range(depots):
             if step[nearest, k] < NO_WAY and here + step[nearest, k] < distance[k]:
                 distance[k] = here + step[nearest, k]
+
+
+@kernel
+def find_tied(rows: Rows, near: Integers, far: Integers, found: Integers) -> int:
+    """Fills the rows whose cost is the difference of the distances at their ends; how many they are.
+
+    near: (depots,) and far: (customers,) distances, NO_WAY where there is none
+    """
+    count = 0
+    for j in range(len(rows.start) - 1):
+        if far[j] >= NO_WAY:
+            continue
+        for row in range(rows.start[j], rows.start[j + 1]):
+            here = near[rows.depot[row]]
+            if here < NO_WAY and here + rows.cost[row] == far[j] and rows.upper[row] > rows.lower[row]:
+                found[count] = row
+                count += 1
+    return count
 
 
 class Ties(NamedTuple):

@@ -20,7 +20,7 @@ from engine.network.closure import NO_WAY
 from engine.planning.model import NO_RATE, Integers
 from engine.planning.plan import Plan
 from engine.reasons.ground import Flags, Ground, ground_of, money_of
-from engine.reasons.kernels import thresholds, thresholds_without
+from engine.reasons.kernels import HIGH, LOW, Hard, thresholds, thresholds_without
 from engine.reasons.rows import key_at
 
 FINEST = 6
@@ -61,18 +61,23 @@ class RateInterval:
 class RateIntervals:
     """Thresholds of all rate rows of a plan, in sheet order; each is put in words when it is asked for.
 
-    rows: (rates,) rows of the problem, in sheet order
     low:  (problem rows,) money with surcharge below which more would go on the row, where `low_is_money`
     high: the same above which less would
     """
 
     plan: Plan
     ground: Ground
-    rows: Integers
     low: Integers
     high: Integers
     low_is_money: Flags
     high_is_money: Flags
+
+    @cached_property
+    def rows(self) -> Integers:
+        """(rates,) the rate rows among the rows of the problem, in sheet order."""
+        of_rate = self.plan.model.rate_row
+        rates = np.flatnonzero(of_rate != NO_RATE)
+        return rates[np.argsort(of_rate[rates], kind="stable")]
 
     def __len__(self) -> int:
         return len(self.rows)
@@ -183,16 +188,14 @@ def intervals_on(plan: Plan, ground: Ground) -> RateIntervals:
     low, high = np.empty(problem.rows, np.int64), np.empty(problem.rows, np.int64)
     thresholds(ground.rows, ground.closure.cost, low, high)
     hard = _rows_between(ground)
-    if len(hard):
-        thresholds_without(ground.rows, ground.searched, problem.customer[hard], hard, low, high)
+    if len(hard.row):
+        thresholds_without(ground.rows, ground.searched, hard, low, high)
     low, low_is_money = money_of(model.weights, low)
     high, high_is_money = money_of(model.weights, high)
-    rates = np.flatnonzero(model.rate_row != NO_RATE)
-    rates = rates[np.argsort(model.rate_row[rates], kind="stable")]
-    return RateIntervals(plan, ground, rates, low, high, low_is_money, high_is_money)
+    return RateIntervals(plan, ground, low, high, low_is_money, high_is_money)
 
 
-def _rows_between(ground: Ground) -> Integers:
+def _rows_between(ground: Ground) -> Hard:
     """Rows that could carry both more and less, at customers where another could carry less.
 
     A chain that seems to replace such a row may use the row itself; only if it is part of a cheapest
@@ -200,10 +203,10 @@ def _rows_between(ground: Ground) -> Integers:
     """
     closure, problem = ground.closure, ground.problem
     there = closure.direct < NO_WAY
-    part: Integers = np.unique(np.concatenate([closure.more_on[there], closure.less_on[there]]))
-    part = part[ground.has_room[part] & ground.has_spare[part]]
-    if not len(part):
-        return part
-    several = np.add.reduceat(ground.has_spare.astype(np.int64), problem.start[:-1]) > 1
-    hard: Integers = part[several[problem.customer[part]]]
-    return hard
+    given, taken = np.unique(closure.less_on[there]), np.unique(closure.more_on[there])
+    rows = np.union1d(given, taken)
+    rows = rows[ground.has_room[rows] & ground.has_spare[rows]]
+    several = np.bincount(problem.customer[np.flatnonzero(ground.has_spare)], minlength=problem.customers) > 1
+    rows = rows[several[problem.customer[rows]]]
+    which = LOW * np.isin(rows, given) + HIGH * np.isin(rows, taken)
+    return Hard(rows, problem.customer[rows], which.astype(np.int64))

@@ -13,7 +13,7 @@ from engine.network.closure import NO_WAY
 from engine.network.problem import UNLIMITED
 from engine.planning.model import Integers
 from engine.reasons.ground import Ground
-from engine.reasons.kernels import MANY, Ties, least_dearly, most_cheaply, most_for_each, most_over
+from engine.reasons.kernels import MANY, Ties, find_tied, least_dearly, most_cheaply, most_for_each, most_over
 
 
 @dataclass(frozen=True, eq=False)
@@ -73,9 +73,9 @@ def _turned(distance: Integers) -> Integers:
 
 def _tied(ground: Ground, depot_distance: Integers, customer_distance: Integers) -> Tied:
     problem = ground.problem
-    near, far = depot_distance[problem.depot], np.repeat(customer_distance, np.diff(problem.start))
-    tied = (near < NO_WAY) & (far < NO_WAY) & (problem.cost + near == far)
-    rows = np.flatnonzero(tied & (ground.has_room | ground.has_spare))
+    found = np.empty(problem.rows, dtype=np.int64)
+    near, far = np.ascontiguousarray(depot_distance), np.ascontiguousarray(customer_distance)
+    rows = found[: find_tied(ground.rows, near, far, found)].copy()
     depot, customer = problem.depot[rows], problem.customer[rows]
     count = np.bincount(customer, minlength=problem.customers)
     through = np.flatnonzero(count[customer] > 1)

@@ -98,12 +98,13 @@ def _columns(model: Model, side: Side, shares: bool) -> list[_Cell]:
     money, _ = money_of(model.weights, side.cost)
     holds = np.full(len(money), MANY) if side.holds is None else side.holds
     amounts = {amount: to_decimal(amount, model.money_places) for amount in set(money[known].tolist())}
+    holds_for = {most: to_decimal(most, model.quantity_places) for most in set(holds[known].tolist())}
     units = {number: Decimal(number) for number in set(side.short.tolist())}
     return [
         (
             amounts[cost],
             units[short],
-            None if most >= MANY else to_decimal(most, model.quantity_places),
+            None if most >= MANY else holds_for[most],
         )
         if there
         else (None, None, None)
