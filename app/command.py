@@ -58,11 +58,28 @@ WEEK = click.argument(
 @click.option("--sample", is_flag=True, help="Open the sample week.")
 @click.option("--port", default=8507, show_default=True, help="Where the desk listens, on this machine only.")
 @click.option("--browser/--no-browser", default=True, help="Open a browser window.")
-def desk(week: tuple[Path, ...] = (), sample: bool = False, port: int = 8507, browser: bool = True) -> None:
+@click.option("--records", envvar="HITHE_RECORDS", metavar="URL", show_envvar=True,
+              help="Where weeks are kept: a file, or postgresql://USER@HOST/DATABASE.")  # fmt: skip
+@click.pass_context
+def desk(
+    ctx: click.Context,
+    week: tuple[Path, ...] = (),
+    sample: bool = False,
+    port: int = 8507,
+    browser: bool = True,
+    records: str | None = None,
+) -> None:
     """Open the desk in the browser, with the week in these files if any are given."""
     from app.serve import serve
+    from engine.records import NotSaved, open_records
 
-    serve(port=port, open_browser=browser, files=week, sample=sample)
+    if records is not None:  # a place that was named and will not do is said before the desk opens
+        try:
+            open_records(records).close()
+        except NotSaved as failure:
+            click.echo(str(failure), err=True)
+            ctx.exit(UNUSABLE)
+    serve(port=port, open_browser=browser, files=week, sample=sample, records=records)
 
 
 @main.command()

@@ -1,5 +1,6 @@
 """Starts the desk: Streamlit on this machine only, with every setting that matters said here."""
 
+import os
 import socket
 import threading
 import time
@@ -10,6 +11,8 @@ from collections.abc import Sequence
 from pathlib import Path
 
 import click
+
+from engine.records.opening import VARIABLE
 
 ADDRESS = "127.0.0.1"
 LARGEST_UPLOAD_MB = 20
@@ -33,8 +36,14 @@ def flags(port: int) -> dict[str, object]:
     }
 
 
-def serve(port: int, open_browser: bool, files: Sequence[Path] = (), sample: bool = False) -> None:
-    """Run the desk until it is interrupted."""
+def serve(
+    port: int,
+    open_browser: bool,
+    files: Sequence[Path] = (),
+    sample: bool = False,
+    records: str | None = None,
+) -> None:
+    """Run the desk until it is interrupted; `records` is where weeks are kept (None: the user's folder)."""
     from streamlit import config
     from streamlit.runtime.pages_manager import PagesManager
     from streamlit.web import bootstrap
@@ -53,6 +62,8 @@ def serve(port: int, open_browser: bool, files: Sequence[Path] = (), sample: boo
     if open_browser:
         threading.Thread(target=_open_when_ready, args=(address,), daemon=True).start()
     begin()
+    if records is not None:
+        os.environ[VARIABLE] = records
     arguments = ["--sample"] if sample else []
     arguments += [str(file.resolve()) for file in files]
     bootstrap.run(str(script), False, arguments, settings)

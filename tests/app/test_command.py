@@ -152,3 +152,13 @@ def test_it_runs_from_another_folder(tmp_path: Path) -> None:
     )  # fmt: skip
     assert done.returncode == 0
     assert done.stdout.startswith("6 depots")
+
+
+def test_records_that_cannot_be_opened_are_said_before_the_desk_opens(tmp_path: Path) -> None:
+    (tmp_path / "notes.txt").write_text("no database " * 200)
+    ended = CliRunner().invoke(main, ["desk", "--no-browser", "--records", str(tmp_path / "notes.txt")])
+    assert ended.exit_code == 2
+    assert "damaged or is no records file" in ended.stderr
+    ended = CliRunner().invoke(main, ["desk", "--no-browser", "--records", "mysql://a@b/c"])
+    assert ended.exit_code == 2
+    assert "postgresql://USER@HOST/DATABASE" in ended.stderr
