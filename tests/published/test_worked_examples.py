@@ -79,7 +79,7 @@ def test_the_slowest_lane_is_the_published_one(example: dict[str, Any]) -> None:
     times = np.array(example["time"])
 
     def possible(longest: int) -> bool:
-        limits = np.where(times.T > longest, 0, UNLIMITED).reshape(-1)
+        limits = np.where(longest < times.T, 0, UNLIMITED).reshape(-1)
         dense = Problem.dense(example["supply"], example["demand"], times)
         try:
             least_cost(replace(dense, at_most=limits))
