@@ -21,13 +21,15 @@ def nearest(name: str, known: Iterable[str]) -> str | None:
     longer ones, where digits agree (Depot 1 is no slip of Depot 2).
     """
     bare = _bare(name)
-    digits = _digits(name)
+    digits, letters = _digits(name), _letters(bare)
     best: tuple[float, str] | None = None
     for candidate in known:
         other = _bare(candidate)
         if bare == other and bare:
             return candidate
         if abs(len(bare) - len(other)) > 2 or digits != _digits(candidate) or min(len(bare), len(other)) < 4:
+            continue
+        if len(letters ^ _letters(other)) > 4:  # two slips change four letters at most
             continue
         matcher = SequenceMatcher(None, bare, other, autojunk=False)
         slips = max(len(bare), len(other)) - sum(block.size for block in matcher.get_matching_blocks())
@@ -56,6 +58,12 @@ def nearly_alike(names: Iterable[str]) -> list[tuple[str, str]]:
 _NOT_LETTERS = {code: None for code in range(128) if not chr(code).isalnum()}
 
 
+@lru_cache(maxsize=1 << 16)
+def _letters(bare: str) -> frozenset[str]:
+    return frozenset(bare)
+
+
+@lru_cache(maxsize=1 << 17)
 def _bare(name: str) -> str:
     if name.isascii():
         return name.casefold().translate(_NOT_LETTERS)
@@ -63,5 +71,6 @@ def _bare(name: str) -> str:
     return "".join(c for c in decomposed if c.isalnum())
 
 
+@lru_cache(maxsize=1 << 17)
 def _digits(name: str) -> str:
     return "".join(c for c in name if c.isdigit())
