@@ -1,6 +1,6 @@
 """The desk and the records: the address names the week, and what is on screen as made is on disk."""
 
-import itertools
+import getpass
 
 import streamlit as st
 
@@ -32,9 +32,6 @@ WATCH_SECONDS = 2.0
 WEEK, READ, WHO = "week", "read", "who"
 """What the address says: the week's id, its id for reading only, and who works here."""
 
-_numbers = itertools.count(1)
-
-
 @st.cache_resource(show_spinner=False)
 def _opened(place: str) -> Records:
     return open_records(place)
@@ -55,9 +52,17 @@ def records() -> Records:
     return _opened(default_place())
 
 
+def whoever() -> str:
+    """Who works here unless the address says otherwise: the name that the machine knows them by."""
+    try:
+        return getpass.getuser()
+    except (OSError, KeyError):  # an account without a name, in a container for instance
+        return "Desk"
+
+
 def named_in_address(state: Desk) -> bool:
     """Bring back the week that the address names, if it names one that is there."""
-    state.who = st.query_params.get(WHO, "") or f"Desk {next(_numbers)}"
+    state.who = st.query_params.get(WHO, "") or whoever()
     any_id = st.query_params.get(WEEK) or st.query_params.get(READ)
     if not any_id:
         return False
