@@ -10,6 +10,7 @@ from app.session import Desk
 from engine.changes import SetHold
 from engine.planning.plan import Plan
 from engine.reasons import NearLane, RateInterval, chain, nearest_to_paying, rate_intervals, unquoted
+from engine.reasons.ground import is_shared
 
 MOST_NEAR = 100
 KINDS = {"near": "Nearest to paying", "used": "Lanes in use", "unquoted": "Without a quote"}
@@ -22,6 +23,8 @@ def rates_view(state: Desk, plan: Plan) -> None:
         "Which lanes", list(KINDS), default="near", required=True, format_func=KINDS.__getitem__,
         key="rates-kind", label_visibility="collapsed",
     ) or "near"  # fmt: skip
+    if is_shared(plan):
+        st.info("Goods are shared evenly this week: these figures are given the shares as they are.")
     if kind == "near":
         _near(state, plan)
     elif kind == "used":

@@ -48,6 +48,7 @@ def why_view(state: Desk, plan: Plan) -> None:
                 "Rate less the rate it replaces, plus what is displaced",
                 money=True,
             ),
+            Heading("And", "What no money makes up for, per unit"),
         ]
         picked = reasons_table(
             headings, [_row(one) for one in found.alternatives], f"why-{state.generation}-{customer}",
@@ -74,7 +75,17 @@ def _row(one: Alternative) -> list[Cell]:
         _instead(one),
         one.displaced,
         one.dearer,
+        _besides(one),
     ]
+
+
+def _besides(one: Alternative) -> str:
+    """What no money makes up for: somebody short, or goods left that must move."""
+    leg = one.leg
+    if leg is None:
+        return ""
+    said = ["1 more goes short"] if leg.short > 0 else []
+    return ", ".join(said + (["1 more stays that must move"] if leg.kept > 0 else []))
 
 
 def _instead(one: Alternative) -> str:

@@ -16,7 +16,7 @@ from engine.changes import Alter, Change, SetHold
 from engine.exact import to_decimal, to_integer, total_of
 from engine.figures import RateKey
 from engine.network.closure import NO_WAY, Exchange
-from engine.planning.model import NO_RATE, Integers
+from engine.planning.model import EVEN_SHARE, NO_RATE, Integers
 from engine.planning.plan import Plan
 from engine.reasons.ends import End, moved
 from engine.reasons.ground import SHARED, Ground, ground_of, grounded_again, is_shared
@@ -53,12 +53,14 @@ class Step:
 class Leg:
     """A part of the change that displaces the same things: `by` is who brings or keeps the unit first.
 
-    `cost` is per unit, charges included; `short` the change in what goes short per unit.
+    `cost` is per unit, charges included; `short` the change in what goes short per unit, `kept` the change
+    in what stays although it must move.
     """
 
     quantity: Decimal
     cost: Decimal
     short: int
+    kept: int
     by: str | None
     by_haulier: str | None
     steps: tuple[Step, ...]
@@ -229,7 +231,10 @@ def _followed(plan: Plan, ground: Ground, asked: Chain, follow: _Follow, after: 
         if found is None or found[1] == 0:
             return _with(asked, tuple(legs), "No further: limits, holds or what must move stand in the way.")
         way, amount = found
-        legs.append(_leg(plan, way, amount))
+        leg = _leg(plan, way, amount)
+        if leg.short and plan.week.rules.when_short == EVEN_SHARE:
+            return _with(asked, tuple(legs), f"From there on somebody goes short. {SHARED}")
+        legs.append(leg)
         ground, left = after(ground, way, amount), left - amount
     return _with(asked, tuple(legs))
 
@@ -320,6 +325,9 @@ def _leg(plan: Plan, way: _Way, amount: int) -> Leg:
         if model.problem.depot[row] == stand_in and row != model.joining_row
     )  # fmt: skip
 
+    must = set(model.must_row.tolist())
+    kept = sum(x for row, x in zip(way.rows.tolist(), way.change.tolist(), strict=True) if row in must)
+
     def depot(index: int) -> str | None:
         return None if index == stand_in else model.depots[index]
 
@@ -342,6 +350,7 @@ def _leg(plan: Plan, way: _Way, amount: int) -> Leg:
         to_decimal(amount, model.quantity_places),
         to_decimal(model.weights.split(cost).money, model.money_places),
         short,
+        kept,
         by.depot,
         by.haulier,
         tuple(reversed(steps)) if way.takes_over else tuple(steps),

@@ -25,7 +25,11 @@ def sentence(chain: Chain, leg: Leg, unit: str, currency: str, number: Number = 
     head = _head(chain, leg, quantity)
     body = f"{head}: {'; '.join(told)}" if told else head
     short = {1: f", and 1 {unit} more goes short", -1: f", and 1 {unit} less goes short"}.get(leg.short, "")
-    return f"{body}; {signed(leg.cost, number)} {currency} per {unit}{short}."
+    kept = {
+        1: f", and 1 {unit} more stays that must move",
+        -1: f", and 1 {unit} more leaves that must move",
+    }.get(leg.kept, "")
+    return f"{body}; {signed(leg.cost, number)} {currency} per {unit}{short}{kept}."
 
 
 def signed(amount: Decimal, number: Number = canonical) -> str:

@@ -71,8 +71,10 @@ def why(plan: Plan, customer: str) -> Why:
     return Why(customer, tuple(sorted(found, key=_order)), note)
 
 
-def _order(one: Alternative) -> tuple[bool, bool, Decimal]:
-    return one.quantity == 0, one.dearer is None, Decimal(0) if one.dearer is None else one.dearer
+def _order(one: Alternative) -> tuple[bool, bool, bool, Decimal]:
+    leg, dearer = one.leg, Decimal(0) if one.dearer is None else one.dearer
+    worse = leg is not None and (leg.short > 0 or leg.kept > 0)
+    return one.quantity == 0, one.dearer is None, worse, dearer
 
 
 def _alternative(plan: Plan, ground: Ground, row: int) -> Alternative:

@@ -48,7 +48,7 @@ def values_sheet(plan: Plan, header: str) -> Sheet:
     found = values(plan, holds=True)
     used = list(_used(plan))
     near = nearest_to_paying(plan, MOST_UNUSED)
-    rows = [*_rows(plan, found), *_rate_rows(plan, used, near)]
+    rows = [*_rows(plan, found), *_rate_rows(plan, found, used, near)]
     return Sheet(
         "Values",
         _WIDTHS,
@@ -98,13 +98,17 @@ def _cells(where: str, one: UnitValue) -> list[Value]:
     ]  # fmt: skip
 
 
-def _rate_rows(plan: Plan, used: Sequence[RateInterval], near: Sequence[NearLane]) -> Iterator[Row]:
+def _rate_rows(
+    plan: Plan, found: Values, used: Sequence[RateInterval], near: Sequence[NearLane]
+) -> Iterator[Row]:
     yield Row([])
     yield Row(["How far each rate can move"], [Style("title")], height=26)
     for sentence in _ABOUT_RATES:
         yield Row([sentence], [Style("quiet")])
     unused = sum(1 for row in (plan.model.rate_row >= 0) & (plan.flow.quantity == 0) if row)
     shown = f"Unused rates: the {len(near)} nearest to paying" if near else "No unused rate could pay"
+    if found.withheld:
+        yield Row(["Given the shares as they are."], [Style("quiet")])
     yield Row([f"Rates in use: all. {shown}, of {unused}."], [Style("quiet")])
     yield _headings(_RATE_HEADINGS, 3)
     intervals = [*used, *(lane.interval for lane in near)]

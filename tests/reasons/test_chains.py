@@ -132,3 +132,35 @@ def test_other_changes_have_no_chain() -> None:
         chain(plan, Alter("customer", "Nobody", "ordered", D(3)))
     with pytest.raises(ValueError, match="no rate row"):
         chain(plan, SetHold(RateKey("Quarry", "Elm"), D(3)))
+
+
+def test_a_chain_that_leaves_somebody_short_or_goods_that_must_move_says_so() -> None:
+    """Quarry's 10 must move and go to Elm; put on Northgate instead, they stay."""
+    week = Week.of(
+        (Depot("Quarry", D(10), must_move=D(10)), Depot("Northgate", D(10))),
+        (Customer("Elm", (Order(D(10)),)),),
+        (RateRow("Quarry", "Elm", D(9)), RateRow("Northgate", "Elm", D(4))),
+    )
+    (told,) = sentences(chain(plan_week(week), SetHold(RateKey("Northgate", "Elm"), D(3))), "t", "EUR")
+    assert told == (
+        "3 t more from Northgate to Elm, in place of Quarry: "
+        "Northgate keeps 3 t less and Quarry keeps 3 t more; -5 EUR per t, and 1 t more stays that must move."
+    )
+
+
+def test_even_shares_end_a_chain_where_somebody_would_go_short() -> None:
+    week = Week.of(
+        (Depot("Quarry", D(12)),),
+        (Customer("Elm", (Order(D(5)),)), Customer("Ash", (Order(D(5)),))),
+        (RateRow("Quarry", "Elm", D(3)), RateRow("Quarry", "Ash", D(3))),
+        Rules(when_short="even share"),
+    )
+    plan = plan_week(week)
+    found = chain(plan, Alter("customer", "Elm", "ordered", D(9)))
+    assert [(leg.quantity, leg.cost) for leg in found.legs] == [(2, 3)]
+    assert "shared evenly" in found.ends_early
+    elm = values(plan).customers[0]
+    assert (elm.one_more, elm.one_less) == (3, -3)
+    full = plan_week(week.apply(Alter("depot", "Quarry", "available", D(10))))
+    assert values(full).customers[0].one_more is None
+    assert values(full).depots[0].one_less is None
