@@ -12,6 +12,7 @@ from app.kept import Kept
 from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
 from engine.history import Entry, History
+from engine.intake.answers import Answers
 from engine.intake.build_lists import Unused
 from engine.intake.earlier import Quantities
 from engine.intake.frames import TABLES
@@ -240,10 +241,12 @@ def try_plan(
         return None, (Finding(Severity.STOPS, "too large", str(too_large)),)
 
 
-def read_files(files: Sequence[Any]) -> tuple[engine.Reading | None, tuple[Finding, ...]]:
+def read_files(
+    files: Sequence[Any], answers: Answers | None = None
+) -> tuple[engine.Reading | None, tuple[Finding, ...]]:
     """What the uploaded files say, or the one finding that says why they cannot be read."""
     try:
-        reading = engine.read_week(files)
+        reading = engine.read_week(files, answers=answers)
     except engine.Unreadable as refused:
         return None, (refused.finding,)
     return reading, tuple(by_gravity(reading.findings))

@@ -9,6 +9,7 @@ import sample_data
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
 from app.parts.proposal import proposal
+from app.parts.uploaded import answers, keep, uploaded_panel
 from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
 
@@ -61,11 +62,12 @@ def opening(state: Desk) -> None:
     if not files:
         return
     uploaded = [(file.name, file.getvalue()) for file in files]
-    reading, findings = read_files(uploaded)
+    reading, findings = read_files(uploaded, answers())
     if reading is None:
         st.error(f"{plain(findings[0].message)} {plain(findings[0].mend)}")
         return
     if state.week.is_empty and not reading.week.is_empty:
+        keep(uploaded, reading)
         state.open(reading)
         st.rerun()
     st.markdown(f"**Read:** {plain(reading.summary)}")
@@ -74,6 +76,7 @@ def opening(state: Desk) -> None:
         return
     _part_of_a_week(state, uploaded)
     if reading.tables.issuperset(WHOLE) and st.button("Put these figures in place of the week on screen"):
+        keep(uploaded, reading)
         state.open(reading)
         st.rerun()
     findings_panel(findings, key="upload")
@@ -123,3 +126,4 @@ else:
             rules_grid(state)
     with remarks:
         findings_panel(state.all_findings(), key="figures")
+        uploaded_panel(state)
