@@ -92,7 +92,7 @@ def desk(
               help="Write the plan as JSON; - is stdout.")  # fmt: skip
 @click.option("--values", "detail", type=click.Choice(["brief", "full"]), default="brief",
               show_default=True,
-              help="full: the JSON says how far values hold and within which rates the plan stays.")  # fmt: skip
+              help="full: the JSON also says how far values hold, and rates to stay within.")  # fmt: skip
 @click.pass_context
 def plan(
     ctx: click.Context,
