@@ -1,6 +1,7 @@
 """The desk and the records: the address names the week, and what is on screen as made is on disk."""
 
 import getpass
+from contextlib import nullcontext
 
 import streamlit as st
 
@@ -29,8 +30,10 @@ from engine.records import (
 )
 
 WATCH_SECONDS = 2.0
+MANY_RATES = 100_000
 WEEK, READ, WHO = "week", "read", "who"
 """What the address says: the week's id, its id for reading only, and who works here."""
+
 
 @st.cache_resource(show_spinner=False)
 def _opened(place: str) -> Records:
@@ -110,7 +113,9 @@ def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
     """Put a week that was just read into the records, and its id into the address."""
     if state.fresh is not None and not state.week.is_empty:
         try:
-            opened = create_week(records(), state.fresh)
+            many = len(state.week.rates) > MANY_RATES
+            with st.spinner("Saving the week …") if many else nullcontext():
+                opened = create_week(records(), state.fresh)
             ids = opened.listed.id, opened.listed.read_id
             state.kept = Kept(records(), *ids, unread=opened.unused, said=opened.findings)
             state.fresh, state.unsaved = None, ""

@@ -55,14 +55,14 @@ def merge(history: History, saved: int, theirs: Sequence[Made]) -> Merged:
     for made in theirs:
         merged = made.on(merged)
     end = len(merged.entries)
-    standing = _standing(merged, saved)
+    standing = {one: _touched(merged.entries[one]) for one in _standing(merged, saved)}
     moved: dict[int, int] = {}
     waiting: list[Touched] = []
     clashes: list[Clash] = []
     agreed: list[Entry] = []
     for position, entry in enumerate(history.entries[saved:], start=saved):
         mine = _touched(entry)
-        against = [one for one in standing if _touched(merged.entries[one]).meets(mine)]
+        against = [one for one, touching in standing.items() if touching.meets(mine)]
         same = next((one for one in against if _same(entry, merged.entries[one])), None)
         why = ""
         if same is not None and against == [same] and not any(mine.meets(one) for one in waiting):

@@ -297,7 +297,18 @@ def test_history_of_a_week_without_changes_is_the_week(records: Records) -> None
 
 
 def test_names_with_every_kind_of_character_come_back_from_large_weeks(records: Records) -> None:
-    odd = ["tab\there", "line\nbreak", "back\\slash", "\\N", "quote'\"", "=1+1", "%s ? :x", "Ünïcode €", " ", "\r"]
+    odd = [
+        "tab\there",
+        "line\nbreak",
+        "back\\slash",
+        "\\N",
+        "quote'\"",
+        "=1+1",
+        "%s ? :x",
+        "Ünïcode €",
+        " ",
+        "\r",
+    ]
     names = [f"{odd[n % len(odd)]} {n}" for n in range(120)]
     week = Week.of(
         tuple(Depot(name, D(n)) for n, name in enumerate(names)),
