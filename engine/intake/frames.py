@@ -119,7 +119,10 @@ def changes_between(
             found.setdefault(labels[position], {})[column.field] = finding
     keys = _keys(week, table, before)
     same = _unchanged(before, after, columns)
-    changes: list[Change] = [Remove(_WHAT[table], keys[label]) for label in keys if label not in set(labels)]
+    there = set(labels)
+    changes: list[Change] = [
+        Remove(_WHAT[table], _key(week, table, keys[label])) for label in keys if label not in there
+    ]
     problems_out: list[CellProblem] = []
     needed = [column.field for column in columns if column.needed]
     taken = _names_taken(week, table, keys, labels)
@@ -131,7 +134,7 @@ def changes_between(
         row = {name: _spelled(week, name, column[position]) for name, column in values.items()}
         if label not in keys and not faults and all(not v or v == "unit" for v in row.values()):
             continue
-        more, said = _row_changes(week, table, keys.get(label), row, faults, taken)
+        more, said = _row_changes(week, table, _key(week, table, keys.get(label)), row, faults, taken)
         changes.extend(more)
         headings = {column.field: column.heading for column in columns}
         problems_out.extend(
@@ -170,7 +173,7 @@ def _is_nothing(cell: Any) -> bool:
 
 
 def _keys(week: Week, table: str, before: pd.DataFrame) -> dict[Hashable, Any]:
-    """What each row of a frame is called in the week; rows that are not in it are left out."""
+    """The name, or id of the rate row, of each row of a frame; rows that are not in the week are left out."""
     if table != "rates":
         names = _texts(before, GRID_COLUMNS[table][0])
         known = week.depots if table == "depots" else week.customers
@@ -215,8 +218,13 @@ def _rate_keys(week: Week, before: pd.DataFrame) -> dict[Hashable, Any]:
             ]
             positions = sorted(positions[: len(ids)])
         for position, number in zip(positions, ids, strict=False):
-            keys[before.index[position]] = week.rates.key_of(number)
+            keys[before.index[position]] = number
     return keys
+
+
+def _key(week: Week, table: str, found: Any) -> Any:
+    """What names a row in the week: a name, or the key of the rate row with this id."""
+    return week.rates.key_of(found) if table == "rates" and found is not None else found
 
 
 def _row_at(week: Week, number: int) -> RateRow:
