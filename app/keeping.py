@@ -5,7 +5,7 @@ from contextlib import nullcontext
 
 import streamlit as st
 
-from app.kept import Kept
+from app.kept import READING_ONLY, Kept
 from app.session import Desk
 from engine.exact import TooLarge
 from engine.intake.build_lists import Unused
@@ -22,6 +22,7 @@ from engine.records import (
     default_place,
     find_plan,
     issue_plan,
+    latest_number,
     note_totals,
     open_records,
     open_week,
@@ -103,10 +104,7 @@ def show(state: Desk, opened: Opened) -> None:
         opened.unused,
         opened.findings,
     )
-    try:
-        state.issued = find_plan(records(), listed.id)
-    except Missing:
-        state.issued = None
+    state.issued = _issued_last(state.kept)
 
 
 def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
@@ -140,6 +138,9 @@ def issue(state: Desk, plan: Plan, note: str = "") -> Issued | None:
             state.unsaved or "The week is not in the records, so no plan can be issued.",
         )
         return None
+    if not state.kept.may_change:
+        state.message = ("error", READING_ONLY)
+        return None
     try:
         state.issued = issue_plan(
             state.kept.records, state.kept.week_id, plan, state.kept.saved, state.who, note
@@ -156,9 +157,10 @@ def catch_up(state: Desk) -> bool:
     if kept is None:
         return False
     try:
-        if version_of(kept.records, kept.week_id) == kept.saved:
+        if not is_behind(state, kept):
             return False
         theirs = changes_since(kept.records, kept.week_id, kept.saved)
+        state.issued = _issued_last(kept)
     except (NotSaved, Missing) as failure:
         state.unsaved = str(failure)
         return False
@@ -188,14 +190,23 @@ def keep_rest(state: Desk) -> None:
         state.unsaved = str(failure)
 
 
-def is_behind(kept: Kept) -> bool:
-    """Whether others changed the week since we looked.
+def is_behind(state: Desk, kept: Kept) -> bool:
+    """Whether others changed the week, or issued a plan of it, since we looked.
 
     Raises:
         NotSaved: the records cannot be reached.
         Missing: the week is gone.
     """
-    return version_of(kept.records, kept.week_id) != kept.saved
+    if version_of(kept.records, kept.week_id) != kept.saved:
+        return True
+    return latest_number(kept.records, kept.week_id) != (state.issued.number if state.issued else 0)
+
+
+def _issued_last(kept: Kept) -> Issued | None:
+    try:
+        return find_plan(kept.records, kept.week_id)
+    except Missing:
+        return None
 
 
 def _unread(state: Desk) -> tuple[Unused, ...]:

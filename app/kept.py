@@ -8,6 +8,8 @@ from engine.intake.build_lists import Unused
 from engine.records import Merged, Records, save
 from engine.week import Refused
 
+READING_ONLY = "This link is for reading only: nothing was changed."
+
 
 @dataclass
 class Kept:
@@ -34,7 +36,7 @@ class Kept:
             NotSaved: it could not be written, and what is and is not saved.
         """
         if not self.may_change:
-            raise Refused("This link is for reading only: nothing was changed.")
+            raise Refused(READING_ONLY)
         merged = save(self.records, self.week_id, history, self.saved)
         self.saved = len(merged.history.entries)
         return merged

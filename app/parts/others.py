@@ -21,7 +21,7 @@ def watch(state: Desk) -> None:
     if state.kept is None:
         return
     try:
-        behind = is_behind(state.kept)
+        behind = is_behind(state, state.kept)
     except (NotSaved, Missing) as failure:
         st.error(plain(str(failure)))
         return

@@ -12,7 +12,7 @@ from engine.records.failures import Missing, NotSaved
 from engine.records.journal import Conflict, Made, append, changes_since, version_of
 from engine.records.merging import Clash, Merged, caught_up, merge, save
 from engine.records.opening import Records, default_place, open_records
-from engine.records.plans import Issued, find_plan, issue_plan, list_plans
+from engine.records.plans import Issued, find_plan, issue_plan, latest_number, list_plans
 from engine.records.remarks import save_remarks
 from engine.records.totals import WeekTotals, note_totals, totals_by_week
 from engine.records.weeks import (
@@ -47,6 +47,7 @@ __all__ = [
     "default_place",
     "find_plan",
     "issue_plan",
+    "latest_number",
     "list_plans",
     "list_weeks",
     "load_answers",

@@ -111,6 +111,13 @@ def find_plan(records: Records, week_id: str, number: int | None = None) -> Issu
         return _issued(connection, head)
 
 
+def latest_number(records: Records, week_id: str) -> int:
+    """The number of the plan of a week that was issued last, 0 before the first."""
+    query = select(func.max(plans.c.number)).where(plans.c.week_id == week_id)
+    with reading("the issued plans", records.where), records.read() as connection:
+        return connection.execute(query).scalar() or 0
+
+
 def list_plans(records: Records, week_id: str) -> list[tuple[int, datetime, str, str]]:
     """Number, time, person and note of every plan issued of a week, in order."""
     query = select(plans.c.number, plans.c.issued, plans.c.who, plans.c.note)

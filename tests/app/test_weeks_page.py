@@ -7,12 +7,21 @@ from streamlit.testing.v1 import AppTest
 
 import engine
 import sample_data
-from app.keeping import keep_rest, records
+from app.keeping import issue, keep_rest, records
 from app.parts.change_words import words_of
 from app.session import KEY, Desk
 from engine.changes import Alter
 from engine.history import Entry
-from engine.records import NotSaved, create_week, list_weeks, open_week, save, totals_by_week, version_of
+from engine.records import (
+    NotSaved,
+    create_week,
+    latest_number,
+    list_weeks,
+    open_week,
+    save,
+    totals_by_week,
+    version_of,
+)
 from tests.records.making import D
 
 MAIN = Path(__file__).parents[2] / "app" / "main.py"
@@ -143,6 +152,21 @@ def test_what_is_proposed_is_asked_about_when_others_changed_the_same(week_id: s
     assert "Theirs: Ben: Cole: Ordered set to 20" in said(ann)
     click(ann, "Make mine")
     assert open_week(records(), week_id).history.week.customers["Cole"].ordered == 30
+
+
+def test_a_plan_that_another_issued_is_noticed_and_a_reader_issues_none(week_id: str) -> None:
+    ann, ben = visit(week=week_id, who="Ann"), visit(week=week_id, who="Ben")
+    plan = state_of(ben).planned()
+    assert plan is not None
+    made = issue(state_of(ben), plan, "Monday")
+    assert made is not None
+    assert state_of(ann).issued is None
+    whole(ann).run()
+    assert state_of(ann).issued == made
+    reader = state_of(visit(read=open_week(records(), week_id).listed.read_id))
+    assert reader.issued == made
+    assert issue(reader, plan) is None
+    assert latest_number(records(), week_id) == 1
 
 
 def test_leaving_theirs_changes_nothing(week_id: str) -> None:
