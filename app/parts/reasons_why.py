@@ -39,19 +39,21 @@ def why_view(state: Desk, plan: Plan) -> None:
             Heading("Now"),
             Heading(f"Send, {unit}"),
             Heading(f"Rate, {currency}", "Per unit, with the surcharge", money=True),
-            Heading("In place of", "The depot that would bring a unit less to this customer"),
-            Heading(
-                "Displaced elsewhere", "What the moved goods cost or save elsewhere, per unit", money=True
-            ),
             Heading(
                 f"One more here, {currency}",
                 "Rate less the rate it replaces, plus what is displaced",
                 money=True,
             ),
-            Heading("And", "What no money makes up for, per unit"),
+            Heading("In place of", "The depot that would bring a unit less to this customer"),
+            Heading("Displaced", "What the moved goods cost or save elsewhere, per unit", money=True),
         ]
+        rows = [_row(one) for one in found.alternatives]
+        besides = [_besides(one) for one in found.alternatives]
+        if any(besides):
+            headings.insert(6, Heading("And", "What no money makes up for, per unit"))
+            rows = [[*row[:6], more, *row[6:]] for row, more in zip(rows, besides, strict=True)]
         picked = reasons_table(
-            headings, [_row(one) for one in found.alternatives], f"why-{state.generation}-{customer}",
+            headings, rows, f"why-{state.generation}-{customer}",
             state.decimal_mark, most_height=480,
         )  # fmt: skip
     with right:
@@ -72,10 +74,9 @@ def _row(one: Alternative) -> list[Cell]:
         STANDING[one.standing],
         one.quantity,
         one.rate,
+        one.dearer,
         _instead(one),
         one.displaced,
-        one.dearer,
-        _besides(one),
     ]
 
 
