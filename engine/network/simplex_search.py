@@ -11,7 +11,7 @@ from typing import Any, NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
+from engine.network.compiled import kernel, part
 from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature, types
 from engine.network.simplex_tree import ARTIFICIAL, NOBODY, TREE, Tree, as_node, as_place, pivot
 
@@ -37,7 +37,7 @@ class Candidates(NamedTuple):
 CANDIDATE_LIST: Any = types.NamedUniTuple(INTS, 3, Candidates)
 
 
-@kernel(signature(INT, INTS, INTS, INT))
+@part
 def cheapest_of_all(cost: Integers, price: Integers, customer_price: int) -> int:
     """The depot whose row costs least after depot prices, if less than `customer_price`, or else -1.
 
@@ -53,7 +53,7 @@ def cheapest_of_all(cost: Integers, price: Integers, customer_price: int) -> int
     return chosen
 
 
-@kernel(signature(INT, ROWS, INTS, INT, INT))
+@part
 def most_saving(rows: Rows, price: Integers, j: int, customer_price: int) -> int:
     """Customer j's row that saves most by carrying more or, where it is full, less; -1 if none does."""
     most, chosen = 0, -1
@@ -67,7 +67,7 @@ def most_saving(rows: Rows, price: Integers, j: int, customer_price: int) -> int
     return chosen
 
 
-@kernel(signature(VOID, TREE, ROWS, INT, CANDIDATE_LIST))
+@part
 def look_further(tree: Tree, rows: Rows, first: int, candidates: Candidates) -> None:
     """Goes from customer to customer until the list is full or everybody was looked at."""
     customers = len(rows.filled)
@@ -127,7 +127,7 @@ def improve(tree: Tree, rows: Rows, first: int) -> int:
             row, node = row_of[chosen], as_node(node_of[chosen])
             count -= 1
             row_of[chosen], node_of[chosen] = row_of[count], node_of[count]
-            pivot(tree, rows, first, row, node, most if limited and rows.full[row] else -most)
+            pivot(tree, rows, as_node(first), row, node, most if limited and rows.full[row] else -most)
             pivots += 1
         candidates.found[0] = count
 

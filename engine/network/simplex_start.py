@@ -16,7 +16,7 @@ from typing import NamedTuple
 import numpy as np
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
+from engine.network.compiled import kernel, part
 from engine.network.simplex_guess import cheapest_first, owners
 from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, signature
 from engine.network.simplex_tree import ARTIFICIAL, NOBODY, NODE, TREE, Tree, as_node, empty_tree
@@ -68,7 +68,7 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
     return tree
 
 
-@kernel(signature(VOID, TREE, ROWS, INT, INT, INT, INT))
+@part
 def link(tree: Tree, rows: Rows, node: int, parent: int, row: int, amount: int) -> None:
     """Hangs `node` below `parent` by `row`, which carries `amount`."""
     tree.link[node].parent, tree.link[node].row = parent, row
@@ -77,7 +77,7 @@ def link(tree: Tree, rows: Rows, node: int, parent: int, row: int, amount: int) 
         tree.link[node].room = rows.room[row]
 
 
-@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INT, INT))
+@part
 def send(tree: Tree, rows: Rows, left: Integers, need: Integers, row: int, j: int) -> None:
     """Sends as much on `row` as depot, customer `j` and row allow, and links who is done."""
     i, customer = rows.depot[row], len(left) + 1 + j
@@ -129,14 +129,14 @@ def fill(
     limited = len(rows.room) > 0
     for j in order:
         while need[j] > 0:
-            best, chosen = NEVER, -1
+            best, chosen = NEVER, rows.start[j]
             for row in range(rows.start[j], rows.start[j + 1]):
                 i = rows.depot[row]
                 if left[i] > 0:
                     net = rows.cost[row] - price[i]
                     if net < best and not (limited and (rows.full[row] or rows.room[row] == 0)):
                         best, chosen = net, row
-            if chosen >= 0:
+            if best < NEVER:
                 send(tree, rows, left, need, chosen, j)
                 continue
             customer = root + 1 + j

@@ -23,9 +23,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.exact import Integers
-from engine.network.compiled import kernel
+from engine.network.compiled import part
 from engine.network.problem import UNLIMITED
-from engine.network.simplex_rows import BOOL, INT, ROWS, VOID, Rows, signature, types
+from engine.network.simplex_rows import Rows, types
 
 ARTIFICIAL = -1
 """In `Tree.link`: the link to the root that stands for no rate row."""
@@ -87,7 +87,7 @@ TREE: Any = cast(Any, numba.typeof)(empty_tree(0, 0))
 LINKS, THREADS = TREE[0], TREE[1]
 
 
-@kernel(signature(VOID, TREE, NODE, NODE, NODE))
+@part
 def replace_last(tree: Tree, node: int, old: int, new: int) -> None:
     """From `node` upwards, whoever had `old` as its last node has `new`."""
     while node != NOBODY and tree.thread[node].last == old:
@@ -95,7 +95,7 @@ def replace_last(tree: Tree, node: int, old: int, new: int) -> None:
         node = tree.link[node].parent
 
 
-@kernel(signature(VOID, THREADS, NODE, NODE))
+@part
 def follow(thread: NDArray[Any], node: int, follower: int) -> None:
     """In the thread `follower`, or nobody, comes next after `node`."""
     thread[node].next = follower
@@ -103,7 +103,7 @@ def follow(thread: NDArray[Any], node: int, follower: int) -> None:
         thread[follower].before = node
 
 
-@kernel(signature(VOID, TREE, NODE))
+@part
 def enter_thread(tree: Tree, customer: int) -> None:
     """A customer that is about to get a depot below it takes its place after its parent."""
     upper = tree.link[customer].parent
@@ -112,7 +112,7 @@ def enter_thread(tree: Tree, customer: int) -> None:
     replace_last(tree, upper, upper, customer)
 
 
-@kernel(signature(VOID, TREE, NODE))
+@part
 def leave_thread(tree: Tree, customer: int) -> None:
     """A customer that has lost its last depot goes out of the thread."""
     earlier = tree.thread[customer].before
@@ -120,7 +120,7 @@ def leave_thread(tree: Tree, customer: int) -> None:
     replace_last(tree, tree.link[customer].parent, customer, earlier)
 
 
-@kernel(signature(VOID, LINKS, NODE, NODE, INT))
+@part
 def change_flow(link: NDArray[Any], node: int, end: int, push: int) -> None:
     """Adds `push` on the link of `node`, takes it off on the next, and so on up to `end`."""
     while node != end:
@@ -129,7 +129,7 @@ def change_flow(link: NDArray[Any], node: int, end: int, push: int) -> None:
         node = link[node].parent
 
 
-@kernel(signature(VOID, LINKS, NODE, NODE, INT))
+@part
 def change_size(link: NDArray[Any], node: int, end: int, growth: int) -> None:
     """Adds `growth` to the size of `node` and all above it, up to but not including `end`."""
     while node != end:
@@ -137,7 +137,7 @@ def change_size(link: NDArray[Any], node: int, end: int, growth: int) -> None:
         node = link[node].parent
 
 
-@kernel(signature(VOID, TREE, NODE, NODE, INT))
+@part
 def raise_prices(tree: Tree, node: int, end: int, rise: int) -> None:
     """Adds `rise` to the prices of the stretch of the thread from `node` to `end`.
 
@@ -153,7 +153,7 @@ def raise_prices(tree: Tree, node: int, end: int, rise: int) -> None:
     tree.price[node] += rise
 
 
-@kernel(signature(NODE, TREE, NODE, NODE, NODE))
+@part
 def turn(tree: Tree, low: int, high: int, stop: int) -> int:
     """Turns the links between `low` and `stop` round, so that `low` becomes the top below `high`.
 
@@ -197,7 +197,7 @@ def turn(tree: Tree, low: int, high: int, stop: int) -> int:
     return tail
 
 
-@kernel(signature(VOID, TREE, NODE, NODE, NODE, NODE, NODE, INT))
+@part
 def rehang(tree: Tree, first: int, stop: int, low: int, high: int, join: int, rise: int) -> None:
     """Cuts the tree above `stop`, turns the part below so that `low` is its top, and hangs it on `high`.
 
@@ -233,7 +233,7 @@ def rehang(tree: Tree, first: int, stop: int, low: int, high: int, join: int, ri
         leave_thread(tree, stop)
 
 
-@kernel(signature(VOID, types.int8[::1], types.int32[::1], INT, INT, INT, INT))
+@part
 def note_limits(
     full: NDArray[np.int8], filled: NDArray[np.int32], row: int, j: int, leaving: int, leaving_j: int
 ) -> None:
@@ -253,7 +253,7 @@ def note_limits(
         filled[leaving_j] += 1
 
 
-@kernel(signature(types.Tuple([INT, NODE, NODE, BOOL]), TREE, NODE, NODE, NODE, BOOL, INT))
+@part
 def find_stop(
     tree: Tree, first: int, depot: int, customer: int, filling: bool, row_room: int
 ) -> tuple[int, int, int, bool]:
@@ -288,7 +288,7 @@ def find_stop(
     return customer_push, customer_stop, depot, depot_side
 
 
-@kernel(signature(VOID, TREE, ROWS, NODE, INT, NODE, INT))
+@part
 def pivot(tree: Tree, rows: Rows, first: int, row: int, customer: int, reduced: int) -> None:
     """Brings `row` into the tree (or to its other limit), and takes the row out that stops it.
 
