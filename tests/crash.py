@@ -17,6 +17,9 @@ from engine.records import create_week, open_records, open_week, version_of
 from tests.records.making import read, small_week
 from tests.records.writers import keep_changing, note_of
 
+KILLS_A_WEEK = 10
+"""A new week is begun now and then, so that replaying a long list does not take all the time."""
+
 LONGEST = 0.25
 """Seconds that a writer lives at most once it has started; its first change takes some milliseconds."""
 
@@ -62,12 +65,13 @@ def crash(place: str, kills: int, seed: int) -> tuple[int, int]:
         AssertionError: an acknowledged change is not there, is there twice, or the list does not replay.
     """
     chance = random.Random(seed)
-    records = open_records(place)
-    week_id = create_week(records, read(small_week())).listed.id
-    records.close()
     acknowledged = beyond = 0
-    found: list[int] = []
     for kill in range(kills):
+        if kill % KILLS_A_WEEK == 0:
+            records = open_records(place)
+            week_id = create_week(records, read(small_week())).listed.id
+            records.close()
+            found: list[int] = []
         first = len(found)
         told = killed_after(place, week_id, first, chance.random() * LONGEST)
         records = open_records(place)
