@@ -15,11 +15,8 @@ from engine.network.restart import guess_from
 
 Solver = Callable[[Problem, Integers, Integers | None], tuple[Integers, Integers, Integers]]
 
-FEW_DEPOTS = 250
-"""Up to so many depots the exchange is faster than the simplex on whatever number of customers (measured)."""
-
-MANY_CUSTOMERS = 40
-"""With more depots it still is from so many customers per depot on (measured)."""
+FEW_DEPOTS = 20
+"""Up to so many depots the exchange is faster, with many customers by far; beyond, the simplex (measured)."""
 
 
 def least_cost(problem: Problem, start: Flow | None = None) -> Flow:
@@ -47,8 +44,7 @@ def _simplex() -> Solver:
 
 def method_for(problem: Problem) -> Method:
     """The kernel that is faster on problems of this shape."""
-    few = problem.depots <= FEW_DEPOTS
-    return "exchange" if few or problem.customers >= MANY_CUSTOMERS * problem.depots else "simplex"
+    return "exchange" if problem.depots <= FEW_DEPOTS else "simplex"
 
 
 def prepare() -> None:
