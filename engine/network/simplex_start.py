@@ -49,15 +49,15 @@ def first_tree(rows: Rows, left: Integers, need: Integers, hint: Hint, big: int)
     price = hint.price
     if len(hint.quantity):
         again = np.flatnonzero(hint.quantity > 0)
-        owner = np.searchsorted(rows.start, again, side="right") - 1
-        replay(tree, rows, left, need, again, owner, hint.quantity[again])
+        replay(tree, rows, left, need, again, hint.quantity[again])
     elif 8 * rows.binding > len(rows.cost) and len(rows.cost) < MANY_ROWS * (depots + customers):
         price, order = cheapest_first(rows, left, need, price)
         price = np.minimum(price, big)
         use(tree, rows, left, need, order, owners(rows))
     regret = np.empty(customers, dtype=np.int64)
     find_regret(rows, left, need, price, regret)
-    fill(tree, rows, left, need, price, np.argsort(-regret, kind="stable"), big)
+    waiting = np.flatnonzero(need)
+    fill(tree, rows, left, need, price, waiting[np.argsort(-regret[waiting], kind="stable")], big)
     gate = depots + 1 + customers
     parent, flow = tree.link["parent"], tree.link["flow"]
     parent[gate], flow[gate] = depots, kept - int(left.sum())
@@ -145,30 +145,29 @@ def fill(
             need[j] = 0
 
 
-@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS, INTS, INTS))
+@kernel(signature(VOID, TREE, ROWS, INTS, INTS, INTS, INTS))
 def replay(
-    tree: Tree,
-    rows: Rows,
-    left: Integers,
-    need: Integers,
-    again: Integers,
-    owner: Integers,
-    quantity: Integers,
+    tree: Tree, rows: Rows, left: Integers, need: Integers, again: Integers, quantity: Integers
 ) -> None:
     """Sends again what an earlier flow sent on the rows `again`, as far as it still fits.
 
     Rows that were full come first. The others are taken from the leaves of their forest inwards, since only
     in that order sending as much as possible on each row gives the same quantities again.
 
-    owner: customer of each row in `again`; quantity: what was sent on it
+    again: rows in ascending order; quantity: what was sent on each of them
     """
     depots = len(left)
     limited = len(rows.room) > 0
+    owner = np.empty(len(again), dtype=np.int64)
     waiting = np.zeros(len(again), dtype=np.bool_)
     degree = np.zeros(depots + len(need), dtype=np.int64)
     key = np.zeros(depots + len(need), dtype=np.int64)  # exclusive or of the rows that wait at a node
+    j = 0
     for n in range(len(again)):
-        row, i, j = again[n], rows.depot[again[n]], owner[n]
+        row, i = again[n], rows.depot[again[n]]
+        while rows.start[j + 1] <= row:
+            j += 1
+        owner[n] = j
         full = limited and rows.room[row] <= quantity[n]
         if full and rows.room[row] <= left[i] and rows.room[row] < need[j]:
             if rows.room[row] > 0:
