@@ -7,9 +7,8 @@ from app.parts.reasons_chain import chain_panel
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import plain
 from app.session import Desk
-from engine.changes import SetHold
 from engine.planning.plan import Plan
-from engine.reasons import NearLane, RateInterval, chain, nearest_to_paying, rate_intervals, unquoted
+from engine.reasons import NearLane, RateInterval, chain, more_on, nearest_to_paying, rate_intervals, unquoted
 from engine.reasons.ground import is_shared
 
 MOST_NEAR = 100
@@ -73,7 +72,7 @@ def _near(state: Desk, plan: Plan) -> None:
         lane = found[picked]
         st.subheader(plain(f"{lane.interval.key.depot} to {lane.interval.key.customer}"), anchor=False)
         st.caption("If it were used at today's rate:")
-        change = SetHold(lane.interval.key, lane.carries)
+        change = more_on(plan, lane.interval.key, lane.carries)
         told = asked(plan, ("near chain", lane.interval.key), lambda: chain(plan, change))
         chain_panel(plan, told, state.decimal_mark, f"near-chain-{state.generation}")
 

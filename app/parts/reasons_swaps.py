@@ -7,11 +7,10 @@ from app.parts.reasons_chain import chain_panel
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import plain
 from app.session import Desk
-from engine.changes import SetHold
 from engine.columns import Column, Kind
 from engine.intake.fields import read_field
 from engine.planning.plan import Plan
-from engine.reasons import Option, chain, options
+from engine.reasons import Option, chain, more_on, options
 
 AMOUNT = Column("Amount", "amount", Kind.PRICE, "Money that a swap may cost in all")
 
@@ -60,7 +59,7 @@ def swaps_view(state: Desk, plan: Plan) -> None:
             return
         one = found[picked]
         st.subheader(plain(f"{one.key.depot} to {one.key.customer}"), anchor=False)
-        change = SetHold(one.key, one.now + one.quantity)
+        change = more_on(plan, one.key, one.quantity)
         told = asked(plan, ("swap", one.key, one.quantity), lambda: chain(plan, change))
         chain_panel(plan, told, state.decimal_mark, f"swap-chain-{state.generation}")
 

@@ -1,6 +1,6 @@
 """Why a plan is as it is: exact answers from its residual network, none of which a plan itself holds."""
 
-from engine.reasons.chains import Chain, Leg, Move, Step, chain
+from engine.reasons.chains import Chain, Leg, Move, Step, chain, more_on
 from engine.reasons.curve import Curve, CurvePoint, curve
 from engine.reasons.options import NearLane, Option, Unquoted, nearest_to_paying, options, unquoted
 from engine.reasons.pairs import Pair, pairs
@@ -28,6 +28,7 @@ __all__ = [
     "Why",
     "chain",
     "curve",
+    "more_on",
     "nearest_to_paying",
     "options",
     "pairs",

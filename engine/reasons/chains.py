@@ -19,8 +19,8 @@ from engine.network.closure import NO_WAY, Exchange
 from engine.planning.model import EVEN_SHARE, NO_RATE, Integers
 from engine.planning.plan import Plan
 from engine.reasons.ends import End, moved
-from engine.reasons.ground import SHARED, Ground, ground_of, grounded_again, is_shared
-from engine.reasons.rows import key_at, row_of
+from engine.reasons.ground import OVERRUN, SHARED, Ground, ground_of, grounded_again, is_shared, overrun
+from engine.reasons.rows import gone_on, key_at, row_of
 
 MOST_LEGS = 200
 """A change that takes more chains than this is not told to its end; `Chain.ends_early` says so."""
@@ -146,6 +146,8 @@ def chain(plan: Plan, change: Change) -> Chain:
 def _of_end(plan: Plan, end: End, asked: Chain) -> Chain:
     if is_shared(plan):
         return replace(asked, note=SHARED)
+    if (end.what, asked.depot or asked.customer) in overrun(plan):
+        return replace(asked, note=OVERRUN)
 
     def follow(ground: Ground, left: int) -> tuple[_Way, int] | None:
         way = _way_of_customer(ground, end) if end.what == "customer" else _way_of_depot(ground, end)
@@ -165,6 +167,7 @@ def _of_row(plan: Plan, key: RateKey, quantity: Decimal) -> Chain:
     """More or less on one rate row: the row itself is held while the others make room."""
     row = row_of(plan, key)
     ground = ground_of(plan)
+    quantity -= gone_on(plan, key)
     sign = 1 if quantity > _now(plan, ground, row) else -1
 
     def follow(ground: Ground, left: int) -> tuple[_Way, int] | None:
@@ -178,6 +181,12 @@ def _of_row(plan: Plan, key: RateKey, quantity: Decimal) -> Chain:
 
     asked = _asked_of_row(plan, ground, row, quantity)
     return _followed(plan, _held(ground, row, ground.quantity), asked, follow, after)
+
+
+def more_on(plan: Plan, key: RateKey, quantity: Decimal) -> SetHold:
+    """The hold that puts so much more on a rate row than the plan does, with what has gone on it."""
+    now = to_decimal(int(plan.flow.quantity[row_of(plan, key)]), plan.model.quantity_places)
+    return SetHold(key, total_of((now, gone_on(plan, key), quantity)))
 
 
 def leg_of_row(plan: Plan, ground: Ground, row: int, sign: int) -> Chain | None:
@@ -229,7 +238,7 @@ def _followed(plan: Plan, ground: Ground, asked: Chain, follow: _Follow, after: 
             return _with(asked, tuple(legs), f"More than {MOST_LEGS} chains: told only so far.")
         found = follow(ground, left)
         if found is None or found[1] == 0:
-            return _with(asked, tuple(legs), "No further: limits, holds or what must move stand in the way.")
+            return _with(asked, tuple(legs), "No further: limits, holds, what must move or what has gone.")
         way, amount = found
         leg = _leg(plan, way, amount)
         if leg.short and plan.week.rules.when_short == EVEN_SHARE:

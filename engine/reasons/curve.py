@@ -12,7 +12,7 @@ from engine.exact import to_decimal, to_integer, total_of
 from engine.planning.model import EVEN_SHARE, NO_RATE
 from engine.planning.plan import Plan
 from engine.reasons.ends import End, Stretch, What, stretch
-from engine.reasons.ground import SHARED, Ground, ground_of, is_shared
+from engine.reasons.ground import OVERRUN, SHARED, Ground, ground_of, is_shared, overrun
 
 MOST_CORNERS = 2_000
 """A curve with more corners than this ends early; `Curve.cut_short` says so."""
@@ -72,6 +72,8 @@ def curve(plan: Plan, name: str, low: Decimal, high: Decimal, what: What | None 
     today = week.depots[name].available if what == "depot" else week.customers[name].ordered
     if is_shared(plan):
         return Curve(what, name, today, (), withheld=SHARED)
+    if (what, name) in overrun(plan):
+        return Curve(what, name, today, (), withheld=OVERRUN)
     index = (plan.model.depots if what == "depot" else plan.model.customers).index(name)
     ground = ground_of(plan)
     up, no_more = _walk(plan, ground, End(what, index, more=True), high - today)
@@ -113,10 +115,8 @@ def _walk(plan: Plan, ground: Ground, end: End, distance: Decimal) -> tuple[list
         one = stretch(ground, end, left)
         if one is None:
             figure = "available" if end.what == "depot" else "ordered"
-            return (
-                walked,
-                f"No {'more' if end.more else 'less'} can be {figure}: limits, holds or what must move.",
-            )
+            side = "more" if end.more else "less"
+            return walked, f"No {side} can be {figure}: limits, holds, what must move, what has gone."
         if shares and _short_of(ground.model.stand_in, one, ground):
             return walked, f"From there on somebody goes short. {SHARED}"
         walked.append(one)

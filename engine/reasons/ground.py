@@ -1,6 +1,7 @@
 """A plan as its reasons see it: the residual network, shrunk to the depots, and every row's room in it."""
 
 from dataclasses import dataclass, replace
+from decimal import Decimal
 from functools import cached_property
 
 import numpy as np
@@ -9,12 +10,16 @@ import numpy.typing as npt
 from engine.network.closure import NO_WAY, Closure, close, close_chains, exchange_directly
 from engine.network.problem import Problem
 from engine.planning.aims import Weights
+from engine.planning.gone import left
 from engine.planning.model import EVEN_SHARE, Integers, Model
 from engine.planning.plan import Plan
 from engine.planning.prices import limits_of
 from engine.reasons.kernels import Rows, Searched, second_exchanges, take_apart
 
 Flags = npt.NDArray[np.bool_]
+
+OVERRUN = "More has gone already than this figure: it changes nothing until what has gone fits."
+"""Why a figure has no value and no curve."""
 
 SHARED = "Goods are shared evenly: a unit more or less moves everybody's share."
 """Why values are withheld."""
@@ -124,6 +129,20 @@ def searched(ground: Ground) -> Searched:
 def is_shared(plan: Plan) -> bool:
     """Whether shares are even and somebody goes short, so that one unit moves everybody's share."""
     return plan.week.rules.when_short == EVEN_SHARE and bool(plan.short)
+
+
+def overrun(plan: Plan) -> frozenset[tuple[str, str]]:
+    """("depot" or "customer", name) of whose whole figure more has gone than it allows.
+
+    One more or one less of such a figure changes nothing until what has gone fits it again.
+    """
+    week, gone = plan.week, left(plan.week)
+    zero = Decimal(0)
+    depots = {("depot", d.name) for d in week.depots.values() if gone.depot.get(d.name, zero) > d.available}
+    customers = {
+        ("customer", c.name) for c in week.customers.values() if gone.customer.get(c.name, zero) > c.ordered
+    }
+    return frozenset(depots | customers)
 
 
 def money_of(weights: Weights, values: Integers) -> tuple[Integers, Flags]:

@@ -1,8 +1,11 @@
 """A rate row of the week and the row of its problem: from one to the other."""
 
+from decimal import Decimal
+
 import numpy as np
 
 from engine.figures import RateKey
+from engine.planning.gone import left, superseded
 from engine.planning.plan import Plan
 from engine.week import describe
 
@@ -26,3 +29,21 @@ def key_at(plan: Plan, row: int) -> RateKey:
     """What names the rate row that a row of the problem is."""
     rates = plan.week.rates
     return rates.key_of(int(rates.ids_in_order[plan.model.rate_row[row]]))
+
+
+def gone_on(plan: Plan, key: RateKey) -> Decimal:
+    """What has gone on a rate row; it counts as part of what is held there.
+
+    Of several rows of a lane and haulier it counts on the first that is still valid.
+    """
+    week = plan.week
+    gone = left(week).row.get((key.depot, key.customer, key.haulier))
+    if not gone:
+        return Decimal(0)
+    replaced = superseded(week.rates.flat)
+    in_order = week.rates.ids_in_order
+    for number in week.rates.ids(key.depot, key.customer, key.haulier):
+        position = int(np.searchsorted(in_order, number))
+        if position < len(in_order) and in_order[position] == number and not replaced[position]:
+            return gone if week.rates.find(key) == number else Decimal(0)
+    return Decimal(0)

@@ -13,7 +13,7 @@ from engine.exact import to_decimal
 from engine.network.closure import NO_WAY
 from engine.planning.model import EVEN_SHARE, Model
 from engine.planning.plan import Plan, UnitPrice
-from engine.reasons.ground import SHARED, Ground, ground_of, is_shared, money_of
+from engine.reasons.ground import SHARED, Ground, ground_of, is_shared, money_of, overrun
 from engine.reasons.kernels import MANY
 from engine.reasons.sides import Side, customer_sides, depot_sides
 
@@ -23,8 +23,9 @@ class UnitValue:
     """Cost after minus cost before, per unit, at today's figures; positive is dearer.
 
     `one_more_short` and `one_less_short` are the change in what goes short. None: the question has no
-    answer (nothing there to take away, no way to bring more, or shares would move). `…_holds_for` is up to
-    which quantity the value holds; None: it was not asked, or holds without limit (see `Values.held`).
+    answer (nothing there to take away, no way to bring more, shares would move, more has gone already).
+    `…_holds_for` is up to which quantity the value holds; None: it was not asked, or holds without limit
+    (see `Values.held`).
     """
 
     name: str
@@ -74,7 +75,14 @@ def values_on(plan: Plan, ground: Ground, holds: bool = False) -> Values:
     shares = plan.week.rules.when_short == EVEN_SHARE
     depots = _named(plan.model, plan.depot_prices, depot_sides(ground, holds), shares)
     customers = _named(plan.model, plan.customer_prices, customer_sides(ground, holds), shares)
+    if void := overrun(plan):
+        depots = tuple(_bare(one) if ("depot", one.name) in void else one for one in depots)
+        customers = tuple(_bare(one) if ("customer", one.name) in void else one for one in customers)
     return Values(depots, customers, held=holds)
+
+
+def _bare(one: UnitValue) -> UnitValue:
+    return UnitValue(one.name, one.price)
 
 
 def _named(

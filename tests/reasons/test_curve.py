@@ -13,7 +13,7 @@ from engine.figures import Customer, Depot, Order, RateRow
 from engine.planning.planner import plan_week
 from engine.reasons.curve import Curve, CurvePoint, curve
 from engine.week import Week
-from tests.reasons.weeks import planned, weeks_with_limits
+from tests.reasons.weeks import gone_from, planned, weeks_with_gone, weeks_with_limits
 
 D = Decimal
 
@@ -37,7 +37,7 @@ def assert_shape(points: tuple[CurvePoint, ...]) -> None:
 
 
 @settings(max_examples=120, deadline=None)
-@given(weeks_with_limits(), st.data())
+@given(weeks_with_limits() | weeks_with_gone(), st.data())
 def test_a_curve_is_what_planning_anew_costs_at_every_figure(week: Week, data: st.DataObject) -> None:
     plan = planned(week)
     if plan is None:
@@ -48,9 +48,16 @@ def test_a_curve_is_what_planning_anew_costs_at_every_figure(week: Week, data: s
     high = low + data.draw(st.integers(0, 15))
     found = curve(plan, name, D(low), D(high))
     assert_shape(found.points)
+    gone = gone_from(week, what, name)
+    if gone > found.today:
+        assert found.withheld
+        return
     field = "available" if what == "depot" else "ordered"
     for figure in range(low, high + 1):
         said = cost_at(found, D(figure))
+        if figure < gone:
+            assert said is None
+            continue
         if what == "depot" and figure < (week.depots[name].must_move or 0):
             assert said is None
             continue

@@ -8,7 +8,7 @@ from engine.changes import Alter
 from engine.planning.plan import Plan
 from engine.reasons.values import UnitValue, values
 from engine.week import Week
-from tests.reasons.weeks import planned, weeks_with_limits
+from tests.reasons.weeks import gone_from, planned, weeks_with_gone, weeks_with_limits
 
 D = Decimal
 FAR = D(300)
@@ -58,9 +58,25 @@ def test_a_value_holds_exactly_so_far(week: Week) -> None:
     plan = planned(week)
     if plan is None:
         return
-    found = values(plan, holds=True)
+    assert_all_hold(plan)
+
+
+@settings(max_examples=60, deadline=None)
+@given(weeks_with_gone())
+def test_a_value_holds_exactly_so_far_where_some_has_gone(week: Week) -> None:
+    plan = planned(week)
+    if plan is not None:
+        assert_all_hold(plan)
+
+
+def assert_all_hold(plan: Plan) -> None:
+    week, found = plan.week, values(plan, holds=True)
     for one in found.customers:
-        assert_holds(plan, "customer", one, week.customers[one.name].ordered, D(0))
+        gone = gone_from(week, "customer", one.name)
+        ordered = week.customers[one.name].ordered
+        assert gone <= ordered or one.one_more is None
+        assert_holds(plan, "customer", one, ordered, gone)
     for one in found.depots:
-        depot = week.depots[one.name]
-        assert_holds(plan, "depot", one, depot.available, depot.must_move or D(0))
+        depot, gone = week.depots[one.name], gone_from(week, "depot", one.name)
+        assert gone <= depot.available or one.one_more is None
+        assert_holds(plan, "depot", one, depot.available, max(depot.must_move or D(0), gone))
