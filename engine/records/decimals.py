@@ -1,6 +1,6 @@
 """Frozen figures as rows and back: a decimal is an integer column and a column with its scale."""
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import fields
 from decimal import Decimal
 from functools import cache
@@ -39,6 +39,37 @@ def row_of(record: Any, without: Iterable[str] = ()) -> Row:
     kind: Any = type(record)
     values = {name: getattr(record, name) for name in field_names(kind) if name not in left_out}
     return as_row(values, [name for name in decimal_fields(kind) if name not in left_out])
+
+
+def columns_of(kind: Any, without: Sequence[str] = ()) -> list[str]:
+    """The columns that the fields of a kind of value fill, all but some, in the order of `cells_of`."""
+    decimals = decimal_fields(kind)
+    found = []
+    for name in field_names(kind):
+        if name not in without:
+            found += [name, f"{name}_scale"] if name in decimals else [name]
+    return found
+
+
+def cells_of(kind: Any, records: Iterable[Any], without: Sequence[str] = ()) -> Iterator[list[Any]]:
+    """The cells of `columns_of` for many values of one kind; quicker than a `row_of` each.
+
+    Raises:
+        TooLarge: a decimal whose digits the integer column cannot hold.
+    """
+    decimals = decimal_fields(kind)
+    plan = [(name, name in decimals) for name in field_names(kind) if name not in without]
+    for record in records:
+        cells: list[Any] = []
+        for name, is_decimal in plan:
+            value = getattr(record, name)
+            if not is_decimal:
+                cells.append(value)
+            elif value is None:
+                cells += (None, None)
+            else:
+                cells += _split(name, value)
+        yield cells
 
 
 def values_in(row: Mapping[Any, Any], kind: type, without: Iterable[str] = ()) -> dict[str, Any]:

@@ -1,6 +1,6 @@
 """A week as uploaded, as rows and back: depots, customers, orders, holds, gone goods and altered rates."""
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from types import MappingProxyType
 from typing import Any
 
@@ -8,8 +8,8 @@ from sqlalchemy import Connection, Table, delete, select
 
 from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
 from engine.rates import Rates, RateTable
-from engine.records.bulk import insert_rows
-from engine.records.decimals import Row, as_row, from_row, row_of, values_in
+from engine.records.bulk import insert_columns, insert_rows
+from engine.records.decimals import Row, as_row, cells_of, columns_of, from_row, row_of, values_in
 from engine.records.schema import customers, depots, gone, holds, orders, rate_changes
 from engine.week import Week
 
@@ -33,29 +33,34 @@ def rules_in(row: Mapping[Any, Any]) -> Rules:
 def store_figures(connection: Connection, week_id: str, week: Week) -> None:
     """Write everything of a week but its rules and its rate table."""
     of_week = {"week_id": week_id}
-    insert_rows(
-        connection,
-        depots,
-        [{**of_week, "position": i, **row_of(d)} for i, d in enumerate(week.depots.values())],
-    )
-    listed = list(enumerate(week.customers.values()))
-    insert_rows(
-        connection,
-        customers,
-        [{**of_week, "position": j, **row_of(customer, without=("orders",))} for j, customer in listed],
-    )
-    insert_rows(
-        connection,
-        orders,
-        [
-            {**of_week, "customer": j, "position": n, **row_of(order)}
-            for j, customer in listed
-            for n, order in enumerate(customer.orders)
-        ],
-    )
+    numbers = [(week_id, i) for i in range(len(week.depots))]
+    _insert(connection, depots, numbers, Depot, week.depots.values())
+    numbers = [(week_id, j) for j in range(len(week.customers))]
+    _insert(connection, customers, numbers, Customer, week.customers.values(), without=("orders",))
+    listed = [
+        (order, (week_id, j, n))
+        for j, customer in enumerate(week.customers.values())
+        for n, order in enumerate(customer.orders)
+    ]
+    _insert(connection, orders, [key for _, key in listed], Order, [order for order, _ in listed])
     insert_rows(connection, rate_changes, _rate_rows(of_week, week.rates))
     store_facts(connection, week_id, week, UPLOADED)
     store_facts(connection, week_id, week, NOW)
+
+
+def _insert(
+    connection: Connection,
+    table: Table,
+    keys: Sequence[tuple[Any, ...]],
+    kind: Any,
+    records: Iterable[Any],
+    without: Sequence[str] = (),
+) -> None:
+    """Put in many figures of one kind, each under the key of its row."""
+    names = [column.name for column in table.primary_key.columns] + columns_of(kind, without)
+    cells = cells_of(kind, records, without)
+    rows = [(*key, *row) for key, row in zip(keys, cells, strict=True)]
+    insert_columns(connection, table, names, [rows] if rows else [])
 
 
 def store_facts(connection: Connection, week_id: str, week: Week, when_read: str) -> None:
