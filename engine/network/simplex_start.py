@@ -1,12 +1,14 @@
-"""The first spanning tree: from an earlier flow as far as it fits, then customer by customer.
+"""The first spanning tree: from an earlier flow, or from rows sorted by guessed prices, or by customers.
 
 Every step sends as much as it can on one row, and so uses up the depot, meets the customer's need or fills
 the row. A used-up depot then hangs below the customer, a served customer below the depot: whatever the order
 of the steps, no cycle can arise and the tree is strongly feasible. What no row can bring comes from the root,
 what no row takes goes back there, at a cost that no real detour reaches.
 
-Customers come in the order of what it would cost them to get their second choice (the idea of Vogel's
-method: Reinfeld & Vogel 1958, from memory).
+An earlier flow is sent again as far as it fits. Without one, where many limits bind, the rows are taken in
+the order of their cost beyond guessed prices. Whoever still needs something then takes its cheapest rows,
+customers in the order of what it would cost them to get their second choice (the idea of Vogel's method:
+Reinfeld & Vogel 1958, from memory).
 """
 
 from __future__ import annotations
@@ -22,8 +24,8 @@ from engine.network.simplex_rows import INT, INTS, NEVER, ROWS, VOID, Rows, sign
 from engine.network.simplex_tree import ARTIFICIAL, NOBODY, NODE, TREE, Tree, as_node, empty_tree
 
 MANY_ROWS = 100
-"""Per depot and customer: with more, sorting all rows takes longer than it saves in pivots. So it does, on
-the whole, where less than an eighth of the rows have limits that can bind (both measured)."""
+"""Per depot and customer: with more, sorting all rows takes longer than it saves in pivots; and so it does
+without limits that bind (measured with none, and with limits on all rows: a third fewer pivots and more)."""
 
 
 class Hint(NamedTuple):

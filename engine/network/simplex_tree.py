@@ -11,7 +11,7 @@ is not stored either: it follows from its parent's, and so a pivot never visits 
 
 The tree is kept strongly feasible (Cunningham 1976): from every node a little more could be sent to the
 root. The rule by which `pivot` chooses the row that leaves keeps it so, and then no sequence of
-pivots repeats (Ahuja, Magnanti & Orlin 1993, sections 11.6 and 11.13).
+pivots repeats (Ahuja, Magnanti & Orlin 1993, chapter 11).
 """
 
 from __future__ import annotations
@@ -39,7 +39,6 @@ as_place: Any = np.uint64
 
 NOBODY: Any = as_node(2**32 - 1)
 """In `Tree.link` and `Tree.thread`: no such node."""
-
 
 LINK = np.dtype(
     [("parent", "u4"), ("size", "i4"), ("flow", "i8"), ("room", "i8"), ("row", "i8"), ("cost", "i8")]
@@ -84,7 +83,6 @@ def empty_tree(depots: int, customers: int) -> Tree:
 
 NODE: Any = types.uint32
 TREE: Any = cast(Any, numba.typeof)(empty_tree(0, 0))
-LINKS, THREADS = TREE[0], TREE[1]
 
 
 @part
