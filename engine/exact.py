@@ -61,8 +61,10 @@ def to_integer(decimal: Decimal, places: int) -> int:
             f"{canonical(decimal)} has {needed} decimal places, only {places} are kept here: "
             f"give it with at most {places} places, or let the whole column keep {needed}."
         )
-    integer = int(_CONTEXT.scaleb(decimal, places)) if needed or decimal.as_tuple().exponent else (
-        int(decimal) * 10**places
+    integer = (
+        int(_CONTEXT.scaleb(decimal, places))
+        if needed or decimal.as_tuple().exponent
+        else (int(decimal) * 10**places)
     )
     if abs(integer) > LARGEST:
         raise TooLarge(_too_large(decimal, places))
