@@ -43,10 +43,11 @@ def test_from_spreadsheet_to_workbook(page: Page, requests: list[str], tmp_path:
     assert freight(page) == expected.freight_payable
     canvas = page.locator('[data-testid="stDeckGlJsonChart"] canvas').first
     canvas.wait_for(timeout=60_000)
-    box = canvas.bounding_box()
-    assert box is not None
-    assert box["width"] > 300
-    assert box["height"] > 300
+    page.wait_for_function(
+        "() => { const box = document.querySelector('[data-testid=\"stDeckGlJsonChart\"] canvas')"
+        ".getBoundingClientRect(); return box.width > 400 && box.height > 400; }",
+        timeout=60_000,
+    )  # a canvas is small until the map has drawn
 
     grid = visible_grid(page)
     send = column_of(grid, "Send")
