@@ -68,7 +68,7 @@ class State(NamedTuple):
     via: Integers
 
 
-@part
+@kernel
 def classify(rows: Rows) -> None:
     """Fills `Rows.kind`."""
     start, depot, room = rows.start, rows.depot, rows.room

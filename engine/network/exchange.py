@@ -81,7 +81,7 @@ def solve(
         np.empty((depots, depots), dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
     )
-    outcome, place = run(rows, state, new_search(depots), quantity is not None)
+    outcome, place = run(rows, state, quantity is not None)
     if outcome == TOO_FAR:
         raise TooLarge("Prices grow beyond what can be computed exactly: use a larger currency unit.")
     if outcome == UNSERVABLE:
@@ -176,14 +176,14 @@ def take_off(figures: Figures, supply: Integers, demand: Integers) -> tuple[int,
     return 0, 0
 
 
-@kernel
-def run(rows: Rows, state: State, search: Search, again: bool) -> tuple[int, int]:
+def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
     """Samples first, then all customers. Returns the outcome, and the customer that cannot be served.
 
     again: whether `state.flow` holds an earlier flow; then no samples are needed
     """
-    classify(rows)
     depots, customers = len(rows.supply), len(rows.demand)
+    search = new_search(depots)
+    classify(rows)
     stride, known = 1, 1
     if not again:
         known = customers + 1

@@ -44,6 +44,7 @@ class Search(NamedTuple):
     target: depots with too little, nearest first
     giving, taking, place: the rows and customers of the exchanges along the path in hand
     event:  what happened to those rows, see `move`
+    base:   prices at the beginning
     """
 
     reach: Integers
@@ -54,6 +55,7 @@ class Search(NamedTuple):
     taking: Integers
     place: Integers
     event: Integers
+    base: Integers
 
 
 def new_search(depots: int) -> Search:
@@ -61,14 +63,14 @@ def new_search(depots: int) -> Search:
     return Search(*(np.zeros(depots, dtype=np.int64) for _ in Search._fields))
 
 
-@kernel
+@part
 def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int) -> int:
     """Moves flow until no depot has too much, with prices rising by no more than `slack` (FAR: any).
 
     Returns DONE; WIDEN when prices would have to rise further; RELIST when `users` is out of space;
     STUCK when depots with too much reach none with too little; TOO_FAR when prices grow too large.
     """
-    base = np.empty_like(state.price)
+    base = search.base
     for k in range(len(base)):
         base[k] = state.price[k]
     while True:
