@@ -60,3 +60,10 @@ def prepare() -> None:
     )
     flow = least_cost(limited, least_cost(problem))
     prove(problem, *_simplex()(problem, flow.depot_price, flow.quantity))
+    # these build on this module, so they cannot be imported above
+    from engine.network.alternatives import exchangeable
+    from engine.network.closure import close
+    from engine.network.ties import nearest
+
+    close(flow)
+    exchangeable(nearest(flow, flow.quantity))
