@@ -77,7 +77,7 @@ def to_decimal(integer: int, places: int) -> Decimal:
     while places > 0 and integer % 10 == 0:
         integer //= 10
         places -= 1
-    return Decimal((integer < 0, tuple(map(int, str(abs(integer)))), -places))
+    return _CONTEXT.scaleb(Decimal(integer), -places) if places else Decimal(integer)
 
 
 def canonical(decimal: Decimal) -> str:

@@ -8,6 +8,7 @@ from typing import Literal
 from engine.figures import RateKey
 from engine.findings import Finding, by_gravity
 from engine.network import Flow
+from engine.network.closure import Closure
 from engine.planning.model import Model
 from engine.week import Week
 
@@ -91,7 +92,8 @@ class UnitPrice:
 class Plan:
     """The answer to a week. `total_cost` is what is minimised: exact freight and both charges.
 
-    `model` and `flow` are the same answer in integers, for the reasons to ask further.
+    `model` and `flow` are the same answer in integers, and `closure` the chains of exchanges in it, for the
+    reasons to ask further.
     """
 
     week: Week
@@ -110,6 +112,7 @@ class Plan:
     findings: tuple[Finding, ...]
     model: Model
     flow: Flow
+    closure: Closure
 
 
 def with_findings(plan: Plan, findings: Iterable[Finding]) -> Plan:

@@ -95,6 +95,7 @@ def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> P
         findings=tuple(by_gravity((*found, *_about_the_plan(week, model, short, unsent)))),
         model=model,
         flow=flow,
+        closure=prices.closure,
     )
 
 

@@ -7,7 +7,7 @@ from functools import cached_property
 import numpy as np
 import numpy.typing as npt
 
-from engine.network.closure import NO_WAY, Closure, close, close_chains, exchange_directly
+from engine.network.closure import NO_WAY, Closure, close_chains, exchange_directly
 from engine.network.problem import Problem
 from engine.planning.aims import Weights
 from engine.planning.gone import left
@@ -101,7 +101,7 @@ def ground_of(plan: Plan) -> Ground:
     Raises:
         TooLarge: a chain's cost could leave the exact integers.
     """
-    return Ground(plan.model, close(plan.flow), *limits_of(plan.model))
+    return Ground(plan.model, plan.closure, *limits_of(plan.model))
 
 
 def grounded_again(ground: Ground, quantity: Integers, lower: Integers, upper: Integers) -> Ground:

@@ -12,7 +12,6 @@ import numpy as np
 
 from engine.exact import Integers, to_decimal
 from engine.money import minor_places
-from engine.network.closure import close
 from engine.network.problem import UNLIMITED
 from engine.planning.aims import MUST_MOVE
 from engine.planning.model import NO_RATE, Model
@@ -61,9 +60,9 @@ class ProofFigures(NamedTuple):
 
 def proof_figures(plan: Plan) -> ProofFigures:
     """The figures of the proof, taken apart into aims and money."""
-    model, flow = plan.model, plan.flow
+    model = plan.model
     problem = model.problem
-    depot_sums, customer_sums = chain_prices(model, close(flow))
+    depot_sums, customer_sums = chain_prices(model, plan.closure)
     names = list(model.weights.of)  # the highest aim first
     depot_units, depot_money = _apart(model, depot_sums)
     customer_units, customer_money = _apart(model, customer_sums)
