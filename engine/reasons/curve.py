@@ -7,6 +7,7 @@ Magnanti & Orlin 1993, chapter 9), so none is missed and none is a grid point.
 
 from dataclasses import dataclass, replace
 from decimal import Decimal
+from fractions import Fraction
 
 from engine.exact import to_decimal, to_integer, total_of
 from engine.planning.model import EVEN_SHARE, NO_RATE
@@ -225,11 +226,12 @@ def _clipped(points: list[CurvePoint], low: Decimal, high: Decimal) -> list[Curv
 
 def _between(before: CurvePoint, after: CurvePoint, figure: Decimal) -> CurvePoint:
     """The point of a straight stretch at a figure."""
-    part = (figure - before.figure) / (after.figure - before.figure)
+    whole, part = Fraction(after.figure - before.figure), Fraction(figure - before.figure)
 
     def at(name: str) -> Decimal:
         start, end = getattr(before, name), getattr(after, name)
-        return Decimal(start + (end - start) * part)
+        exact = Fraction(start) + (Fraction(end) - Fraction(start)) * part / whole
+        return Decimal(exact.numerator) / Decimal(exact.denominator)  # ends: a straight stretch of decimals
 
     return CurvePoint(
         figure,
