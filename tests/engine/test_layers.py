@@ -25,6 +25,7 @@ ROOMS = [
     "engine.figures",
     "engine.money",
     "engine.findings",
+    "engine.loads",
     "engine.network",
     "engine.exact",
 ]
@@ -73,3 +74,8 @@ def test_the_engine_knows_no_browser(path: Path) -> None:
 def test_every_room_is_there_to_be_checked() -> None:
     assert len(MODULES) > 20
     assert {room_of(".".join(p.relative_to(ROOT).with_suffix("").parts)) for p in MODULES} >= {0, 5, 6}
+
+
+def test_one_room_reaches_the_integer_solver() -> None:
+    reach = {str(path.relative_to(ROOT).parent) for path in MODULES if "highspy" in imported(path)}
+    assert reach <= {"engine/loads"}
