@@ -27,10 +27,13 @@ def cancel_cycles(figures: Figures, customer: Integers, quantity: Integers) -> N
     parent = np.full(depots + len(figures.demand), NOBODY, dtype=np.int64)
     link = np.full(len(parent), NOBODY, dtype=np.int64)
     mark = np.full(len(parent), NOBODY, dtype=np.int64)
+    stamp = 0
     for row in range(len(quantity)):
         while 0 < quantity[row] < cap_of(figures, row):
             depot_node, customer_node = figures.depot[row], depots + customer[row]
-            join = meeting(parent, mark, depot_node, customer_node, row)
+            # a new stamp each time: the forest may have changed since this row last looked
+            stamp += 1
+            join = meeting(parent, mark, depot_node, customer_node, stamp)
             if join == NOBODY:
                 hang(parent, link, customer_node, depot_node, row)
                 break

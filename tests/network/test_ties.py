@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 
 from engine.network import Contradiction, Problem, least_cost, prove
 from engine.network.alternatives import exchangeable
+from engine.network.cycles import cancel_cycles
 from engine.network.ties import nearest
 from tests.network.cases import problems
 
@@ -89,3 +90,26 @@ def test_an_earlier_plan_that_costs_as_little_is_kept() -> None:
     flow = least_cost(Problem.dense([1, 1], [1, 1], [[1, 1], [1, 1]]))
     for near in ([1, 0, 0, 1], [0, 1, 1, 0]):
         assert nearest(flow, np.array(near)).quantity.tolist() == near
+
+
+def test_a_row_that_closes_two_cycles_looks_again_each_time() -> None:
+    """The first cycle changes the forest; marks that were left in it then led round for ever."""
+    limits = np.array([35, 4, 19, 5, 8, 20])
+    problem = Problem(
+        supply=np.array([2, 7, 30]),
+        demand=np.array([17, 9, 13]),
+        start=np.array([0, 1, 3, 6]),
+        depot=np.array([2, 0, 2, 0, 1, 2]),
+        cost=np.zeros(6, dtype=np.int64),
+        at_most=limits,
+    )
+    quantity = np.array([17, 1, 8, 1, 7, 5])
+    cancel_cycles(problem.figures, problem.customer, quantity)
+    assert np.bincount(problem.depot, quantity).tolist() == [2, 7, 30]
+    assert np.bincount(problem.customer, quantity).tolist() == [17, 9, 13]
+    assert (quantity >= 0).all()
+    assert (quantity <= limits).all()
+    partly = networkx.Graph()
+    for row in np.flatnonzero((quantity > 0) & (quantity < limits)):
+        partly.add_edge(int(problem.depot[row]), f"customer {problem.customer[row]}")
+    assert networkx.is_forest(partly)
