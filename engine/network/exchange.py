@@ -129,8 +129,7 @@ def _cut_of_stuck(problem: Problem, rows: Rows, state: State) -> Cut:
 
 def _check_reach(problem: Problem) -> None:
     """The longest path, twice the largest cost per depot, must stay below every bound of the search."""
-    cost = problem.cost
-    largest = max(int(cost.max(initial=0)), -int(cost.min(initial=0)))
+    largest = problem.dearest
     bound = 2**57 // (problem.depots + 1)
     if largest > bound:
         raise TooLarge(

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from typing import Any, NamedTuple
 
@@ -10,12 +10,28 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from engine.exact import Integers, TooLarge, total
+from engine.network.compiled import kernel
 
 UNLIMITED = int(np.iinfo(np.int64).max)
 """In `at_most`: no limit."""
 
 LARGEST_FIGURE = 2**62 - 1
 """Totals of quantities, and every cost, stay within plus or minus this, so that sums of two cannot wrap."""
+
+
+class Look(NamedTuple):
+    """What one look over all rows finds.
+
+    outside: the first row whose depot does not exist, or -1
+    lowest:  least cost of all rows, 0 without rows
+    highest: largest cost of all rows, likewise
+    every:   whether each customer has exactly one row from each depot, in the order of the depots
+    """
+
+    outside: int
+    lowest: int
+    highest: int
+    every: bool
 
 
 class Figures(NamedTuple):
@@ -56,6 +72,7 @@ class Problem:
     cost: Integers
     at_least: Integers | None = None
     at_most: Integers | None = None
+    look: Look = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
         for name in ("supply", "demand", "start", "depot", "cost", "at_least", "at_most"):
@@ -63,7 +80,7 @@ class Problem:
             if given is not None:
                 object.__setattr__(self, name, _whole_numbers(name, given))
         _check_quantities(self)
-        _check_rows(self)
+        object.__setattr__(self, "look", _checked_rows(self))
         _check_limits(self)
 
     @classmethod
@@ -86,6 +103,11 @@ class Problem:
             depot=np.tile(np.arange(depots, dtype=np.int64), customers),
             cost=matrix.T.reshape(-1),
         )
+
+    @property
+    def dearest(self) -> int:
+        """Largest cost of a row, its sign left out."""
+        return max(-self.look.lowest, self.look.highest)
 
     @property
     def depots(self) -> int:
@@ -160,7 +182,8 @@ def _check_quantities(problem: Problem) -> None:
         )
 
 
-def _check_rows(problem: Problem) -> None:
+def _checked_rows(problem: Problem) -> Look:
+    """Checks the rows but for their limits, and says what was seen on the way."""
     start, depot, cost = problem.start, problem.depot, problem.cost
     if len(start) != problem.customers + 1:
         raise ValueError(
@@ -179,18 +202,43 @@ def _check_rows(problem: Problem) -> None:
             f"start falls from {start[customer]} to {start[customer + 1]} after customer {customer}: "
             f"rows must stand customer by customer."
         )
-    if len(depot) and (int(depot.min()) < 0 or int(depot.max()) >= problem.depots):
-        row = int(np.argmax((depot < 0) | (depot >= problem.depots)))
+    look = Look(*look_over(start, depot, cost, problem.depots))
+    if look.outside >= 0:
         raise ValueError(
-            f"depot[{row}] is {depot[row]}, but there are {problem.depots} depots: "
+            f"depot[{look.outside}] is {depot[look.outside]}, but there are {problem.depots} depots: "
             f"indices run from 0 to {problem.depots - 1}."
         )
-    if len(cost) and max(-int(cost.min()), int(cost.max())) > LARGEST_FIGURE:
+    if max(-look.lowest, look.highest) > LARGEST_FIGURE:
         row = int(np.argmax((cost > LARGEST_FIGURE) | (cost < -LARGEST_FIGURE)))
         raise TooLarge(
             f"cost[{row}] is {cost[row]}, costs must lie within plus or minus {LARGEST_FIGURE}: "
             f"use a larger currency unit."
         )
+    return look
+
+
+@kernel
+def look_over(start: Integers, depot: Integers, cost: Integers, depots: int) -> tuple[int, int, int, bool]:
+    """One pass over the rows, see `Look`; written so that it runs in vectors where rows are complete."""
+    if len(cost) == 0:
+        return -1, 0, 0, len(start) == 1 or depots == 0
+    lowest = highest = cost[0]
+    every = True
+    for j in range(len(start) - 1):
+        depots_here, costs_here = depot[start[j] : start[j + 1]], cost[start[j] : start[j + 1]]
+        misplaced = 0
+        for n in range(len(costs_here)):
+            misplaced += depots_here[n] != n
+            lowest = min(lowest, costs_here[n])
+            highest = max(highest, costs_here[n])
+        if misplaced == 0 and len(costs_here) <= depots:
+            every = every and len(costs_here) == depots
+            continue
+        every = False
+        for n in range(len(costs_here)):
+            if depots_here[n] < 0 or depots_here[n] >= depots:
+                return start[j] + n, lowest, highest, False
+    return -1, lowest, highest, every
 
 
 def _check_limits(problem: Problem) -> None:

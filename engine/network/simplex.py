@@ -53,7 +53,7 @@ def _longest_detour(problem: Problem) -> int:
     Such a way meets no depot and no customer twice, and so uses at most two rows of each depot. The link to
     the root costs one detour more, and a hint may add one more: no two prices differ by more than six.
     """
-    dearest = max(int(problem.cost.max(initial=0)), -int(problem.cost.min(initial=0)))
+    dearest = problem.dearest
     detour = (2 * min(problem.depots, problem.customers) + 2) * dearest + 1
     if 6 * detour > LARGEST_PRICE:
         # a bound depot by depot takes longer; it helps where only a stand-in depot has large costs

@@ -80,7 +80,7 @@ def above_lower_limits(problem: Problem) -> tuple[Rows, Integers, Integers]:
         full=np.zeros(len(room), dtype=np.int8),
         filled=np.zeros(problem.customers, dtype=np.int32),
         binding=binding,
-        every=bool(is_every(problem.start, problem.depot, problem.depots)),
+        every=problem.look.every,
     )
     return rows, left, need
 
@@ -118,16 +118,3 @@ def count_limits(
             closed += room[row] == 0
             binding += 0 < room[row] < min(left[depot[row]], need[j])
     return binding, closed
-
-
-@kernel(signature(BOOL, INTS, INTS, INT))
-def is_every(start: Integers, depot: Integers, depots: int) -> bool:
-    """Whether each customer has exactly one row from each depot, in the order of the depots."""
-    for j in range(len(start) - 1):
-        begin = start[j]
-        if start[j + 1] - begin != depots:
-            return False
-        for i in range(depots):
-            if depot[begin + i] != i:
-                return False
-    return True
