@@ -4,8 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-import numpy as np
-
 from engine.exact import Integers
 from engine.network import exchange
 from engine.network.flow import Flow, Method
@@ -45,25 +43,3 @@ def _simplex() -> Solver:
 def method_for(problem: Problem) -> Method:
     """The kernel that is faster on problems of this shape."""
     return "exchange" if problem.depots <= FEW_DEPOTS else "simplex"
-
-
-def prepare() -> None:
-    """Compiles all kernels, or loads them from the user's cache folder: some seconds the very first time.
-
-    The first solve would do the same. Other threads may go on meanwhile, and may solve: they wait.
-    """
-    supply, demand, cost = np.array([2, 1]), np.array([1, 2]), np.array([[1, 2], [3, 5]])
-    problem = Problem.dense(supply, demand, cost)
-    limits = np.zeros(4, dtype=np.int64)
-    limited = Problem(
-        supply, demand, problem.start, problem.depot, problem.cost, at_least=limits, at_most=limits + 9
-    )
-    flow = least_cost(limited, least_cost(problem))
-    prove(problem, *_simplex()(problem, flow.depot_price, flow.quantity))
-    # these build on this module, so they cannot be imported above
-    from engine.network.alternatives import exchangeable
-    from engine.network.closure import close
-    from engine.network.ties import nearest
-
-    close(flow)
-    exchangeable(nearest(flow, flow.quantity))
