@@ -1,12 +1,22 @@
 """What a grid of figures holds between two runs of a page: its frame, and what nobody can read."""
 
+from collections.abc import Hashable
 from dataclasses import dataclass, field, replace
 
 import pandas as pd
 
+from engine.changes import Change
 from engine.findings import Finding
 from engine.intake.build_lists import Unused
-from engine.intake.frames import GRID_COLUMNS, CellProblem, changes_between, draft_of
+from engine.intake.frames import (
+    GRID_COLUMNS,
+    CellProblem,
+    changes_between,
+    draft_of,
+    frame_of,
+    identified,
+    keys_of,
+)
 from engine.intake.numbers import NumberStyle
 from engine.week import Week
 
@@ -15,12 +25,16 @@ from engine.week import Week
 class Draft:
     """`base` stays as it is for as long as `key` does; `draft` is what is on screen.
 
+    `named` is the draft with the names that the week has for its rows, where those on screen cannot be read.
+    `again` counts fresh starts of this grid alone.
     `unread` are texts that are on screen and not in the week: the grid shows them when it starts afresh.
     """
 
     key: str = ""
+    again: int = 0
     base: pd.DataFrame = field(default_factory=pd.DataFrame)
     draft: pd.DataFrame = field(default_factory=pd.DataFrame)
+    named: pd.DataFrame = field(default_factory=pd.DataFrame)
     problems: tuple[CellProblem, ...] = ()
     unread: tuple[Unused, ...] = ()
 
@@ -43,38 +57,65 @@ def opened(week: Week, table: str, unused: tuple[Unused, ...], style: NumberStyl
     unread = tuple(one for one in unused if one.table == table)
     if not unread:
         return Draft()
-    frame = draft_of(week, table, unread, style)
-    _, problems = changes_between(week, table, frame, frame, style)
-    return Draft(draft=frame, unread=unread, problems=tuple(problems))
+    draft = Draft(unread=unread)
+    start(draft, week, table, style)
+    return draft
+
+
+def start(draft: Draft, week: Week, table: str, style: NumberStyle) -> list[Change]:
+    """Let a draft show the week anew, with the texts that nobody could read where they stood.
+
+    Returns the changes that those of them make which can be read by now.
+    """
+    draft.named = frame_of(week, table, style)
+    draft.problems = ()
+    if not draft.unread:
+        draft.draft = draft.named
+        return []
+    draft.draft = draft_of(week, table, draft.unread, style)
+    draft.named = _named_in(draft.named, draft.draft)
+    changes, problems = changes_between(week, table, draft.named, draft.draft, style)
+    draft.problems = tuple(problems)
+    return changes
+
+
+def edit(draft: Draft, edited: pd.DataFrame, week: Week, table: str, style: NumberStyle) -> list[Change]:
+    """Take over an edited frame: the changes that it makes; what nobody can read becomes its problems."""
+    changes, problems = changes_between(week, table, draft.named, edited, style)
+    unread = {(problem.row, problem.column) for problem in problems if problem.stops}
+    draft.named = identified(table, draft.named, edited, unread)
+    draft.draft, draft.problems = edited, tuple(problems)
+    return changes
 
 
 def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
-    """The texts of a draft that are not in the week, so that they outlive a fresh start of the grid."""
-    if table == "rules":
+    """The texts of a draft that are not in the week, so that they outlive a fresh start of the grid.
+
+    A row of the week keeps its unread cells, under its name or key; a row that is not in it keeps all.
+    """
+    faulty: dict[Hashable, set[str]] = {}
+    for problem in draft.problems:
+        if problem.stops and problem.row in draft.draft.index:
+            faulty.setdefault(problem.row, set()).add(problem.column)
+    if not faulty:
         return ()
-    columns = GRID_COLUMNS[table]
-    fields = {column.heading: column.field for column in columns}
-    known = {"depots": week.depots, "customers": week.customers}.get(table, {})
-    firsts = draft.draft[columns[0].heading].drop_duplicates().index  # a repeat is no row of the week
+    keys = keys_of(week, table, draft.named)
+    fields = {column.heading: column.field for column in GRID_COLUMNS[table]}
     found = []
-    for label in dict.fromkeys(problem.row for problem in draft.problems if problem.stops):
-        if label not in draft.draft.index:
+    for label, headings in faulty.items():
+        row = draft.draft.loc[[label]].iloc[0]
+        if table == "rules":
+            if label in keys and pd.notna(row["Value"]):
+                found.append(Unused(table, {"value": str(row["Value"])}, keys[label]))
             continue
-        texts = {
-            fields[str(name)]: str(text)
-            for name, text in draft.draft.loc[[label]].iloc[0].items()
-            if pd.notna(text)
-        }
-        name = texts.get(columns[0].field, "")
-        if name in known and label in firsts:
-            faulty = {fields[p.column] for p in draft.problems if p.row == label}
-            found.append(Unused(table, {f: text for f, text in texts.items() if f in faulty}, name))
-        elif table != "rates" or not _in_rates(week, texts):
-            found.append(Unused(table, texts))
+        texts = {str(name): str(text) for name, text in row.items() if pd.notna(text)}
+        kept = headings if label in keys else fields
+        found.append(
+            Unused(table, {fields[h]: texts.get(h, "") for h in kept if h in fields}, keys.get(label))
+        )
     return tuple(found)
 
 
-def _in_rates(week: Week, texts: dict[str, str]) -> bool:
-    """Whether the week has a rate row for this lane and haulier."""
-    haulier = texts.get("haulier", "").strip() or None
-    return bool(week.rates.ids(texts.get("depot", ""), texts.get("customer", ""), haulier))
+def _named_in(frame: pd.DataFrame, draft: pd.DataFrame) -> pd.DataFrame:
+    """The rows of a draft as the week has them, then those that are not in it."""
+    return pd.concat([frame, draft.iloc[len(frame) :]]) if len(draft) > len(frame) else frame

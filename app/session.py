@@ -191,8 +191,15 @@ class Desk:
         """Let every grid show the week anew, with the texts that could not be read."""
         for table, draft in self.drafts.items():
             if draft.key:
-                draft.unread = unread_in(draft, self.week, table)
+                draft.unread = unread_in(draft, self.working, table)
         self.generation += 1
+
+    def start_others_afresh(self, edited: str) -> None:
+        """Let the grids of the other tables show the week anew: names in them have changed."""
+        for table, draft in self.drafts.items():
+            if draft.key and table != edited:
+                draft.unread = unread_in(draft, self.working, table)
+                draft.again += 1
 
     def all_findings(self) -> list[Finding]:
         """What there is to say of the figures as they stand: cells of the grids, the week, the upload."""

@@ -6,10 +6,11 @@ import pandas as pd
 import streamlit as st
 from streamlit.elements.lib.column_types import ColumnConfig
 
+from app.drafts import edit, start
 from app.session import Desk
-from engine.changes import Change, Together
+from engine.changes import Alter, Change, Remove, Together
 from engine.columns import Column, Kind
-from engine.intake.frames import GRID_COLUMNS, changes_between, draft_of
+from engine.intake.frames import GRID_COLUMNS
 
 MOST_ROWS = 20_000
 NUMBERS = {
@@ -52,14 +53,15 @@ def _config(column: Column) -> ColumnConfig:
 def _grid(
     state: Desk, table: str, config: dict[str, ColumnConfig], rows: Literal["fixed", "dynamic"]
 ) -> None:
-    key = f"{table}-{state.generation}"
     kept = state.grid(table)
+    key = f"{table}-{state.generation}-{kept.again}"
     if kept.key != key or key not in st.session_state:
         # A grid starts afresh from one constant frame; what is edited since is kept apart from it.
-        kept.base = (
-            kept.draft if kept.key == key else draft_of(state.working, table, kept.unread, state.style)
-        )
-        kept.draft, kept.key = kept.base, key
+        readable = [] if kept.key == key else start(kept, state.working, table, state.style)
+        kept.base, kept.key = kept.draft, key
+        if readable:
+            _propose(state, table, readable)
+            st.rerun()
     edited = st.data_editor(
         kept.base,
         key=key,
@@ -77,9 +79,13 @@ def _grid(
 
 def _take_edits(state: Desk, table: str, edited: pd.DataFrame) -> None:
     """What differs from the last draft, as one change; what cannot be read stays on screen."""
-    kept = state.grid(table)
-    changes, problems = changes_between(state.working, table, kept.draft, edited, state.style)
-    kept.draft, kept.problems = edited, tuple(problems)
+    changes = edit(state.grid(table), edited, state.working, table, state.style)
     if changes:
-        change: Change = changes[0] if len(changes) == 1 else Together(tuple(changes), f"edit of {table}")
-        state.propose_more(change)
+        _propose(state, table, changes)
+
+
+def _propose(state: Desk, table: str, changes: list[Change]) -> None:
+    named = any(isinstance(change, Alter) and change.field == "name" for change in changes)
+    if named or any(isinstance(change, Remove) for change in changes):
+        state.start_others_afresh(table)
+    state.propose_more(changes[0] if len(changes) == 1 else Together(tuple(changes), f"edit of {table}"))

@@ -85,7 +85,9 @@ def draft_of(
         return frame
     headings = {column.field: column.heading for column in GRID_COLUMNS[table]}
     rows = []
-    names = {} if table == "rates" else {name: place for place, name in enumerate(frame.iloc[:, 0])}
+    names: dict[Any, int] = {}
+    if any(one.key is not None for one in here):
+        names = {key: place for place, key in enumerate(_keys_in_order(week, table))}
     for one in here:
         texts = {headings[name]: text for name, text in one.texts.items() if name in headings}
         if one.key is None:
@@ -93,7 +95,38 @@ def draft_of(
         elif one.key in names:
             for heading, text in texts.items():
                 frame.loc[names[one.key], heading] = text
+        else:  # its row has gone from the week since: the texts stay, in a row of their own
+            told = _named_by(table, one.key) | texts
+            rows.append({heading: told.get(heading, "") for heading in frame.columns})
     return pd.concat([frame, pd.DataFrame(rows, dtype=object)], ignore_index=True) if rows else frame
+
+
+def keys_of(week: Week, table: str, frame: pd.DataFrame) -> dict[Hashable, Any]:
+    """The name, or `RateKey`, that each row of a frame has in a week, by label, where it is in it."""
+    if table == "rules":
+        return {
+            label: RULE_COLUMNS[place].field for place, label in enumerate(frame.index[: len(RULE_COLUMNS)])
+        }
+    return {label: _key(week, table, found) for label, found in _keys(week, table, frame).items()}
+
+
+def identified(
+    table: str, before: pd.DataFrame, after: pd.DataFrame, unread: set[tuple[Hashable, str]]
+) -> pd.DataFrame:
+    """An edited frame that still says which row is which: names that nobody can read are those of before.
+
+    before: the frame that last said so; unread: label and heading of the cells that could not be read
+    """
+    named = after.copy()
+    for column in GRID_COLUMNS[table] if table != "rules" else ():
+        if column.field not in ("name", "depot", "customer", "haulier"):
+            continue
+        earlier = dict(zip(before.index, before[column.heading], strict=True))
+        named[column.heading] = [
+            earlier[label] if (label, column.heading) in unread and label in earlier else text
+            for label, text in zip(after.index, after[column.heading], strict=True)
+        ]
+    return named
 
 
 def changes_between(
@@ -141,6 +174,19 @@ def changes_between(
             CellProblem(table, label, headings[name], finding) for name, finding in said.items()
         )
     return changes, problems_out
+
+
+def _keys_in_order(week: Week, table: str) -> list[Any]:
+    if table == "rates":
+        return [week.rates.key_of(number) for number in week.rates.ids_in_order.tolist()]
+    return list(week.depots if table == "depots" else week.customers)
+
+
+def _named_by(table: str, key: Any) -> dict[str, str]:
+    """The names of a row by the key that it had in a week."""
+    if table == "rates":
+        return {"Depot": key.depot, "Customer": key.customer, "Haulier": key.haulier or ""}
+    return {GRID_COLUMNS[table][0].heading: str(key)}
 
 
 _WHAT: Mapping[str, Any] = {"depots": "depot", "customers": "customer", "rates": "rate"}
