@@ -144,7 +144,7 @@ def _spread(
     """Keeps every worker busy with one part and one waiting, until all are done or a stop is asked for."""
     line = parts[::-1]
     tries: dict[tuple[Case, ...], int] = {}
-    out: dict[Future[tuple[list[Outcome], float]], tuple[Case, ...]] = {}
+    out: dict[Future[tuple[list[Outcome], float]], tuple[tuple[Case, ...], Executor]] = {}
     while line or out:
         if asked_to_stop():
             run.stopped = True
@@ -154,21 +154,19 @@ def _spread(
         broken = False
         try:
             while line and len(out) < 2 * workers:
-                out[executor.submit(part_of, ground, line[-1])] = line[-1]
+                out[executor.submit(part_of, ground, line[-1])] = (line[-1], executor)
                 line.pop()
         except BrokenProcessPool:
             broken = True
         done, _ = wait(out, timeout=0 if broken else PAUSE, return_when=FIRST_COMPLETED)
         for future in done:
-            part = out.pop(future)
+            part, by = out.pop(future)
             try:
                 run.take(*future.result())
-            except (ArithmeticError, ValueError, TypeError):
-                raise  # a fault of ours, which another try would only repeat
+            except (ArithmeticError, ValueError, TypeError, KeyboardInterrupt):
+                raise  # not lost: another try would only repeat it
             except BaseException as lost:
-                if isinstance(lost, KeyboardInterrupt):
-                    raise
-                broken = broken or isinstance(lost, BrokenProcessPool)
+                broken = broken or (by is executor and isinstance(lost, BrokenProcessPool))
                 tries[part] = tries.get(part, 0) + 1
                 if tries[part] >= TRIES:
                     raise PartLost(
@@ -177,9 +175,9 @@ def _spread(
                         run,
                     ) from lost
                 run.again += 1
-                line.append(part)
+                line.insert(0, part)
             tell(len(run.outcomes), run.asked)
-        if broken and not any(future.running() for future in out):
+        if broken:
             executor = _renewed(renew, run)
 
 

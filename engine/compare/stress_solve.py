@@ -89,11 +89,12 @@ def outcome_of(ground: Ground, case: Case) -> Outcome:
     """
     try:
         altered = alter(ground, case)
-        flow, seen = solve(ground, altered)
+        try:
+            flow, seen = solve(ground, altered)
+        except Contradiction:
+            return Outcome(case, why=_against(ground, altered))
     except (Unanswered, TooLarge) as reason:
         return Outcome(case, why=str(reason))
-    except Contradiction as contradiction:
-        return Outcome(case, why=_against(ground, contradiction))
     return _told(ground, case, altered, flow, seen)
 
 
@@ -342,10 +343,20 @@ def _index(names: tuple[str, ...], name: str, what: str) -> int:
     return names.index(name)
 
 
-def _against(ground: Ground, contradiction: Contradiction) -> str:
+def _against(ground: Ground, altered: Altered) -> str:
     """Why no plan keeps all limits, with names."""
-    depots, customers = ground.model.depots, ground.model.customers
-    names = [depots[i] for i in contradiction.cut.depots if i < len(depots)][:3]
-    names += [customers[j] for j in contradiction.cut.customers if j < len(customers)][:3]
-    about = f" ({', '.join(names)})" if names else ""
-    return f"Holds and promised quantities ask for more than there would be{about}."
+    model = ground.model
+    rows = np.setdiff1d(ground.promised, altered.lost)
+    lower, _ = limits_of(model)
+    names = []
+    for ends, have, those in (
+        (model.problem.depot, altered.supply, model.depots),
+        (model.problem.customer, altered.demand, model.customers),
+    ):
+        promised = np.zeros(len(have), dtype=np.int64)
+        np.add.at(promised, ends[rows], lower[rows])
+        names += [those[place] for place in np.flatnonzero(promised > have).tolist()]
+    shown = ", ".join(names[:5]) + (f" and {len(names) - 5} more" if len(names) > 5 else "")
+    return (
+        f"More is held or promised than there would be ({shown})." if names else "No plan keeps all limits."
+    )

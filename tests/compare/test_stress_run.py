@@ -15,7 +15,9 @@ from engine.planning.planner import plan_week
 from tests.speed_reasons import dense_week
 
 D = Decimal
-DRAWS = Draws(11, Spread("triangular", D(-20), D(20)), Spread("even", D(-10), D(0)), Spread("even", D(0), D(9)))
+DRAWS = Draws(
+    11, Spread("triangular", D(-20), D(20)), Spread("even", D(-10), D(0)), Spread("even", D(0), D(9))
+)
 
 
 @pytest.fixture(scope="module")
@@ -52,12 +54,11 @@ def test_any_executor_gives_the_same(ground: Ground, cases: list[Case]) -> None:
     here = stress(ground, cases)
     with ThreadPoolExecutor(2) as threads:
         spread = stress(ground, cases, threads)
-    with processes(2) as pool:
-        apart = stress(ground, [*cases, *cases[:3]], pool)
-    assert list(here.outcomes) == list(spread.outcomes) == list(apart.outcomes) == cases
-    assert here.outcomes == spread.outcomes == apart.outcomes
+        twice = stress(ground, [*cases, *cases[:3]], threads)
+    assert list(here.outcomes) == list(spread.outcomes) == list(twice.outcomes) == cases
+    assert here.outcomes == spread.outcomes == twice.outcomes
     assert not any(outcome.why for outcome in here.outcomes.values())
-    assert here.refused == spread.refused == apart.refused == 0
+    assert here.refused == spread.refused == twice.refused == 0
 
 
 def test_what_is_lost_is_handed_out_again_and_what_comes_twice_counts_once(
@@ -73,8 +74,8 @@ def test_what_is_lost_is_handed_out_again_and_what_comes_twice_counts_once(
 
 
 def test_workers_that_die_are_replaced(ground: Ground, cases: list[Case]) -> None:
-    """Every process of the first pool is killed once the first part is back."""
-    pools = [processes(2)]
+    """Every process of the first pool is killed once the first part is back; the rest is done by another."""
+    pools = [processes(1)]
     killed = []
 
     def kill(done: int, _: int) -> None:
@@ -84,10 +85,10 @@ def test_workers_that_die_are_replaced(ground: Ground, cases: list[Case]) -> Non
                 killed.append(process)
 
     def renew() -> Executor:
-        pools.append(processes(2))
+        pools.append(processes(1))
         return pools[-1]
 
-    run = stress(ground, cases, pools[0], progress=kill, renew=renew)
+    run = stress(ground, cases, pools[0], workers=1, progress=kill, renew=renew)
     for pool in pools:
         pool.shutdown()
     assert len(killed) > 0

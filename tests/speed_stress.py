@@ -1,0 +1,89 @@
+"""Stress runs beside cold solves, in one run: `python -m tests.speed_stress [depots customers [weeks]]`.
+
+First every depot lost, every plan proved, beside solving each of the same altered problems afresh; then
+drawn weeks of 20 x 500 on one and on two processes. Prints what was measured; nothing is asserted, since
+machines differ. Processor time is told beside elapsed time, since machines are shared.
+"""
+
+import statistics
+import sys
+import time
+from collections.abc import Callable
+from decimal import Decimal
+
+import numpy as np
+
+from engine.compare.stress_cases import AS_IT_IS, depots_lost, drawn
+from engine.compare.stress_draws import Draws, Spread
+from engine.compare.stress_ground import ground_of, window
+from engine.compare.stress_run import processes, ready, stress
+from engine.compare.stress_solve import _problem, alter, outcome_of
+from engine.network import least_cost
+from engine.planning.planner import plan_week
+from tests.speed_reasons import dense_week
+
+Say = Callable[[str], None]
+
+
+def lose_each_depot(depots: int, customers: int, say: Say = print) -> None:
+    plan = plan_week(dense_week(depots, customers))
+    begun = time.process_time()
+    ground = ground_of(plan)
+    outcome_of(ground, AS_IT_IS)
+    before = time.process_time() - begun
+    every = window(ground.model, np.arange(ground.model.problem.rows))
+    cold, warm, costs = [], [], []
+    for case in depots_lost(plan):  # turn by turn, so that both meet the same machine
+        problem = _problem(ground, alter(ground, case), every, None)
+        begun = time.process_time()
+        fresh = least_cost(problem)
+        cold.append(time.process_time() - begun)
+        begun = time.process_time()
+        outcome = outcome_of(ground, case)
+        warm.append(time.process_time() - begun)
+        money = int(ground.model.money[fresh.quantity > 0] @ fresh.quantity[fresh.quantity > 0])
+        places = ground.model.quantity_places + ground.model.money_places
+        costs.append(Decimal(money).scaleb(-places) == outcome.total)
+    say(f"{depots} x {customers}, each of {len(cold)} depots lost, every plan proved, processor time:")
+    say(f"  once before the first case          {before:8.2f} s")
+    for what, taken in (("cold solves of the altered problems", cold), ("the cases", warm)):
+        say(f"  {what:35} {sum(taken):8.2f} s, median {1e3 * statistics.median(taken):.1f} ms")
+    share, whole = sum(warm) / sum(cold), (before + sum(warm)) / sum(cold)
+    say(f"  share {share:.3f}, with what is done once before {whole:.3f}")
+    say(f"  equal costs: {sum(costs)} of {len(costs)}")
+
+
+def draw_weeks(count: int, say: Say = print) -> None:
+    ground = ground_of(plan_week(dense_week(20, 500)))
+    draws = Draws(
+        1,
+        orders=Spread("triangular", Decimal(-20), Decimal(20)),
+        stock=Spread("normal", Decimal(-15), Decimal(5), Decimal(0), Decimal(5)),
+        rates=Spread("even", Decimal(-2), Decimal(8)),
+    )
+    cases = drawn(draws, count)
+    say(f"{count} drawn weeks of 20 x 500:")
+    for workers in (1, 2):
+        with processes(workers) as pool:
+            for future in [pool.submit(ready) for _ in range(4 * workers)]:
+                future.result()  # both have started and loaded their code
+            stress(ground, cases[: 16 * workers], pool, workers=workers)
+            told: list[int] = []
+            begun = time.perf_counter()
+            run = stress(ground, cases, pool, workers=workers, progress=lambda done, _: told.append(done))
+            elapsed = time.perf_counter() - begun
+        busy = run.seconds / (workers * elapsed)
+        say(
+            f"  on {workers}: {elapsed:6.2f} s elapsed, {run.seconds:6.2f} s processor time in the cases, "
+            f"{100 * busy:.0f} % of the processes' time, progress told {len(told)} times"
+        )
+    done: list[int] = [0]
+    with processes(2) as pool:
+        run = stress(ground, cases, pool, progress=lambda now, _: done.append(now), stop=lambda: done[-1] > 0)
+    say(f"  stopped once something was done: {len(run.outcomes)} cases kept")
+
+
+if __name__ == "__main__":
+    sizes = [int(argument) for argument in sys.argv[1:]] or [100, 10_000]
+    lose_each_depot(sizes[0], sizes[1])
+    draw_weeks(sizes[2] if len(sizes) > 2 else 1_000)
