@@ -1,11 +1,12 @@
 """What a grid of figures holds between two runs of a page: its frame, and what nobody can read."""
 
-from collections.abc import Hashable
+from collections.abc import Hashable, Iterable
 from dataclasses import dataclass, field, replace
 
 import pandas as pd
 
-from engine.changes import Change
+from engine.changes import Alter, Change
+from engine.figures import RateKey
 from engine.findings import Finding
 from engine.intake.build_lists import Unused
 from engine.intake.frames import (
@@ -26,12 +27,13 @@ class Draft:
     """`base` stays as it is for as long as `key` does; `draft` is what is on screen.
 
     `named` is the draft with the names that the week has for its rows, where those on screen cannot be read.
-    `again` counts fresh starts of this grid alone.
+    `week` is the one that `named` was last shown with. `again` counts fresh starts of this grid alone.
     `unread` are texts that are on screen and not in the week: the grid shows them when it starts afresh.
     """
 
     key: str = ""
     again: int = 0
+    week: Week = field(default_factory=Week)
     base: pd.DataFrame = field(default_factory=pd.DataFrame)
     draft: pd.DataFrame = field(default_factory=pd.DataFrame)
     named: pd.DataFrame = field(default_factory=pd.DataFrame)
@@ -67,7 +69,7 @@ def start(draft: Draft, week: Week, table: str, style: NumberStyle) -> list[Chan
 
     Returns the changes that those of them make which can be read by now.
     """
-    draft.named = frame_of(week, table, style)
+    draft.named, draft.week = frame_of(week, table, style), week
     draft.problems = ()
     if not draft.unread:
         draft.draft = draft.named
@@ -91,7 +93,7 @@ def edit(draft: Draft, edited: pd.DataFrame, week: Week, table: str, style: Numb
 def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
     """The texts of a draft that are not in the week, so that they outlive a fresh start of the grid.
 
-    A row of the week keeps its unread cells, under its name or key; a row that is not in it keeps all.
+    A row of the week keeps its unread cells, under its name or key; a row that never was in it keeps all.
     """
     faulty: dict[Hashable, set[str]] = {}
     for problem in draft.problems:
@@ -99,7 +101,7 @@ def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
             faulty.setdefault(problem.row, set()).add(problem.column)
     if not faulty:
         return ()
-    keys = keys_of(week, table, draft.named)
+    keys = keys_of(draft.week, table, draft.named) | keys_of(week, table, draft.named)
     fields = {column.heading: column.field for column in GRID_COLUMNS[table]}
     found = []
     for label, headings in faulty.items():
@@ -114,6 +116,19 @@ def unread_in(draft: Draft, week: Week, table: str) -> tuple[Unused, ...]:
             Unused(table, {fields[h]: texts.get(h, "") for h in kept if h in fields}, keys.get(label))
         )
     return tuple(found)
+
+
+def renamed(unread: tuple[Unused, ...], changes: Iterable[Change]) -> tuple[Unused, ...]:
+    """Texts of rates, their rows known by the new names of depots and customers."""
+    for change in changes:
+        if isinstance(change, Alter) and change.field == "name" and change.what in ("depot", "customer"):
+            unread = tuple(
+                replace(one, key=one.key._replace(**{change.what: change.value}))
+                if isinstance(one.key, RateKey) and getattr(one.key, change.what) == change.key
+                else one
+                for one in unread
+            )
+    return unread
 
 
 def _named_in(frame: pd.DataFrame, draft: pd.DataFrame) -> pd.DataFrame:

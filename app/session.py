@@ -7,7 +7,7 @@ from typing import Any
 import streamlit as st
 
 import engine
-from app.drafts import Draft, opened, unread_in
+from app.drafts import Draft, opened, renamed, unread_in
 from app.kept import Kept
 from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
@@ -194,11 +194,11 @@ class Desk:
                 draft.unread = unread_in(draft, self.working, table)
         self.generation += 1
 
-    def start_others_afresh(self, edited: str) -> None:
-        """Let the grids of the other tables show the week anew: names in them have changed."""
+    def start_others_afresh(self, edited: str, changes: Sequence[Change]) -> None:
+        """Let the grids of the other tables show the week anew: changes are about to alter names in them."""
         for table, draft in self.drafts.items():
             if draft.key and table != edited:
-                draft.unread = unread_in(draft, self.working, table)
+                draft.unread = renamed(unread_in(draft, self.working, table), changes)
                 draft.again += 1
 
     def all_findings(self) -> list[Finding]:

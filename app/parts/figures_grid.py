@@ -62,6 +62,7 @@ def _grid(
         if readable:
             _propose(state, table, readable)
             st.rerun()
+    kept.week = state.working
     edited = st.data_editor(
         kept.base,
         key=key,
@@ -87,5 +88,5 @@ def _take_edits(state: Desk, table: str, edited: pd.DataFrame) -> None:
 def _propose(state: Desk, table: str, changes: list[Change]) -> None:
     named = any(isinstance(change, Alter) and change.field == "name" for change in changes)
     if named or any(isinstance(change, Remove) for change in changes):
-        state.start_others_afresh(table)
+        state.start_others_afresh(table, changes)
     state.propose_more(changes[0] if len(changes) == 1 else Together(tuple(changes), f"edit of {table}"))
