@@ -1,1 +1,1 @@
-"""What a manager asks of a plan: what if something is lost, dearer or more, and what less emission costs."""
+"""What a manager asks of a plan: against the usual way, last week, a variant, something lost or dearer."""

@@ -1,0 +1,148 @@
+"""Quantities on the rows of a model as a costed plan: shipments, what is short and unsent, and the money."""
+
+from dataclasses import dataclass
+from decimal import Decimal
+from typing import Protocol
+
+import numpy as np
+
+from engine.exact import to_decimal, total_of
+from engine.money import minor_places, round_half_up
+from engine.planning.gone import cost_of, key_of
+from engine.planning.model import NO_RATE, Integers, Model
+from engine.planning.plan import Shipment, Short, Unsent
+from engine.week import Week
+
+
+class Priced(Protocol):
+    """What has quantities and costs: a plan, an issued one, a usual one."""
+
+    @property
+    def shipments(self) -> tuple[Shipment, ...]: ...
+    @property
+    def short(self) -> tuple[Short, ...]: ...
+    @property
+    def unsent(self) -> tuple[Unsent, ...]: ...
+    @property
+    def freight_cost(self) -> Decimal: ...
+    @property
+    def freight_payable(self) -> Decimal: ...
+    @property
+    def short_cost(self) -> Decimal: ...
+    @property
+    def unsent_cost(self) -> Decimal: ...
+
+
+@dataclass(frozen=True, eq=False)
+class Costed:
+    """Quantities with what they cost: as a plan has them, but without a claim to be the cheapest."""
+
+    shipments: tuple[Shipment, ...]
+    short: tuple[Short, ...]
+    unsent: tuple[Unsent, ...]
+    freight_cost: Decimal
+    freight_payable: Decimal
+    short_cost: Decimal
+    unsent_cost: Decimal
+
+    @property
+    def status(self) -> str:
+        return "short" if self.short else "met"
+
+
+def costed(week: Week, model: Model, sent: Integers) -> Costed:
+    """What these quantities cost; what has gone stands in front, as in a plan.
+
+    sent: (rows,) grains on the model's rate rows; what is short and unsent follows
+    """
+    shipments = (*_gone(week), *_shipments(week, model, sent))
+    short, unsent = _short(model, sent), _unsent(model, sent)
+    return Costed(
+        shipments,
+        short,
+        unsent,
+        freight_cost=total_of(one.cost for one in shipments),
+        freight_payable=total_of(one.payable for one in shipments),
+        short_cost=total_of(one.cost for one in short),
+        unsent_cost=total_of(one.cost for one in unsent),
+    )
+
+
+def _gone(week: Week) -> list[Shipment]:
+    minor = minor_places(week.rules.currency)
+    return [
+        Shipment(
+            key_of(one),
+            one.quantity,
+            one.rate,
+            cost_of(one),
+            round_half_up(cost_of(one), minor),
+            gone=one.name,
+        )
+        for one in week.gone.values()
+    ]
+
+
+def _shipments(week: Week, model: Model, sent: Integers) -> list[Shipment]:
+    used = np.flatnonzero((sent > 0) & (model.rate_row != NO_RATE))
+    used = used[np.argsort(model.rate_row[used], kind="stable")]
+    minor, ids = minor_places(week.rules.currency), week.rates.ids_in_order
+    found = []
+    for row in used.tolist():
+        key = week.rates.key_of(int(ids[model.rate_row[row]]))
+        quantity, rate = int(sent[row]), int(model.money[row])
+        cost = to_decimal(quantity * rate, model.quantity_places + model.money_places)
+        found.append(
+            Shipment(
+                key,
+                to_decimal(quantity, model.quantity_places),
+                to_decimal(rate, model.money_places),
+                cost,
+                round_half_up(cost, minor),
+                held=key in week.holds,
+            )
+        )
+    return found
+
+
+def _short(model: Model, sent: Integers) -> tuple[Short, ...]:
+    problem, rates = model.problem, np.flatnonzero(model.rate_row != NO_RATE)
+    customer = np.repeat(np.arange(problem.customers), np.diff(problem.start))[rates]
+    missing = problem.demand[:-1].copy()
+    np.subtract.at(missing, customer, sent[rates])
+    charges = model.money[model.short_rows].tolist()
+    return tuple(
+        Short(
+            model.customers[j],
+            to_decimal(missing[j], model.quantity_places),
+            to_decimal(charges[j], model.money_places),
+            to_decimal(int(missing[j]) * charges[j], model.quantity_places + model.money_places),
+        )
+        for j in np.flatnonzero(missing).tolist()
+    )
+
+
+def _unsent(model: Model, sent: Integers) -> tuple[Unsent, ...]:
+    problem, rates = model.problem, np.flatnonzero(model.rate_row != NO_RATE)
+    kept = problem.supply[:-1].copy()
+    np.subtract.at(kept, problem.depot[rates], sent[rates])
+    charges = model.money[model.stay_rows].tolist()
+    found = []
+    for i in np.flatnonzero(kept).tolist():
+        quantity, must = int(kept[i]), _must_move(model, i)
+        free = int(problem.supply[i]) - must
+        found.append(
+            Unsent(
+                model.depots[i],
+                to_decimal(quantity, model.quantity_places),
+                to_decimal(charges[i], model.money_places),
+                to_decimal(quantity * charges[i], model.quantity_places + model.money_places),
+                to_decimal(max(0, quantity - free), model.quantity_places),
+            )
+        )
+    return tuple(found)
+
+
+def _must_move(model: Model, i: int) -> int:
+    row, most = int(model.must_row[i]), model.problem.at_most
+    return int(most[row]) if row >= 0 and most is not None else 0
