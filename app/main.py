@@ -72,9 +72,10 @@ def main() -> None:
     if only_reads:  # nothing is being typed that could be lost
         catch_up(state)
     pages = [
-        st.Page(HERE / "pages" / "figures.py", title="Figures", default=True),
+        st.Page(HERE / "pages" / "figures.py", title="Figures", default=not only_reads),
         st.Page(HERE / "pages" / "plan.py", title="Plan"),
         st.Page(HERE / "pages" / "reasons.py", title="Reasons"),
+        st.Page(HERE / "pages" / "compare.py", title="Compare", default=only_reads),
         st.Page(HERE / "pages" / "handover.py", title="Hand over"),
         st.Page(HERE / "pages" / "weeks.py", title="Weeks"),
     ]

@@ -1,0 +1,44 @@
+"""Compare: the week beside the usual way, last week, its variants, and what could befall it."""
+
+from collections.abc import Callable
+
+import streamlit as st
+
+from app.parts.compare_usual import usual_view
+from app.parts.findings_panel import findings_panel
+from app.parts.nothing_yet import nothing_yet
+from app.parts.words import plain
+from app.preparing import prepared
+from app.session import Desk, desk
+from engine.exact import TooLarge
+from engine.planning.plan import Plan
+from engine.records import Missing, NotSaved
+
+VIEWS: dict[str, tuple[str, Callable[[Desk, Plan], None]]] = {
+    "usual": ("Usual plan", usual_view),
+}
+
+state = desk()
+st.title("Compare")
+if state.message:
+    kind, text = state.message
+    (st.error if kind == "error" else st.success)(plain(text))
+    state.message = None
+if state.week.is_empty:
+    nothing_yet("There is no week to compare yet.")
+else:
+    with prepared():
+        plan = state.planned()
+    if plan is None:
+        st.error("This week cannot be planned as it stands, so there is nothing to compare.")
+        findings_panel(state.stopped, key="stopped")
+    else:
+        first = next(iter(VIEWS))
+        view = st.segmented_control(
+            "View", list(VIEWS), default=first, required=True, key="compare-view",
+            format_func=lambda name: VIEWS[name][0], label_visibility="collapsed",
+        ) or first  # fmt: skip
+        try:
+            VIEWS[view][1](state, plan)
+        except (TooLarge, NotSaved, Missing) as failure:
+            st.error(plain(str(failure)))
