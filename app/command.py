@@ -82,8 +82,12 @@ def desk(
     serve(port=port, open_browser=browser, files=week, sample=sample, records=records)
 
 
+PRODUCT = click.option("--product", metavar="NAME", help="Which one, where a column Product names several.")
+
+
 @main.command()
 @WEEK
+@PRODUCT
 @click.option("--near", type=click.Path(exists=True, dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
               help="Among plans of equal cost, stay nearest to this earlier one.")  # fmt: skip
 @click.option("--out", type=click.Path(dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
@@ -97,13 +101,14 @@ def desk(
 def plan(
     ctx: click.Context,
     week: tuple[Path, ...],
+    product: str | None,
     near: Path | None,
     out: Path | None,
     as_json: str | None,
     detail: str,
 ) -> None:
     """Plan the week in these files (one workbook, or separate tables)."""
-    reading = _read(ctx, week)
+    reading = _read(ctx, week, product)
     earlier = None if near is None else _earlier(ctx, near)
     try:
         made = engine.plan_week(reading.week, near=earlier, progress=_progress)
@@ -130,10 +135,11 @@ def plan(
 
 @main.command()
 @WEEK
+@PRODUCT
 @click.pass_context
-def check(ctx: click.Context, week: tuple[Path, ...]) -> None:
+def check(ctx: click.Context, week: tuple[Path, ...], product: str | None) -> None:
     """Read the figures in these files and list every finding; nothing is planned."""
-    reading = _read(ctx, week)
+    reading = _read(ctx, week, product)
     found = _together(reading.findings, engine.contradictions(reading.week))
     _tell(found)
     if stops(found):
@@ -149,13 +155,15 @@ def blank(out: Path) -> None:
     click.echo(f"Wrote {out}", err=True)
 
 
-def _read(ctx: click.Context, files: tuple[Path, ...]) -> engine.Reading:
+def _read(ctx: click.Context, files: tuple[Path, ...], product: str | None = None) -> engine.Reading:
     """The week in these files; ends the command where they cannot be used."""
     try:
-        reading = engine.read_week(list(files))
+        reading = engine.read_week(list(files), product=product)
     except engine.Unreadable as refused:
         _refuse(ctx, [refused.finding])
     if stops(reading.findings):
+        if len(reading.products) > 1 and reading.week.is_empty:
+            click.echo(f"Name the product: --product '{reading.products[0]}'", err=True)
         _refuse(ctx, reading.findings)
     return reading
 

@@ -249,11 +249,11 @@ def try_plan(
 
 
 def read_files(
-    files: Sequence[Any], answers: Answers | None = None
+    files: Sequence[Any], answers: Answers | None = None, product: str | None = None
 ) -> tuple[engine.Reading | None, tuple[Finding, ...]]:
     """What the uploaded files say, or the one finding that says why they cannot be read."""
     try:
-        reading = engine.read_week(files, answers=answers)
+        reading = engine.read_week(files, answers=answers, product=product)
     except engine.Unreadable as refused:
         return None, (refused.finding,)
     return reading, tuple(by_gravity(reading.findings))

@@ -8,10 +8,12 @@ import engine
 import sample_data
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
+from app.parts.products import File, keep_others, product_choice
 from app.parts.proposal import proposal
 from app.parts.uploaded import answers, keep, uploaded_panel
 from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
+from engine.intake.answers import Answers
 
 TYPES = ["xlsx", "xlsm", "xls", "xlsb", "ods", "csv", "tsv", "txt"]
 WHOLE = {"depots", "customers", "rates"}
@@ -62,11 +64,19 @@ def opening(state: Desk) -> None:
     if not files:
         return
     uploaded = [(file.name, file.getvalue()) for file in files]
-    reading, findings = read_files(uploaded, answers())
+    known = answers()
+    reading, findings = read_files(uploaded, known)
     if reading is None:
         st.error(f"{plain(findings[0].message)} {plain(findings[0].mend)}")
         return
-    if state.week.is_empty and not reading.week.is_empty:
+    product = None
+    if len(reading.products) > 1:
+        product = product_choice(state, reading.products)
+        reading, findings = read_files(uploaded, known, product)
+        if reading is None:
+            st.error(f"{plain(findings[0].message)} {plain(findings[0].mend)}")
+            return
+    elif state.week.is_empty and not reading.week.is_empty:
         keep(uploaded, reading)
         state.open(reading)
         st.rerun()
@@ -74,17 +84,39 @@ def opening(state: Desk) -> None:
     if reading.week.is_empty:
         findings_panel(findings, key="upload")
         return
-    _part_of_a_week(state, uploaded)
-    if reading.tables.issuperset(WHOLE) and st.button("Put these figures in place of the week on screen"):
-        keep(uploaded, reading)
-        state.open(reading)
-        st.rerun()
+    if not state.week.is_empty:
+        _part_of_a_week(state, uploaded, known, product)
+    _whole_week(state, uploaded, known, reading, product)
     findings_panel(findings, key="upload")
 
 
-def _part_of_a_week(state: Desk, uploaded: list[tuple[str, bytes]]) -> None:
+def _whole_week(
+    state: Desk, uploaded: list[File], known: Answers, reading: engine.Reading, product: str | None
+) -> None:
+    """The buttons that put what was read on the desk, in place of a week that may be there."""
+    if not state.week.is_empty and not reading.tables.issuperset(WHOLE):
+        return
+    one = "Put these figures in place of the week on screen"
+    if state.week.is_empty:
+        one = f"Open the week of {product}"
+    first, second, _ = st.columns([2, 2, 1])
+    clicked = first.button(plain(one), type="primary" if state.week.is_empty else "secondary")
+    both = product is not None and second.button("Open it, and keep the others as weeks of their own")
+    if clicked or both:
+        if both and product is not None and not keep_others(state, uploaded, product, known):
+            st.rerun()
+        said = state.message
+        keep(uploaded, reading, product)
+        state.open(reading)
+        state.message = said
+        st.rerun()
+
+
+def _part_of_a_week(state: Desk, uploaded: list[File], known: Answers, product: str | None) -> None:
     """What an upload says otherwise than the week on screen, to be put up as one change."""
-    part = engine.read_part(uploaded, state.week, decimal_mark=state.decimal_mark)
+    part = engine.read_part(
+        uploaded, state.week, answers=known, decimal_mark=state.decimal_mark, product=product
+    )
     if part.is_empty:
         st.markdown("These files say the same as the week on screen.")
         return

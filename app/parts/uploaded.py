@@ -29,6 +29,7 @@ class Uploaded:
     week: Week
     findings: tuple[Finding, ...] = ()
     mended: set[str] = field(default_factory=set)
+    product: str | None = None
 
 
 def answers() -> Answers:
@@ -39,9 +40,9 @@ def answers() -> Answers:
         return Answers()
 
 
-def keep(files: list[File], reading: engine.Reading) -> None:
-    """Remember the files that the week on screen was read from."""
-    st.session_state[KEY] = Uploaded(files, reading.week, reading.findings)
+def keep(files: list[File], reading: engine.Reading, product: str | None = None) -> None:
+    """Remember the files that the week on screen was read from, and of which product it is."""
+    st.session_state[KEY] = Uploaded(files, reading.week, reading.findings, product=product)
 
 
 def uploaded_panel(state: Desk) -> None:
@@ -131,8 +132,10 @@ def _mend(state: Desk, kept: Uploaded, finding: Finding, text: str) -> None:
 def _read_again(state: Desk, kept: Uploaded, known: Answers) -> None:
     """What the files say now otherwise than before becomes one change to the week; the rest stays."""
     try:
-        reading = engine.read_week(kept.files, answers=known)
-        part = engine.read_part(kept.files, kept.week, answers=known, decimal_mark=state.decimal_mark)
+        reading = engine.read_week(kept.files, answers=known, product=kept.product)
+        part = engine.read_part(
+            kept.files, kept.week, answers=known, decimal_mark=state.decimal_mark, product=kept.product
+        )
     except engine.Unreadable as refused:
         st.error(plain(refused.finding.message))
         return

@@ -21,8 +21,12 @@ from engine.intake.places import Places
 from engine.intake.products import (
     SEVERAL,
     SUBJECT,
+    named_among,
+    no_such_product,
     of_product,
+    other_products,
     products_in,
+    week_of_product,
     which_product,
     without_product,
 )
@@ -59,22 +63,18 @@ def build_figures(
     """
     taught = _taught(answers)
     found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
-    products = products_in(found)
-    product = product or answers.to(SEVERAL, SUBJECT)
-    about_products: list[Finding] = []
-    if len(products) > 1 and product is not None:
-        sheets = of_product(sheets, found, product)
+    products, product, about_products, left = _products(sheets, found, answers, known, product)
+    if left is not sheets:
+        sheets = left
         found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
-        about_products = without_product(found)
-    elif len(products) > 1:
-        about_products = [which_product(products)]
-        sheets, found = [], Found()
     of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
     grids = _grids(found, of, sheets, known)
     stated = stated_by(of["rules"], answers)
     if known is not None:
         stated = {"unit": known.rules.unit, "currency": known.rules.currency, **stated}
     manner, asked = manner_of([*found.tables, *grids], stated, answers, decimal_mark)
+    if product is not None:
+        about_products = [*about_products, *without_product(found)]
     depots = build_depots(of["depots"], manner)
     customers = build_customers(of["customers"], manner)
     rules = build_rules(of["rules"], manner.base, answers)
@@ -84,7 +84,10 @@ def build_figures(
     customer_names = [customer.name for customer in spelled] or list(known.customers if known else ())
     rates = build_rates(of["rates"], grids, depot_names, customer_names, manner)
     gone = build_gone(of["gone"], depot_names, customer_names, manner)
-    week = Week.of(depots.records, spelled, rates.rates, rules.records[0], rates.holds, gone.records)
+    settings = rules.records[0]
+    if product is not None:
+        settings = replace(settings, week=week_of_product(settings.week, product))
+    week = Week.of(depots.records, spelled, rates.rates, settings, rates.holds, gone.records)
     counts = depots.counts.plus(customers.counts).plus(rules.counts).plus(rates.counts).plus(gone.counts)
     outside, left_out = about_sheets(found, grids)
     return Figures(
@@ -109,6 +112,28 @@ def build_figures(
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
         products,
     )
+
+
+def _products(
+    sheets: Sequence[Sheet], found: Found, answers: Answers, known: Week | None, asked: str | None
+) -> tuple[tuple[str, ...], str | None, list[Finding], Sequence[Sheet]]:
+    """The products that are named, the one to read where they are several, and the sheets with its rows only.
+
+    No sheets are left where it has to be asked first. An answer given earlier counts where nothing is asked
+    for and the figures name that product.
+    """
+    of = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
+    grids = _grids(found, of, sheets, known)
+    products = products_in(found, grids)
+    answered = answers.to(SEVERAL, SUBJECT)
+    product = named_among(asked or answered or "", products)
+    if asked is not None and product is None:
+        return products, None, [no_such_product(asked, products)], []
+    if len(products) < 2:
+        return products, None, [], sheets
+    if product is None:
+        return products, None, [which_product(products)], []
+    return products, product, [other_products(product, products)], of_product(sheets, found, product, grids)
 
 
 def _with_places(depots: Built, customers: Built, known: Week | None) -> tuple[Built, Built, list[Finding]]:

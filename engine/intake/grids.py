@@ -9,7 +9,7 @@ from typing import Any
 
 from engine.intake.cells import Sheet
 from engine.intake.fields import CLOSED_WORDS, text_of
-from engine.intake.headings import is_heading_word, names_what
+from engine.intake.headings import PRODUCT_WORDS, heading_of, is_heading_word, names_what
 from engine.intake.names import folded
 from engine.intake.numbers import is_blank
 from engine.intake.recognise import candidate_rows, is_total
@@ -25,7 +25,8 @@ class Grid:
     head: row of the names across; side: column of the names down; columns: the columns with a name across;
     rows: the rows with a name down; depots_down: whether the names down are depots; title: texts above and
     in the corner, which may say what the rates are in; totals: the names of rows and columns of totals
-    that were left out; last_row, last_column: where it ends, totals included. Rows and columns count from 0.
+    that were left out; last_row, last_column: where it ends, totals included; product: the column that names
+    each row's product, where there is one. Rows and columns count from 0.
     """
 
     sheet: Sheet
@@ -39,6 +40,7 @@ class Grid:
     sure: bool = True
     last_row: int = 0
     last_column: int = 0
+    product: int | None = None
 
     @cached_property
     def cells(self) -> list[Any]:
@@ -145,6 +147,7 @@ def _by_corner(
 def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> Grid:
     row = sheet.rows[head]
     end = _end(sheet, head, side)
+    product = next((c for c in range(min(len(row), side + 10)) if _is_product(row[c])), None)
     columns = []
     totals: list[tuple[int, int]] = []
     last = far = side
@@ -157,6 +160,8 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
         if is_total(text):
             totals.append((head, column))
             far = max(far, column)
+            continue
+        if column == product:
             continue
         if column > last + 1 and not _has_rates(sheet, head, end, column):
             continue
@@ -180,8 +185,13 @@ def _grid(sheet: Sheet, head: int, side: int, depots_down: bool, sure: bool) -> 
     titles += [text_of(row[column]) for column in range(side + 1) if isinstance(row[column], str)]
     title = " ".join([sheet.name, *(text for text in titles if text)])
     return Grid(
-        sheet, head, side, tuple(columns), tuple(rows), depots_down, title, tuple(totals), sure, end - 1, far
-    )
+        sheet, head, side, tuple(columns), tuple(rows), depots_down, title, tuple(totals), sure, end - 1, far,
+        product,
+    )  # fmt: skip
+
+
+def _is_product(cell: Any) -> bool:
+    return isinstance(cell, str) and heading_of(cell).words in PRODUCT_WORDS
 
 
 def _end(sheet: Sheet, head: int, side: int) -> int:

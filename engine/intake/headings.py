@@ -42,6 +42,11 @@ PLAN_HEADINGS = frozenset(
 )
 """Headings of a plan that was handed out: a sheet with one of them holds results, never figures."""
 
+PRODUCT_WORDS = frozenset({
+    "product", "products", "product name", "material", "item", "article", "commodity", "grade", "goods",
+})  # fmt: skip
+"""Headings of a column that names the product of each row."""
+
 _DEPOT_WORDS = (
     "depot|depots|depot name|from|from depot|origin|source|site|warehouse|plant|silo|terminal|"
     "loading point|loading place|ship from|supplier|supply point"

@@ -52,15 +52,18 @@ def read_part(
     limits: Limits | None = None,
     answers: Answers | None = None,
     decimal_mark: str = ".",
+    product: str | None = None,
 ) -> Part:
     """The differences between an upload of some tables and the week on the desk.
 
-    source, limits, answers, decimal_mark: as for `read_week`; week: the week that would be changed
+    source, limits, answers, decimal_mark, product: as for `read_week`; week: the week that would be changed
 
     Raises:
         Unreadable: as `read_week`.
     """
-    reading = read_week(source, limits=limits, answers=answers, known=week, decimal_mark=decimal_mark)
+    reading = read_week(
+        source, limits=limits, answers=answers, known=week, decimal_mark=decimal_mark, product=product
+    )
     changes: list[Change] = []
     told: list[str] = []
     for table, compare in (

@@ -118,7 +118,7 @@ def _read(
     sheets = read_sheets(source, limits)
     try:
         figures = build_figures(sheets, answers, known, decimal_mark, product)
-        asks_product = any(finding.rule == SEVERAL for finding in figures.findings)
+        asks_product = any(finding.rule in (SEVERAL, "no such product") for finding in figures.findings)
         found = () if asks_product else check_week(figures.week, figures.places.where)
     except TooLarge as error:
         raise refused("too large", str(error), "Mend the figure and upload again.", sheets[0].file) from error

@@ -8,6 +8,7 @@ from app.parts.uploaded import KEY as UPLOADED
 from app.parts.uploaded import Uploaded
 from app.session import KEY, Desk
 from tests.app.test_pages import page
+from tests.intake.sheets import workbook
 
 
 def messy() -> tuple[Desk, Uploaded]:
@@ -51,3 +52,24 @@ def test_an_accepted_finding_is_not_brought_up_again() -> None:
     assert not test.exception
     findings = test.session_state[UPLOADED].findings
     assert not any("Ironworks" in finding.message for finding in findings)
+
+
+def test_one_product_of_several_is_chosen_and_the_others_are_kept(tmp_path: Path) -> None:
+    from app.keeping import records
+    from engine.records import list_weeks, open_week
+    from tests.intake.test_answers import PRODUCTS
+
+    name, data = workbook(PRODUCTS)
+    test = page("pages/figures.py", Desk())
+    test.run()
+    test.file_uploader[0].upload(name, data, "application/octet-stream").run()
+    assert not test.exception
+    assert any("2 products" in said.value for said in test.markdown)
+    test.radio[0].set_value(1).run()
+    assert any("8 t ordered" in said.value for said in test.markdown)
+    next(button for button in test.button if "keep the others" in button.label).click().run()
+    assert not test.exception
+    week = test.session_state[KEY].week
+    assert (week.rules.week, week.depots["Northgate"].available) == ("Week, Ash", 20)
+    (kept,) = [one for one in list_weeks(records()) if one.name == "Week, Lime"]
+    assert open_week(records(), kept.id).history.week.depots["Northgate"].available == 10

@@ -83,6 +83,35 @@ def test_a_product_column_makes_one_week_each():
     assert answered.week == readings["Ash"].week
 
 
+def test_one_product_is_said_named_and_never_taken_for_another():
+    ash = read_week(workbook(PRODUCTS), product="ASH ")
+    assert ash.week.rules.week == "Week, Ash"
+    assert [f.severity for f in ash.findings if f.rule == "one product read"] == [Severity.NOTE]
+    none = read_week(workbook(PRODUCTS), product="Sand")
+    assert none.week.is_empty
+    assert [(f.rule, f.options) for f in none.findings if f.options] == [("no such product", ("Lime", "Ash"))]
+    question = Finding(Severity.STOPS, "several products", "?", subject="product", options=("Sand",))
+    stale = read_week(workbook(PRODUCTS), answers=Answers().with_answer(question, "Sand"))
+    assert "several products" in [f.rule for f in stale.findings]
+    part = read_part(workbook(PRODUCTS), ash.week.apply(Alter("depot", "Northgate", "available", Decimal(3))),
+                     product="Ash")  # fmt: skip
+    assert part.change.changes == (Alter("depot", "Northgate", "available", Decimal(20)),)
+
+
+def test_a_product_column_beside_a_grid_splits_its_rows():
+    grid = [
+        ["Product", "Depot", "Aster", "Birch"],
+        ["Lime", "Northgate", 4, 5],
+        ["Ash 0-4", "Northgate", 6, 7],
+    ]
+    for turned in (grid, [[row[1], row[0], *row[2:]] for row in grid]):
+        readings = read_weeks(
+            workbook(plain(Rates=turned, Depots=[["Depot", "Available"], ["Northgate", 200]]))
+        )
+        rates = {name: [row.rate for row in reading.week.rates] for name, reading in readings.items()}
+        assert rates == {"Lime": [4, 5], "Ash 0-4": [6, 7]}
+
+
 def test_a_new_stock_sheet_alters_only_what_it_holds_and_keeps_holds():
     held = WEEK.apply(SetHold(RateKey("Northgate", "Aster"), Decimal(20), "promised")).apply(
         Alter("depot", "Northgate", "must_move", Decimal(5))
