@@ -52,4 +52,11 @@ def test_the_usual_plan_is_the_engine_s() -> None:
 
 def test_no_week_and_a_week_that_cannot_be_planned() -> None:
     assert "cannot be planned" in said(page(with_sample(sample_data.MESSY_WEEK), "usual"))
-    page(Desk(), "usual")
+    test = AppTest.from_file(str(APP / "main.py"), default_timeout=60)
+    empty = Desk()
+    empty.started = True
+    test.session_state[KEY] = empty
+    test.run()
+    test.switch_page("pages/compare.py").run()
+    assert not test.exception
+    assert "no week to compare" in said(test)
