@@ -136,8 +136,10 @@ def overrun(plan: Plan) -> frozenset[tuple[str, str]]:
 
     One more or one less of such a figure changes nothing until what has gone fits it again.
     """
-    week, gone = plan.week, left(plan.week)
-    zero = Decimal(0)
+    week = plan.week
+    if not week.gone:
+        return frozenset()
+    gone, zero = left(week), Decimal(0)
     depots = {("depot", d.name) for d in week.depots.values() if gone.depot.get(d.name, zero) > d.available}
     customers = {
         ("customer", c.name) for c in week.customers.values() if gone.customer.get(c.name, zero) > c.ordered

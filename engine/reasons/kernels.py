@@ -52,9 +52,10 @@ def take_apart(weights: Integers, values: Integers, money: Integers, pure: Flags
 
     weights: the largest first. Values beyond NO_WAY are no sums.
     """
+    least = weights[-1] if len(weights) else 2 * NO_WAY
     for n in range(len(values)):
         money[n], pure[n] = values[n], abs(values[n]) < NO_WAY
-        if pure[n]:
+        if pure[n] and 2 * abs(money[n]) >= least:
             for weight in weights:
                 if 2 * abs(money[n]) >= weight:
                     times = (2 * money[n] + weight) // (2 * weight)
@@ -84,23 +85,27 @@ def most_cheaply(rows: Rows, distance: Integers, cost: Integers, by: Integers) -
     distance: (depots,) what one more at each depot costs
     """
     for j in range(len(rows.start) - 1):
-        cost[j], by[j] = NO_WAY, -1
+        best, chosen = NO_WAY, -1
         for row in range(rows.start[j], rows.start[j + 1]):
             here = distance[rows.depot[row]]
-            if here < NO_WAY and here + rows.cost[row] < cost[j] and rows.quantity[row] < rows.upper[row]:
-                cost[j], by[j] = here + rows.cost[row], row
+            price = here + rows.cost[row]
+            if price < best and here < NO_WAY and rows.quantity[row] < rows.upper[row]:
+                best, chosen = price, row
+        cost[j], by[j] = best, chosen
 
 
 @kernel
 def least_dearly(rows: Rows, distance: Integers, cost: Integers, by: Integers) -> None:
     """Fills, per customer, what one less costs (a saving is negative) and the row that brings less."""
     for j in range(len(rows.start) - 1):
-        cost[j], by[j] = NO_WAY, -1
+        best, chosen = NO_WAY, -1
         for row in range(rows.start[j], rows.start[j + 1]):
             if rows.quantity[row] > rows.lower[row]:
                 here = distance[rows.depot[row]]
-                if here < NO_WAY and here - rows.cost[row] < cost[j]:
-                    cost[j], by[j] = here - rows.cost[row], row
+                price = here - rows.cost[row]
+                if price < best and here < NO_WAY:
+                    best, chosen = price, row
+        cost[j], by[j] = best, chosen
 
 
 @kernel
@@ -223,11 +228,12 @@ def find_tied(rows: Rows, near: Integers, far: Integers, found: Integers) -> int
     """
     count = 0
     for j in range(len(rows.start) - 1):
-        if far[j] >= NO_WAY:
+        there = far[j]
+        if there >= NO_WAY:
             continue
         for row in range(rows.start[j], rows.start[j + 1]):
             here = near[rows.depot[row]]
-            if here < NO_WAY and here + rows.cost[row] == far[j] and rows.upper[row] > rows.lower[row]:
+            if here + rows.cost[row] == there and here < NO_WAY and rows.upper[row] > rows.lower[row]:
                 found[count] = row
                 count += 1
     return count

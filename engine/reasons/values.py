@@ -6,6 +6,7 @@ Karp 1972), not prices: where a plan is degenerate the two sides differ, and no 
 
 from dataclasses import dataclass
 from decimal import Decimal
+from typing import NamedTuple
 
 import numpy as np
 
@@ -18,8 +19,7 @@ from engine.reasons.kernels import MANY
 from engine.reasons.sides import Side, customer_sides, depot_sides
 
 
-@dataclass(frozen=True, slots=True)
-class UnitValue:
+class UnitValue(NamedTuple):
     """Cost after minus cost before, per unit, at today's figures; positive is dearer.
 
     `one_more_short` and `one_less_short` are the change in what goes short. None: the question has no
