@@ -11,6 +11,7 @@ from typing import Any
 import numpy as np
 import pytest
 
+from engine.changes import Alter, Together
 from engine.figures import Customer, Depot, Order, RateKey, RateRow
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable, plan_week
@@ -107,6 +108,27 @@ def test_one_more_at_both_ends(example: dict[str, Any]) -> None:
             if expected is not None:
                 assert pure[j, i]
                 assert int(money[j, i]) * places == amount(expected), (i, j)
+
+
+@pytest.mark.parametrize("example", named("pair_minus"))
+def test_one_less_at_both_ends(example: dict[str, Any]) -> None:
+    """Nobody is told pairs of one less; planning the smaller week must cost what the source says."""
+    plan = plan_of(example)
+    model = plan.model
+    for i, line in enumerate(example["pair_minus"]):
+        for j, expected in enumerate(line):
+            depot, customer = plan.week.depots[model.depots[i]], plan.week.customers[model.customers[j]]
+            if expected is None or not depot.available or not customer.ordered:
+                continue
+            smaller = plan.week.apply(
+                Together(
+                    (
+                        Alter("depot", depot.name, "available", depot.available - 1),
+                        Alter("customer", customer.name, "ordered", customer.ordered - 1),
+                    )
+                )
+            )
+            assert plan_week(smaller).total_cost == plan.total_cost - (amount(expected) or 0), (i, j)
 
 
 @pytest.mark.parametrize("example", named("published_ranging"))
