@@ -1,16 +1,20 @@
 """The command line: `hithe` opens the desk; its commands plan, check and hand out workbooks without one."""
 
 import json
+import socket
 import sys
 from collections.abc import Iterable
 from pathlib import Path
-from typing import NoReturn
+from typing import TYPE_CHECKING, NoReturn
 
 import click
 
 import engine
 from engine.exact import canonical
 from engine.findings import Finding, Severity, by_gravity, stops
+
+if TYPE_CHECKING:
+    from app.sign_in import SignIn
 
 SHORT = 3
 UNUSABLE = 2
@@ -56,10 +60,41 @@ WEEK = click.argument(
 @main.command()
 @click.argument("week", nargs=-1, type=click.Path(exists=True, dir_okay=False, path_type=Path))
 @click.option("--sample", is_flag=True, help="Open the sample week.")
-@click.option("--port", default=8507, show_default=True, help="Where the desk listens, on this machine only.")
+@click.option("--port", default=8507, show_default=True, help="The port that the desk listens on.")
+@click.option(
+    "--host",
+    default="127.0.0.1",
+    show_default=True,
+    metavar="ADDRESS",
+    help="The address it listens on; any but this machine's own needs --sign-in.",
+)
+@click.option(
+    "--name",
+    "names",
+    multiple=True,
+    metavar="NAME",
+    help="A name that browsers reach it by, where --host is not one; may be given again.",
+)
+@click.option(
+    "--sign-in",
+    "sign_in_file",
+    envvar="HITHE_SIGN_IN",
+    metavar="FILE",
+    show_envvar=True,
+    type=click.Path(exists=True, dir_okay=False, path_type=Path),
+    help="Who may come in: a TOML file, yours alone (chmod 600); the README shows one.",
+)
+@click.option(
+    "--no-sign-in", is_flag=True, help="Let in whoever reaches the desk; weeks open by their addresses only."
+)
 @click.option("--browser/--no-browser", default=True, help="Open a browser window.")
-@click.option("--records", envvar="HITHE_RECORDS", metavar="URL", show_envvar=True,
-              help="Where weeks are kept: a file, or postgresql://USER@HOST/DATABASE.")  # fmt: skip
+@click.option(
+    "--records",
+    envvar="HITHE_RECORDS",
+    metavar="URL",
+    show_envvar=True,
+    help="Where weeks are kept: a file, or postgresql://USER@HOST/DATABASE.",
+)
 @click.pass_context
 def desk(
     ctx: click.Context,
@@ -68,18 +103,64 @@ def desk(
     port: int = 8507,
     browser: bool = True,
     records: str | None = None,
+    host: str = "127.0.0.1",
+    names: tuple[str, ...] = (),
+    sign_in_file: Path | None = None,
+    no_sign_in: bool = False,
 ) -> None:
     """Open the desk in the browser, with the week in these files if any are given."""
-    from app.serve import serve
+    from app.serve import ANY, is_this_machine, serve
     from engine.records import NotSaved, open_records
 
+    sign_in = None if sign_in_file is None else _sign_in(sign_in_file)
+    if sign_in is not None and no_sign_in:
+        raise click.UsageError("--sign-in and --no-sign-in contradict each other: leave one out.")
+    if sign_in is None and not is_this_machine(host):
+        if not no_sign_in:
+            raise click.UsageError(
+                f"On {host} others can reach the desk, so it needs --sign-in FILE. Say --no-sign-in to let "
+                f"in whoever reaches it: without names, and without a list of weeks."
+            )
+        if week:
+            raise click.UsageError(
+                "Without sign-in a desk on a network opens no files of yours at the start: whoever reaches "
+                "it would get them. Open them in the browser and hand on the week's address."
+            )
+    reached = [*names, *([] if host in ANY or is_this_machine(host) else [host])]
+    if sign_in is None and host in ANY and not names:
+        reached = _names_of_this_machine()
     if records is not None:  # a place that was named and will not do is said before the desk opens
         try:
             open_records(records).close()
         except NotSaved as failure:
             click.echo(str(failure), err=True)
             ctx.exit(UNUSABLE)
-    serve(port=port, open_browser=browser, files=week, sample=sample, records=records)
+    serve(port, browser, week, sample, records, host, reached, sign_in)
+
+
+def _sign_in(file: Path) -> "SignIn":
+    """What the sign-in file says; ends the command where it cannot be used."""
+    from streamlit.auth_util import is_authlib_installed
+
+    from app.sign_in import NoSignIn, read_sign_in
+
+    try:
+        found = read_sign_in(file)
+    except NoSignIn as failure:
+        raise click.UsageError(str(failure)) from None
+    if not is_authlib_installed():
+        raise click.UsageError("Signing in needs one package more: pip install 'hithe[sign-in]'.")
+    return found
+
+
+def _names_of_this_machine() -> list[str]:
+    """What browsers on the network may call this machine."""
+    own = socket.gethostname()
+    try:
+        addresses = [str(found[4][0]) for found in socket.getaddrinfo(own, None)]
+    except OSError:
+        addresses = []
+    return list(dict.fromkeys([own, socket.getfqdn(), *addresses]))
 
 
 PRODUCT = click.option("--product", metavar="NAME", help="Which one, where a column Product names several.")

@@ -5,7 +5,9 @@ from contextlib import nullcontext
 
 import streamlit as st
 
+from app.access import opened, records
 from app.kept import READING_ONLY, Kept
+from app.rights import house, person
 from app.session import Desk
 from engine.exact import TooLarge
 from engine.intake.build_lists import Unused
@@ -15,17 +17,13 @@ from engine.records import (
     Missing,
     NotSaved,
     Opened,
-    Records,
     caught_up,
     changes_since,
     create_week,
-    default_place,
     find_plan,
     issue_plan,
     latest_number,
     note_totals,
-    open_records,
-    open_week,
     save_remarks,
     version_of,
 )
@@ -37,27 +35,15 @@ WEEK, READ, WHO = "week", "read", "who"
 
 
 @st.cache_resource(show_spinner=False)
-def _opened(place: str) -> Records:
-    return open_records(place)
-
-
-@st.cache_resource(show_spinner=False)
 def _at_start() -> dict[tuple[str, ...], str]:
     """The weeks that were made from the files named when the desk was started."""
     return {}
 
 
-def records() -> Records:
-    """The records of this desk, shared by all sessions.
-
-    Raises:
-        NotSaved: they cannot be opened.
-    """
-    return _opened(default_place())
-
-
 def whoever() -> str:
     """Who works here unless the address says otherwise: the name that the machine knows them by."""
+    if house().on_network:  # whoever comes by the network is not who started the desk
+        return "Somebody"
     try:
         return getpass.getuser()
     except (OSError, KeyError):  # an account without a name, in a container for instance
@@ -65,13 +51,13 @@ def whoever() -> str:
 
 
 def named_in_address(state: Desk) -> bool:
-    """Bring back the week that the address names, if it names one that is there."""
-    state.who = st.query_params.get(WHO, "") or whoever()
+    """Bring back the week that the address names, if it names one that is there and may be opened."""
+    state.who = person().who or st.query_params.get(WHO, "") or whoever()
     any_id = st.query_params.get(WEEK) or st.query_params.get(READ)
     if not any_id:
         return False
     try:
-        show(state, open_week(records(), any_id))
+        show(state, opened(any_id))
     except (Missing, NotSaved) as failure:
         st.query_params.clear()
         state.message = ("error", str(failure))
@@ -82,10 +68,10 @@ def named_in_address(state: Desk) -> bool:
 def made_at_start(state: Desk, files: tuple[str, ...]) -> bool:
     """Bring back the week that an earlier session made of the files named at the start."""
     week_id = _at_start().get(files)
-    if week_id is None:
+    if week_id is None or not person().may_list:
         return False
     try:
-        show(state, open_week(records(), week_id))
+        show(state, opened(week_id))
     except (Missing, NotSaved):
         return False
     return True
@@ -109,11 +95,11 @@ def show(state: Desk, opened: Opened) -> None:
 
 def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
     """Put a week that was just read into the records, and its id into the address."""
-    if state.fresh is not None and not state.week.is_empty:
+    if state.fresh is not None and not state.week.is_empty and person().may_change:
         try:
             many = len(state.week.rates) > MANY_RATES
             with st.spinner("Saving the week …") if many else nullcontext():
-                opened = create_week(records(), state.fresh)
+                opened = create_week(records(), state.fresh, person().home)
             ids = opened.listed.id, opened.listed.read_id
             state.kept = Kept(records(), *ids, unread=opened.unused, said=opened.findings)
             state.fresh, state.unsaved = None, ""
@@ -125,7 +111,7 @@ def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
             state.unsaved = str(failure)
     if state.kept is not None:
         name, value = (WEEK, state.kept.week_id) if state.kept.may_change else (READ, state.kept.read_id)
-        wanted = {name: value} | ({WHO: state.who} if state.kept.may_change else {})
+        wanted = {name: value} | ({WHO: state.who} if state.kept.may_change and not person().who else {})
         if any(st.query_params.get(key) != said for key, said in wanted.items()):
             st.query_params.from_dict(wanted)
 

@@ -7,8 +7,11 @@ import streamlit as st
 
 import sample_data
 from app.keeping import catch_up, keep_rest, keep_up, made_at_start, named_in_address
+from app.parts.depot_page import depot_page
+from app.parts.door import let_in, who_is_here
 from app.parts.others import clashes, news, watch
 from app.parts.words import counted, plain
+from app.rights import person
 from app.session import Desk, desk, read_files
 
 HERE = Path(__file__).parent
@@ -65,10 +68,12 @@ def toolbar(state: Desk) -> None:
 def main() -> None:
     st.set_page_config(page_title="Hithe", page_icon="⚓", layout="wide", initial_sidebar_state="collapsed")
     st.html(HERE / "desk.css")
-    state = desk()
+    if depot_page() or not let_in():
+        return
+    me, state = person(), desk()
     files = opened_at_start(state)
     keep_up(state, files)
-    only_reads = state.kept is not None and not state.kept.may_change
+    only_reads = not me.may_change or (state.kept is not None and not state.kept.may_change)
     if only_reads:  # nothing is being typed that could be lost
         catch_up(state)
     pages = [
@@ -80,8 +85,10 @@ def main() -> None:
         st.Page(HERE / "pages" / "weeks.py", title="Weeks"),
     ]
     if only_reads:
-        pages = [page for page in pages if page.title not in TO_CHANGE]
+        left_out = TO_CHANGE if me.may_change else TO_CHANGE[:1]  # a manager finds weeks to read in the list
+        pages = [page for page in pages if page.title not in left_out]
     page = st.navigation(pages, position="top")
+    who_is_here()
     toolbar(state)
     watch(state)
     news(state)

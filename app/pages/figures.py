@@ -6,11 +6,12 @@ import streamlit as st
 
 import engine
 import sample_data
+from app.access import answers
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
 from app.parts.products import File, keep_others, product_choice
 from app.parts.proposal import proposal
-from app.parts.uploaded import answers, keep, uploaded_panel
+from app.parts.uploaded import keep, uploaded_panel
 from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
 from engine.intake.answers import Answers

@@ -5,12 +5,12 @@ from typing import Any
 import pandas as pd
 import streamlit as st
 
-from app.keeping import records, show
+from app.access import restored
+from app.keeping import show
 from app.parts.change_words import HEADINGS, shown, words_of
 from app.session import Desk
 from engine.altered import altered
 from engine.figures import RateKey
-from engine.records import restore_as_new
 from engine.week import describe
 
 MOST = 500
@@ -39,7 +39,7 @@ def changes_list(state: Desk) -> None:
             st.rerun()
         if st.button("Open as it was before it, as a new week", key="restore") and state.kept is not None:
             name = f"{state.week.rules.week}, as before change {number}"
-            show(state, restore_as_new(records(), state.kept.week_id, int(number) - 1, name))
+            show(state, restored(state.kept.week_id, int(number) - 1, name))
             st.rerun()
     st.subheader("Against the figures as uploaded")
     _compared(state)

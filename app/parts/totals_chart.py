@@ -6,14 +6,14 @@ import altair as alt
 import pandas as pd
 import streamlit as st
 
-from app.keeping import records
+from app.access import totals
 from app.parts.words import money, quantity
-from engine.records import WeekTotals, totals_by_week
+from engine.records import WeekTotals
 
 
 def totals_chart(mark: str) -> None:
     """The latest weeks as bars, and the same as a table."""
-    found = totals_by_week(records())
+    found = totals()
     if not found:
         st.caption("No week was planned yet: totals stand here once one is.")
         return

@@ -6,16 +6,16 @@ import pandas as pd
 import streamlit as st
 
 import engine
+from app.access import answers, learn
 from app.drafts import opened
-from app.keeping import records
 from app.parts.words import plain
 from app.session import Desk
 from engine.findings import Finding, Severity, by_gravity
 from engine.intake.answers import Answers
 from engine.intake.frames import TABLES
 from engine.intake.surroundings import repaired_copy, surroundings_of
-from engine.records import NotSaved, load_answers, save_answers
-from engine.week import Week
+from engine.records import NotSaved
+from engine.week import Refused, Week
 
 KEY = "uploaded"
 File = tuple[str, bytes]
@@ -30,14 +30,6 @@ class Uploaded:
     findings: tuple[Finding, ...] = ()
     mended: set[str] = field(default_factory=set)
     product: str | None = None
-
-
-def answers() -> Answers:
-    """What this desk has answered and accepted; nothing where the records cannot be read."""
-    try:
-        return load_answers(records())
-    except NotSaved:
-        return Answers()
 
 
 def keep(files: list[File], reading: engine.Reading, product: str | None = None) -> None:
@@ -107,8 +99,8 @@ def _cells(kept: Uploaded, finding: Finding) -> None:
 
 def _learn(state: Desk, kept: Uploaded, before: Answers, now: Answers) -> None:
     try:
-        save_answers(records(), now, before)
-    except NotSaved as failure:
+        learn(now, before)
+    except (NotSaved, Refused) as failure:
         st.error(plain(str(failure)))
         return
     _read_again(state, kept, now)

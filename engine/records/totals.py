@@ -1,5 +1,6 @@
 """What the latest plan of each week adds up to."""
 
+from collections.abc import Collection
 from dataclasses import dataclass
 from decimal import Decimal
 
@@ -11,7 +12,7 @@ from engine.records.decimals import as_row, from_row
 from engine.records.failures import reading, saving
 from engine.records.opening import Records
 from engine.records.schema import totals, weeks
-from engine.records.weeks import DESK, Listed, listed_in
+from engine.records.weeks import DESK, Listed, listed_in, of_desk
 
 SUMS = ("ordered", "delivered", "short", "unsent", "freight_payable")
 
@@ -53,11 +54,13 @@ def note_totals(records: Records, week_id: str, version: int, plan: Plan) -> Non
             connection.execute(update(totals).where(totals.c.week_id == week_id).values(row))
 
 
-def totals_by_week(records: Records, desk: str = DESK, limit: int = 60) -> list[WeekTotals]:
+def totals_by_week(
+    records: Records, desk: str | Collection[str] | None = DESK, limit: int = 60
+) -> list[WeekTotals]:
     """The totals of the latest weeks that were planned and are not archived, earliest first."""
     latest = (
         select(weeks)
-        .where(weeks.c.desk == desk, weeks.c.archived.is_(None), weeks.c.id.in_(select(totals.c.week_id)))
+        .where(of_desk(desk), weeks.c.archived.is_(None), weeks.c.id.in_(select(totals.c.week_id)))
         .order_by(weeks.c.created.desc(), weeks.c.id)
         .limit(limit)
     )

@@ -1,12 +1,12 @@
 """Weeks on disk: created from a reading, found, copied, archived, and loaded with their list of changes."""
 
 import secrets
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass, replace
 from datetime import UTC, datetime
 from typing import Any
 
-from sqlalchemy import Connection, RowMapping, func, insert, or_, select, update
+from sqlalchemy import ColumnElement, Connection, RowMapping, func, insert, or_, select, true, update
 
 from engine.findings import Finding
 from engine.history import History
@@ -30,7 +30,8 @@ SHARED_UNTIL = 10
 
 @dataclass(frozen=True, slots=True)
 class Listed:
-    """A week in the list: `version` counts its changes, `read_id` is its name for somebody who only reads."""
+    """A week in the list: `version` counts its changes, `read_id` is its name for somebody who only reads,
+    `desk` whose it is."""
 
     id: str
     read_id: str
@@ -41,6 +42,7 @@ class Listed:
     version: int
     unit: str
     currency: str
+    desk: str = DESK
 
 
 @dataclass(frozen=True, slots=True)
@@ -127,10 +129,17 @@ def open_week(records: Records, any_id: str) -> Opened:
 
 
 def list_weeks(
-    records: Records, search: str = "", archived: bool = False, desk: str = DESK, limit: int = 200
+    records: Records,
+    search: str = "",
+    archived: bool = False,
+    desk: str | Collection[str] | None = DESK,
+    limit: int = 200,
 ) -> list[Listed]:
-    """Weeks, the latest first, whose name, depots or customers have the words that are searched for."""
-    query = select(weeks).where(weeks.c.desk == desk)
+    """Weeks, the latest first, whose name, depots or customers have the words that are searched for.
+
+    desk: whose weeks, one desk's or several'; None: every desk's
+    """
+    query = select(weeks).where(of_desk(desk))
     query = query.where(weeks.c.archived.is_not(None) if archived else weeks.c.archived.is_(None))
     for word in search.split():
         pattern = "%" + word.lower().replace("\\", "\\\\").replace("%", "\\%").replace("_", "\\_") + "%"
@@ -227,9 +236,16 @@ def _head(connection: Connection, any_id: str) -> RowMapping:
     return head
 
 
+def of_desk(desk: str | Collection[str] | None) -> ColumnElement[bool]:
+    """Which weeks are these desks'; all where none is said."""
+    if desk is None:
+        return true()
+    return weeks.c.desk.in_([desk] if isinstance(desk, str) else list(desk))
+
+
 def listed_in(row: Mapping[Any, Any]) -> Listed:
     times = {name: _utc(row[name]) for name in ("created", "changed", "archived")}
-    plain = ("id", "read_id", "name", "version", "unit", "currency")
+    plain = ("id", "read_id", "name", "version", "unit", "currency", "desk")
     return Listed(**{name: row[name] for name in plain}, **times)  # type: ignore[arg-type]
 
 

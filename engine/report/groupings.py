@@ -13,6 +13,7 @@ from engine.report.lines import (
     NO_HAULIER,
     Line,
     ListColumn,
+    Sent,
     delivery_days,
     gone_columns,
     heading_row,
@@ -30,7 +31,7 @@ from engine.report.sheet import Formula, Row, Sheet, Value
 Name = TypeVar("Name", str, str | None)
 
 
-def loading_columns(plan: Plan) -> list[ListColumn]:
+def loading_columns(plan: Sent) -> list[ListColumn]:
     """What a depot needs to load: no rates, no costs."""
     unit = plan.week.rules.unit
     columns = [

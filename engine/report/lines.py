@@ -3,16 +3,28 @@
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from decimal import Decimal
+from typing import Protocol
 
 import numpy as np
 
 from engine.exact import total_of
 from engine.figures import Customer
-from engine.planning.plan import Plan, Shipment
+from engine.planning.plan import Shipment
 from engine.report.look import Style, height_of, number_format, places_of
 from engine.report.sheet import Row, Value
+from engine.week import Week
 
 NO_HAULIER = "(no haulier named)"
+
+
+class Sent(Protocol):
+    """A plan, or what was issued of one: the week and what is sent in it."""
+
+    @property
+    def week(self) -> Week: ...
+
+    @property
+    def shipments(self) -> tuple[Shipment, ...]: ...
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,7 +47,7 @@ class Line:
         return self.shipment.haulier or NO_HAULIER
 
 
-def lines_of(plan: Plan) -> tuple[Line, ...]:
+def lines_of(plan: Sent) -> tuple[Line, ...]:
     """A line for every shipment, depot by depot in sheet order, then customer by customer."""
     week = plan.week
     depots = {name: place for place, name in enumerate(week.depots)}
@@ -79,14 +91,14 @@ def still_to_go(lines: Iterable[Line]) -> list[Line]:
     return [line for line in lines if not line.shipment.gone]
 
 
-def gone_columns(plan: Plan) -> list["ListColumn"]:
+def gone_columns(plan: Sent) -> list["ListColumn"]:
     """A column that names what has gone, where anything has."""
     if not plan.week.gone:
         return []
     return [ListColumn("Gone, load", 16, lambda line: line.shipment.gone or None)]
 
 
-def _rate_row(plan: Plan, shipment: Shipment) -> int:
+def _rate_row(plan: Sent, shipment: Shipment) -> int:
     number = plan.week.rates.find(shipment.key)
     if number is None:
         raise ValueError(f"The plan ships on {shipment.key}, which is no rate row of its week.")
@@ -123,7 +135,7 @@ class ListColumn:
         return Style("heading", align="left" if self.number is None else "right", wrap=True)
 
 
-def quantity_format(plan: Plan) -> str:
+def quantity_format(plan: Sent) -> str:
     """How quantities of this plan are shown: with as many places as any of them needs."""
     week = plan.week
     return number_format(

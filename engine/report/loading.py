@@ -4,10 +4,9 @@ from collections.abc import Iterable
 from io import BytesIO
 from typing import IO
 
-from engine.planning.plan import Plan
 from engine.report.book import Target, fixed_zip, open_whole, write_book
 from engine.report.groupings import loading_columns
-from engine.report.lines import Line, heading_row, line_rows, lines_of, still_to_go, styles_of
+from engine.report.lines import Line, Sent, heading_row, line_rows, lines_of, still_to_go, styles_of
 from engine.report.look import Style
 from engine.report.notes import CAUTIONS
 from engine.report.plan_sheet import total_values
@@ -17,11 +16,11 @@ from engine.report.text import safe_file_name
 _HEADING_ROW = 4
 
 
-def write_loading_list(plan: Plan, depot: str, target: Target) -> None:
+def write_loading_list(plan: Sent, depot: str, target: Target) -> None:
     """Write what one depot loads this week as a workbook of one printable sheet.
 
     Args:
-        plan: the plan.
+        plan: the plan, or the week and the shipments of one.
         depot: a depot of the plan's week.
         target: a path, or a file open for writing bytes.
 
@@ -34,7 +33,7 @@ def write_loading_list(plan: Plan, depot: str, target: Target) -> None:
     )
 
 
-def write_loading_zip(plan: Plan, target: Target) -> None:
+def write_loading_zip(plan: Sent, target: Target) -> None:
     """Write every depot's loading list into one zip file, under the names of `loading_file_names`."""
     lines: dict[str, list[Line]] = {depot: [] for depot in plan.week.depots}
     for line in still_to_go(lines_of(plan)):
@@ -57,14 +56,14 @@ def loading_file_names(depots: Iterable[str]) -> dict[str, str]:
     return names
 
 
-def _write(plan: Plan, depot: str, lines: list[Line], target: Target | IO[bytes]) -> None:
+def _write(plan: Sent, depot: str, lines: list[Line], target: Target | IO[bytes]) -> None:
     if depot not in plan.week.depots:
         raise KeyError(f"The week has no depot '{depot}': there is no loading list to write.")
     week = plan.week.rules.week
     write_book([_sheet(plan, depot, lines)], target, title=f"Loading list {depot}, {week}")
 
 
-def _sheet(plan: Plan, depot: str, lines: list[Line]) -> Sheet:
+def _sheet(plan: Sent, depot: str, lines: list[Line]) -> Sheet:
     columns = loading_columns(plan)
     rows = [
         Row([f"Loading list: {depot}"], [Style("title")], height=24),
