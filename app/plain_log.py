@@ -25,7 +25,7 @@ class PlainFormatter(logging.Formatter):
         plain.exc_text = None
         return super().format(plain)
 
-    def formatException(self, ei: _Fault) -> str:  # type: ignore[override]
+    def formatException(self, ei: _Fault) -> str:
         kind = ei[0].__name__ if ei[0] else "Fault"
         places = traceback.extract_tb(ei[2])
         return "\n".join([kind, *(f"  {place.filename}:{place.lineno} in {place.name}" for place in places)])

@@ -158,8 +158,8 @@ def known_as(sign_in: SignIn, claims: Mapping[str, Any]) -> frozenset[str]:
     found = set()
     address = claims.get(sign_in.address_claim)
     verified = claims.get("email_verified", True)
-    if isinstance(address, str) and address.strip() and verified in (True, "true"):
-        found.add(address.strip().casefold())
+    if isinstance(address, str) and verified in (True, "true"):
+        found.add(address.strip().casefold().removeprefix("group:"))
     groups = claims.get(sign_in.group_claim) or ()
     for group in [groups] if isinstance(groups, str) else groups if isinstance(groups, (list, tuple)) else ():
         found.add(f"group:{group}".strip().casefold())
