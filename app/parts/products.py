@@ -4,7 +4,7 @@ from collections.abc import Sequence
 
 import streamlit as st
 
-from app.keeping import records
+from app.access import records
 from app.parts.words import counted, plain
 from app.session import Desk
 from engine.intake.answers import Answers

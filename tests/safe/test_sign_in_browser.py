@@ -48,7 +48,7 @@ def test_each_role_sees_and_changes_what_it_may(
     ben = visit(f"{desk}/?week={week}")  # a manager, and by the address for changing
     expect(ben.get_by_text("open the link once more")).to_be_visible()
     signed_in(ben, "ben@hithe.test")
-    assert links(ben) == ["Plan", "Reasons", "Hand over", "Weeks"]
+    assert links(ben) == ["Plan", "Reasons", "Compare", "Hand over", "Weeks"]
     expect(ben.get_by_text("Ben <b>Moss</b>, ben@hithe.test · manager")).to_be_visible()
     ben.goto(f"{desk}/?week={week}")
     ben.get_by_text("for reading only").wait_for(timeout=60_000)
