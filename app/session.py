@@ -2,6 +2,7 @@
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
+from fractions import Fraction
 from typing import Any
 
 import streamlit as st
@@ -36,6 +37,7 @@ class Desk:
     history: History = field(default_factory=lambda: History.of(Week()))
     read: tuple[Finding, ...] = ()
     decimal_mark: str = "."
+    pallet: Fraction | None = None
     generation: int = 0
     uploads: int = 0
     message: tuple[str, str] | None = None
@@ -61,13 +63,14 @@ class Desk:
     @property
     def style(self) -> NumberStyle:
         """How this desk types numbers."""
-        return NumberStyle(self.decimal_mark, self.week.rules.unit, self.week.rules.currency)
+        return NumberStyle(self.decimal_mark, self.week.rules.unit, self.week.rules.currency, self.pallet)
 
     def grid(self, table: str) -> Draft:
         return self.drafts.setdefault(table, Draft())
 
     def open(self, reading: engine.Reading) -> None:
         """Put the week that was read on the desk; the list of changes starts anew."""
+        self.pallet = reading.style.pallet
         self.show(History.of(reading.week), reading.style.decimal_mark, reading.lasting, reading.unused)
         self.fresh, self.kept = reading, None
 

@@ -13,6 +13,7 @@ from app.session import Desk
 from engine.findings import Finding, Severity, by_gravity
 from engine.intake.answers import Answers
 from engine.intake.frames import TABLES
+from engine.intake.pallets import WEIGHT
 from engine.intake.surroundings import repaired_copy, surroundings_of
 from engine.records import NotSaved
 from engine.week import Refused, Week
@@ -75,6 +76,13 @@ def _one(state: Desk, kept: Uploaded, finding: Finding) -> None:
         answer = st.radio("Answer", finding.options, index=None, horizontal=True, key="answer")
         if st.button("Answer, and remember it", disabled=answer is None, key="answer-go") and answer:
             _learn(state, kept, before, before.with_answer(finding, answer))
+    if finding.rule == WEIGHT:
+        text = st.text_input("A pallet weighs", placeholder="0.8 t", key="weight")
+        if st.button("Answer, and remember it", disabled=not text.strip(), key="weight-go"):
+            try:
+                _learn(state, kept, before, before.with_answer(finding, text.strip()))
+            except ValueError as refused:
+                st.error(plain(str(refused)))
     if finding.severity is Severity.CHECK and st.button("Accept it as it is", key="accept-finding"):
         _learn(state, kept, before, before.with_accepted(finding))
     if finding.cell and finding.sheet:
@@ -134,6 +142,7 @@ def _read_again(state: Desk, kept: Uploaded, known: Answers) -> None:
     if not part.is_empty and not state.commit(part.change, why="mended or answered in the upload"):
         return
     kept.week, kept.findings = reading.week, reading.findings
+    state.pallet = reading.style.pallet
     state.read = reading.lasting
     state.drafts = {table: opened(state.week, table, reading.unused, state.style) for table in TABLES}
     state.start_afresh()

@@ -7,7 +7,7 @@ from engine.findings import Finding, Severity
 from engine.intake.cells import Sheet, address
 from engine.intake.fields import text_of
 from engine.intake.grids import Grid
-from engine.intake.headings import COLUMNS_OF, TITLES
+from engine.intake.headings import COLUMNS_OF, TITLES, column_of, field_of
 from engine.intake.numbers import is_blank
 from engine.intake.products import product_column
 from engine.intake.recognise import Found, Partial, Table
@@ -61,12 +61,18 @@ def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
     """Columns that nobody knows: not read, and asked about where they hold anything."""
     for table in tables:
         for column in range(table.left, table.right + 1):
-            if column in table.columns.values() or column == product_column(table):
+            if column in table.columns.values() or column in table.beside or column == product_column(table):
                 continue
+            if table.haulier and table.beside and column > min(*table.beside, table.columns["rate"]):
+                continue  # said with the first haulier's list, if it is not known
             rows = table.sheet.rows[table.head + 1 : table.end]
             if all(is_blank(row[column]) for row in rows):
                 continue
             text = table.headings.get(column, "")
+            taken = field_of(table.kind, text)
+            if taken is not None and taken in table.columns:
+                yield _second_column(table, column, taken)
+                continue
             free = tuple(c.heading for c in COLUMNS_OF[table.kind] if c.field not in table.columns)
             what = f"The column '{text}'" if text else "A column without a heading"
             yield Finding(
@@ -81,6 +87,22 @@ def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
                 subject=f"{table.kind}: {text}" if text else "",
                 options=(*free, LEAVE_OUT) if text else (),
             )
+
+
+def _second_column(table: Table, column: int, field: str) -> Finding:
+    heading = column_of(table.kind, field).heading
+    first = table.headings.get(table.columns[field], heading)
+    return Finding(
+        Severity.CHECK,
+        "two columns",
+        f"Two columns on {TITLES[table.kind]} may be {heading}: '{first}' was read, and "
+        f"'{table.headings[column]}' was not.",
+        "Take one of them out, or give it a heading of its own.",
+        table.sheet.file,
+        table.sheet.name,
+        address(table.head, column),
+        table.headings[column],
+    )
 
 
 def _plans(sheets: Sequence[Sheet]) -> Iterator[Finding]:

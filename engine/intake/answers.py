@@ -7,6 +7,7 @@ from types import MappingProxyType
 
 from engine.findings import Finding, Severity
 from engine.intake.names import folded
+from engine.intake.pallets import WEIGHT, weight_in_kg
 
 
 @dataclass(frozen=True)
@@ -15,7 +16,8 @@ class Answers:
 
     Findings that can be answered carry `options`; the answer is one of them. The rules that ask:
     'which mark' (a column's decimal mark), 'which column' and 'missing …' (a heading nobody knows),
-    'unknown name' (a name that is nearly another), 'same depot twice', 'unclear unit', 'several products'.
+    'unknown name' (a name that is nearly another), 'same depot twice', 'unclear unit', 'several products',
+    and 'weight per pallet', which is answered with a weight.
     """
 
     given: Mapping[tuple[str, str], str] = field(default_factory=lambda: MappingProxyType({}))
@@ -33,6 +35,8 @@ class Answers:
         """
         if not finding.subject or (finding.options and answer not in finding.options):
             raise ValueError(f"'{answer}' is no answer to: {finding.message}")
+        if finding.rule == WEIGHT and weight_in_kg(answer) is None:
+            raise ValueError(f"'{answer}' is no weight: type it with its unit, 0.8 t for instance.")
         key = finding.rule, folded(finding.subject)
         return replace(self, given=MappingProxyType({**self.given, key: answer}))
 

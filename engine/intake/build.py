@@ -4,7 +4,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from engine.findings import Finding, Severity
-from engine.intake.about_sheets import WHICH_COLUMN, about_headings, about_sheets
+from engine.intake.about_sheets import LEAVE_OUT, WHICH_COLUMN, about_headings, about_sheets
 from engine.intake.answers import Answers
 from engine.intake.build_gone import build_gone
 from engine.intake.build_lists import Built, Unused, build_customers, build_depots, with_depot_spelling
@@ -32,6 +32,7 @@ from engine.intake.products import (
 )
 from engine.intake.recognise import Found, Table, find_tables, is_total, of_one_depot
 from engine.intake.remarks import Counts
+from engine.intake.side_by_side import about_hauliers, with_hauliers
 from engine.week import Week
 
 
@@ -62,11 +63,12 @@ def build_figures(
     product: the one to read where the sheets name several; with None an answer given earlier counts
     """
     taught = _taught(answers)
-    found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
+    columns = _said_of_rates(answers)
+    found = _found(sheets, taught, columns, known)
     products, product, about_products, left = _products(sheets, found, answers, known, product)
     if left is not sheets:
         sheets = left
-        found = _with_sheets_of_one_depot(find_tables(sheets, taught), known)
+        found = _found(sheets, taught, columns, known)
     of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
     grids = _grids(found, of, sheets, known)
     stated = stated_by(of["rules"], answers)
@@ -97,6 +99,7 @@ def build_figures(
             *remembered,
             *outside,
             *about_headings(found.tables),
+            *about_hauliers(found.tables, columns),
             *asked,
             *depots.findings,
             *customers.findings,
@@ -112,6 +115,26 @@ def build_figures(
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
         products,
     )
+
+
+def _found(
+    sheets: Sequence[Sheet],
+    taught: Mapping[str, Mapping[str, str]],
+    columns: Mapping[str, str],
+    known: Week | None,
+) -> Found:
+    """The tables on the sheets, also those of one depot or with hauliers side by side."""
+    return with_hauliers(_with_sheets_of_one_depot(find_tables(sheets, taught), known), columns)
+
+
+def _said_of_rates(answers: Answers) -> dict[str, str]:
+    """What the desk has said of columns on sheets of rates, by heading, folded; '' where it is left out."""
+    said = {}
+    for (rule, subject), answer in answers.given.items():
+        kind, colon, heading = subject.partition(": ")
+        if rule == WHICH_COLUMN and colon and kind == "rates":
+            said[heading] = "" if answer == LEAVE_OUT else answer
+    return said
 
 
 def _products(

@@ -115,7 +115,7 @@ def build_rates(
     for grid in grids:
         parts.append(_grid(grid, start, names, manner))
         start += len(parts[-1].depot)
-    findings = [finding for part in parts for finding in part.findings]
+    findings = list(dict.fromkeys(finding for part in parts for finding in part.findings))
     counts = Counts()
     for part in parts:
         counts = counts.plus(part.counts)
@@ -269,6 +269,8 @@ def _list(table: Table, start: int, names: tuple[Names, Names, Names], manner: M
         names[2].codes(cells["haulier"]) if "haulier" in cells else np.full(count, NO_CODE, dtype=np.int32)
     )
     haulier[haulier < 0] = NO_CODE
+    if table.haulier:
+        haulier[:] = names[2].code(table.haulier)
     numbers, values = _columns(table, cells, manner, remarks)
     rate = numbers["rate"]
     closed = np.array(values.get("closed", [False] * count), dtype=bool)
@@ -366,8 +368,8 @@ def _rows_read(
     for position in np.flatnonzero((depot < 0) | (customer < 0) | (no_rate & ~closed)).tolist():
         if aside[position]:
             continue
-        row = table.sheet.rows[first + position][table.left : table.right + 1]
-        filled = [cell for cell in row if not is_blank(cell)]
+        cells_here = table.sheet.rows[first + position][table.left : table.right + 1]
+        filled = [cell for cell in cells_here if not is_blank(cell)]
         if not filled:
             read[position] = False
             continue
@@ -378,6 +380,11 @@ def _rows_read(
             filled,
             bool(no_rate[position]),
         )
+        if finding is not None and finding.rule == "no rate" and table.beside:
+            row = table.sheet.rows[first + position]
+            elsewhere = any(not is_blank(row[column]) for column in table.beside)
+            if elsewhere or min(table.beside) < table.columns["rate"]:
+                finding = None  # another haulier has the lane, or it was said with the first one
         if finding is not None:
             aside[position] = True
             remarks.append(Remark(first + position, name, finding, True))

@@ -13,6 +13,7 @@ from engine.intake.cells import address
 from engine.intake.fields import NUMBER_KINDS, read_field, text_of
 from engine.intake.headings import rule_of
 from engine.intake.numbers import NumberStyle, is_blank
+from engine.intake.pallets import is_weight_rule, not_a_weight, weight_in_kg
 from engine.intake.places import Spot
 from engine.intake.recognise import Table
 from engine.intake.remarks import Counts, Remark, gathered
@@ -25,6 +26,8 @@ def stated_by(tables: Sequence[Table], answers: Answers) -> dict[str, str]:
     for table in tables:
         for name, raw in zip(table.cells("rule"), table.cells("value"), strict=True):
             column = rule_of(text_of(name)) if not is_blank(name) and not is_blank(raw) else None
+            if not is_blank(name) and not is_blank(raw) and is_weight_rule(text_of(name)):
+                stated |= {"pallet": text_of(raw), "pallet name": text_of(name)}
             if column is None or column.field in stated:
                 continue
             text = text_of(raw)
@@ -67,7 +70,10 @@ def build_rules(tables: Sequence[Table], style: NumberStyle, answers: Answers) -
                 continue
             read += 1
             column = rule_of(text_of(name)) if not is_blank(name) else None
-            if column is None and is_blank(raw):
+            if column is None and not is_blank(name) and is_weight_rule(text_of(name)):
+                if not is_blank(raw) and weight_in_kg(raw, text_of(name), style.unit) is None:
+                    remarks.append(Remark(number, "value", not_a_weight(raw)))
+            elif column is None and is_blank(raw):
                 remarks.append(Remark(number, "rule", _note(text_of(name)), True))
             elif column is None:
                 remarks.append(Remark(number, "rule", _unknown(text_of(name)), True))

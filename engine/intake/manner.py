@@ -15,6 +15,7 @@ from engine.intake.fields import NUMBER_KINDS
 from engine.intake.grids import Grid
 from engine.intake.headings import Heading, column_of, heading_of
 from engine.intake.numbers import NumberStyle, currency_beside
+from engine.intake.pallets import PALLET, WEIGHT, ask_weight, needs_weight, weight_in_kg
 from engine.intake.recognise import Table
 from engine.intake.units import currencies_of, factor, same_unit, times, unclear_unit
 
@@ -48,7 +49,7 @@ class Manner:
         if unit is None:
             return None
         column = GRID_RATE if isinstance(part, Grid) else column_of(part.kind, name)
-        by = factor(unit, "km" if column.kind is Kind.DISTANCE else self.base.unit)
+        by = factor(unit, "km" if column.kind is Kind.DISTANCE else self.base.unit, self.base.pallet)
         if by is None or by == 1:
             return None
         return 1 / by if column.kind in MONEY else by
@@ -70,7 +71,13 @@ def manner_of(
     ]
     unit = stated.get("unit") or _told_unit(headings, answers, findings)
     currency = stated.get("currency") or _told_currency(headings, parts, findings)
-    base = NumberStyle(otherwise, unit, currency)
+    pallet = (
+        weight_in_kg(stated["pallet"], stated.get("pallet name", ""), unit) if "pallet" in stated else None
+    )
+    answered = answers.to(WEIGHT, PALLET)
+    if pallet is None and answered is not None:
+        pallet = weight_in_kg(answered, unit="t")
+    base = NumberStyle(otherwise, unit, currency, pallet)
     units: dict[tuple[int, str], str] = {}
     for part, name, text, heading in headings:
         other = _checked(part, name, text, heading, base, answers, findings)
@@ -183,7 +190,14 @@ def _checked(
         return "mile" if unit == "mile" or heading.words == "miles" else ""
     if not unit or same_unit(unit, base.unit) or column.kind not in _IN_UNITS:
         return ""
-    by = factor(unit, base.unit)
+    by = factor(unit, base.unit, base.pallet)
+    if by is None and needs_weight(unit, base.unit):
+        what = f"The heading '{text}' is in {unit}s, the week is in {base.unit}"
+        if unit != PALLET:
+            what = f"The heading '{text}' is in {unit}, the week is in {base.unit}s"
+        question = ask_weight(f"{what.removesuffix('ss')}; what a pallet weighs is not known.", text)
+        findings.append(replace(question, file=place[0], sheet=place[1], cell=place[2]))
+        return ""
     if by is not None and times(Decimal(1), by if column.kind is Kind.QUANTITY else 1 / by) is None:
         by = None
     if by is None:

@@ -12,6 +12,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import date, datetime, time, timedelta
 from decimal import Decimal
+from fractions import Fraction
 from functools import lru_cache
 from typing import Any, Literal
 
@@ -30,11 +31,15 @@ Expected = Literal["quantity", "money", "percent", "distance", "degrees", "numbe
 
 @dataclass(frozen=True, slots=True)
 class NumberStyle:
-    """How numbers are typed: the decimal mark ('.' or ','), and the unit and currency they are in."""
+    """How numbers are typed: the decimal mark ('.' or ','), and the unit and currency they are in.
+
+    pallet: what a pallet weighs in kg, where the desk has said so
+    """
 
     decimal_mark: str = "."
     unit: str = "t"
     currency: str = "EUR"
+    pallet: Fraction | None = None
 
 
 class ErrorCell(str):
@@ -264,8 +269,17 @@ def _in_unit(
     wanted = {"quantity": style.unit, "money": style.unit, "distance": "km"}.get(expected, "")
     if not wanted or same_unit(unit, wanted) or unit == "unit" or (unit == "load" and expected == "money"):
         return (number, None) if wanted or unit in ("load", "unit") else (None, _words(text))
-    by = factor(wanted, unit) if expected == "money" else factor(unit, wanted)
+    by = factor(wanted, unit, style.pallet) if expected == "money" else factor(unit, wanted, style.pallet)
     converted = None if by is None else times(number, by)
+    if by is None and "pallet" in (unit, unit_of(wanted)) and factor("kg", min(unit, wanted, key=_is_pallet)):
+        return None, Finding(
+            Severity.STOPS,
+            "weight per pallet",
+            f"'{text}' is in {unit}, this column is in {wanted}; what a pallet weighs is not known.",
+            "Say what a pallet weighs, 0.8 t for instance, here or on Rules as Weight per pallet.",
+            read=text,
+            subject="pallet",
+        )
     if by is None or converted is None or _significant(converted) > MOST_DIGITS:
         return None, _refused(
             "other unit",
@@ -276,6 +290,10 @@ def _in_unit(
     return converted, Finding(
         Severity.NOTE, "unit converted", f"'{text}' was read as {canonical(converted)} {wanted}.", read=text
     )
+
+
+def _is_pallet(unit: str) -> bool:
+    return unit_of(unit) == "pallet"
 
 
 def _significant(number: Decimal) -> int:

@@ -135,6 +135,8 @@ def _rates(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
         for what, known in (("depot", week.depots), ("customer", week.customers))
     }
     fields = {field for part in reading.places.rates for field in part.columns} or {"rate"}
+    if any(reading.week.rates.flat.haulier_names):
+        fields |= {"haulier"}
     changes: list[Change] = []
     told: list[str] = []
     seen: dict[tuple[str, str, str | None], int] = {}

@@ -2,7 +2,7 @@
 
 import re
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 from engine.intake.cells import Sheet
@@ -26,7 +26,8 @@ class Table:
 
     head: row of the headings; end: first row after the table; left, right: its columns, the last included;
     columns: column of each field; unread: columns whose headings nobody knows; depot: the depot that all
-    rows are of, where the list has no column for it. Rows and columns count from 0.
+    rows are of, where the list has no column for it; haulier: whose rates these are, where each haulier has
+    a column of rates of its own; beside: the columns of the others. Rows and columns count from 0.
     """
 
     kind: str
@@ -39,6 +40,8 @@ class Table:
     headings: Mapping[int, str]
     unread: tuple[int, ...] = ()
     depot: str = ""
+    haulier: str = ""
+    beside: frozenset[int] = frozenset()
 
     def cells(self, field_name: str) -> list[Any]:
         """The raw cells of a field, one for each row below the headings."""
@@ -316,11 +319,5 @@ def _ended(tables: list[Table]) -> list[Table]:
             for other in tables
             if other.head > table.head and other.left <= table.right and table.left <= other.right
         ]
-        end = min([table.end, *below])
-        ended.append(
-            Table(
-                table.kind, table.sheet, table.head, end, table.left, table.right,
-                table.columns, table.headings, table.unread, table.depot,
-            )
-        )  # fmt: skip
+        ended.append(replace(table, end=min([table.end, *below])))
     return ended

@@ -86,12 +86,17 @@ def same_unit(first: str, second: str) -> bool:
     return known[0] == known[1] if all(known) else first.casefold().strip() == second.casefold().strip()
 
 
-def factor(source: str, target: str) -> Fraction | None:
-    """How many `target` one `source` is, exactly; None where the two do not measure the same thing."""
+def factor(source: str, target: str, pallet: Fraction | None = None) -> Fraction | None:
+    """How many `target` one `source` is, exactly; None where the two do not measure the same thing.
+
+    pallet: what a pallet weighs in kg, where that is known
+    """
     known = unit_of(source) or source, unit_of(target) or target
     if known[0] not in _FACTORS or known[1] not in _FACTORS:
         return None
-    (kind, size), (other_kind, other_size) = _FACTORS[known[0]], _FACTORS[known[1]]
+    (kind, size), (other_kind, other_size) = (
+        ("mass", pallet) if unit == "pallet" and pallet is not None else _FACTORS[unit] for unit in known
+    )
     return size / other_size if kind == other_kind else None
 
 

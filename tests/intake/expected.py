@@ -95,7 +95,7 @@ EXPECTED = {
     "pallets_and_tonnes": (
         "2 depots, 2 customers, 4 lanes of 4; 100 t ordered, 200 t available",
         [
-            ("stops", "column in other unit", "Depots", "B1"),
+            ("stops", "weight per pallet", "Depots", "B1"),
         ],
     ),
     "other_currency": (
