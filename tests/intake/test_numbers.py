@@ -84,7 +84,7 @@ REFUSED = [
     (True, POINT, "quantity", "not a number"),
     (1e30, POINT, "quantity", "too many digits"),
     ("5 tons", POINT, "quantity", "unclear unit"),
-    ("5 pallets", POINT, "quantity", "other unit"),
+    ("5 pallets", POINT, "quantity", "weight per pallet"),
     ("$5", POINT, "money", "other currency"),
     ("€5", POINT, "quantity", "money for number"),
     ("12%", POINT, "quantity", "not a number"),
