@@ -5,11 +5,14 @@ drawn weeks of 20 x 500 on one and on two processes. Prints what was measured; n
 machines differ. Processor time is told beside elapsed time, since machines are shared.
 """
 
+import os
 import statistics
 import sys
 import time
 from collections.abc import Callable
+from concurrent.futures import ProcessPoolExecutor, wait
 from decimal import Decimal
+from pathlib import Path
 
 import numpy as np
 
@@ -24,9 +27,12 @@ from tests.speed_reasons import dense_week
 
 Say = Callable[[str], None]
 
+TURNS = 5
+
 
 def lose_each_depot(depots: int, customers: int, say: Say = print) -> None:
     plan = plan_week(dense_week(depots, customers))
+    ready()
     begun = time.process_time()
     ground = ground_of(plan)
     outcome_of(ground, AS_IT_IS)
@@ -53,6 +59,16 @@ def lose_each_depot(depots: int, customers: int, say: Say = print) -> None:
     say(f"  equal costs: {sum(costs)} of {len(costs)}")
 
 
+def _processor_time(pool: ProcessPoolExecutor) -> list[float]:
+    """Seconds that each process of the pool has used so far, as Linux tells it."""
+    ticks = os.sysconf("SC_CLK_TCK")
+    found = []
+    for process in pool._processes.values():
+        fields = Path(f"/proc/{process.pid}/stat").read_text().rpartition(")")[2].split()
+        found.append((int(fields[11]) + int(fields[12])) / ticks)
+    return found
+
+
 def draw_weeks(count: int, say: Say = print) -> None:
     ground = ground_of(plan_week(dense_week(20, 500)))
     draws = Draws(
@@ -62,21 +78,27 @@ def draw_weeks(count: int, say: Say = print) -> None:
         rates=Spread("even", Decimal(-2), Decimal(8)),
     )
     cases = drawn(draws, count)
-    say(f"{count} drawn weeks of 20 x 500:")
-    for workers in (1, 2):
-        with processes(workers) as pool:
-            for future in [pool.submit(ready) for _ in range(4 * workers)]:
-                future.result()  # both have started and loaded their code
+    told: list[int] = []
+    say(f"{count} drawn weeks of 20 x 500, one and two processes in turn:")
+    with processes(1) as one, processes(2) as two:
+        pools = {1: one, 2: two}
+        for workers, pool in pools.items():  # all have started, loaded their code and have the week
+            wait([pool.submit(ready) for _ in range(8)])
             stress(ground, cases[: 16 * workers], pool, workers=workers)
-            told: list[int] = []
-            begun = time.perf_counter()
-            run = stress(ground, cases, pool, workers=workers, progress=lambda done, _: told.append(done))
-            elapsed = time.perf_counter() - begun
-        busy = run.seconds / (workers * elapsed)
-        say(
-            f"  on {workers}: {elapsed:6.2f} s elapsed, {run.seconds:6.2f} s processor time in the cases, "
-            f"{100 * busy:.0f} % of the processes' time, progress told {len(told)} times"
-        )
+        taken: dict[int, list[float]] = {1: [], 2: []}
+        for _ in range(TURNS):
+            for workers, pool in pools.items():
+                before, begun = _processor_time(pool), time.perf_counter()
+                run = stress(ground, cases, pool, workers=workers, progress=lambda done, _: told.append(done))
+                taken[workers].append(time.perf_counter() - begun)
+                used = [now - then for now, then in zip(_processor_time(pool), before, strict=True)]
+                each = ", ".join(f"{seconds:5.2f}" for seconds in used)
+                say(
+                    f"  on {workers}: {taken[workers][-1]:6.2f} s elapsed; processor time of the cases "
+                    f"{run.seconds:5.2f} s, of each process {each} s"
+                )
+    ratio = statistics.median(taken[1]) / statistics.median(taken[2])
+    say(f"  two processes are {ratio:.2f} times as fast as one; progress told {len(told)} times")
     done: list[int] = [0]
     with processes(2) as pool:
         run = stress(ground, cases, pool, progress=lambda now, _: done.append(now), stop=lambda: done[-1] > 0)

@@ -13,7 +13,9 @@ from multiprocessing import get_context
 
 from engine.compare.stress_cases import Case
 from engine.compare.stress_ground import Ground
+from engine.compare.stress_kernels import prepare
 from engine.compare.stress_solve import Outcome, outcome_of
+from engine.network import prepare as prepare_network
 
 Progress = Callable[[int, int], None]
 """Told how many cases are done, and of how many."""
@@ -119,8 +121,7 @@ def processes(workers: int) -> ProcessPoolExecutor:
 
 def ready() -> bool:
     """Loads a process's machine code, so that no case waits for it."""
-    from engine.network import prepare
-
+    prepare_network()
     prepare()
     return True
 
