@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, NoReturn
 import click
 
 import engine
+from app.stress_command import stress
 from engine.exact import canonical
 from engine.findings import Finding, Severity, by_gravity, stops
 
@@ -234,6 +235,9 @@ def blank(out: Path) -> None:
     """Write a workbook with the headings and no figures yet."""
     engine.write_blank(out)
     click.echo(f"Wrote {out}", err=True)
+
+
+main.add_command(stress)
 
 
 def _read(ctx: click.Context, files: tuple[Path, ...], product: str | None = None) -> engine.Reading:

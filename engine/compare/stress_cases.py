@@ -105,9 +105,8 @@ def unchanged(plan: Plan) -> tuple[str, ...]:
     said = []
     if len(open_lanes) > len(used):
         many = len(open_lanes) - len(used)
-        said.append(
-            f"{many:,} {'lane carries' if many == 1 else 'lanes carry'} nothing: losing one changes nothing."
-        )
+        what, it = ("One lane carries", "it") if many == 1 else (f"{many:,} lanes carry", "one")
+        said.append(f"{what} nothing: losing {it} changes nothing.")
     going = {one.haulier for one in plan.shipments if not one.gone}
     idle = [name for name in plan.week.rates.flat.haulier_names if name not in going]
     if idle:

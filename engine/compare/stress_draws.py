@@ -7,7 +7,7 @@ by inverting the distribution, to a tenth of a percent, and are whole numbers fr
 """
 
 from dataclasses import dataclass
-from decimal import Decimal
+from decimal import Decimal, InvalidOperation
 from functools import lru_cache
 from threading import get_ident
 from typing import Any, Literal
@@ -124,3 +124,31 @@ def raw_numbers(seed: int, counter: tuple[int, int, int, int], count: int) -> np
 def _stream(seed: int, thread: int) -> np.random.Philox:
     """A stream of a thread's own: making one takes longer than a case, setting it back does not."""
     return np.random.Philox(key=seed)
+
+
+def spread_of(text: str) -> Spread:
+    """A spread as it is typed: 'triangular -20 0 30', 'normal 0 5 -15 15', 'even -10 5'; 'together' behind.
+
+    Triangular: lowest, most likely, highest; normal: mean, standard deviation, lowest, highest; all in
+    percent, with a decimal point.
+
+    Raises ValueError with a sentence where it cannot be read.
+    """
+    words = text.replace("%", " ").split()
+    together = bool(words) and words[-1] == "together"
+    shape, *numbers = words[:-1] if together else words or [""]
+    wanted = {"triangular": 3, "normal": 4, "even": 2}.get(shape)
+    try:
+        figures = [Decimal(number) for number in numbers]
+    except InvalidOperation:
+        figures = []
+    if wanted is None or len(figures) != wanted or not all(figure.is_finite() for figure in figures):
+        raise ValueError(
+            f"'{text}' does not say how a figure strays: type 'triangular -20 0 30' (lowest, most likely, "
+            "highest percent), 'normal 0 5 -15 15' (mean, deviation, lowest, highest) or 'even -10 5'."
+        )
+    if shape == "triangular":
+        return Spread("triangular", figures[0], figures[2], centre=figures[1], together=together)
+    if shape == "normal":
+        return Spread("normal", figures[2], figures[3], figures[0], figures[1], together)
+    return Spread("even", figures[0], figures[1], together=together)

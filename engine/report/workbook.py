@@ -1,5 +1,6 @@
 """A plan as one workbook: the plan from every side, its costs and proof, notes, and the figures as used."""
 
+from collections.abc import Sequence
 from datetime import datetime
 
 from engine.planning.plan import Plan
@@ -16,21 +17,25 @@ from engine.report.sheet import Sheet
 from engine.report.values_sheet import values_sheet
 
 
-def write_workbook(plan: Plan, target: Target, made: datetime | None = None) -> None:
+def write_workbook(
+    plan: Plan, target: Target, made: datetime | None = None, more: Sequence[Sheet] = ()
+) -> None:
     """Write a plan as an Office Open XML workbook; the same plan and time give the same bytes.
 
     Args:
         plan: what to write.
         target: a path, or a file open for writing bytes. A path gets the whole workbook or none.
         made: the time that *Notes* and the file's properties state; None leaves it out.
+        more: further sheets, put before *Notes*: what the plan was compared with, for instance.
 
     Raises:
         OSError: the file cannot be written; what stood at the path is still there.
     """
-    write_book(workbook_sheets(plan, made), target, title=f"Plan for {plan.week.rules.week}", made=made)
+    sheets = workbook_sheets(plan, made, more)
+    write_book(sheets, target, title=f"Plan for {plan.week.rules.week}", made=made)
 
 
-def workbook_sheets(plan: Plan, made: datetime | None = None) -> list[Sheet]:
+def workbook_sheets(plan: Plan, made: datetime | None = None, more: Sequence[Sheet] = ()) -> list[Sheet]:
     """The sheets of the workbook, in order."""
     lines, header = lines_of(plan), header_of(plan)
     costs, cells = costs_sheet(plan, lines, header)
@@ -42,6 +47,7 @@ def workbook_sheets(plan: Plan, made: datetime | None = None) -> list[Sheet]:
         costs,
         values_sheet(plan, header),
         proof_sheet(plan, lines, plan_letters(plan_columns(plan)), cells, header),
+        *more,
         notes_sheet(plan, header, made, _remarks(plan)),
         *figures_sheets(plan.week, header),
     ]

@@ -1,0 +1,187 @@
+"""Sheet *Stress*: what each loss would do, ranked, and how the drawn weeks are distributed; with charts."""
+
+from collections.abc import Sequence
+from decimal import Decimal
+from typing import Any
+
+from engine.compare.stress import Stressed, histogram, short_often, spreading
+from engine.compare.stress_draws import Spread
+from engine.compare.stress_solve import Outcome
+from engine.exact import canonical
+from engine.money import minor_places
+from engine.report.look import DEEP, Style, number_format, places_of
+from engine.report.native_charts import columns, ranked_bars
+from engine.report.sheet import Row, Sheet, Value
+
+_WIDTHS = (44, 15, 16, 16, 16, 16, 17, 60)
+_MOST_BARS = 15
+_MOST_NAMED = 6
+_COUNT = "#,##0"
+
+
+def stress_sheet(stressed: Stressed, header: str) -> Sheet:
+    """The sheet; the named cases first, then the drawn weeks."""
+    rows = _cases(stressed)
+    listed = len(stressed.ranked())
+    first = len(rows) - listed + 1
+    bins = histogram([one.total for one in stressed.drawn])
+    rows += _drawn(stressed, len(rows))
+    first_bin = next((at for at, row in enumerate(rows, 1) if row.values[:1] == ("From",)), 0) + 1
+
+    def finish(sheet: Any) -> None:
+        bars = min(listed, _MOST_BARS)
+        money, unit = stressed.plan.week.rules.currency, stressed.plan.week.rules.unit
+        if bars:
+            where = (1, first, first + bars - 1)
+            sheet.add_chart(ranked_bars(sheet, f"Dearer by, {money}", where, 3, _COUNT), "J3")
+            short = ranked_bars(sheet, f"More short, {unit}", where, 2, "#,##0.##")
+            sheet.add_chart(short, "U3")
+        if bins:
+            where = (1, first_bin, first_bin + len(bins) - 1)
+            axes = (f"Freight and charges from, {money}", "Drawn weeks")
+            sheet.add_chart(columns(sheet, "Cost of the drawn weeks", where, 3, axes), f"J{first_bin + 2}")
+
+    return Sheet("Stress", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
+
+
+def strays_in_words(spread: Spread | None) -> str:
+    """How a figure strays, for people."""
+    if spread is None:
+        return "as the week says"
+    low, high, centre = canonical(spread.low), canonical(spread.high), canonical(spread.centre)
+    alike = ", all alike" if spread.together else ", each by itself"
+    match spread.shape:
+        case "triangular":
+            return f"triangular from {low} % over {centre} % to {high} %{alike}"
+        case "normal":
+            deviation = canonical(spread.deviation)
+            return f"normal around {centre} %, deviation {deviation} %, within {low} % and {high} %{alike}"
+    return f"even between {low} % and {high} %{alike}"
+
+
+def _cases(stressed: Stressed) -> list[Row]:
+    rules, ranked = stressed.plan.week.rules, stressed.ranked()
+    money, quantity = _formats(stressed)
+    styles = [Style(), quantity, money, money, money, money, quantity, Style(wrap=True)]
+    quiet = [Style("quiet")]
+    rows = [
+        Row([f"Stress of {rules.week}"], [Style("title")], height=26),
+        Row(
+            [
+                f"Money in {rules.currency}, exact and before rounding; quantities in {rules.unit}. Every "
+                "case is a plan of its own, proved."
+            ],
+            quiet,
+        ),
+        Row(
+            [
+                "Dearer by: freight and charges beside today. Where less is delivered, freight may fall: "
+                "read it with what goes short."
+            ],
+            quiet,
+        ),
+        *(Row([sentence], quiet) for sentence in stressed.unchanged),
+        *([Row([f"Stopped early: {len(stressed.outcomes):,} of {stressed.asked:,} cases were done."],
+               [Style("strong")])] if stressed.stopped else []),
+        Row([]),
+        _headings("Case", "More short", "Dearer by", "Freight", "Charge for short", "Charge for unsent",
+                  "Goes another way", "Who is hit"),
+    ]  # fmt: skip
+    today = stressed.today
+    rows.append(
+        Row(
+            ["Today", None, None, today.freight, today.short_charge, today.unsent_charge, None,
+             _who(today.short)],
+            [style._replace(kind="total") for style in styles],
+        )
+    )  # fmt: skip
+    for one in ranked:
+        rows.append(Row(_cells(stressed, one), styles))
+    return rows
+
+
+def _cells(stressed: Stressed, one: Outcome) -> list[Value]:
+    name = one.case.words[:1].upper() + one.case.words[1:]
+    if one.why:
+        return [name, None, None, None, None, None, None, f"Cannot be planned. {one.why}"]
+    return [
+        name, stressed.more_short(one), stressed.dearer(one), one.freight, one.short_charge,
+        one.unsent_charge, one.moved, _who(one.hit),
+    ]  # fmt: skip
+
+
+def _drawn(stressed: Stressed, above: int) -> list[Row]:
+    """The part on drawn weeks, below so many rows."""
+    drawn, draws = stressed.drawn, stressed.draws
+    if not drawn or draws is None:
+        return []
+    money, quantity = _formats(stressed)
+    count, quiet = Style(number=_COUNT, align="right"), [Style("quiet")]
+    totals = [one.total for one in drawn]
+    spread, bins = spreading(totals), histogram(totals)
+    short = sum(bool(one.short) for one in drawn)
+    rows = [
+        Row([]),
+        Row([f"{len(drawn):,} drawn weeks", *[None] * 3], [Style("part")] * 4),
+        Row([f"Seed {draws.seed}: the same seed draws the same weeks."], quiet),
+        *(
+            Row([f"{what}: {strays_in_words(one)}."], quiet)
+            for what, one in (("Orders", draws.orders), ("Stock", draws.stock), ("Rates", draws.rates))
+        ),
+        Row([f"Something goes short in {short:,} of them."], [Style("strong")]),
+    ]
+    if spread is not None:
+        rows += [
+            _headings("Freight and charges", "Amount"),
+            *(
+                Row([what, amount], [Style(), money])
+                for what, amount in (
+                    ("Least", spread.least),
+                    ("A tenth of the weeks up to", spread.tenth),
+                    ("Half of the weeks up to", spread.middle),
+                    ("Nine tenths of the weeks up to", spread.ninetieth),
+                    ("Most", spread.most),
+                )
+            ),
+            Row([]),
+        ]
+    rows.append(_headings("From", "to", "Drawn weeks"))
+    left = money._replace(align="left")
+    rows += [Row([one.low, one.high, one.count], [left, money, count]) for one in bins]
+    often = short_often(drawn)
+    if often:
+        rows += [Row([]), _headings("Goes short", "Drawn weeks", "At most", "On average over all")]
+        rows += [
+            Row([one.customer, one.weeks, one.most, float(f"{float(one.sum) / len(drawn):.6g}")],
+                [Style(), count, quantity, Style(number="#,##0.00", align="right")])
+            for one in often
+        ]  # fmt: skip
+    return rows
+
+
+def _formats(stressed: Stressed) -> tuple[Style, Style]:
+    """Styles of money and of quantities."""
+    minor = minor_places(stressed.plan.week.rules.currency)
+    quantities: list[Decimal | None] = [
+        figure for one in (stressed.today, *stressed.outcomes) for figure in (one.missing, one.moved)
+    ]
+    return (
+        Style(number=number_format(minor), align="right"),
+        Style(number=number_format(places_of(quantities)), align="right"),
+    )
+
+
+def _who(hit: Sequence[tuple[str, Decimal]]) -> str | None:
+    if not hit:
+        return None
+    line = sorted(hit, key=lambda one: -one[1])
+    more = f" and {len(line) - _MOST_NAMED} more" if len(line) > _MOST_NAMED else ""
+    return ", ".join(f"{name} {canonical(quantity)}" for name, quantity in line[:_MOST_NAMED]) + more
+
+
+def _headings(*names: str) -> Row:
+    styles = [
+        Style("heading", align="right" if place and name != "Who is hit" else "left", wrap=True)
+        for place, name in enumerate(names)
+    ]
+    return Row(names, styles, 30)

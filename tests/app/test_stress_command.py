@@ -1,0 +1,88 @@
+"""`hithe stress` as a person runs it: statuses, tables, JSON, a workbook that reads back as the same week."""
+
+import json
+from pathlib import Path
+
+import pytest
+from click.testing import CliRunner
+from openpyxl import load_workbook
+
+import engine
+from app.command import main
+
+SMALL = "sample_data/small_week.xlsx"
+HEADINGS = "Depot,Available\n", "Customer,Ordered\n", "Depot,Customer,Rate,Haulier\n"
+
+
+def run(*arguments: str) -> tuple[int, str, str]:
+    result = CliRunner().invoke(main, ["stress", *arguments])
+    return result.exit_code, result.stdout, result.stderr
+
+
+@pytest.fixture
+def plenty(tmp_path: Path) -> list[str]:
+    """A week in which any one of two depots has enough for everybody."""
+    rows = "North,10\nSouth,10\n", "Ash,4\n", "North,Ash,2,Oxcart\nSouth,Ash,5,Oxcart\n"
+    files = []
+    for name, heading, body in zip(("depots", "customers", "rates"), HEADINGS, rows, strict=True):
+        file = tmp_path / f"{name}.csv"
+        file.write_text(heading + body)
+        files.append(str(file))
+    return files
+
+
+def test_nobody_short_in_any_case_is_0_somebody_is_3(plenty: list[str]) -> None:
+    status, out, _ = run(*plenty, "--lose", "depots", "--rates", "10")
+    assert status == 0
+    assert [" ".join(line.split()) for line in out.splitlines() if line] == [
+        "Week: 8 EUR freight and charges today, 0 t short",
+        "more short dearer by",
+        "North lost 0 12",
+        "rates up 10 % 0 0.8",
+        "South lost 0 0",
+        "One lane carries nothing: losing it changes nothing.",
+    ]
+    status, out, _ = run(*plenty, "--lose", "hauliers")
+    assert status == 3
+    assert "Oxcart lost 4 -8 Ash 4" in " ".join(out.split())
+
+
+def test_json_and_the_workbook(tmp_path: Path) -> None:
+    book = tmp_path / "plan.xlsx"
+    status, out, err = run(
+        SMALL, "--lose", "depots", "--draw", "40", "--seed", "9", "--orders-stray", "triangular -20 0 30",
+        "--json", "-", "--out", str(book),
+    )  # fmt: skip
+    assert status == 3
+    said = json.loads(out)
+    assert (said["asked"], said["done"], said["seed"], len(said["drawn"])) == (46, 46, 9, 40)
+    assert {one["depot"] for one in said["cases"]} == set(engine.read_week(SMALL).week.depots)
+    plan = engine.plan_week(engine.read_week(SMALL).week)
+    assert said["today"]["total_cost"] == engine.plan_as_json(plan)["total_cost"]
+    assert f"Wrote {book}" in err
+    sheet = load_workbook(book)["Stress"]
+    assert len(sheet._charts) == 3
+    assert "Quarry lost" in {cell.value for cell in sheet["A"]}
+    assert engine.read_week(book).week == engine.read_week(SMALL).week
+
+
+@pytest.mark.parametrize(
+    ("options", "said"),
+    [
+        (["--draw", "5"], "need to stray"),
+        (["--orders", "-200"], "no change in percent"),
+        (["--draw", "5", "--orders-stray", "odd 1 2"], "does not say how a figure strays"),
+        (["--workers", "2", "--cluster", "tcp://127.0.0.1:9"], "not both"),
+    ],
+)
+def test_what_makes_no_sense_is_refused_with_2(options: list[str], said: str) -> None:
+    status, out, err = run(SMALL, *options)
+    assert (status, out) == (2, "")
+    assert said in " ".join(err.split())
+
+
+def test_figures_that_cannot_be_used_are_2(tmp_path: Path) -> None:
+    bad = tmp_path / "week.csv"
+    bad.write_text("Depot,Available\nNorth,many\n")
+    status, out, _ = run(str(bad))
+    assert (status, out) == (2, "")
