@@ -18,7 +18,7 @@ def apportioned(parts: Sequence[Fraction], places: int, total: Decimal | None = 
     total: at these places; None is the exact sum, which must fit them
 
     Raises:
-        ValueError: the total does not fit the places, or is a grain or more away from the sum of the parts.
+        ValueError: the total does not fit the places, or is more than a grain away from the sum of the parts.
     """
     scale = 10**places
     scaled = [part * scale for part in parts]
@@ -31,7 +31,7 @@ def apportioned(parts: Sequence[Fraction], places: int, total: Decimal | None = 
         wanted = int(exact)
     else:
         wanted = to_integer(total, places)
-    if abs(wanted - exact) >= 1 and len(parts):
+    if abs(wanted - exact) > 1 and len(parts):
         raise ValueError(f"The parts add up to {float(exact) / scale}, not to the total {total}.")
     down = [part.numerator // part.denominator for part in scaled]
     missing = wanted - sum(down)
@@ -42,8 +42,3 @@ def apportioned(parts: Sequence[Fraction], places: int, total: Decimal | None = 
         for n in list(reversed(by_remainder))[:-missing]:
             down[n] -= 1
     return [to_decimal(part, places) for part in down]
-
-
-def fraction(decimal: Decimal) -> Fraction:
-    """A decimal as the fraction it is."""
-    return Fraction(decimal)

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 from geographiclib.geodesic import Geodesic
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from engine.compare.distances import distances
@@ -181,6 +181,7 @@ def test_without_distances_nobody_is_nearest() -> None:
         usual_plan(week, Rule.SHARES)
 
 
+@settings(deadline=None)
 @given(weeks(), st.sampled_from([Rule.CHEAPEST, Rule.SHARES, Rule.ACTUAL]), st.data())
 def test_a_usual_plan_keeps_the_week_and_never_beats_the_plan(
     week: Week, rule: Rule, data: st.DataObject

@@ -1,0 +1,70 @@
+"""A bridge as a paragraph: how much dearer or cheaper, and why, the largest reasons first."""
+
+from collections.abc import Callable, Iterable
+from decimal import Decimal
+
+from engine.compare.bridge import Bridge, Step
+from engine.exact import canonical
+
+MOST_REASONS = 4
+
+Written = Callable[[Decimal], str]
+
+
+def paragraph(bridge: Bridge, money: Written | None = None, quantity: Written | None = None) -> str:
+    """The bridge in plain words.
+
+    money, quantity: how an amount and a quantity are written, unit and currency included
+    """
+    pay = money or (lambda value: f"{canonical(value)} {bridge.currency}")
+    much = quantity or (lambda value: f"{canonical(value)} {bridge.unit}")
+    said = [_headline(bridge, pay)]
+    reasons = [step for step in bridge.steps if step.freight and step.key != "rounding"]
+    if reasons:
+        reasons.sort(key=lambda step: -abs(step.freight))
+        said.append(f"{_listed(_reason(step, pay) for step in reasons[:MOST_REASONS])}.")
+        rest = [step.freight for step in bridge.steps if step not in reasons[:MOST_REASONS]]
+        if any(rest):
+            over = sum(rest, Decimal(0))
+            said.append(f"All else together comes to {_signed(over, pay)}.")
+    said += _service(bridge, pay, much)
+    if bridge.averaged:
+        said.append("Each reason is its average over all orders in which they could have come.")
+    return " ".join(said)
+
+
+def _headline(bridge: Bridge, pay: Written) -> str:
+    if not bridge.freight:
+        return f"{bridge.second} costs the same freight as {bridge.first}: {pay(bridge.second_freight)}."
+    word = "more" if bridge.freight > 0 else "less"
+    return (
+        f"{bridge.second} costs {pay(abs(bridge.freight))} {word} freight than {bridge.first}: "
+        f"{pay(bridge.second_freight)} after {pay(bridge.first_freight)}."
+    )
+
+
+def _reason(step: Step, pay: Written) -> str:
+    return f"{step.name} {'adds' if step.freight > 0 else 'takes away'} {pay(abs(step.freight))}"
+
+
+def _listed(reasons: Iterable[str]) -> str:
+    *first, last = list(reasons)
+    return f"{', '.join(first)} and {last}" if first else last
+
+
+def _service(bridge: Bridge, pay: Written, much: Written) -> Iterable[str]:
+    if bridge.short:
+        word = "more" if bridge.short > 0 else "less"
+        most = max(bridge.steps, key=lambda step: step.short * (1 if bridge.short > 0 else -1))
+        yield f"{much(abs(bridge.short))} {word} go short, most of it by {_lower(most.name)}."
+    if bridge.charges:
+        word = "more" if bridge.charges > 0 else "less"
+        yield f"Charges for short and unsent, which stand apart, come to {pay(abs(bridge.charges))} {word}."
+
+
+def _signed(value: Decimal, pay: Written) -> str:
+    return f"{pay(abs(value))} {'more' if value >= 0 else 'less'}"
+
+
+def _lower(name: str) -> str:
+    return name[:1].lower() + name[1:]
