@@ -83,6 +83,7 @@ def main() -> None:
         st.Page(HERE / "pages" / "compare.py", title="Compare", default=only_reads),
         st.Page(HERE / "pages" / "handover.py", title="Hand over"),
         st.Page(HERE / "pages" / "weeks.py", title="Weeks"),
+        st.Page(HERE / "pages" / "how_it_works.py", title="How it works"),
     ]
     if only_reads:
         left_out = TO_CHANGE if me.may_change else TO_CHANGE[:1]  # a manager finds weeks to read in the list

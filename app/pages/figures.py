@@ -5,13 +5,14 @@ from io import BytesIO
 import streamlit as st
 
 import engine
-import sample_data
 from app.access import answers
 from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
 from app.parts.products import File, keep_others, product_choice
 from app.parts.proposal import proposal
+from app.parts.sample import open_sample
 from app.parts.uploaded import keep, uploaded_panel
+from app.parts.welcome import welcome
 from app.parts.words import counted, plain
 from app.session import Desk, desk, read_files
 from engine.intake.answers import Answers
@@ -28,23 +29,6 @@ def blank_workbook() -> bytes:
     return written.getvalue()
 
 
-def welcome() -> None:
-    """What the tool does, for somebody who sees it for the first time."""
-    st.markdown(
-        "Hithe plans a freight desk's week: from what depots can send, what customers ordered and what "
-        "hauliers charge, it works out **who sends how much to whom at the least freight cost**, proves it, "
-        "and hands you the workbook."
-    )
-
-
-def open_sample(state: Desk) -> None:
-    reading, findings = read_files([sample_data.path(sample_data.SMALL_WEEK)])
-    if reading is None:
-        state.message = ("error", findings[0].message)
-    else:
-        state.open(reading)
-
-
 def opening(state: Desk) -> None:
     """Upload, sample and blank workbook; what is read is shown before it replaces a week."""
     files = st.file_uploader(
@@ -53,15 +37,18 @@ def opening(state: Desk) -> None:
         accept_multiple_files=True,
         key=f"upload-{state.uploads}",
     )
-    left, right, _ = st.columns([2, 2, 3])
-    if left.button(
-        "Open the sample week", width="stretch", type="primary" if state.week.is_empty else "secondary"
-    ):
-        open_sample(state)
-        st.rerun()
-    right.download_button(
-        "Blank workbook", blank_workbook, "hithe_week.xlsx", WORKBOOK, on_click="ignore", width="stretch"
-    )
+    with st.container(horizontal=True):
+        if st.button("Open the sample week"):
+            open_sample(state)
+            st.rerun()
+        st.download_button(
+            "Blank workbook",
+            blank_workbook,
+            "hithe_week.xlsx",
+            WORKBOOK,
+            on_click="ignore",
+            help="The headings that are read, each with a line on what it means, and no figures",
+        )
     if not files:
         return
     uploaded = [(file.name, file.getvalue()) for file in files]
@@ -140,7 +127,8 @@ if state.message:
     (st.error if kind == "error" else st.success)(plain(text))
     state.message = None
 if state.week.is_empty:
-    welcome()
+    welcome(state)
+    st.subheader("Your own week", anchor=False)
     opening(state)
 else:
     with st.expander("Open other figures"):

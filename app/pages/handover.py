@@ -38,7 +38,7 @@ if state.message:
     (st.error if kind == "error" else st.success)(plain(text))
     state.message = None
 if state.week.is_empty:
-    nothing_yet("There is no plan to hand over yet.")
+    nothing_yet(state, "There is no plan to hand over yet.")
 else:
     with prepared():
         plan = state.planned()

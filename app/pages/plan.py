@@ -18,7 +18,7 @@ from app.session import desk
 state = desk()
 st.title("Plan")
 if state.week.is_empty:
-    nothing_yet("There is no week to plan yet.")
+    nothing_yet(state, "There is no week to plan yet.")
 else:
     with prepared():
         plan = state.planned()

@@ -24,7 +24,7 @@ VIEWS = {
 state = desk()
 st.title("Reasons")
 if state.week.is_empty:
-    nothing_yet("There is no plan to ask about yet.")
+    nothing_yet(state, "There is no plan to ask about yet.")
 else:
     plan = state.planned()
     if plan is None:

@@ -19,6 +19,8 @@ ROW = 35
 MOST_ROWS = 5_000
 """A browser is given no more rows than this; the rest are counted below the table."""
 
+MANY_PLACES, OWN_PLACES = 4, -1
+
 Cell = str | Decimal | None
 
 
@@ -26,7 +28,8 @@ Cell = str | Decimal | None
 class Heading:
     """A column of a table; `about` is said beside it.
 
-    `places` fixes the decimals of its numbers; `money` shows as many as any of them needs, two at least.
+    `places` fixes the decimals of its numbers; `money` shows as many as any of them needs, two at least; but
+    where one needs very many, each shows its own.
     """
 
     name: str
@@ -81,7 +84,8 @@ def reasons_table(
 def _places(heading: Heading, cells: Sequence[Cell]) -> int | None:
     if not heading.money:
         return heading.places
-    return max(2, *(places_needed(cell) for cell in cells if isinstance(cell, Decimal)), 2)
+    most = max((places_needed(cell) for cell in cells if isinstance(cell, Decimal)), default=2)
+    return max(2, most) if most <= MANY_PLACES else OWN_PLACES
 
 
 def _sortable(cell: Cell) -> str | float | None:
@@ -90,4 +94,7 @@ def _sortable(cell: Cell) -> str | float | None:
 
 def _written(mark: str, places: int | None, value: float) -> str:
     """A number of the table; blank where there is none."""
-    return "" if value is None or isnan(value) else number(Decimal(repr(float(value))), mark, places)
+    if value is None or isnan(value):
+        return ""
+    exact = Decimal(repr(float(value)))
+    return number(exact, mark, max(2, places_needed(exact)) if places == OWN_PLACES else places)

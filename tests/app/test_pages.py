@@ -41,10 +41,18 @@ def test_every_page_stands_with_every_week(name: str, sample: str | None) -> Non
 
 def test_a_first_visitor_reaches_a_plan_of_the_sample_in_one_click() -> None:
     test = page("pages/figures.py", Desk())
-    next(button for button in test.button if button.label == "Open the sample week").click().run()
+    next(one for one in test.button if one.label == "See the plan of the sample week").click().run()
     assert not test.exception
-    test.switch_page("pages/plan.py").run()
+    assert [one.value for one in test.title] == ["Plan"]
     assert test.metric[0].value == "59,566.18"
+
+
+@pytest.mark.parametrize("name", [one for one in PAGES if "figures" not in one])
+def test_a_page_without_a_week_opens_the_sample_itself(name: str) -> None:
+    test = page(name, Desk())
+    next(one for one in test.button if one.label == "Open the sample week").click().run()
+    assert not test.exception
+    assert not [one for one in test.button if one.label == "Open the sample week"]
 
 
 def test_a_typed_quantity_is_held_and_undone() -> None:
@@ -88,7 +96,7 @@ def test_a_quantity_that_cannot_be_is_refused_in_words_and_the_week_stays() -> N
 def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None:
     state = with_sample()
     test = page("pages/figures.py", state)
-    key = f"depots-{state.generation}"
+    key = f"depots-{state.generation}-{state.grid("depots").again}"
     test.session_state[key] = {
         "edited_rows": {0: {"Available": "a lot"}},
         "added_rows": [],
