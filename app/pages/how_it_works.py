@@ -8,6 +8,7 @@ import streamlit as st
 from app.parts.small_example import BY_HAND, ORDERS, RATES, STOCK, small_example
 from app.parts.words import number
 from app.preparing import prepared
+from app.rights import person
 from app.session import desk
 
 PAGES = Path(__file__).parent
@@ -106,5 +107,6 @@ with right:
         "goods, temperature, site access or customs. Local codes and licensed practice decide those."
     )
     with st.container(horizontal=True):
-        st.page_link(PAGES / "figures.py", label="Open your figures")
+        if person().may_change and (state.kept is None or state.kept.may_change):
+            st.page_link(PAGES / "figures.py", label="Open your figures")
         st.page_link(PAGES / "plan.py", label="Go to the plan")

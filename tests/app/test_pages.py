@@ -96,7 +96,7 @@ def test_a_quantity_that_cannot_be_is_refused_in_words_and_the_week_stays() -> N
 def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None:
     state = with_sample()
     test = page("pages/figures.py", state)
-    key = f"depots-{state.generation}-{state.grid("depots").again}"
+    key = f"depots-{state.generation}-{state.grid('depots').again}"
     test.session_state[key] = {
         "edited_rows": {0: {"Available": "a lot"}},
         "added_rows": [],

@@ -192,6 +192,12 @@ def test_a_reader_sees_the_plan_and_changes_nothing(week_id: str) -> None:
     assert not totals_by_week(records()) or all(one.week.id != week_id for one in totals_by_week(records()))
 
 
+def test_a_reader_finds_out_how_it_works(week_id: str) -> None:
+    test = visit("pages/how_it_works.py", read=open_week(records(), week_id).listed.read_id)
+    assert not test.exception
+    assert [one.value for one in test.title] == ["How it works"]
+
+
 def test_a_failed_save_says_so_and_the_screen_keeps_what_is_on_disk(
     week_id: str, monkeypatch: pytest.MonkeyPatch
 ) -> None:
