@@ -4,7 +4,10 @@ from collections.abc import Callable
 
 import streamlit as st
 
+from app.parts.compare_bridge import bridge_view
+from app.parts.compare_summary import summary_view
 from app.parts.compare_usual import usual_view
+from app.parts.compare_weeks import weeks_view
 from app.parts.findings_panel import findings_panel
 from app.parts.nothing_yet import nothing_yet
 from app.parts.words import plain
@@ -15,7 +18,10 @@ from engine.planning.plan import Plan
 from engine.records import Missing, NotSaved
 
 VIEWS: dict[str, tuple[str, Callable[[Desk, Plan], None]]] = {
+    "summary": ("This week", summary_view),
     "usual": ("Usual plan", usual_view),
+    "bridge": ("Any two plans", bridge_view),
+    "weeks": ("Over time", weeks_view),
 }
 
 state = desk()

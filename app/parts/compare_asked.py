@@ -1,17 +1,155 @@
-"""Comparisons that were worked out once, kept for the plan in hand."""
+"""What the Compare page asks of the engine and the records, each worked out once and kept for everybody.
 
+What is kept goes by the versions of the weeks that it was worked out from, so that a change of either is
+worked out anew; a week that is in no records is kept in its own session.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from decimal import Decimal
+from typing import Any, TypeVar
+
+import streamlit as st
+
+from app.keeping import records
+from app.parts.change_words import words_of
 from app.parts.reasons_asked import asked
 from app.session import Desk
+from engine.compare.bridge import Bridge, Side, bridge
+from engine.compare.events import events_of
+from engine.compare.quantities import Priced
 from engine.compare.service import Saving, saving
-from engine.compare.usual import Rule, UsualPlan, usual_plan
+from engine.compare.usual import Rule, UsualPlan, rules_possible, usual_plan
+from engine.figures import RateKey
+from engine.intake.earlier import Quantities
+from engine.planning.near import sent_by
 from engine.planning.plan import Plan
+from engine.planning.planner import plan_week
+from engine.records import Issued, Listed, Missing, NotSaved, find_plan, open_week, usual_rule, week_before
+
+Answer = TypeVar("Answer")
+Key = tuple[Any, ...]
 
 
-def usual_of(state: Desk, plan: Plan, rule: Rule) -> tuple[UsualPlan, Saving]:
-    """The usual plan by a rule, and what the plan saves against it."""
+@dataclass(frozen=True)
+class Point:
+    """One end of a comparison: a week in the records at a version, or an issued plan of it.
+
+    number: of the issued plan, 0 for the week as it stands
+    """
+
+    week_id: str
+    name: str
+    version: int
+    number: int = 0
+
+
+@st.cache_resource(show_spinner=False, max_entries=64)
+def _shared(key: Key, _work: Callable[[], Any]) -> Any:
+    return _work()
+
+
+def kept(state: Desk, plan: Plan, key: Key, work: Callable[[], Answer]) -> Answer:
+    """The answer to a question about the plan on the desk, worked out once for all sessions."""
+    own = own_key(state)
+    if own is None:
+        return asked(plan, key, work)
+    found: Answer = _shared((*own, *key), work)
+    return found
+
+
+def own_key(state: Desk) -> Key | None:
+    """What the plan on the desk goes by: its week, version and the plan it stays near to."""
+    if state.kept is None or state.kept.saved != len(state.history.entries):
+        return None
+    issued = 0 if state.issued is None else state.issued.number
+    return state.kept.records.where, state.kept.week_id, state.kept.saved, issued
+
+
+def last_week(state: Desk) -> Point | None:
+    """Where last week ended: its plan issued last, or the week as it stands; None where there is none."""
+    if state.kept is None:
+        return None
+    before = week_before(records(), state.kept.week_id)
+    return None if before is None else latest_of(before)
+
+
+def latest_of(listed: Listed) -> Point:
+    """The plan of a week that was issued last, or the week as it stands."""
+    try:
+        issued = find_plan(records(), listed.id)
+    except Missing:
+        return Point(listed.id, listed.name, listed.version)
+    return Point(listed.id, listed.name, issued.version, issued.number)
+
+
+def side_of(point: Point, since: int | None = None) -> Side:
+    """The plan at a point with its week, planned where it was not issued.
+
+    since: a version; the changes from there on are events of their own. None: those from the first on
+    """
+    opened = open_week(records(), point.week_id)
+    history = opened.history
+    week = history.week if point.version == len(history.entries) else history.at(point.version)
+    plan: Priced = find_plan(records(), point.week_id, point.number) if point.number else plan_week(week)
+    before, events = events_of(history, words_of, since or 0, point.version)
+    return Side(point.name, week, plan, before, events)
+
+
+def change_from(state: Desk, plan: Plan, point: Point, average: bool = False) -> Bridge:
+    """Why the plan on the desk costs other than the one at a point."""
+    here = state.kept is not None and state.kept.week_id == point.week_id
+
+    def work() -> Bridge:
+        before, events = events_of(state.history, words_of, point.version if here else 0)
+        return bridge(
+            side_of(point), Side(plan.week.rules.week, plan.week, plan, before, events), average=average
+        )
+
+    return kept(state, plan, ("bridge", point, average), work)
+
+
+def between(first: Point, second: Point, average: bool = False) -> Bridge:
+    """Why the plan at one point costs other than the one at another."""
+
+    def work() -> Bridge:
+        since = first.version if first.week_id == second.week_id else None
+        return bridge(side_of(first), side_of(second, since), average=average)
+
+    found: Bridge = _shared(("between", records().where, first, second, average), work)
+    return found
+
+
+def desk_rule(state: Desk, plan: Plan) -> Rule:
+    """The rule that this desk goes by: what it said, else the first that the figures allow."""
+    possible = rules_possible(plan.week, plan.model)
+    try:
+        said = usual_rule(records()) if state.kept is not None else st.session_state.get("usual-rule", "")
+    except NotSaved:
+        said = ""
+    wanted = [rule for rule in Rule if rule.value == said]
+    return wanted[0] if wanted and (wanted[0] in possible or wanted[0] is Rule.SHARES) else possible[0]
+
+
+def usual_of(
+    state: Desk, plan: Plan, rule: Rule, sent: Quantities | None = None
+) -> tuple[UsualPlan, Saving]:
+    """The usual plan by a rule, and what the plan saves against it.
+
+    sent: the plan as it was sent; for shares the last week's is taken
+    """
+    point = last_week(state) if rule is Rule.SHARES else None
+    key = ("usual", rule, point, None if sent is None else tuple(sent.items()))
 
     def work() -> tuple[UsualPlan, Saving]:
-        usual = usual_plan(plan.week, rule)
+        went = sent if point is None else _sent(side_of(point).plan)
+        usual = usual_plan(plan.week, rule, went)
         return usual, saving(plan, usual.costs)
 
-    return asked(plan, ("usual", rule), work)
+    return kept(state, plan, key, work)
+
+
+def _sent(plan: Priced) -> dict[RateKey, Decimal]:
+    if isinstance(plan, Plan):
+        return dict(sent_by(plan))
+    return dict(plan.quantities) if isinstance(plan, Issued) else {}

@@ -50,6 +50,19 @@ class Costed:
         return "short" if self.short else "met"
 
 
+def costs_of(plan: Priced) -> Costed:
+    """The quantities and costs of a plan, without all that it was worked out from."""
+    return Costed(
+        plan.shipments,
+        plan.short,
+        plan.unsent,
+        plan.freight_cost,
+        plan.freight_payable,
+        plan.short_cost,
+        plan.unsent_cost,
+    )
+
+
 def costed(week: Week, model: Model, sent: Integers) -> Costed:
     """What these quantities cost; what has gone stands in front, as in a plan.
 

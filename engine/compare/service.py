@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 from decimal import Decimal
 from types import MappingProxyType
 
-from engine.compare.quantities import Priced
+from engine.compare.quantities import Costed, Priced, costs_of
 from engine.exact import canonical, total_of
 from engine.figures import Order
 from engine.money import round_half_up
@@ -55,7 +55,7 @@ class Saving:
     freight: Decimal
     per_unit: Decimal | None
     equal: bool
-    against: Priced
+    against: Costed
     charges: Decimal
     differs: tuple[str, ...]
     lanes: tuple[LaneSaving, ...]
@@ -68,7 +68,7 @@ def saving(plan: Plan, other: Priced) -> Saving:
         NotPlannable: the other's service cannot be planned, so it does not keep the week's limits and holds.
     """
     differs = tuple(_differences(plan, other))
-    against: Priced = plan if not differs else plan_week(with_service(plan.week, other))
+    against = costs_of(plan if not differs else plan_week(with_service(plan.week, other)))
     freight = total_of((other.freight_payable, -against.freight_payable))
     delivered = total_of(one.quantity for one in other.shipments)
     return Saving(
