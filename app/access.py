@@ -1,6 +1,7 @@
 """Weeks as far as whoever works here may see them: pages open, list, copy and archive through these alone."""
 
 from dataclasses import replace
+from datetime import datetime
 
 import streamlit as st
 
@@ -8,6 +9,7 @@ from app.kept import READING_ONLY
 from app.rights import person
 from engine.intake.answers import Answers
 from engine.records import (
+    Issued,
     Listed,
     Missing,
     NotSaved,
@@ -17,6 +19,8 @@ from engine.records import (
     archive_week,
     copy_week,
     default_place,
+    find_plan,
+    list_plans,
     list_weeks,
     load_answers,
     open_records,
@@ -24,6 +28,7 @@ from engine.records import (
     restore_as_new,
     save_answers,
     totals_by_week,
+    week_before,
 )
 from engine.records.journal import NO_SUCH_WEEK
 from engine.week import Refused
@@ -99,6 +104,30 @@ def put_away(week_id: str, archived: bool = True) -> None:
         Refused: the person may only read.
     """
     archive_week(records(), _changeable(week_id).listed.id, archived)
+
+
+def before(week_id: str) -> Listed | None:
+    """The week that the person may open before this one; none where weeks open by their addresses alone."""
+    me = person()
+    found = week_before(records(), week_id) if me.may_list else None
+    return found if found is not None and me.may_open(found.desk) else None
+
+
+def plans_of(week: Listed) -> list[tuple[int, datetime, str, str]]:
+    """Number, time, person and note of every plan that was issued of a week that was listed."""
+    return list_plans(records(), week.id) if person().may_open(week.desk) else []
+
+
+def issued_of(week: Listed, number: int | None = None) -> Issued:
+    """An issued plan of a week that was listed, by its number or (None) the latest.
+
+    Raises:
+        Missing: no such plan was issued, or the week is another desk's.
+        NotSaved: the records cannot be read.
+    """
+    if not person().may_open(week.desk):
+        raise Missing(NO_SUCH_WEEK)
+    return find_plan(records(), week.id, number)
 
 
 def answers() -> Answers:

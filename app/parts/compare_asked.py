@@ -5,13 +5,14 @@ worked out anew; a week that is in no records is kept in its own session.
 """
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
+from types import MappingProxyType
 from typing import Any, TypeVar
 
 import streamlit as st
 
-from app.keeping import records
+from app.access import answers, before, issued_of, learn, opened
 from app.parts.change_words import words_of
 from app.parts.reasons_asked import asked
 from app.session import Desk
@@ -25,7 +26,10 @@ from engine.intake.earlier import Quantities
 from engine.planning.near import sent_by
 from engine.planning.plan import Plan
 from engine.planning.planner import plan_week
-from engine.records import Issued, Listed, Missing, NotSaved, find_plan, open_week, usual_rule, week_before
+from engine.records import Issued, Listed, Missing
+
+USUAL_PLAN = "usual plan"
+"""What the desk's answer goes by: how it would have planned without the tool."""
 
 Answer = TypeVar("Answer")
 Key = tuple[Any, ...]
@@ -38,10 +42,14 @@ class Point:
     number: of the issued plan, 0 for the week as it stands
     """
 
-    week_id: str
+    week: Listed
     name: str
     version: int
     number: int = 0
+
+    @property
+    def key(self) -> Key:
+        return self.week.id, self.name, self.version, self.number
 
 
 @st.cache_resource(show_spinner=False, max_entries=64)
@@ -68,19 +76,17 @@ def own_key(state: Desk) -> Key | None:
 
 def last_week(state: Desk) -> Point | None:
     """Where last week ended: its plan issued last, or the week as it stands; None where there is none."""
-    if state.kept is None:
-        return None
-    before = week_before(records(), state.kept.week_id)
-    return None if before is None else latest_of(before)
+    found = None if state.kept is None else before(state.kept.week_id)
+    return None if found is None else latest_of(found)
 
 
 def latest_of(listed: Listed) -> Point:
     """The plan of a week that was issued last, or the week as it stands."""
     try:
-        issued = find_plan(records(), listed.id)
+        issued = issued_of(listed)
     except Missing:
-        return Point(listed.id, listed.name, listed.version)
-    return Point(listed.id, listed.name, issued.version, issued.number)
+        return Point(listed, listed.name, listed.version)
+    return Point(listed, listed.name, issued.version, issued.number)
 
 
 def side_of(point: Point, since: int | None = None) -> Side:
@@ -88,58 +94,63 @@ def side_of(point: Point, since: int | None = None) -> Side:
 
     since: a version; the changes from there on are events of their own. None: those from the first on
     """
-    opened = open_week(records(), point.week_id)
-    history = opened.history
+    history = opened(point.week.id).history
     week = history.week if point.version == len(history.entries) else history.at(point.version)
-    plan: Priced = find_plan(records(), point.week_id, point.number) if point.number else plan_week(week)
-    before, events = events_of(history, words_of, since or 0, point.version)
-    return Side(point.name, week, plan, before, events)
+    plan: Priced = issued_of(point.week, point.number) if point.number else plan_week(week)
+    figures, events = events_of(history, words_of, since or 0, point.version)
+    return Side(point.name, week, plan, figures, events)
 
 
 def change_from(state: Desk, plan: Plan, point: Point, average: bool = False) -> Bridge:
     """Why the plan on the desk costs other than the one at a point."""
-    here = state.kept is not None and state.kept.week_id == point.week_id
+    here = state.kept is not None and state.kept.week_id == point.week.id
 
     def work() -> Bridge:
-        before, events = events_of(state.history, words_of, point.version if here else 0)
+        figures, events = events_of(state.history, words_of, point.version if here else 0)
         return bridge(
-            side_of(point), Side(plan.week.rules.week, plan.week, plan, before, events), average=average
+            side_of(point), Side(plan.week.rules.week, plan.week, plan, figures, events), average=average
         )
 
-    return kept(state, plan, ("bridge", point, average), work)
+    return kept(state, plan, ("bridge", point.key, average), work)
 
 
 def between(first: Point, second: Point, average: bool = False) -> Bridge:
     """Why the plan at one point costs other than the one at another."""
 
     def work() -> Bridge:
-        since = first.version if first.week_id == second.week_id else None
+        since = first.version if first.week.id == second.week.id else None
         return bridge(side_of(first), side_of(second, since), average=average)
 
-    found: Bridge = _shared(("between", records().where, first, second, average), work)
+    found: Bridge = _shared(("between", first.key, second.key, average), work)
     return found
 
 
 def desk_rule(state: Desk, plan: Plan) -> Rule:
     """The rule that this desk goes by: what it said, else the first that the figures allow."""
     possible = rules_possible(plan.week, plan.model)
-    try:
-        said = usual_rule(records()) if state.kept is not None else st.session_state.get("usual-rule", "")
-    except NotSaved:
-        said = ""
+    said = answers().to(USUAL_PLAN, "")
     wanted = [rule for rule in Rule if rule.value == said]
     return wanted[0] if wanted and (wanted[0] in possible or wanted[0] is Rule.SHARES) else possible[0]
 
 
-def usual_of(
-    state: Desk, plan: Plan, rule: Rule, sent: Quantities | None = None
-) -> tuple[UsualPlan, Saving]:
+def remember_rule(rule: Rule) -> None:
+    """Let the desk go by this rule from now on.
+
+    Raises:
+        NotSaved: it could not be written.
+        Refused: the person may only read.
+    """
+    given = {**answers().given, (USUAL_PLAN, ""): rule.value}
+    learn(replace(answers(), given=MappingProxyType(given)), answers())
+
+
+def usual_of(state: Desk, plan: Plan, rule: Rule, sent: Quantities | None = None) -> tuple[UsualPlan, Saving]:
     """The usual plan by a rule, and what the plan saves against it.
 
     sent: the plan as it was sent; for shares the last week's is taken
     """
     point = last_week(state) if rule is Rule.SHARES else None
-    key = ("usual", rule, point, None if sent is None else tuple(sent.items()))
+    key = ("usual", rule, None if point is None else point.key, None if sent is None else tuple(sent.items()))
 
     def work() -> tuple[UsualPlan, Saving]:
         went = sent if point is None else _sent(side_of(point).plan)

@@ -2,7 +2,7 @@
 
 import streamlit as st
 
-from app.keeping import records
+from app.access import issued_of, listed, plans_of
 from app.parts.compare_asked import Point, between
 from app.parts.compare_charts import waterfall
 from app.parts.reasons_table import Cell, Heading, reasons_table
@@ -14,9 +14,9 @@ from engine.compare.mixed import NotComparable
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable
-from engine.records import list_plans, list_weeks
+from engine.records import Listed
 
-MOST_REMARKS = 8
+MOST_REMARKS, MOST_WEEKS = 8, 30
 
 
 def bridge_shown(state: Desk, found: Bridge, key: str) -> None:
@@ -73,7 +73,7 @@ def bridge_view(state: Desk, plan: Plan) -> None:
         st.info("There is only one plan in the records: a second week, or an issued plan, can be compared.")
         return
     names = list(points)
-    here = [name for name in names if state.kept is not None and points[name].week_id == state.kept.week_id]
+    here = [name for name in names if state.kept is not None and points[name].week.id == state.kept.week_id]
     second = names.index(here[0]) if here else 0
     first = next((n for n in range(len(names)) if n != second and names[n] not in here), int(second == 0))
     with st.container(horizontal=True, vertical_alignment="bottom"):
@@ -101,23 +101,17 @@ def bridge_view(state: Desk, plan: Plan) -> None:
 def points_of(state: Desk) -> dict[str, Point]:
     """The plans that can be compared, by what they are called: the latest weeks first."""
     found: dict[str, Point] = {}
-    for listed in list_weeks(records(), limit=30):
-        called = listed.name
-        while called in found:
-            called = f"{listed.name} ({listed.created:%d %b %Y %H:%M:%S})" if called == listed.name else called + "'"
-        found[called] = Point(listed.id, listed.name, listed.version)
-        for number, issued, who, note in list_plans(records(), listed.id):
+    for week in listed("", False, MOST_WEEKS):
+        called = week.name if week.name not in found else f"{week.name} ({week.created:%d %b %Y %H:%M:%S})"
+        found[called] = Point(week, week.name, week.version)
+        for number, issued, who, note in plans_of(week):
             about = ", ".join(part for part in (f"{issued:%a %d %b %H:%M}", who, note) if part)
-            name = f"{listed.name}, plan {number}"
             label = f"{called}, plan {number} ({about})"
-            version = _version(listed.id, number)
-            found[label] = Point(listed.id, name, version, number)
+            found[label] = Point(week, f"{week.name}, plan {number}", _version(week.id, number, week), number)
     return found
 
 
 @st.cache_data(show_spinner=False, max_entries=500)
-def _version(week_id: str, number: int) -> int:
+def _version(week_id: str, number: int, _week: Listed) -> int:
     """Of an issued plan, which never changes."""
-    from engine.records import find_plan
-
-    return find_plan(records(), week_id, number).version
+    return issued_of(_week, number).version

@@ -39,7 +39,8 @@ def waterfall(bridge: Bridge, mark: str) -> None:
     moves = base.transform_filter(f"datum.kind != '{END}'")
     bars = moves.mark_bar(height=16, strokeWidth=2).encode(
         x=across, x2="high:Q", y=down,
-        fill=alt.Fill("kind:N", legend=None, scale=alt.Scale(domain=[UP, DOWN], range=[tones.tones[1], tones.halo])),
+        fill=alt.Fill("kind:N", legend=None,
+                      scale=alt.Scale(domain=[UP, DOWN], range=[tones.tones[1], tones.halo])),
         stroke=alt.Stroke("kind:N", legend=None,
                           scale=alt.Scale(domain=[UP, DOWN], range=[tones.tones[1], tones.tones[0]])),
         tooltip=[alt.Tooltip("label:N", title="Step"), alt.Tooltip("written:N", title=bridge.currency)],
@@ -107,7 +108,9 @@ def _apart(labels: Sequence[str]) -> list[str]:
     return found
 
 
-def figures_by_week(names: Sequence[str], values: Sequence[Decimal], title: str, mark: str, places: int) -> None:
+def figures_by_week(
+    names: Sequence[str], values: Sequence[Decimal], title: str, mark: str, places: int
+) -> None:
     """One figure a week as a line with its numbers beside the points."""
     tones = colours(st.context.theme.type)
     frame = pd.DataFrame(

@@ -44,7 +44,9 @@ def _this_week(state: Desk, plan: Plan) -> None:
         per_unit = round_half_up(plan.freight_payable / sums.delivered, 2)
         each = f", {number(per_unit, mark, 2)} {plain(rules.currency)} per {plain(rules.unit)}"
     st.caption(f"{number(sums.delivered, mark)} {plain(rules.unit)} delivered{each}.")
-    short = f"{number(sums.short, mark)} {plain(rules.unit)} of {number(sums.ordered, mark)} ordered go short."
+    short = (
+        f"{number(sums.short, mark)} {plain(rules.unit)} of {number(sums.ordered, mark)} ordered go short."
+    )
     st.caption(short if plan.short else "Every order is met.")
 
 

@@ -2,21 +2,70 @@
 
 import streamlit as st
 
-from app.parts.compare_asked import usual_of
+import engine
+from app.parts.compare_asked import desk_rule, remember_rule, usual_of
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import money, number, plain
 from app.session import Desk
 from engine.compare.service import Saving
-from engine.compare.usual import Rule, UsualPlan
+from engine.compare.usual import NoRule, Rule, UsualPlan, rules_possible
+from engine.intake.earlier import Quantities
 from engine.money import minor_places
 from engine.planning.plan import Plan
+from engine.planning.planner import NotPlannable
+
+TYPES = ["xlsx", "xlsm", "xls", "xlsb", "ods", "csv", "tsv", "txt"]
+SENT = "usual-sent"
 
 
 def usual_view(state: Desk, plan: Plan) -> None:
-    """The saving against the usual plan of this desk."""
-    found = usual_of(state, plan, Rule.CHEAPEST)
+    """How the desk would have planned, and what the plan saves against that."""
+    rule = _rule(state, plan)
+    sent = _sent(state) if rule is Rule.ACTUAL else None
+    if rule is Rule.ACTUAL and sent is None:
+        return
+    try:
+        found = usual_of(state, plan, rule, sent)
+    except NoRule as failure:
+        st.info(plain(str(failure)))
+        return
+    except NotPlannable as failure:
+        st.error(plain(f"With the service of that plan the week cannot be planned. {failure}"))
+        return
     saving_line(state, plan, *found)
     lanes_table(state, plan, found[1])
+
+
+def _rule(state: Desk, plan: Plan) -> Rule:
+    """The rule that is chosen; what somebody chooses who may change the week, the desk remembers."""
+    said = desk_rule(state, plan)
+    rules = [*rules_possible(plan.week, plan.model), Rule.SHARES, Rule.ACTUAL]
+    chosen = st.segmented_control(
+        "The usual way", rules, default=said, required=True, key="usual-chosen",
+        format_func=lambda rule: rule.words[:1].upper() + rule.words[1:], label_visibility="collapsed",
+    ) or said  # fmt: skip
+    if chosen is not said and chosen is not Rule.ACTUAL and state.kept is not None and state.kept.may_change:
+        remember_rule(chosen)
+    return chosen
+
+
+def _sent(state: Desk) -> Quantities | None:
+    """The plan as it was sent, from an uploaded list; kept for this session and this week."""
+    file = st.file_uploader(
+        "The plan as it was sent: a plan workbook, or a list of Depot, Customer and Quantity",
+        type=TYPES,
+        key=f"sent-{state.uploads}",
+    )
+    held: tuple[int, Quantities] | None = st.session_state.get(SENT)
+    if file is None:
+        return held[1] if held is not None and held[0] == state.uploads else None
+    try:
+        read = engine.read_quantities((file.name, file.getvalue()), state.style)
+    except engine.Unreadable as refused:
+        st.error(f"{plain(refused.finding.message)} {plain(refused.finding.mend)}")
+        return None
+    st.session_state[SENT] = (state.uploads, read)
+    return read
 
 
 def saving_line(state: Desk, plan: Plan, usual: UsualPlan, found: Saving) -> None:

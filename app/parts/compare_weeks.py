@@ -5,13 +5,13 @@ from decimal import Decimal
 import pandas as pd
 import streamlit as st
 
-from app.keeping import records
+from app.access import totals
 from app.parts.compare_charts import figures_by_week
 from app.parts.words import money, number, quantity
 from app.session import Desk
 from engine.money import minor_places, round_half_up
 from engine.planning.plan import Plan
-from engine.records import WeekTotals, totals_by_week
+from engine.records import WeekTotals
 
 PLACES = 4
 
@@ -19,11 +19,7 @@ PLACES = 4
 def weeks_view(state: Desk, plan: Plan) -> None:
     """The latest weeks in this unit and currency as lines, and the same as a table."""
     rules, mark = plan.week.rules, state.decimal_mark
-    found = [
-        one
-        for one in totals_by_week(records())
-        if (one.week.unit, one.week.currency) == (rules.unit, rules.currency)
-    ]
+    found = [one for one in totals() if (one.week.unit, one.week.currency) == (rules.unit, rules.currency)]
     if not found:
         st.caption("No week in this unit and currency was planned yet: they stand here once one is.")
         return
@@ -31,10 +27,18 @@ def weeks_view(state: Desk, plan: Plan) -> None:
     minor = minor_places(rules.currency)
     left, right = st.columns(2, gap="medium")
     with left:
-        figures_by_week(names, [one.freight_payable for one in found], f"Freight payable, {rules.currency}", mark, minor)
+        figures_by_week(
+            names, [one.freight_payable for one in found], f"Freight payable, {rules.currency}", mark, minor
+        )
         figures_by_week(names, [one.delivered for one in found], f"Delivered, {rules.unit}", mark, 1)
     with right:
-        figures_by_week(names, [per_unit(one) for one in found], f"Freight per unit, {rules.currency} per {rules.unit}", mark, 2)
+        figures_by_week(
+            names,
+            [per_unit(one) for one in found],
+            f"Freight per unit, {rules.currency} per {rules.unit}",
+            mark,
+            2,
+        )
         figures_by_week(names, [one.short for one in found], f"Short, {rules.unit}", mark, 1)
     st.dataframe(_table(found, mark), hide_index=True, key="weeks-over-time")
 

@@ -18,36 +18,42 @@ from engine.intake.refusal import Unreadable
 Quantities = Mapping[RateKey, Decimal]
 """What went, or was to go, on each rate row."""
 
-_NEEDED = ("depot", "customer", folded(SEND.heading))
+_QUANTITY = (folded(SEND.heading), "quantity")
+"""What the quantity is headed by: in a workbook of ours, and in a plain list."""
 
 
 def read_quantities(source: Source, style: NumberStyle | None = None) -> Quantities:
     """What an earlier plan sends on each rate row.
 
     source: a workbook that `engine.write_workbook` wrote, or any sheet with the headings Depot, Customer
-        and Send (Haulier besides)
+        and Send or Quantity (Haulier besides)
 
     Raises:
         Unreadable: the file cannot be read, or no sheet in it has these headings.
     """
-    for sheet in read_sheets(source):
-        for number, row in enumerate(sheet.rows):
-            places = {
-                folded(text_of(cell)): place for place, cell in enumerate(row) if cell not in (None, "")
-            }
-            if all(heading in places for heading in _NEEDED):
-                return _quantities(sheet, number, places, style or NumberStyle())
+    sheets = read_sheets(source)
+    for quantity in _QUANTITY:
+        for sheet in sheets:
+            for number, row in enumerate(sheet.rows):
+                places = {
+                    folded(text_of(cell)): place for place, cell in enumerate(row) if cell not in (None, "")
+                }
+                if all(heading in places for heading in ("depot", "customer", quantity)):
+                    column = places[quantity]
+                    return _quantities(sheet, number, places, column, style or NumberStyle())
     raise Unreadable(
         Finding(
             Severity.STOPS,
             "no plan",
-            "There is no plan in this file: no sheet has the headings Depot, Customer and Send.",
-            "Give a workbook that this tool wrote.",
+            "There is no plan in this file: no sheet has the headings Depot, Customer, Send.",
+            "Give a workbook that this tool wrote, or a list with these (Quantity will do for Send).",
         )
     )
 
 
-def _quantities(sheet: Sheet, head: int, places: Mapping[str, int], style: NumberStyle) -> Quantities:
+def _quantities(
+    sheet: Sheet, head: int, places: Mapping[str, int], column: int, style: NumberStyle
+) -> Quantities:
     found: dict[RateKey, Decimal] = {}
     seen: Counter[tuple[str, str, str | None]] = Counter()
     haulier_at = places.get("haulier")
@@ -57,7 +63,6 @@ def _quantities(sheet: Sheet, head: int, places: Mapping[str, int], style: Numbe
             continue
         lane = (depot, customer, (None if haulier_at is None else _text(row, haulier_at)) or None)
         seen[lane] += 1
-        column = places[folded(SEND.heading)]
         quantity, finding = read_number(row[column], style, "quantity")
         if quantity is None:
             read = text_of(row[column])

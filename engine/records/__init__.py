@@ -8,7 +8,7 @@ again = open_week(records, opened.listed.id)                    # again.history.
 """
 
 from engine.records.answers import load_answers, save_answers
-from engine.records.before import keep_usual_rule, usual_rule, week_before
+from engine.records.before import week_before
 from engine.records.failures import Missing, NotSaved
 from engine.records.journal import Conflict, Made, append, changes_since, version_of
 from engine.records.merging import Clash, Merged, caught_up, merge, save
@@ -48,7 +48,6 @@ __all__ = [
     "default_place",
     "find_plan",
     "issue_plan",
-    "keep_usual_rule",
     "latest_number",
     "list_plans",
     "list_weeks",
@@ -62,7 +61,6 @@ __all__ = [
     "save_answers",
     "save_remarks",
     "totals_by_week",
-    "usual_rule",
     "version_of",
     "week_before",
 ]
