@@ -4,10 +4,11 @@ from collections.abc import Iterable, Iterator, Sequence
 from typing import Any
 
 from engine.findings import Finding, Severity
-from engine.intake.cells import Sheet, address
+from engine.intake.cells import Sheet, address, column_letters
 from engine.intake.fields import text_of
 from engine.intake.grids import Grid
 from engine.intake.headings import COLUMNS_OF, TITLES, column_of, field_of
+from engine.intake.names import folded
 from engine.intake.numbers import is_blank
 from engine.intake.products import product_column
 from engine.intake.recognise import Found, Partial, Table
@@ -16,12 +17,23 @@ from engine.intake.remarks import Counts, counted
 WHICH_COLUMN = "which column"
 LEAVE_OUT = "none of these"
 
+_STOPPED = frozenset(
+    {"cancelled", "canceled", "closed", "blocked", "void", "on hold", "stopped", "deleted", "rejected"}
+)
+"""Words that say of a row that it does not count."""
+
 Area = tuple[int, int, int, int]
 """First row, row after the last, first column, last column."""
 
 
-def about_sheets(found: Found, grids: Sequence[Grid]) -> tuple[list[Finding], Counts]:
-    """Findings on sheets and on cells that belong to no table, with the rows that they name."""
+def about_sheets(
+    found: Found, grids: Sequence[Grid], no_rates: Sequence[Grid] = ()
+) -> tuple[list[Finding], Counts]:
+    """Findings on sheets and on cells that belong to no table, with the rows that they name.
+
+    no_rates: grids whose titles say that they hold something else than rates
+    """
+    others = {id(grid.sheet): grid for grid in no_rates}
     findings = list(_plans(found.plans))
     counts = Counts()
     in_grids = {id(grid.sheet) for grid in grids}
@@ -38,7 +50,9 @@ def about_sheets(found: Found, grids: Sequence[Grid]) -> tuple[list[Finding], Co
     for sheet in found.others:
         rows = 0 if id(sheet) in in_grids | partly else sum(not _blank_row(row) for row in sheet.rows)
         if rows:
-            findings.append(_not_understood(sheet, rows))
+            findings.append(
+                _no_rates(others[id(sheet)], rows) if id(sheet) in others else _not_understood(sheet, rows)
+            )
             counts = counts.plus(Counts(rows, 0, rows))
     areas: dict[int, tuple[Sheet, list[Area]]] = {}
     for table in found.tables:
@@ -73,12 +87,15 @@ def about_headings(tables: Iterable[Table]) -> Iterator[Finding]:
             if taken is not None and taken in table.columns:
                 yield _second_column(table, column, taken)
                 continue
+            words = {folded(text_of(row[column])) for row in rows if isinstance(row[column], str)}
+            stopped = sorted(words & _STOPPED)
             free = tuple(c.heading for c in COLUMNS_OF[table.kind] if c.field not in table.columns)
             what = f"The column '{text}'" if text else "A column without a heading"
             yield Finding(
-                Severity.NOTE,
+                Severity.CHECK if stopped else Severity.NOTE,
                 WHICH_COLUMN,
-                f"{what} on {TITLES[table.kind]} is none that is known; it was not read.",
+                f"{what} on {TITLES[table.kind]} is none that is known; it was not read"
+                + (f", though it says '{stopped[0]}' of some rows." if stopped else "."),
                 "Say which column it is, or leave it." if text else "Give it a heading if it holds figures.",
                 table.sheet.file,
                 table.sheet.name,
@@ -122,6 +139,17 @@ def _hidden(sheet: Sheet) -> Iterator[Finding]:
     rows = sorted(
         row for row in sheet.hidden_rows if row < len(sheet.rows) and not _blank_row(sheet.rows[row])
     )
+    columns = sorted(
+        column
+        for column in sheet.hidden_columns
+        if column < sheet.width and any(not is_blank(row[column]) for row in sheet.rows)
+    )
+    if columns:
+        which = ", ".join(column_letters(column) for column in columns[:5]) + (
+            " …" if len(columns) > 5 else ""
+        )
+        message = f"Hidden columns of sheet '{sheet.name}' were read: {which}."
+        yield _note(sheet, "hidden columns", message, address(0, columns[0]))
     if rows:
         which = ", ".join(str(row + 1) for row in rows[:5]) + (" …" if len(rows) > 5 else "")
         message = f"Hidden rows of sheet '{sheet.name}' were read: {which}."
@@ -169,8 +197,16 @@ def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:
         rows += not here
     if not places:
         return [], 0
+    cut = next((place for place in places if sheet.is_text and _is_cut(sheet, place, areas)), None)
+    if cut is not None:
+        places.insert(0, cut)
     first, column = places[0]
     text = text_of(sheet.rows[first][column])[:60]
+    if cut is not None:
+        message = f"Row {first + 1} has a cell more than there are headings, '{text}'."
+        mend = "Where a comma within a figure cut it in two, save the file with semicolons or as .xlsx."
+        where = sheet.file, sheet.name, address(first, column)
+        return [Finding(Severity.STOPS, "too many cells", message, mend, *where, text, rows)], rows
     return [
         Finding(
             Severity.CHECK if numbers else Severity.NOTE,
@@ -185,6 +221,13 @@ def _outside(sheet: Sheet, areas: Sequence[Area]) -> tuple[list[Finding], int]:
             rows,
         )
     ], rows
+
+
+def _is_cut(sheet: Sheet, place: tuple[int, int], areas: Sequence[Area]) -> bool:
+    """Whether digits stand right behind the last column of a table in a text file, below no heading."""
+    row, column = place
+    text = text_of(sheet.rows[row][column])
+    return text.isdigit() and any(a[0] < row < a[1] and a[3] + 1 == column for a in areas)
 
 
 def _missing_heading(partial: Partial, rows: int) -> Finding:
@@ -204,6 +247,21 @@ def _missing_heading(partial: Partial, rows: int) -> Finding:
         rows,
         f"{partial.kind}: {unknown[0]}" if unknown else "",
         tuple(partial.missing) if unknown else (),
+    )
+
+
+def _no_rates(grid: Grid, rows: int) -> Finding:
+    sheet = grid.sheet
+    return Finding(
+        Severity.CHECK,
+        "no rates in the grid",
+        f"By its title, '{grid.title[:60]}', the grid on '{sheet.name}' holds no rates; it was not read.",
+        "Name the sheet Rates, or write Rate into the grid's corner, if it does.",
+        sheet.file,
+        sheet.name,
+        address(grid.head, grid.side),
+        grid.title[:60],
+        rows=rows,
     )
 
 

@@ -11,8 +11,9 @@ from engine.intake.build_lists import Built, Unused, build_customers, build_depo
 from engine.intake.build_rates import build_rates
 from engine.intake.build_rules import build_rules, stated_by
 from engine.intake.cells import Sheet
+from engine.intake.dittos import NAME_FIELDS, about_dittos
 from engine.intake.fields import text_of
-from engine.intake.grids import Grid, find_grid
+from engine.intake.grids import Grid, find_grid, may_be_rates
 from engine.intake.headings import COLUMNS_OF, TITLES
 from engine.intake.manner import in_words, manner_of
 from engine.intake.names import folded
@@ -70,7 +71,7 @@ def build_figures(
         sheets = left
         found = _found(sheets, taught, columns, known)
     of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
-    grids = _grids(found, of, sheets, known)
+    grids, no_rates = _grids(found, of, sheets, known)
     stated = stated_by(of["rules"], answers)
     if known is not None:
         stated = {"unit": known.rules.unit, "currency": known.rules.currency, **stated}
@@ -91,7 +92,7 @@ def build_figures(
         settings = replace(settings, week=week_of_product(settings.week, product))
     week = Week.of(depots.records, spelled, rates.rates, settings, rates.holds, gone.records)
     counts = depots.counts.plus(customers.counts).plus(rules.counts).plus(rates.counts).plus(gone.counts)
-    outside, left_out = about_sheets(found, grids)
+    outside, left_out = about_sheets(found, grids, no_rates)
     return Figures(
         week,
         (
@@ -99,6 +100,7 @@ def build_figures(
             *remembered,
             *outside,
             *about_headings(found.tables),
+            *_dittos(found),
             *about_hauliers(found.tables, columns),
             *asked,
             *depots.findings,
@@ -146,7 +148,7 @@ def _products(
     for and the figures name that product.
     """
     of = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
-    grids = _grids(found, of, sheets, known)
+    grids, _ = _grids(found, of, sheets, known)
     products = products_in(found, grids)
     answered = answers.to(SEVERAL, SUBJECT)
     product = named_among(asked or answered or "", products)
@@ -200,6 +202,13 @@ def _with_sheets_of_one_depot(found: Found, known: Week | None) -> Found:
     )
 
 
+def _dittos(found: Found) -> Iterator[Finding]:
+    for table in found.tables:
+        names = {table.columns[name] for name in NAME_FIELDS if name in table.columns}
+        if not table.beside or table.columns["rate"] < min(table.beside):
+            yield from about_dittos(table.sheet, range(table.head + 1, table.end), sorted(names))
+
+
 def _taught(answers: Answers) -> dict[str, dict[str, str]]:
     """The desk's own headings from its answers, for each kind of table."""
     taught: dict[str, dict[str, str]] = {kind: {} for kind in TITLES}
@@ -213,8 +222,8 @@ def _taught(answers: Answers) -> dict[str, dict[str, str]]:
 
 def _grids(
     found: Found, of: Mapping[str, Sequence[Table]], sheets: Sequence[Sheet], known: Week | None
-) -> list[Grid]:
-    """Grids on sheets without a list, and below or beside the lists of depots and customers."""
+) -> tuple[list[Grid], list[Grid]]:
+    """The grids of rates on sheets without a list, and those whose titles speak of something else."""
     names = {kind: {folded(n) for n in _names(of[kind])} for kind in ("depots", "customers")}
     if known is not None:
         names["depots"] = names["depots"] or {folded(name) for name in known.depots}
@@ -222,15 +231,16 @@ def _grids(
     plans = {id(sheet) for sheet in found.plans}
     listed = {id(table.sheet) for table in found.tables}
     lists = {id(p.sheet): p.head for p in found.partials if {"depot", "customer"} <= set(p.columns)}
-    grids = []
+    grids: list[Grid] = []
+    no_rates: list[Grid] = []
     for sheet in sheets:
         if id(sheet) in plans or id(sheet) in listed:
             continue
         grid = find_grid(sheet, names["depots"], names["customers"])
         # Below the headings of a list that lacks its rate, rows of names are rows of the list
         if grid is not None and grid.head <= lists.get(id(sheet), grid.head):
-            grids.append(grid)
-    return grids
+            (grids if may_be_rates(grid.title) else no_rates).append(grid)
+    return grids, no_rates
 
 
 def _names(tables: Sequence[Table]) -> Iterator[str]:

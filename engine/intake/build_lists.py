@@ -155,6 +155,7 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
     rows: list[_Row] = []
     remarks: list[Remark] = []
     read = 0
+    since: dict[str, Decimal] = {}
     sums = {name: Decimal(0) for name in table.columns if column_of(table.kind, name).kind is Kind.QUANTITY}
     sheet_rows = table.sheet.rows
     faulty = {name: found for name, found in problems.items() if found}
@@ -174,7 +175,8 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
         elif name is None:
             remarks.append(Remark(number, "name", _nameless(table, number, sums, values, offset), True))
         elif is_total(name):
-            remarks.append(Remark(number, "name", _total(table, name, sums, values, offset), True))
+            remarks.append(Remark(number, "name", _total(table, name, sums, since, values, offset), True))
+            since = {}
         elif len(filled) == 1 and (after_blank or len(name) > 40 or name[0] in "*†#"):
             remarks.append(Remark(number, "name", _note(name), True))
             continue
@@ -186,17 +188,23 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
             rows.append(_Row(number, name, {n: column[offset] for n, column in values.items()}, faults))
             for field_name in sums:
                 sums[field_name] += values[field_name][offset] or 0
+                since[field_name] = since.get(field_name, Decimal(0)) + (values[field_name][offset] or 0)
         after_blank = False
     return rows, remarks, read
 
 
 def _total(
-    table: Table, name: str, sums: Mapping[str, Decimal], values: Mapping[str, Sequence[Any]], offset: int
+    table: Table,
+    name: str,
+    sums: Mapping[str, Decimal],
+    since: Mapping[str, Decimal],
+    values: Mapping[str, Sequence[Any]],
+    offset: int,
 ) -> Finding:
-    """A row of totals: left out, and compared with our own sums."""
+    """A row of totals: left out, and compared with our sums of all rows and of those since the last."""
     for field_name, ours in sums.items():
         theirs = values[field_name][offset]
-        if theirs is not None and theirs != ours:
+        if theirs is not None and theirs not in (ours, since.get(field_name)):
             heading = column_of(table.kind, field_name).heading
             return Finding(
                 Severity.CHECK,

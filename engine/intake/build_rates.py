@@ -15,6 +15,7 @@ from engine.intake.build_lists import Unused
 from engine.intake.cells import address
 from engine.intake.column_reader import Problems, read_decimals, read_values
 from engine.intake.conversion import converted
+from engine.intake.dittos import AS_ABOVE, filled_down
 from engine.intake.fields import CLOSED_WORDS, NUMBER_KINDS, text_of
 from engine.intake.grids import Grid
 from engine.intake.headings import column_of, heading_of
@@ -259,6 +260,10 @@ def _list(table: Table, start: int, names: tuple[Names, Names, Names], manner: M
     remarks: list[Remark] = []
     first = table.head + 1
     cells = {name: table.cells(name) for name in table.columns}
+    for name in ("depot", "customer"):
+        if manner.answers.to("no name", f"rates: {name} left blank") == AS_ABOVE and name in cells:
+            whole = [any(not is_blank(cell) for cell in row) for row in table.sheet.rows[first : table.end]]
+            cells[name] = filled_down(cells[name], whole)
     depot = (
         names[0].codes(cells["depot"])
         if "depot" in cells
@@ -410,8 +415,10 @@ def _fault(
             Severity.STOPS,
             "no name",
             f"A rate row names no {what}.",
-            f"Type the {what}, or clear the row.",
+            f"Type the {what}, clear the row, or say that it is the {what} of the row above.",
             read=text,
+            subject=f"rates: {what} left blank",
+            options=(AS_ABOVE,),
         ), what
     if no_rate and is_blank(raw):
         return Finding(

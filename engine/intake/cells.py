@@ -51,6 +51,7 @@ class Sheet:
     rows: Sequence[Sequence[Any]]
     hidden: bool = False
     hidden_rows: frozenset[int] = frozenset()
+    hidden_columns: frozenset[int] = frozenset()
     merged: tuple[tuple[tuple[int, int], tuple[int, int]], ...] = ()
     is_text: bool = False
 
@@ -202,6 +203,7 @@ def _calamine_sheets(data: bytes, name: str, marks: dict[str, Marks], limits: Li
                         rows,
                         hidden=meta.visible != calamine.SheetVisibleEnum.Visible,
                         hidden_rows=known.hidden_rows if known else frozenset(),
+                        hidden_columns=known.hidden_columns if known else frozenset(),
                         merged=merged,
                     )
                 )

@@ -1,5 +1,6 @@
 """Rates as a grid, depots down and customers across or the other way round, found by the names in it."""
 
+import re
 from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
@@ -13,7 +14,13 @@ from engine.intake.headings import PRODUCT_WORDS, heading_of, is_heading_word, n
 from engine.intake.names import folded
 from engine.intake.numbers import is_blank
 from engine.intake.recognise import candidate_rows, is_total
+from engine.intake.units import currencies_of
 
+_RATES = re.compile(r"rate|price|tariff|freight|cost|haulage|charge|quote")
+_NO_RATES = re.compile(
+    r"\b(distances?|kms?|kilomet\w+|miles|mileage|transit|hours|minutes|lead ?times?|volumes?|tonnages?|"
+    r"quantit\w+|shipped|delivered|sent|moved|last week|history)\b"
+)
 _SAMPLE = 2000
 """So many names are looked at to tell which way round a grid is."""
 
@@ -85,6 +92,14 @@ def find_grid(
             if sure and score > 3 * len(sheet.rows[head]):
                 break
     return None if best is None else _grid(sheet, *best[1:])
+
+
+def may_be_rates(title: str) -> bool:
+    """Whether a grid with these words above and in its corner may hold rates, not distances or tonnes."""
+    words = folded(title)
+    if _RATES.search(words) or any(currencies_of(word) for word in re.split(r"[\s/()]+", words)):
+        return True
+    return _NO_RATES.search(words) is None
 
 
 def _by_names(

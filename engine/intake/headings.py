@@ -168,6 +168,12 @@ _RULES = {word: field for field, words in _RULE_WORDS.items() for word in words.
 _ALL_WORDS = frozenset(word for fields in _FIELDS.values() for word in fields) | PLAN_HEADINGS
 
 
+_COUNTED = re.compile(
+    r"(?<![\w.,])'?(\d[\d., ]*?)\s*(kgs?|kilos?|t|to|tonnes?|lbs?|l|ltr|lit(?:re|er)s?|pallets?)\b"
+)
+"""A number before a unit: the rate is per so many of it."""
+
+
 @dataclass(frozen=True, slots=True)
 class Heading:
     """A heading cut into the words that name its column and the unit and currency that stand beside."""
@@ -182,7 +188,7 @@ class Heading:
 @lru_cache(maxsize=65536)
 def heading_of(text: str) -> Heading:
     """A heading's own words apart from the unit and currency in it."""
-    plain = folded(text).strip(" :*.")
+    plain = _COUNTED.sub(lambda m: f"{re.sub('[., ]', '', m[1])}×{m[2]}", folded(text).strip(" :*."))
     if plain in _ALL_WORDS or plain in _RULES:
         return Heading(plain)
     bracketed = re.findall(r"[(\[{]([^)\]}]*)[)\]}]", plain)
@@ -214,6 +220,12 @@ def _is_mark(word: str) -> bool:
         unit_of(piece) or currencies_of(piece) or unclear_unit(piece) or piece == "%" for piece in pieces
     ]
     return word in ("in", "per", "/") or (bool(known) and all(known))
+
+
+def is_unit_mark(text: str) -> bool:
+    """Whether a text is nothing but a unit or a currency, alone or as EUR/t."""
+    pieces = [piece for piece in re.split(r"[/\s]+|\bper\b", folded(text).strip(" ()[]")) if piece]
+    return bool(pieces) and all(_is_mark(piece) and piece not in ("%", "unit", "units") for piece in pieces)
 
 
 def is_heading_word(text: str) -> bool:

@@ -212,7 +212,8 @@ def _checked(
     findings.append(
         Finding(
             Severity.NOTE, "unit converted",
-            f"'{text}' was turned from {unit} into {base.unit}: 1 {unit} is {_fraction(by)} {base.unit}.",
+            f"'{text}' was turned from {unit} into {base.unit}: "
+            f"{unit if unit[0].isdigit() else f'1 {unit}'} is {_fraction(by)} {base.unit}.",
             "", *place, read=text,
         )
     )  # fmt: skip

@@ -369,6 +369,11 @@ def _words(text: str) -> Finding:
         )
     if plain.casefold().lstrip("+-") in ("nan", "inf", "infinity"):
         return _not_finite(text)
+    digits = plain.translate({ord("O"): "0", ord("o"): "0", ord("l"): "1", ord("I"): "1"})
+    if digits != plain and any(c.isdigit() for c in plain) and re.fullmatch(r"-?[\d.,]+", digits):
+        return _refused(
+            "not a number", text, f"'{_shown(text)}' has a letter among its digits.", f"Is {digits} meant?"
+        )
     return _refused("not a number", text, f"'{_shown(text)}' is not a number.")
 
 

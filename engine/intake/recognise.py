@@ -6,8 +6,16 @@ from dataclasses import dataclass, field, replace
 from typing import Any
 
 from engine.intake.cells import Sheet
+from engine.intake.dittos import NAME_FIELDS, written_out
 from engine.intake.fields import text_of
-from engine.intake.headings import COLUMNS_OF, field_of, is_heading_word, is_plan_heading
+from engine.intake.headings import (
+    COLUMNS_OF,
+    field_of,
+    heading_of,
+    is_heading_word,
+    is_plan_heading,
+    is_unit_mark,
+)
 from engine.intake.names import folded
 from engine.intake.numbers import is_blank
 
@@ -44,9 +52,10 @@ class Table:
     beside: frozenset[int] = frozenset()
 
     def cells(self, field_name: str) -> list[Any]:
-        """The raw cells of a field, one for each row below the headings."""
+        """The raw cells of a field, one for each row below the headings; ditto marks are written out."""
         column = self.columns[field_name]
-        return [row[column] for row in self.sheet.rows[self.head + 1 : self.end]]
+        cells = [row[column] for row in self.sheet.rows[self.head + 1 : self.end]]
+        return written_out(cells) if field_name in NAME_FIELDS else cells
 
 
 @dataclass(frozen=True, eq=False)
@@ -185,8 +194,22 @@ def _heads(sheet: Sheet, taught: Mapping[str, Mapping[str, str]]) -> list[tuple[
             texts |= _from_above(sheet, number, texts)
         if any(_complete(kind, _matched(kind, list(texts), texts, taught)) for kind in _ORDER):
             whole.add(number)
-        heads.append((number, dict(sorted(texts.items()))))
+        units = _units_below(sheet, number, texts)
+        texts |= {column: f"{texts[column]} ({unit})" for column, unit in units.items()}
+        heads.append((number + bool(units), dict(sorted(texts.items()))))
     return heads
+
+
+def _units_below(sheet: Sheet, number: int, texts: Mapping[int, str]) -> dict[int, str]:
+    """The units in the row below headings, where that row holds nothing else; {} where it is no such row."""
+    if number + 1 >= len(sheet.rows):
+        return {}
+    cells = {c: cell for c, cell in enumerate(sheet.rows[number + 1]) if not is_blank(cell)}
+    if not cells or not all(isinstance(cell, str) and is_unit_mark(cell) for cell in cells.values()):
+        return {}
+    if not all(c in texts and not heading_of(texts[c]).unit for c in cells):
+        return {}
+    return {c: text_of(cell).strip(" ()[]") for c, cell in cells.items()}
 
 
 def _second_row(row: Sequence[Any], texts: Mapping[int, str], known: set[int]) -> bool:

@@ -1,5 +1,6 @@
 """Units and currencies as they stand beside figures: what a word means, and exact factors between units."""
 
+import re
 from decimal import Decimal
 from fractions import Fraction
 
@@ -62,11 +63,36 @@ _CODE_LIST = (
     "XAF XOF ZAR"
 )
 _CODES = frozenset(_CODE_LIST.split())
+_COUNTED = re.compile(r"(\d{1,3}(?:[., ]\d{3})*|\d+)\s*×?\s*([a-z³]+)")
 
 
 def unit_of(word: str) -> str | None:
     """The unit a word stands for, None where it is no unit that is known or is an unclear one."""
-    return _WORDS.get(" ".join(word.casefold().rstrip(".").split()))
+    plain = " ".join(word.casefold().rstrip(".").split())
+    if plain[:1].isdigit():
+        return _counted_unit(plain)
+    return _WORDS.get(plain)
+
+
+def _counted_unit(word: str) -> str | None:
+    """A number of a unit, such as 100 kg, by which rates are quoted; '000 stands for thousands."""
+    found = _COUNTED.fullmatch(word)
+    unit = _WORDS.get(found[2]) if found else None
+    if found is None or unit not in _FACTORS:
+        return None
+    number = int(re.sub(r"[., ]", "", found[1])) or 1000
+    if number == 1000 and unit == "kg":
+        return "t"
+    return unit if number == 1 else f"{number} {unit}"
+
+
+def _sized(unit: str) -> tuple[str, Fraction] | None:
+    """What a unit measures, and how many of the base unit it is."""
+    number, _, plain = unit.partition(" ")
+    if number.isdigit() and plain in _FACTORS:
+        kind, size = _FACTORS[plain]
+        return kind, size * int(number)
+    return _FACTORS.get(unit)
 
 
 def plain_unit(word: str) -> str:
@@ -92,12 +118,10 @@ def factor(source: str, target: str, pallet: Fraction | None = None) -> Fraction
     pallet: what a pallet weighs in kg, where that is known
     """
     known = unit_of(source) or source, unit_of(target) or target
-    if known[0] not in _FACTORS or known[1] not in _FACTORS:
+    sizes = [("mass", pallet) if unit == "pallet" and pallet is not None else _sized(unit) for unit in known]
+    if sizes[0] is None or sizes[1] is None or sizes[0][0] != sizes[1][0]:
         return None
-    (kind, size), (other_kind, other_size) = (
-        ("mass", pallet) if unit == "pallet" and pallet is not None else _FACTORS[unit] for unit in known
-    )
-    return size / other_size if kind == other_kind else None
+    return sizes[0][1] / sizes[1][1]
 
 
 def times(number: Decimal, by: Fraction) -> Decimal | None:

@@ -16,6 +16,8 @@ import numpy.typing as npt
 _CHUNK, _OVERLAP = 1 << 20, 32
 
 _ROW_TAG = re.compile(rb"<(?:\w+:)?row\b([^>]*)>")
+_COLUMN_TAG = re.compile(rb"<(?:\w+:)?col\b([^>]*)>")
+_SPAN = re.compile(rb'\b(min|max)="(\d{1,5})"')
 _ROW_NUMBER = re.compile(rb'\br="(\d+)"')
 _REFERENCE = re.compile(rb'\br="([A-Z]{1,3})(\d{1,7})"')
 _ERROR = re.compile(
@@ -40,6 +42,7 @@ class Marks:
     no_result: Mapping[tuple[int, int], str]
     percent: frozenset[tuple[int, int]]
     hidden_rows: frozenset[int]
+    hidden_columns: frozenset[int] = frozenset()
 
 
 class Outline(NamedTuple):
@@ -176,12 +179,17 @@ def marks_of(xml: bytes, percent: frozenset[int], outline: Outline) -> Marks:
             if int(match[2]) in percent and place is not None:
                 shown.add(place)
     hidden = set()
+    columns: set[int] = set()
     if b'hidden="' in xml:
+        for attributes in _COLUMN_TAG.findall(xml[: xml.find(b"sheetData")]):
+            span = dict(_SPAN.findall(attributes))
+            if re.search(rb'\bhidden="(?:1|true)"', attributes) and len(span) == 2:
+                columns.update(range(int(span[b"min"]) - 1, min(int(span[b"max"]), 16384)))
         for match in _ROW_TAG.finditer(xml):
             number = _ROW_NUMBER.search(match[1])
             if number and re.search(rb'\bhidden="(?:1|true)"', match[1]):
                 hidden.add(int(number[1]) - 1)
-    return Marks(errors, no_result, frozenset(shown), frozenset(hidden))
+    return Marks(errors, no_result, frozenset(shown), frozenset(hidden), frozenset(columns))
 
 
 def _placed(pattern: re.Pattern[bytes], xml: bytes) -> Iterator[tuple[tuple[int, int], str]]:
