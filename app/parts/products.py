@@ -6,6 +6,7 @@ import streamlit as st
 
 from app.access import records
 from app.parts.words import counted, plain
+from app.rights import person
 from app.session import Desk
 from engine.intake.answers import Answers
 from engine.intake.names import folded
@@ -40,7 +41,7 @@ def keep_others(state: Desk, files: Sequence[File], chosen: str, known: Answers)
     try:
         for product, reading in read_weeks(files, answers=known).items():
             if product != chosen:
-                create_week(records(), reading)
+                create_week(records(), reading, person().home)
                 kept.append(reading.week.rules.week)
     except (NotSaved, ValueError) as failure:
         state.message = ("error", str(failure))

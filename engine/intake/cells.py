@@ -16,6 +16,7 @@ from engine.intake.marks_xls import is_encrypted, xls_marks
 from engine.intake.marks_xlsb import xlsb_marks
 from engine.intake.numbers import ErrorCell, FormulaCell, PercentCell
 from engine.intake.refusal import (
+    MEGABYTE,
     Limits,
     Unreadable,
     check_area,
@@ -83,11 +84,18 @@ def read_sheets(sources: Source | Iterable[Source], limits: Limits | None = None
         OSError: a path that cannot be opened.
     """
     limits = limits or Limits()
-    return [
-        sheet
-        for source in ([sources] if is_single(sources) else sources)  # type: ignore[union-attr]
-        for sheet in _sheets_of(source, limits)  # type: ignore[arg-type]
-    ]
+    every: list[Source] = [sources] if is_single(sources) else list(sources)  # type: ignore[list-item, arg-type]
+    if len(every) > limits.files:
+        raise too_large("", f"These are {len(every)} files, and at most {limits.files} are read at once.")
+    sheets: list[Sheet] = []
+    read = 0
+    for source in every:
+        name, data = named_bytes(source, limits)
+        read += len(data)
+        if read > limits.all_files:
+            raise too_large(name, f"The files together are larger than {limits.all_files // MEGABYTE} MB.")
+        sheets += _sheets_of(name, data, limits)
+    return sheets
 
 
 def is_single(sources: object) -> bool:
@@ -104,8 +112,7 @@ def _is_named(source: object) -> bool:
     )
 
 
-def _sheets_of(source: Source, limits: Limits) -> list[Sheet]:
-    name, data = named_bytes(source, limits)
+def _sheets_of(name: str, data: bytes, limits: Limits) -> list[Sheet]:
     kind = kind_of(data, name)
     if kind == "text":
         return [Sheet(name, Path(name).stem, rows_of_text(data, name, limits), is_text=True)]

@@ -26,13 +26,16 @@ class Limits:
     """What a file may cost.
 
     size: bytes of the file itself; unpacked: bytes of a workbook's parts together; ratio: how many times
-    a large part may be smaller when packed; cells: cells in the used area of one sheet.
+    a large part may be smaller when packed; cells: cells in the used area of one sheet; files: how many at
+    once, and all_files: their bytes together.
     """
 
     size: int = 20 * MEGABYTE
     unpacked: int = 800 * MEGABYTE
     ratio: int = 200
     cells: int = 40_000_000
+    files: int = 40
+    all_files: int = 100 * MEGABYTE
 
 
 class Unreadable(ValueError):
