@@ -9,7 +9,9 @@ from app.parts.compare_summary import summary_view
 from app.parts.compare_usual import usual_view
 from app.parts.compare_weeks import weeks_view
 from app.parts.findings_panel import findings_panel
+from app.parts.frontier_view import frontier_view
 from app.parts.nothing_yet import nothing_yet
+from app.parts.stress_view import stress_view
 from app.parts.words import plain
 from app.preparing import prepared
 from app.session import Desk, desk
@@ -22,6 +24,8 @@ VIEWS: dict[str, tuple[str, Callable[[Desk, Plan], None]]] = {
     "usual": ("Usual plan", usual_view),
     "bridge": ("Any two plans", bridge_view),
     "weeks": ("Over time", weeks_view),
+    "stress": ("Stress", stress_view),
+    "frontier": ("Cost and emissions", frontier_view),
 }
 
 state = desk()
