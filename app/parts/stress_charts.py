@@ -56,6 +56,8 @@ def histogram(bins: Sequence[Bin], today: Decimal, across: str, mark: str, alt_t
         }
     )
     tones = colours(st.context.theme.type)
+    ends = [min(frame["low"].min(), float(today)), max(frame["high"].max(), float(today))]
+    scale = alt.Scale(domain=ends, zero=False, nice=False)
     bar = (
         alt.Chart(frame)
         .mark_bar(color=tones.tones[0], stroke=tones.halo, strokeWidth=1)

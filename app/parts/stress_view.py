@@ -171,11 +171,12 @@ def _drawn(state: Desk, found: Stressed) -> None:
     minor = minor_places(rules.currency)
     st.markdown(f"#### {counted(len(drawn), 'drawn week')}")
     short = sum(bool(one.short) for one in drawn)
+    worse = sum(found.more_short(one) > 0 for one in drawn)
     st.markdown(
         f"Half of them cost up to **{plain(money(spread.middle, rules.currency, mark))}**, nine tenths up to "
         f"**{plain(money(spread.ninetieth, rules.currency, mark))}**; today it is "
         f"{plain(money(found.today.total, rules.currency, mark))}. "
-        f"Something goes short in {short:,} of {len(drawn):,}."
+        f"Something goes short in {short:,} of {len(drawn):,}, more than today in {worse:,}."
     )
     bins = bins_of(totals)
     left, right = st.columns([3, 2], gap="medium")

@@ -80,7 +80,7 @@ def test_a_run_from_the_button_to_the_ranking() -> None:
     text = said(test)
     assert f"Worst of all: **{ranked[0].case.depot} lost**" in text
     short = sum(bool(one.short) for one in expected.drawn)
-    assert f"Something goes short in {short} of 30." in text
+    assert f"Something goes short in {short} of 30, " in text
     again = page(state, "stress", **{stress_job.KEY: test.session_state[stress_job.KEY]})
     assert again.dataframe, "the result is kept while the plan is the same"
     changed = state.week.apply(engine_change(state))
