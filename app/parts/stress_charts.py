@@ -62,9 +62,7 @@ def histogram(bins: Sequence[Bin], today: Decimal, across: str, mark: str, alt_t
         alt.Chart(frame)
         .mark_bar(color=tones.tones[0], stroke=tones.halo, strokeWidth=1)
         .encode(
-            x=alt.X(
-                "low:Q", title=across, scale=alt.Scale(zero=False, nice=False), axis=alt.Axis(grid=False)
-            ),
+            x=alt.X("low:Q", bin="binned", title=across, scale=scale, axis=alt.Axis(grid=False)),
             x2="high:Q",
             y=alt.Y("count:Q", title="Drawn weeks", axis=alt.Axis(tickMinStep=1)),
             tooltip=[alt.Tooltip("said:N", title=across), alt.Tooltip("count:Q", title="Drawn weeks")],
