@@ -8,97 +8,17 @@ others are searched by sums, one row after the other (Bellman 1957), without sum
 
 from __future__ import annotations
 
-from typing import NamedTuple
-
 import numpy as np
 
 from engine.exact import Integers
+from engine.loads.arrays import NEVER, Answers, Corners, Priced, Room, Rows, Sums
 from engine.network.compiled import kernel, part
-
-NEVER = 2**61
-"""Stands for the cost of what cannot be done."""
 
 MOST_SUMS = 1024
 """More sums than this are not followed at one step; what is left out is accounted for in the bound."""
 
 MOST_CORNERS = 1024
 """A row with more corners is searched at some of them only; the bound is then a weaker one."""
-
-
-class Rows(NamedTuple):
-    """Rate rows and customers as the search reads them; costs multiplied by the scale of prices.
-
-    start:      (customers + 1,)
-    depot:      (rows,)
-    per_unit, trip_minimum, load_size: (rows,) as in LoadProblem
-    least:      (rows,) smallest quantity above 0
-    most:       (rows,) largest quantity; below `least` if the row carries nothing
-    forced:     (rows,) 1 if the row cannot carry 0
-    demand:     (customers,)
-    short_most: (customers,) most that may be short
-    one_depot:  (customers,) 1 if all must come from one depot
-    """
-
-    start: Integers
-    depot: Integers
-    per_unit: Integers
-    trip_minimum: Integers
-    load_size: Integers
-    least: Integers
-    most: Integers
-    forced: Integers
-    demand: Integers
-    short_most: Integers
-    one_depot: Integers
-
-
-class Priced(NamedTuple):
-    """What comes on top of `per_unit`, all multiplied by the scale of prices.
-
-    unit:  (rows,) of each unit: prices of the depot's stock and of the haulier's limit
-    load:  (rows,) of each load, its own charge included, never negative
-    use:   (rows,) once if anything is carried, the charge per use included, never negative
-    short: (customers,) of each unit short
-    """
-
-    unit: Integers
-    load: Integers
-    use: Integers
-    short: Integers
-
-
-class Answers(NamedTuple):
-    """The cheapest ways; on entry `quantity` and `short` may hold ways that are known already.
-
-    quantity: (rows,)
-    short:    (customers,)
-    value:    (customers,) cost of that way, NEVER if there is none
-    lower:    (customers,) no way costs less
-    """
-
-    quantity: Integers
-    short: Integers
-    value: Integers
-    lower: Integers
-
-
-class Corners(NamedTuple):
-    """Corners of the rows of one customer: those of its row n are at first[n] up to first[n+1]."""
-
-    first: Integers
-    x: Integers
-    cost: Integers
-
-
-class Sums(NamedTuple):
-    """Reachable sums, step by step: their cost, how they came about; and room to sort them."""
-
-    sum: Integers
-    cost: Integers
-    parent: Integers
-    chosen: Integers
-    order: Integers
-    kept: Integers
 
 
 @part
@@ -112,8 +32,8 @@ def cost_of(rows: Rows, priced: Priced, row: int, x: int) -> int:
     rate, trip = rows.per_unit[row], rows.trip_minimum[row]
     cost = priced.unit[row] * x + priced.load[row] * loads + priced.use[row]
     if trip > 0:
-        return cost + (loads - 1) * max(rate * size, trip) + max(rate * last, trip)
-    return cost + rate * x
+        return int(cost + (loads - 1) * max(rate * size, trip) + max(rate * last, trip))
+    return int(cost + rate * x)
 
 
 @part
@@ -165,7 +85,7 @@ def list_corners(rows: Rows, priced: Priced, row: int, needed: int, corners: Cor
 def is_coarse(rows: Rows, row: int, needed: int) -> bool:
     """Whether not all corners of the row are listed."""
     size, most = rows.load_size[row], min(rows.most[row], needed)
-    return size > 0 and 3 * (most // size - rows.least[row] // size) + 8 > MOST_CORNERS
+    return bool(size > 0 and 3 * (most // size - rows.least[row] // size) + 8 > MOST_CORNERS)
 
 
 @part
@@ -191,24 +111,7 @@ def value_of(rows: Rows, priced: Priced, answers: Answers, j: int) -> int:
         left -= x
     if left != 0:
         return NEVER
-    return cost
-
-
-class Room(NamedTuple):
-    """What can still be given, and whose rows are whose.
-
-    supply:   (depots,) units
-    vehicles: (depots,) loads
-    haulier:  (hauliers,) units
-    whose:    (rows,) index of the haulier, or -1
-    limit:    (rows,) the rows' own upper limits; `Rows.most` is changed as room changes
-    """
-
-    supply: Integers
-    vehicles: Integers
-    haulier: Integers
-    whose: Integers
-    limit: Integers
+    return int(cost)
 
 
 @part
@@ -644,7 +547,7 @@ def thin(sums: Sums, begin: int, end: int, about: tuple[int, int]) -> tuple[int,
 
 @part
 def sort_sums(sums: Sums, begin: int, count: int) -> None:
-    """Puts the places of some sums into `order`: rising sums, the cheapest of equal ones first (Shell 1959)."""
+    """Puts the places of some sums into `order`: rising sums, of equal ones the cheapest first (Shell)."""
     order = sums.order
     step = 1
     while step < count // 3:

@@ -5,8 +5,9 @@ from __future__ import annotations
 import numpy as np
 
 from engine.exact import Integers
+from engine.loads.arrays import NEVER, Answers, Priced, Room, Rows
 from engine.loads.cost import loads_on, sent_by, short_of
-from engine.loads.customer import NEVER, Answers, Priced, Room, Rows, serve_in_turn
+from engine.loads.customer import serve_in_turn
 from engine.loads.linear import lines_behind, solve_lines
 from engine.loads.problem import NO_LIMIT, LoadProblem
 from engine.network import Contradiction
@@ -74,8 +75,11 @@ def behind(problem: LoadProblem, quantity: Integers) -> Integers | None:
 
     Exact: a network, unless hauliers are limited, who then carry no more on any row than in the plan.
     """
+    lines = lines_behind(problem, loads_on(problem, quantity), quantity)
+    if lines is None:
+        return None
     try:
-        return solve_lines(problem, lines_behind(problem, loads_on(problem, quantity), quantity))
+        return solve_lines(problem, lines)
     except Contradiction:
         return None
 

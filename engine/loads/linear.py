@@ -130,8 +130,8 @@ def relaxed_lines(problem: LoadProblem, unit: Integers) -> Lines:
     return Lines(open_rows, unit[open_rows], low[open_rows], problem.most[open_rows])
 
 
-def lines_behind(problem: LoadProblem, loads: Integers, quantity: Integers) -> Lines:
-    """Lines on which the cost is exact while no row needs more than its `loads`.
+def lines_behind(problem: LoadProblem, loads: Integers, quantity: Integers) -> Lines | None:
+    """Lines on which the cost is exact while no row needs more than its `loads`; None if there are none.
 
     quantity: a plan with these loads; hauliers that are limited carry no more on any row than there
     """
@@ -144,6 +144,8 @@ def lines_behind(problem: LoadProblem, loads: Integers, quantity: Integers) -> L
     # with a trip minimum the cost is a line only within the last load
     before = (loads[used] - 1) * size
     low = np.where(trip > 0, np.maximum(low, before), low)
+    if (low > high).any():
+        return None
     kink = np.where((trip > 0) & (rate > 0), trip // np.maximum(rate, 1), np.where(trip > 0, high, 0))
     free = np.minimum(np.where(trip > 0, before + kink, 0), high)
     # up to `free` a unit costs nothing beyond the loads, one unit carries the rest of the trip minimum

@@ -15,8 +15,8 @@ import numpy as np
 from scipy.sparse import coo_array
 
 from engine.exact import Integers
+from engine.loads.arrays import NEVER, Answers
 from engine.loads.cost import loads_on
-from engine.loads.customer import NEVER, Answers
 from engine.loads.highs import INFINITE, OPTIMAL, quiet
 from engine.loads.patterns import Patterns, allowed, joined, no_patterns, patterns_of
 from engine.loads.prices import Floats, Prices, answers_for, between, bound_at, no_prices
@@ -116,14 +116,16 @@ def master_of(stage: Stage) -> Master:
     model.num_row_, model.num_col_ = row, 0
     model.row_lower_, model.row_upper_ = lower, upper
     solver.passModel(model)
-    columns = {"none": 0, "sent": customers, "kept": customers + depots, "open": customers + 2 * depots}
+    names = ("sent", "kept", "open", "lack")
+    columns = {name: customers + n * depots for n, name in enumerate(names)}
     ones, each = np.ones(customers), np.arange(depots)
     _add(solver, ones * 1.0, ones * INFINITE, (np.arange(customers), np.arange(customers), ones))
     supply = problem.supply / quantity_unit
     unit = quantity_unit / cost_unit
     entries = [(each, at["depot"] + each, -np.ones(depots)), (each, at["moved"] + each, np.ones(depots))]
     entries.append((each, at["open"] + each, np.ones(depots)))
-    _add(solver, -problem.unsent_cost * unit, supply, _together(entries))
+    credit: Floats = (problem.unsent_cost * -unit).astype(np.float64)
+    _add(solver, credit, supply, _together(entries))
     entries = [
         (each, np.full(depots, at["must"]), np.ones(depots)),
         (each, at["moved"] + each, np.ones(depots)),
@@ -132,8 +134,9 @@ def master_of(stage: Stage) -> Master:
         solver, np.full(depots, stage.must_cost * unit), problem.must_move / quantity_unit, _together(entries)
     )
     _add(solver, problem.opening_charge / cost_unit, np.ones(depots), (each, at["open"] + each, -supply))
+    _add(solver, np.ones(depots), np.full(depots, INFINITE), (each, at["moved"] + each, np.ones(depots)))
     use_row = np.full(problem.rows, -1, dtype=np.int64)
-    return Master(stage, solver, quantity_unit, cost_unit, at, columns, customers + 3 * depots, use_row)
+    return Master(stage, solver, quantity_unit, cost_unit, at, columns, customers + 4 * depots, use_row)
 
 
 Entries = tuple[Integers, Integers, Floats]
@@ -221,10 +224,9 @@ def move_to(master: Master, node: Node) -> None:
         place = (master.fixed + np.arange(ways)).astype(np.int32)
         solver.changeColsBounds(ways, place, np.zeros(ways), upper)
     each = np.arange(problem.depots)
-    least = np.where(stage.must_most == 0, problem.must_move, 0) / unit
     most = np.where(node.opened == 0, 0, problem.supply) / unit
     place = (master.columns["sent"] + each).astype(np.int32)
-    solver.changeColsBounds(len(each), place, np.minimum(least, most), most)
+    solver.changeColsBounds(len(each), place, np.zeros(len(each)), most)
     place = (master.columns["open"] + each).astype(np.int32)
     charged = problem.opening_charge > 0
     low = np.where(charged & (node.opened == 1), 1.0, 0.0)
@@ -256,7 +258,10 @@ def settle(
     add_patterns(master, patterns_of(stage, everybody, answers))
     share = TOWARDS_BEST
     for _ in range(ROUNDS):
-        value, prices, worth = _solve(master)
+        solved = _solve(master)
+        if solved is None:
+            return Bounded(rounded_up(stage, best), np.zeros(0), np.zeros(0), best_prices, False)
+        value, prices, worth = solved
         reached = rounded_up(stage, best)
         done = (cutoff is not None and reached >= cutoff) or should_stop()
         if done:
@@ -290,13 +295,15 @@ def settle(
     return Bounded(rounded_up(stage, best), weight, opened, best_prices, not _penalised(master))
 
 
-def _solve(master: Master) -> tuple[float, Prices, Floats]:
-    """Solves the programme: its value in units of cost, prices, and what each customer may cost."""
+def _solve(master: Master) -> tuple[float, Prices, Floats] | None:
+    """Solves the programme: value, prices, what each customer may cost; None if it fails."""
     solver, at, problem = master.solver, master.at, master.stage.problem
     solver.run()
     if solver.getModelStatus() != OPTIMAL:
         solver.clearSolver()
         solver.run()
+        if solver.getModelStatus() != OPTIMAL:
+            return None
     dual = np.array(solver.getSolution().row_dual) * master.cost_unit
     per_unit = master.quantity_unit
     use = np.zeros(problem.rows)
@@ -342,10 +349,16 @@ def _mixture(master: Master) -> tuple[Floats, Floats]:
     return value[master.fixed :], value[begin : begin + master.stage.problem.depots]
 
 
+def _penalties(master: Master) -> Integers:
+    """Columns that stand for serving a customer in no way, and for goods that must move and do not."""
+    lack = master.columns["lack"] + np.arange(master.stage.problem.depots)
+    return np.concatenate([np.arange(master.stage.problem.customers), lack])
+
+
 def _penalised(master: Master) -> bool:
-    """Whether some customer is served in no way at all."""
-    value = np.array(master.solver.getSolution().col_value[: master.stage.problem.customers])
-    return bool((value > 1e-6).any())
+    """Whether some customer is served in no way at all, or goods stay that must not."""
+    value = np.array(master.solver.getSolution().col_value)
+    return bool((value[_penalties(master)] > 1e-6).any())
 
 
 def _raise_penalty(master: Master) -> bool:
@@ -353,8 +366,9 @@ def _raise_penalty(master: Master) -> bool:
     if master.penalty >= 1e7:
         return False
     master.penalty *= 30
-    count = master.stage.problem.customers
-    master.solver.changeColsCost(count, np.arange(count, dtype=np.int32), np.full(count, master.penalty))
+    columns = _penalties(master)
+    cost = np.full(len(columns), master.penalty)
+    master.solver.changeColsCost(len(columns), columns.astype(np.int32), cost)
     return True
 
 

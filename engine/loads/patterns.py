@@ -8,8 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.exact import Integers
+from engine.loads.arrays import Answers
 from engine.loads.cost import row_costs
-from engine.loads.customer import Answers
 from engine.loads.stage import Node, Stage
 
 Booleans = NDArray[np.bool_]

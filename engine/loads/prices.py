@@ -13,7 +13,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.exact import Integers, total
-from engine.loads.customer import NEVER, Answers, Priced, Rows, cheapest
+from engine.loads.arrays import NEVER, Answers, Priced, Rows
+from engine.loads.customer import cheapest
 from engine.loads.problem import NO_LIMIT
 from engine.loads.stage import LARGEST_PRICED, Node, Stage
 
@@ -105,10 +106,10 @@ def bound_at(stage: Stage, node: Node, rows: Rows, prices: Prices, answers: Answ
     for price, most in ((load, problem.most_loads), (haulier, problem.haulier_most)):
         limited = most != NO_LIMIT
         bound -= sum(a * b for a, b in zip(price[limited].tolist(), most[limited].tolist(), strict=True))
-    bound -= sum(price * most for price, (_, most) in zip(cap.tolist(), stage.caps, strict=True))
+    bound -= sum(one * most for one, (_, most) in zip(cap.tolist(), stage.caps, strict=True))
     if stage.must_most is not None:
         bound -= int(must[0]) * stage.must_most
-    return bound
+    return int(bound)
 
 
 def _at_depots(stage: Stage, node: Node, prices: tuple[Integers, Integers, Integers]) -> int:

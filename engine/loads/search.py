@@ -13,6 +13,7 @@ from engine.loads.beside import Beside, start, taken
 from engine.loads.cost import Score, score_of
 from engine.loads.fit import behind, mended, serve
 from engine.loads.master import master_of
+from engine.loads.prices import Floats
 from engine.loads.problem import Flags, LoadProblem
 from engine.loads.proof import NotValid, check
 from engine.loads.stage import Stage, whole
@@ -33,9 +34,18 @@ class Best:
     """
 
     problem: LoadProblem
-    quantity: Integers
-    score: Score
+    plan: tuple[Integers, Score]
     tell: Callable[[], None] = lambda: None
+
+    @property
+    def quantity(self) -> Integers:
+        """(rows,) of the best plan."""
+        return self.plan[0]
+
+    @property
+    def score(self) -> Score:
+        """Of the best plan."""
+        return self.plan[1]
 
     def offer(self, quantity: Integers) -> bool:
         """Takes a plan if it is valid and better; says whether it was."""
@@ -46,7 +56,7 @@ class Best:
             check(self.problem, quantity)
         except NotValid:
             return False
-        self.quantity, self.score = quantity, score
+        self.plan = (quantity, score)
         self.tell()
         return True
 
@@ -93,7 +103,7 @@ def search(
     work: Beside | None = None
     open_rows: Flags = np.zeros(stage.problem.rows, dtype=np.bool_)
     asked = FEW_ROWS
-    fixed_at: tuple[int, int] | None = None
+    fixed_at: int | None = None
     prices = None
     steps, last_told = 0, time.monotonic()
 
@@ -135,13 +145,14 @@ def search(
             if ended and work is not None and work.optimal and work.all_rows and work.bound is not None:
                 told.solver = round(work.bound)
             again = work is None or (ended and not work.all_rows)
-            if prices is not None and (again or fixed_at is None or value() < fixed_at[0]):
-                reached = with_regrets(tree, value(), prices)
+            if prices is not None and (again or fixed_at is None or value() < fixed_at):
+                limit = value()
+                reached = with_regrets(tree, limit, prices)
                 if reached is not None:
-                    close_rows(tree, reached >= value())
-                    fixed_at = (value(), told.bound)
+                    close_rows(tree, reached >= limit, limit)
+                    fixed_at = limit
                     if again and told.bound < value():
-                        open_rows, complete = _open(best, reached, value(), asked)
+                        open_rows, complete = _open(best, reached, limit, asked)
                         asked *= MORE
                         work = start(stage, open_rows, best.quantity, complete, 1e-9)
             told.bound = max(told.bound, tree.bound(value()))
@@ -153,9 +164,9 @@ def search(
             told.bound = min(max(told.bound, tree.bound(value())), value())
 
 
-def rounded_plan(problem: LoadProblem, mean: Integers) -> Integers:
+def rounded_plan(problem: LoadProblem, mean: Floats) -> Integers:
     """Quantities whose loads are those that a mixture needs, whatever they add up to."""
-    quantity = np.where(mean > 1e-6, np.maximum(np.ceil(mean - 1e-6), 1), 0).astype(np.int64)
+    quantity = np.where(mean > 1e-6, np.maximum(np.ceil(mean - 1e-6), problem.least), 0).astype(np.int64)
     return np.minimum(quantity, problem.most)
 
 

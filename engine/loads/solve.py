@@ -5,12 +5,13 @@ from __future__ import annotations
 import threading
 import time
 from collections.abc import Callable
+from functools import partial
 
 import numpy as np
 
 from engine.exact import Integers, TooLarge
 from engine.loads.answer import Ended, LoadFlow, Progress
-from engine.loads.cost import aims_of, loads_on, row_costs, score_of, sent_by, short_of
+from engine.loads.cost import aims_of, row_costs, score_of, sent_by, short_of
 from engine.loads.forced import least_plan
 from engine.loads.linear import loads_cap, relaxed_lines, solve_lines
 from engine.loads.problem import LoadProblem
@@ -62,9 +63,9 @@ def least_cost_loads(
     if network is not None:
         score = score_of(problem, network)
         return _answer(problem, network, score.aims, score.cost, None, ("network", "proved", begin))
-    best = Best(problem, least, score_of(problem, least))
-    bounds, cost_bound = _first(problem, best, start)
-    told = Told(cost_bound)
+    best = Best(problem, (least, score_of(problem, least)))
+    bounds = (0,) * len(best.score.aims)
+    told = Told(_cost_bound(problem))
 
     def so_far(ended: Ended) -> LoadFlow:
         aims = tuple(min(a, b) for a, b in zip(bounds, best.score.aims, strict=True))
@@ -75,17 +76,19 @@ def least_cost_loads(
         if progress is not None:
             progress(Progress(doing, so_far("stopped"), time.monotonic() - begin))
 
-    tell("A first plan")
-    best.tell = lambda: tell("A better plan")
     try:
+        bounds = _first(problem, best, start)
+        tell("A first plan")
+        best.tell = lambda: tell("A better plan")
         for place in range(len(bounds)):
             if best.score.aims[place] > bounds[place]:
                 left = None if time_limit is None else time_limit - (time.monotonic() - begin)
                 limit = None if left is None else time.monotonic() - begin + SHARE_OF_AN_AIM * left
                 aim = Told(bounds[place])
                 stage = stage_of(problem, best.score.aims, place)
-                search(stage, best, lambda place=place: best.score.aims[place], aim, stop_at(limit))
-                bounds = (*bounds[:place], aim.bound, *bounds[place + 1 :])
+                search(stage, best, partial(_aim, best, place), aim, stop_at(limit))
+                # what was known of later aims held for plans that reach the first bound of this one
+                bounds = (*bounds[:place], aim.bound, *(0 for _ in bounds[place + 1 :]))
         told.tell = tell
         stage = stage_of(problem, best.score.aims, len(bounds))
         search(stage, best, lambda: best.score.cost, told, stop_at(time_limit))
@@ -96,8 +99,16 @@ def least_cost_loads(
     return final if not final.proved else so_far("proved")
 
 
-def _first(problem: LoadProblem, best: Best, start: LoadFlow | None) -> tuple[tuple[int, ...], int]:
-    """A first plan, and what no plan can do better than: in each aim, and in cost."""
+def _aim(best: Best, place: int) -> int:
+    return best.score.aims[place]
+
+
+def _first(problem: LoadProblem, best: Best, start: LoadFlow | None) -> tuple[int, ...]:
+    """A first plan, and what no plan can do better than in each aim.
+
+    The bound of an aim holds for plans that reach the bounds of those before it; where the plan does not, no
+    more is known of the later aims than that they cannot be below 0.
+    """
     if start is not None and len(start.quantity) == problem.rows:
         polish(best, np.minimum(start.quantity, problem.most))
     try:
@@ -107,7 +118,10 @@ def _first(problem: LoadProblem, best: Best, start: LoadFlow | None) -> tuple[tu
     except (Contradiction, TooLarge):
         bounds = (0,) * len(best.score.aims)
         polish(best, best.quantity)
-    return bounds, _cost_bound(problem)
+    known = 0
+    while known < len(bounds) and best.score.aims[known] == bounds[known]:
+        known += 1
+    return (*bounds[: known + 1], *(0 for _ in bounds[known + 1 :]))
 
 
 def _usual_unit(problem: LoadProblem) -> Integers:
@@ -149,6 +163,3 @@ def _answer(
         ended=ended,
         seconds=time.monotonic() - begin,
     )
-
-
-__all__ = ["Stop", "Tell", "least_cost_loads", "loads_on"]

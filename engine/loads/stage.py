@@ -8,8 +8,8 @@ from math import gcd
 import numpy as np
 
 from engine.exact import Integers, total
+from engine.loads.arrays import Rows
 from engine.loads.cost import ranks_of
-from engine.loads.customer import Rows
 from engine.loads.problem import Flags, LoadProblem
 
 LARGEST_PRICED = 2**60

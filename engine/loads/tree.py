@@ -1,8 +1,8 @@
 """Branch and bound: parts of all plans, each with a bound proved in integers, the least bound first.
 
 A part is split by how many loads a rate row may carry, or by whether a depot is open, until its bound reaches
-the best plan (Land & Doig 1960; with generated columns Barnhart et al. 1998). The bound of all is the least of
-the parts that are left, so it holds at every moment.
+the best plan (Land & Doig 1960; with generated columns Barnhart et al. 1998). The bound of all is the least
+of the parts that are left, so it holds at every moment.
 """
 
 from __future__ import annotations
@@ -14,9 +14,10 @@ from dataclasses import dataclass, field, replace
 import numpy as np
 
 from engine.exact import Integers
-from engine.loads.customer import NEVER
+from engine.loads.arrays import NEVER
 from engine.loads.master import Bounded, Master, settle
 from engine.loads.prices import Floats, Prices, answers_for, bound_at, in_integers, priced_by, regrets
+from engine.loads.problem import Flags
 from engine.loads.stage import Node, Stage, rounded_up, rows_of, whole
 
 EVEN = 1e-6
@@ -28,13 +29,18 @@ class Tree:
     """The parts that are left.
 
     heap:   (bound, number, part, prices to begin with)
-    closed: least bound of parts that could be split no further
+    closed: least bound of parts that are left out: because they reached the best plan known at the time, or
+            because they could be split no further
     """
 
     master: Master
     heap: list[tuple[int, int, Node, Prices | None]] = field(default_factory=list)
     count: int = 0
     closed: int | None = None
+
+    def leave_out(self, bound: int) -> None:
+        """Notes that parts with this bound are not looked at any more."""
+        self.closed = bound if self.closed is None else min(self.closed, bound)
 
     def bound(self, best: int) -> int:
         """What no plan costs less than, given the cost of the best plan known."""
@@ -64,21 +70,25 @@ def step(tree: Tree, best: int, should_stop: Callable[[], bool], tell: Callable[
 
     best: cost of the best plan known; tell: told of the part's bound while it rises
     """
-    stage = tree.master.stage
     old, _, node, prices = heapq.heappop(tree.heap)
     if old >= best:
+        tree.leave_out(best)
         return Step(None, node)
     found = settle(tree.master, node, best, should_stop, prices, tell)
     if found.bound is None or found.bound >= best:
+        tree.leave_out(best)
         return Step(None, node)
     bound = max(old, found.bound)
     if should_stop():
         tree.push(bound, node, found.prices)
         return Step(None, node)
+    if not len(found.weight):
+        tree.leave_out(bound)
+        return Step(None, node)
     mean = mean_of(tree.master, found.weight)
     pair = split(tree.master, node, found)
     if pair is None:
-        tree.closed = bound if tree.closed is None else min(tree.closed, bound)
+        tree.leave_out(bound)
         return Step(mean, node)
     for part in pair:
         tree.push(bound, part, found.prices)
@@ -89,7 +99,7 @@ def mean_of(master: Master, weight: Floats) -> Floats:
     """(rows,) the mean quantity of each row in a mixture."""
     patterns = master.patterns
     share = weight[patterns.way] * patterns.quantity
-    return np.bincount(patterns.row, share, master.stage.problem.rows)
+    return np.bincount(patterns.row, share, master.stage.problem.rows).astype(np.float64)
 
 
 def split(master: Master, node: Node, found: Bounded) -> tuple[Node, Node] | None:
@@ -115,10 +125,9 @@ def split(master: Master, node: Node, found: Bounded) -> tuple[Node, Node] | Non
         highest = int(amount[row == place].max())
         below = least if least < highest else highest - 1
         size = int(problem.load_size[place])
+        limit = below
         if amount is loads:
             limit = below * size if size else 0
-        else:
-            limit = below
         if not (node.least[place] if node.forced[place] else 0) <= limit < node.most[place]:
             continue
         most, low, forced = node.most.copy(), node.least.copy(), node.forced.copy()
@@ -171,8 +180,10 @@ def with_regrets(tree: Tree, best: int, prices: Prices) -> Integers | None:
     return reached
 
 
-def close_rows(tree: Tree, useless: Integers) -> None:
-    """Closes rows in all parts that are left; none of them must be used in a better plan."""
+def close_rows(tree: Tree, useless: Flags, best: int) -> None:
+    """Closes rows in all parts that are left; no plan that costs less than `best` uses any of them."""
+    if useless.any():
+        tree.leave_out(best)
     parts = []
     for bound, number, node, prices in tree.heap:
         if node.forced[useless].any():

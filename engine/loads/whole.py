@@ -6,15 +6,15 @@ import numpy as np
 
 from engine.exact import Integers, TooLarge
 from engine.loads.linear import Lines, solve_lines
-from engine.loads.problem import NO_LIMIT, UNLIMITED, LoadProblem
-from engine.network import Contradiction
+from engine.loads.problem import NO_LIMIT, LoadProblem
+from engine.network import UNLIMITED, Contradiction
 
 
 def as_network(problem: LoadProblem) -> Integers | None:
     """(rows,) the best quantities if the week is a pure network, proved by the network; None if it is not.
 
     Where stocks, orders and limits are multiples of the load size, some best flow is too (Dantzig 1963), and
-    a whole load costs no more per unit than a part of one; so the best flow at the cost of whole loads is best.
+    a whole load costs no more per unit than a part of one: the best flow at the cost of whole loads is best.
     """
     rows = problem.rows
     stepped = (problem.per_load > 0) | (problem.trip_minimum > 0)
