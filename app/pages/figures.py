@@ -87,9 +87,9 @@ def _whole_week(
     one = "Put these figures in place of the week on screen"
     if state.week.is_empty:
         one = f"Open the week of {product}"
-    first, second, _ = st.columns([2, 2, 1])
-    clicked = first.button(plain(one), type="primary" if state.week.is_empty else "secondary")
-    both = product is not None and second.button("Open it, and keep the others as weeks of their own")
+    with st.container(horizontal=True):
+        clicked = st.button(plain(one), type="primary" if state.week.is_empty else "secondary")
+        both = product is not None and st.button("Open it, and keep the others as weeks of their own")
     if clicked or both:
         if both and product is not None and not keep_others(state, uploaded, product, known):
             st.rerun()
@@ -146,5 +146,5 @@ else:
         with rules:
             rules_grid(state)
     with remarks:
-        findings_panel(state.all_findings(), key="figures")
         uploaded_panel(state)
+        findings_panel(state.all_findings(), key="figures")

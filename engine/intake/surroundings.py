@@ -105,7 +105,7 @@ def _repaired_workbook(data: bytes, mends: Mends, macros: bool) -> bytes:
         if sheet in book.sheetnames and position_of(cell) is not None:
             target = book[sheet][cell]
             number = _plain_number(text)
-            target.value = text if number is None else number
+            target.value = (text or None) if number is None else number
             if number is None and isinstance(target.value, str):
                 target.data_type = "s"  # a text never becomes a formula
     stream = io.BytesIO()

@@ -30,7 +30,9 @@ def test_a_cell_is_mended_in_the_file_and_in_the_week() -> None:
     number = next(n for n, label in enumerate(looked_at.options) if "Stock B5" in label)
     looked_at.select_index(number).run()
     assert not test.exception
-    test.text_input(key="mend-text").input("700").run()
+    box = next(box for box in test.text_input if box.label == "B5 should say")
+    assert box.value == "about 700"
+    box.input("700")
     test.button(key="mend-go").click().run()
     assert not test.exception
     state = test.session_state[KEY]
