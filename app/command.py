@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, NoReturn
 import click
 
 import engine
+from app.compare_command import compare
 from app.stress_command import stress
 from engine.exact import canonical
 from engine.findings import Finding, Severity, by_gravity, stops
@@ -237,6 +238,7 @@ def blank(out: Path) -> None:
     click.echo(f"Wrote {out}", err=True)
 
 
+main.add_command(compare)
 main.add_command(stress)
 
 

@@ -61,9 +61,13 @@ def _saved(state: Desk, plan: Plan, rule: Rule, usual: tuple[UsualPlan, Saving] 
     each = ""
     if found.per_unit is not None:
         each = f"{number(found.per_unit, mark, 2)} {plain(rules.currency)} per {plain(rules.unit)}, "
-    st.caption(f"{each}freight at equal service: both deliver the same to everybody.")
-    for sentence in found.differs:
-        st.caption(plain(sentence))
+    if found.equal:
+        st.caption(f"{each}at equal service: both deliver the same to everybody.")
+        return
+    st.caption(
+        f"{each}at equal service: the usual plan beside the cheapest one that delivers what it delivers. "
+        + plain(" ".join(found.differs))
+    )
 
 
 def _since(state: Desk, plan: Plan, change: Bridge | None, why: str) -> None:

@@ -80,7 +80,11 @@ def saving_line(state: Desk, plan: Plan, usual: UsualPlan, found: Saving) -> Non
     st.markdown(
         f"Against **{usual.rule.words}** the plan {word} "
         f"**{money(abs(found.freight), rules.currency, mark)}** of freight{each}"
-        + (", at equal service." if found.equal else ", the service made equal.")
+        + (
+            ", at equal service: both deliver the same to everybody."
+            if found.equal
+            else ", at equal service: beside it stands the cheapest plan that delivers what it delivers."
+        )
     )
     for sentence in (*found.differs, *usual.remarks):
         st.caption(plain(sentence))

@@ -4,7 +4,8 @@ from collections.abc import Callable, Iterable
 from decimal import Decimal
 
 from engine.compare.bridge import Bridge, Step
-from engine.exact import canonical
+from engine.compare.mixed import EVENT
+from engine.exact import canonical, total_of
 
 MOST_REASONS = 4
 
@@ -22,10 +23,10 @@ def paragraph(bridge: Bridge, money: Written | None = None, quantity: Written | 
     reasons = [step for step in bridge.steps if step.freight and step.key != "rounding"]
     if reasons:
         reasons.sort(key=lambda step: -abs(step.freight))
-        said.append(f"{_listed(_reason(step, pay) for step in reasons[:MOST_REASONS])}.")
+        said.append(f"The reasons: {_listed(_reason(step, pay) for step in reasons[:MOST_REASONS])}.")
         rest = [step.freight for step in bridge.steps if step not in reasons[:MOST_REASONS]]
         if any(rest):
-            over = sum(rest, Decimal(0))
+            over = total_of(rest)
             said.append(f"All else together comes to {_signed(over, pay)}.")
     said += _service(bridge, pay, much)
     if bridge.averaged:
@@ -44,7 +45,7 @@ def _headline(bridge: Bridge, pay: Written) -> str:
 
 
 def _reason(step: Step, pay: Written) -> str:
-    return f"{step.name} {'adds' if step.freight > 0 else 'takes away'} {pay(abs(step.freight))}"
+    return f"{_signed(step.freight, pay)} by {_lower(step)}"
 
 
 def _listed(reasons: Iterable[str]) -> str:
@@ -56,7 +57,7 @@ def _service(bridge: Bridge, pay: Written, much: Written) -> Iterable[str]:
     if bridge.short:
         word = "more" if bridge.short > 0 else "less"
         most = max(bridge.steps, key=lambda step: step.short * (1 if bridge.short > 0 else -1))
-        yield f"{much(abs(bridge.short))} {word} go short, most of it by {_lower(most.name)}."
+        yield f"{much(abs(bridge.short))} {word} go short, most of it by {_lower(most)}."
     if bridge.charges:
         word = "more" if bridge.charges > 0 else "less"
         yield f"Charges for short and unsent, which stand apart, come to {pay(abs(bridge.charges))} {word}."
@@ -66,5 +67,6 @@ def _signed(value: Decimal, pay: Written) -> str:
     return f"{pay(abs(value))} {'more' if value >= 0 else 'less'}"
 
 
-def _lower(name: str) -> str:
-    return name[:1].lower() + name[1:]
+def _lower(step: Step) -> str:
+    """Its name inside a sentence; an event keeps the name that it was given."""
+    return step.name if step.key.startswith(EVENT) else step.name[:1].lower() + step.name[1:]

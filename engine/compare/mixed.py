@@ -37,6 +37,9 @@ from engine.planning.gone import superseded
 from engine.rates import Rates
 from engine.week import Refused, Week
 
+EVENT = "event "
+"""What the key of an event begins with."""
+
 _KNOWN = {"depots", "customers", "rates", "rules", "holds", "gone"}
 
 
@@ -253,7 +256,7 @@ class Mixture:
 
 def event_key(number: int) -> str:
     """What an event goes by among the effects."""
-    return f"event {number + 1}"
+    return f"{EVENT}{number + 1}"
 
 
 def _either(one: Any, two: Any, effect_of: Any, chosen: frozenset[str]) -> Any:

@@ -2,7 +2,7 @@
 
 from typing import Any
 
-from openpyxl.chart import BarChart, Reference, ScatterChart
+from openpyxl.chart import BarChart, LineChart, Reference, ScatterChart
 from openpyxl.chart.label import DataLabelList
 from openpyxl.chart.layout import Layout, ManualLayout
 from openpyxl.chart.series_factory import SeriesFactory
@@ -77,4 +77,53 @@ def joined_points(
     chart.x_axis.majorGridlines = None
     chart.layout = Layout(ManualLayout(x=0.12, y=0.12, w=0.82, h=0.66))
     chart.width, chart.height = 18, 10
+    return chart
+
+
+def floating_bars(sheet: Any, title: str, names: tuple[int, int, int], parts: tuple[int, int, int]) -> Any:
+    """Bars that begin where the one above ends: from one amount to another, step by step.
+
+    names: column, first and last row of the names; parts: the columns of what lies below each bar (not
+    drawn), of what rises (filled) and of what falls (hollow)
+    """
+    at, first, last = names
+    chart: Any = BarChart()
+    chart.type, chart.grouping, chart.overlap = "bar", "stacked", 100
+    chart.title = cell_text(title)
+    chart.legend = None
+    for column in parts:
+        chart.add_data(Reference(sheet, min_col=column, min_row=first, max_row=last))
+    chart.set_categories(Reference(sheet, min_col=at, min_row=first, max_row=last))
+    below, rises, falls = chart.series
+    below.graphicalProperties = GraphicalProperties(noFill=True)
+    below.graphicalProperties.line.noFill = True
+    rises.graphicalProperties = GraphicalProperties(solidFill=DEEP)
+    falls.graphicalProperties = GraphicalProperties(solidFill="FFFFFF")
+    falls.graphicalProperties.line.solidFill = DEEP
+    chart.x_axis.scaling.orientation = "maxMin"
+    chart.x_axis.tickLblPos = "low"
+    chart.x_axis.delete, chart.y_axis.delete = False, False
+    chart.gapWidth = 40
+    chart.width, chart.height = 20, max(7.0, 0.75 * (last - first + 1) + 2.5)
+    return chart
+
+
+def line_over_rows(sheet: Any, title: str, names: tuple[int, int, int], column: int, number: str) -> Any:
+    """A line over the rows, each point with its figure: one value a week, for instance."""
+    at, first, last = names
+    chart: Any = LineChart()
+    chart.title = cell_text(title)
+    chart.legend = None
+    chart.add_data(Reference(sheet, min_col=column, min_row=first, max_row=last))
+    chart.set_categories(Reference(sheet, min_col=at, min_row=first, max_row=last))
+    series = chart.series[0]
+    series.graphicalProperties.line.solidFill = DEEP
+    series.smooth = False
+    series.marker.symbol, series.marker.size = "circle", 6
+    series.marker.graphicalProperties = GraphicalProperties(solidFill=DEEP)
+    chart.dataLabels = DataLabelList(showVal=True, showSerName=False, showCatName=False, showLegendKey=False)
+    chart.dataLabels.numFmt = number
+    chart.x_axis.delete, chart.y_axis.delete = False, True
+    chart.y_axis.majorGridlines = None
+    chart.width, chart.height = 18, 7
     return chart

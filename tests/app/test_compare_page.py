@@ -85,7 +85,7 @@ def test_a_manager_sees_cost_saving_change_and_reasons_without_a_click(tmp_path:
     }
     text = said(test).replace("\\", "")
     assert "Week 6 costs 3,318.73 EUR less freight than Week 5" in text
-    assert "Stock takes away" in text
+    assert "EUR less by stock" in text
     table = test.dataframe[0].value
     assert list(table["Step"]) == ["Volume", "Mix", "Stock", "Rates", "Surcharge", "Rounding", "Together"]
     freight = table["Freight, EUR"]

@@ -233,7 +233,7 @@ def test_named_events_are_steps_of_their_own() -> None:
     # 10 x 1 = 10; 10 x 2 = 20; 6 x 2 + 4 x 5 = 32; 6 x 2 + 6 x 5 = 42
     assert parts(found) == {"rates": 10, "event 1": 12, "event 2": 10}
     adds_up(bridge(side(first), second, average=True))
-    assert "Alter (silo is out) adds 12 EUR" in paragraph(found)
+    assert "12 EUR more by Alter (silo is out)" in paragraph(found)
 
 
 def test_monday_s_and_friday_s_plans_are_bridged_by_their_changes() -> None:

@@ -1,0 +1,136 @@
+"""`hithe compare`: why does one week, or one plan, cost more than another?"""
+
+import json
+import sys
+from pathlib import Path
+
+import click
+
+import engine
+from engine.compare.bridge import Bridge, Side, bridge
+from engine.compare.bridge_words import paragraph
+from engine.compare.effects import STATED_ORDER
+from engine.compare.mixed import NotComparable
+from engine.compare.quantities import Priced
+from engine.compare.service import saving
+from engine.compare.usual import NoRule, Rule, UsualPlan, rules_possible, usual_plan
+from engine.exact import TooLarge, canonical
+from engine.findings import Finding, Severity
+from engine.planning.near import sent_by
+from engine.report.bridge_json import bridge_as_json
+from engine.report.bridge_sheet import bridge_sheet
+from engine.report.compare_sheet import compare_sheet
+from engine.report.workbook import header_of
+
+SHORT, UNUSABLE = 3, 2
+FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
+
+
+@click.command()
+@click.argument("first", type=FILE, metavar="A")
+@click.argument("second", type=FILE, metavar="B")
+@click.option("--order", default="", metavar="EFFECT,…",
+              help=f"Effects to take first, in this order. They are: {', '.join(STATED_ORDER)}.")  # fmt: skip
+@click.option("--average", is_flag=True, help="The average over all orders (Shapley 1953), not one order.")
+@click.option("--usual", type=click.Choice([Rule.NEAREST.value, Rule.CHEAPEST.value]),
+              help="With --out: the usual plan that B is held against.")  # fmt: skip
+@click.option("--json", "as_json", type=click.Path(dir_okay=False, allow_dash=True), metavar="FILE",
+              help="Write the comparison as JSON; - is stdout.")  # fmt: skip
+@click.option("--out", type=click.Path(dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
+              help="Write the plan of B as a workbook, with the sheets Compare and Bridge.")  # fmt: skip
+@click.pass_context
+def compare(
+    ctx: click.Context,
+    first: Path,
+    second: Path,
+    order: str,
+    average: bool,
+    usual: str | None,
+    as_json: str | None,
+    out: Path | None,
+) -> None:
+    """Say why B costs more than A, or less: each is a week, or the workbook of a plan.
+
+    A plan is taken as it was sent; a week is planned. Exit status: 0 all orders met in both, 3 something is
+    short in one of them, 2 the figures cannot be used.
+    """
+    from app.command import _refuse
+
+    one, two = _side(ctx, first), _side(ctx, second)
+    wanted = [effect.strip() for effect in order.split(",") if effect.strip()]
+    try:
+        found = bridge(one, two, wanted, average, _progress)
+    except (NotComparable, TooLarge) as refused:
+        _refuse(ctx, [Finding(Severity.STOPS, "not comparable", str(refused))])
+    except engine.NotPlannable as stopped:
+        _refuse(ctx, stopped.findings)
+    if out is not None:
+        _write(ctx, two, found, usual, out)
+    if as_json is not None:
+        text = json.dumps(bridge_as_json(found), ensure_ascii=False, indent=1)
+        if as_json == "-":
+            click.echo(text)
+        else:
+            Path(as_json).write_text(text + "\n", encoding="utf-8")
+            click.echo(f"Wrote {as_json}", err=True)
+    else:
+        click.echo("\n".join(_lines(found)))
+    ctx.exit(SHORT if one.plan.short or two.plan.short else 0)
+
+
+def _side(ctx: click.Context, file: Path) -> Side:
+    """The week in a file with its plan: as the file sends it, where it is a plan's workbook."""
+    from app.command import _read, _refuse, _tell, _together
+
+    reading = _read(ctx, (file,))
+    try:
+        sent = engine.read_quantities(file)
+    except engine.Unreadable:
+        sent = None
+    try:
+        plan = engine.plan_week(reading.week, near=sent)
+        as_it_was: Priced = plan
+        if sent is not None and dict(sent_by(plan)) != {key: much for key, much in sent.items() if much}:
+            as_it_was = usual_plan(reading.week, Rule.ACTUAL, sent, completed=None).costs
+    except engine.NotPlannable as stopped:
+        _refuse(ctx, _together(reading.findings, stopped.findings))
+    except TooLarge as too_large:
+        _refuse(ctx, [*reading.findings, Finding(Severity.STOPS, "too large", str(too_large))])
+    _tell(reading.findings)
+    return Side(reading.week.rules.week, reading.week, as_it_was)
+
+
+def _write(ctx: click.Context, side: Side, found: Bridge, rule: str | None, out: Path) -> None:
+    plan = side.plan if isinstance(side.plan, engine.Plan) else engine.plan_week(side.week)
+    header = header_of(plan)
+    sheets = [bridge_sheet(found, header)]
+    try:
+        usual: UsualPlan = usual_plan(plan.week, Rule(rule) if rule else rules_possible(plan.week)[0])
+        sheets.insert(0, compare_sheet(plan, usual, saving(plan, usual.costs), header))
+    except (NoRule, engine.NotPlannable) as refused:
+        click.echo(f"No sheet Compare: {refused}", err=True)
+    engine.write_workbook(plan, out, more=sheets)
+    click.echo(f"Wrote {out}", err=True)
+
+
+def _lines(found: Bridge) -> list[str]:
+    lines = [paragraph(found), ""]
+    width = max([len(step.name) for step in found.steps] + [len(found.first), len(found.second), 8])
+    lines.append(f"{'':{width}}  {'freight':>14}  {'then':>14}  {'charges':>12}  {'short':>10}")
+    lines.append(f"{found.first:{width}}  {'':>14}  {canonical(found.first_freight):>14}")
+    for step in found.steps:
+        then = "" if step.after is None else canonical(step.after)
+        lines.append(
+            f"{step.name:{width}}  {canonical(step.freight):>14}  {then:>14}  "
+            f"{canonical(step.charges):>12}  {canonical(step.short):>10}"
+        )
+    lines.append(
+        f"{found.second:{width}}  {canonical(found.freight):>14}  {canonical(found.second_freight):>14}  "
+        f"{canonical(found.charges):>12}  {canonical(found.short):>10}"
+    )
+    return [*lines, *(["", *found.remarks] if found.remarks else [])]
+
+
+def _progress(done: int, of: int) -> None:
+    if sys.stderr.isatty():
+        click.echo(f"\rPlanning step {done} of {of} …", err=True, nl=done == of)

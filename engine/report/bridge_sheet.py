@@ -1,0 +1,116 @@
+"""Sheet *Bridge*: from one plan's cost to another's, step by step, with live sums and a chart."""
+
+from decimal import Decimal
+from typing import Any
+
+from engine.compare.bridge import Bridge, Step
+from engine.compare.bridge_words import paragraph
+from engine.exact import total_of
+from engine.money import minor_places
+from engine.report.look import DEEP, Style, number_format, places_of
+from engine.report.native_charts import floating_bars
+from engine.report.sheet import Formula, Row, Sheet, Value
+
+_WIDTHS = (44, 16, 17, 16, 15, 60, 17, 15, 15)
+_HEADINGS = (
+    "Step",
+    "Freight",
+    "Freight then",
+    "Charges",
+    "Short",
+    "What it is",
+    "Below the bar",
+    "Rises",
+    "Falls",
+)
+_FIRST = 8
+"""The sheet row of the first plan; the steps stand below it."""
+
+
+def bridge_sheet(bridge: Bridge, header: str) -> Sheet:
+    """The sheet. Each step's running freight and the sums are formulas over the steps."""
+    rows = [*_above(bridge), *_steps(bridge)]
+    last = _FIRST + len(bridge.steps) + 1
+    rows += _below(bridge)
+
+    def finish(sheet: Any) -> None:
+        title = f"Freight payable, {bridge.currency}"
+        sheet.add_chart(floating_bars(sheet, title, (1, _FIRST, last), (7, 8, 9)), f"A{len(rows) + 2}")
+
+    return Sheet("Bridge", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
+
+
+def _above(bridge: Bridge) -> list[Row]:
+    quiet = [Style("quiet")]
+    how = (
+        "Averages over all orders in which the effects could have come (Shapley 1953)."
+        if bridge.averaged
+        else "Each step changes these figures on top of the steps above it, and the week is planned anew."
+    )
+    right = Style("heading", align="right", wrap=True)
+    styles = [Style("heading"), right, right, right, right, Style("heading"), right, right, right]
+    return [
+        Row([f"From {bridge.first} to {bridge.second}"], [Style("title")], height=26),
+        Row([paragraph(bridge)], [Style(wrap=False)]),
+        Row([f"Money in {bridge.currency}, quantities in {bridge.unit}. Freight is what is payable."], quiet),
+        Row([how], quiet),
+        Row(
+            ["Charges are for short and unsent and stand apart. Cents by largest remainder: they add up."],
+            quiet,
+        ),
+        Row([]),
+        Row(_HEADINGS, styles, height=30),
+    ]
+
+
+def _steps(bridge: Bridge) -> list[Row]:
+    minor = minor_places(bridge.currency)
+    paid = Style("plain", number_format(minor), "right")
+    short = Style("plain", number_format(places_of(step.short for step in bridge.steps)), "right")
+    faint = paid._replace(kind="quiet")
+    styles = [Style(), paid, paid, paid, short, Style(wrap=True), faint, faint, faint]
+    total = [style._replace(kind="total") for style in styles[:6]] + styles[6:]
+    first: list[Value] = [
+        bridge.first, None, bridge.first_freight, bridge.first_charges, bridge.first_short, None,
+        Decimal(0), bridge.first_freight, Decimal(0),
+    ]  # fmt: skip
+    rows = [Row(first, total)]
+    at = bridge.first_freight
+    for number, step in enumerate(bridge.steps, _FIRST + 1):
+        to = total_of((at, step.freight))
+        rows.append(Row(_cells(step, number, to, min(at, to)), styles))
+        at = to
+    last = _FIRST + len(bridge.steps)
+    second: list[Value] = [
+        bridge.second,
+        Formula(f"SUM(B{_FIRST + 1}:B{last})", bridge.freight) if bridge.steps else bridge.freight,
+        Formula(f"C{_FIRST}+B{last + 1}", bridge.second_freight),
+        Formula(f"SUM(D{_FIRST}:D{last})", bridge.second_charges),
+        Formula(f"SUM(E{_FIRST}:E{last})", bridge.second_short),
+        None,
+        Decimal(0),
+        bridge.second_freight,
+        Decimal(0),
+    ]
+    return [*rows, Row(second, total)]
+
+
+def _cells(step: Step, number: int, to: Decimal, below: Decimal) -> list[Value]:
+    return [
+        step.name,
+        step.freight,
+        Formula(f"C{number - 1}+B{number}", to),
+        step.charges,
+        step.short,
+        step.about,
+        Formula(f"MIN(C{number - 1},C{number})", below),
+        Formula(f"MAX(B{number},0)", max(step.freight, Decimal(0))),
+        Formula(f"MAX(-B{number},0)", max(-step.freight, Decimal(0))),
+    ]
+
+
+def _below(bridge: Bridge) -> list[Row]:
+    if not bridge.remarks:
+        return []
+    said = [Row([sentence], [Style("quiet")]) for sentence in bridge.remarks]
+    return [Row([]), Row(["What had to give way in the mixed weeks"], [Style("strong")]), *said]

@@ -1,0 +1,105 @@
+"""`hithe compare`: weeks and plan workbooks, statuses, JSON, and sheets that add up by themselves."""
+
+import json
+from decimal import Decimal
+from pathlib import Path
+
+import openpyxl
+import pytest
+from click.testing import CliRunner
+
+import engine
+import sample_data
+from app.command import main
+
+BEFORE, NOW = (str(sample_data.path(name)) for name in ("week_before.xlsx", sample_data.SMALL_WEEK))
+
+
+def run(*arguments: str) -> tuple[int, str, str]:
+    found = CliRunner().invoke(main, ["compare", *arguments])
+    return found.exit_code, found.stdout, found.stderr
+
+
+def test_two_weeks_in_words_and_the_status_of_a_short_week() -> None:
+    code, out, _ = run(BEFORE, NOW)
+    assert code == 3
+    assert out.startswith(
+        "Week 6 costs 3318.73 EUR less freight than Week 5: 59566.18 EUR after 62884.91 EUR."
+    )
+    assert [line.split()[0] for line in out.splitlines() if line.startswith(("Volume", "Stock"))] == [
+        "Volume", "Stock",
+    ]  # fmt: skip
+
+
+@pytest.mark.parametrize("more", [[], ["--average"], ["--order", "surcharge,stock"]])
+def test_json_adds_up_and_goes_alone_to_stdout(more: list[str]) -> None:
+    _, out, _ = run(BEFORE, NOW, "--json", "-", *more)
+    read = json.loads(out)
+    for money, part in (("freight_payable", "freight"), ("charges", "charges"), ("short", "short")):
+        assert sum(Decimal(step[part]) for step in read["steps"]) == Decimal(read[money]["difference"])
+    assert read["averaged"] is (more == ["--average"])
+    if more[:1] == ["--order"]:
+        assert [step["effect"] for step in read["steps"]][:2] == ["surcharge", "stock"]
+
+
+def test_what_cannot_be_used_is_2(tmp_path: Path) -> None:
+    code, out, err = run(BEFORE, NOW, "--order", "holds")
+    assert (code, out) == (2, "")
+    assert "'holds' is no effect in which these two differ" in err
+    nothing = tmp_path / "nothing.csv"
+    nothing.write_text("A,B\n1,2\n")
+    assert run(BEFORE, str(nothing))[0] == 2
+    pounds = tmp_path / "pounds.xlsx"
+    book = openpyxl.load_workbook(BEFORE)
+    rules = book["Rules"]
+    row = next(r for r in rules.iter_rows() if r[0].value == "Currency")
+    row[1].value = "GBP"
+    book.save(pounds)
+    code, _, err = run(BEFORE, str(pounds))
+    assert code == 2
+    assert "One is in EUR, the other in GBP" in err
+
+
+def test_a_plan_s_workbook_is_taken_as_it_was_sent(tmp_path: Path) -> None:
+    plan = engine.plan_week(engine.read_week(BEFORE).week)
+    file = tmp_path / "plan.xlsx"
+    engine.write_workbook(plan, file)
+    _, out, _ = run(str(file), BEFORE, "--json", "-")
+    assert json.loads(out)["steps"] == []
+    book = openpyxl.load_workbook(file)
+    sheet = book["Plan"]
+    send = next(cell.column for cell in sheet[1] if cell.value == "Send")
+    taken = Decimal(str(sheet.cell(2, send).value))
+    sheet.cell(2, send).value = 0  # what was then sent by the usual rule instead
+    book.save(file)
+    _, out, _ = run(str(file), BEFORE, "--json", "-")
+    read = json.loads(out)
+    assert taken
+    assert {step["effect"] for step in read["steps"]} <= {"departs before", "rounding"}
+    assert Decimal(read["freight_payable"]["second"]) == plan.freight_payable
+
+
+def test_the_workbook_has_sheets_that_add_up_and_reads_back_as_the_week(tmp_path: Path) -> None:
+    out = tmp_path / "out.xlsx"
+    assert run(BEFORE, NOW, "--out", str(out))[0] == 3
+    book = openpyxl.load_workbook(out)
+    bridge, compare = book["Bridge"], book["Compare"]
+    assert len(bridge._charts) == len(compare._charts) == 1
+    rows = [row for row in bridge.iter_rows(min_row=8, values_only=True) if row[0]]
+    assert rows[0][0] == "Week 5"
+    assert rows[-1][0] == "Week 6"
+    values = openpyxl.load_workbook(out, data_only=True)["Bridge"]
+    last = 7 + len(rows)
+    total = sum(Decimal(str(values.cell(row, 2).value)) for row in range(9, last))
+    assert total == Decimal(str(values.cell(last, 2).value)) == Decimal("-3318.73")
+    assert values.cell(last, 3).value == 59566.18
+    assert str(bridge.cell(last, 2).value).startswith("=SUM(B9")
+    again = engine.read_week(out)
+    assert (
+        again.week == engine.read_week(NOW).week
+        or again.week.customers == engine.read_week(NOW).week.customers
+    )
+    assert engine.plan_week(again.week).freight_payable == Decimal("59566.18")
+    assert again.week == engine.read_week(NOW).week
+    told = [f"{f.sheet}: {f.message}" for f in again.findings if f.sheet in ("Bridge", "Compare")]
+    assert not told
