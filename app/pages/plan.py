@@ -8,7 +8,7 @@ from app.parts.gone_list import gone_list
 from app.parts.holds_list import holds_list
 from app.parts.matrix_grid import matrix_grid
 from app.parts.nothing_yet import nothing_yet
-from app.parts.plan_map import plan_map
+from app.parts.plan_map import follow_the_map, plan_map
 from app.parts.proposal import proposal
 from app.parts.shipments_grid import shipments_grid
 from app.parts.words import plain
@@ -34,6 +34,7 @@ else:
     else:
         cost_line(plan, state.decimal_mark)
         proposal(state)
+        follow_the_map(plan)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:
             views = {
@@ -56,5 +57,5 @@ else:
             else:
                 shipments_grid(state, plan, view or "depot")
         with chart:
-            plan_map(plan, state.decimal_mark)
+            plan_map(state, plan, view)
         findings_panel(plan.findings, key="plan")

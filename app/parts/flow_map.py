@@ -49,6 +49,7 @@ def flow_map(
     key: str,
     *,
     focus: Focus | None = None,
+    instead: Focus | None = None,
     number: Number = plain,
     height: int = 560,
 ) -> Focus | None:
@@ -60,6 +61,7 @@ def flow_map(
         unit: the week's unit, shown behind quantities.
         key: the widget's own, constant key.
         focus: what stands out while nothing is picked, a row picked in a table for instance.
+        instead: what stands out whatever is picked.
         number: how a quantity is written.
         height: in pixels.
     """
@@ -68,7 +70,7 @@ def flow_map(
         st.info(NO_COORDINATES)
         return None
     picked = _picked(drawn, st.session_state.get(key))
-    looked_at = picked or focus
+    looked_at = instead or picked or focus
     highlighted = _highlighted(drawn, flows, looked_at)
     shown_in = colours(st.context.theme.type)
     labels = placed(_wishes(drawn, highlighted, looked_at, unit, number), drawn.depots, drawn.customers)
@@ -85,6 +87,14 @@ def flow_map(
     for sentence in remarks(drawn, named.count("short"), named.count("depot")):
         st.text(sentence)
     return picked
+
+
+def picked_on_map(points: Sequence[MapPoint], flows: Sequence[MapFlow], key: str) -> Focus | None:
+    """What is picked on the map with this key, before it is drawn again."""
+    if not st.session_state.get(key):
+        return None
+    drawn = drawing(points, flows)
+    return None if drawn is None else _picked(drawn, st.session_state.get(key))
 
 
 def flows_frame(points: Sequence[MapPoint], flows: Sequence[MapFlow], unit: str) -> pd.DataFrame:

@@ -46,3 +46,18 @@ def flows(plan: Plan) -> tuple[LaneFlow, ...]:
     for shipment in plan.shipments:
         by_lane.setdefault((shipment.depot, shipment.customer), []).append(shipment.quantity)
     return tuple(LaneFlow(*lane, total_of(quantities)) for lane, quantities in by_lane.items())
+
+
+def dearest_lanes(plan: Plan) -> frozenset[tuple[str, str]]:
+    """The fewest lanes (depot, customer) that together come to half of the freight payable, or more."""
+    cost: dict[tuple[str, str], Decimal] = {}
+    for one in plan.shipments:
+        lane = one.depot, one.customer
+        cost[lane] = total_of((cost.get(lane, Decimal(0)), one.payable))
+    chosen, left = [], plan.freight_payable
+    for lane in sorted(cost, key=lambda lane: -cost[lane]):
+        if 2 * left <= plan.freight_payable:
+            break
+        chosen.append(lane)
+        left = total_of((left, -cost[lane]))
+    return frozenset(chosen)

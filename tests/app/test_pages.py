@@ -8,6 +8,9 @@ from streamlit.testing.v1 import AppTest
 
 import engine
 import sample_data
+from app.parts.map_drawing import drawing
+from app.parts.map_layers import layer_ids
+from app.parts.plan_map import lines_of, points_of
 from app.session import KEY, Desk
 
 MAIN = Path(__file__).parents[2] / "app" / "main.py"
@@ -109,3 +112,27 @@ def test_a_cell_that_cannot_be_read_stops_the_plan_and_stays_on_screen() -> None
     state.start_afresh()
     test.run()
     assert state.grid("depots").base.iloc[0]["Available"] == "a lot"
+
+
+def test_the_list_and_the_map_follow_each_other() -> None:
+    state = with_sample()
+    test = page("pages/plan.py", state)
+    plan = state.planned()
+    assert plan is not None
+    drawn = drawing(points_of(plan), lines_of(plan))
+    assert drawn is not None
+    quarry = [mark.title for mark in drawn.depots].index("Quarry")
+    test.session_state["plan-map"] = {"selection": {"indices": {layer_ids(drawn)["depots"]: [quarry]}}}
+    test.run()
+    assert not test.exception
+    assert test.session_state["shown-depot"] == "Quarry"
+    next(one for one in test.selectbox if one.label == "Show depot").select("Harbour").run()
+    assert not test.exception
+    assert test.session_state["shown-depot"] == "Harbour"
+
+
+@pytest.mark.parametrize("lanes", ["dearest", "short", "all"])
+def test_the_map_shows_chosen_lanes(lanes: str) -> None:
+    test = page("pages/plan.py", with_sample())
+    next(one for one in test.selectbox if one.label == "Lanes on the map").select(lanes).run()
+    assert not test.exception
