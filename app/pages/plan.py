@@ -11,6 +11,7 @@ from app.parts.nothing_yet import nothing_yet
 from app.parts.plan_map import follow_the_map, plan_map
 from app.parts.proposal import proposal
 from app.parts.shipments_grid import shipments_grid
+from app.parts.steady import steady
 from app.parts.words import plain
 from app.preparing import prepared
 from app.session import desk
@@ -43,6 +44,7 @@ else:
                 "matrix": "Matrix",
                 "holds": "Holds",
                 "gone": "Gone",
+                "steady": "Fewer changes",
             }
             view = st.segmented_control(
                 "View", list(views), default="depot", format_func=views.__getitem__, required=True,
@@ -54,6 +56,8 @@ else:
                 holds_list(state, plan)
             elif view == "gone":
                 gone_list(state, plan)
+            elif view == "steady":
+                steady(state, plan)
             else:
                 shipments_grid(state, plan, view or "depot")
         with chart:
