@@ -66,10 +66,9 @@ def _near(state: Desk, plan: Plan) -> None:
             state.decimal_mark, most_height=520,
         )  # fmt: skip
     with right:
+        lane = found[picked or 0]
         if picked is None:
-            st.info("Pick a lane on the left: what using it today would displace is told here.")
-            return
-        lane = found[picked]
+            st.caption("The nearest of them; pick another on the left.")
         st.subheader(plain(f"{lane.interval.key.depot} to {lane.interval.key.customer}"), anchor=False)
         st.caption("If it were used at today's rate:")
         change = more_on(plan, lane.interval.key, lane.carries)

@@ -26,7 +26,7 @@ def test_a_lane_near_to_paying_is_picked_and_told(page: Page, requests: list[str
     upload(page, week)
     page.get_by_text("6 depots, 48 customers, 352 rates").wait_for(timeout=30_000)
     go_to(page, "Reasons")
-    page.get_by_text("Pick a lane on the left").wait_for(timeout=60_000)
+    page.get_by_text("The nearest of them; pick another on the left").wait_for(timeout=60_000)
 
     plan = engine.plan_week(engine.read_week(week).week)
     near = nearest_to_paying(plan, 100)
