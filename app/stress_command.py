@@ -14,6 +14,7 @@ from typing import Any
 import click
 
 import engine
+from engine.compare.frontier import Emissions, Frontier, NoTradeOff, frontier
 from engine.compare.stress import Stressed, short_often, spreading, stressed
 from engine.compare.stress_cases import Case, all_by, depots_lost, drawn, hauliers_lost, lanes_lost
 from engine.compare.stress_cluster import NoCluster, cluster
@@ -24,6 +25,7 @@ from engine.exact import canonical
 from engine.money import minor_places, round_half_up
 from engine.report.stress_json import stress_as_json
 from engine.report.stress_sheet import stress_sheet
+from engine.report.trade_off_sheet import trade_off_sheet
 from engine.report.workbook import header_of
 
 SHORT, UNUSABLE, STOPPED = 3, 2, 130
@@ -42,6 +44,21 @@ class Percent(click.ParamType[Any]):
             found = Decimal("NaN")
         if not found.is_finite() or found < -100:
             self.fail(f"'{value}' is no change in percent: type a number, such as 10 or -7.5.", param, ctx)
+        return found
+
+
+class Amount(click.ParamType[Any]):
+    """A number above 0, exactly as typed."""
+
+    name = "amount"
+
+    def convert(self, value: Any, param: click.Parameter | None, ctx: click.Context | None) -> Decimal:
+        try:
+            found = Decimal(str(value))
+        except InvalidOperation:
+            found = Decimal("NaN")
+        if not found.is_finite() or found <= 0:
+            self.fail(f"'{value}' is no number above 0.", param, ctx)
         return found
 
 
@@ -76,6 +93,10 @@ FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
 @click.option("--rates-stray", type=Strays(), metavar="HOW", help="Likewise the rates, haulier by haulier.")
 @click.option("--workers", type=click.IntRange(1, 256), metavar="N", help="Work on so many processes.")
 @click.option("--cluster", "address", metavar="ADDRESS", help="Work on the Dask cluster of this scheduler.")
+@click.option("--emission-factor", type=Amount(), metavar="KG",
+              help="Also trade cost off against emissions: your own kg CO2e per tonne-km.")  # fmt: skip
+@click.option("--source", default="", metavar="TEXT", help="Where that factor is from; it is printed.")
+@click.option("--tonnes-per-unit", type=Amount(), metavar="T", help="Weight of a unit that is not a weight.")
 @click.option("--json", "as_json", type=click.Path(dir_okay=False, allow_dash=True), metavar="FILE",
               help="Write every case as JSON; - is stdout.")  # fmt: skip
 @click.option("--out", type=click.Path(dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
@@ -94,6 +115,9 @@ def stress(
     rates_stray: Spread | None,
     workers: int | None,
     address: str | None,
+    emission_factor: Decimal | None,
+    source: str,
+    tonnes_per_unit: Decimal | None,
     as_json: str | None,
     out: Path | None,
 ) -> None:
@@ -110,6 +134,8 @@ def stress(
         raise click.UsageError(
             "Drawn weeks need to stray: give --orders-stray, --stock-stray or --rates-stray."
         )
+    if emission_factor is not None and not source.strip():
+        raise click.UsageError("Say where the emission factor is from: give --source.")
     if workers and address:
         raise click.UsageError("Give --workers or --cluster, not both.")
     reading = _read(ctx, week)
@@ -124,7 +150,10 @@ def stress(
     cases += [*all_by("orders", orders), *all_by("rates", rates), *drawn(draws, draw)]
     try:
         found = _run(plan, cases, workers, address)
-    except NoCluster as missing:
+        traded = None
+        if emission_factor is not None:
+            traded = frontier(plan, Emissions(emission_factor, source.strip(), tonnes_per_unit))
+    except (NoCluster, NoTradeOff, engine.TooLarge) as missing:
         click.echo(str(missing), err=True)
         ctx.exit(UNUSABLE)
     except NeedsWholeLoads as refused:
@@ -132,7 +161,9 @@ def stress(
         ctx.exit(UNUSABLE)
     if out is not None:
         made = engine.with_findings(plan, reading.findings)
-        engine.write_workbook(made, out, more=[stress_sheet(found, header_of(plan))])
+        sheets = [stress_sheet(found, header_of(plan))]
+        sheets += [] if traded is None else [trade_off_sheet(traded, header_of(plan))]
+        engine.write_workbook(made, out, more=sheets)
         click.echo(f"Wrote {out}", err=True)
     if as_json is not None:
         text = json.dumps(stress_as_json(found), ensure_ascii=False, indent=1)
@@ -142,7 +173,7 @@ def stress(
             Path(as_json).write_text(text + "\n", encoding="utf-8")
             click.echo(f"Wrote {as_json}", err=True)
     else:
-        click.echo("\n".join(_lines(found)))
+        click.echo("\n".join([*_lines(found), *([] if traded is None else _trade_off(traded))]))
     _tell(reading.findings)
     if found.stopped:
         click.echo(f"Stopped: {len(found.outcomes):,} of {found.asked:,} cases are done.", err=True)
@@ -196,6 +227,26 @@ def _stopping() -> Iterator[threading.Event]:
         yield stop
     finally:
         signal.signal(signal.SIGINT, before)
+
+
+def _trade_off(found: Frontier) -> list[str]:
+    rules, emissions = found.plan.week.rules, found.emissions
+    minor, first = minor_places(rules.currency), found.points[0]
+    lines = [
+        "",
+        f"Cost against emissions, {canonical(emissions.factor)} kg CO2e per tonne-kilometre "
+        f"({emissions.source})",
+        f"{rules.currency:>16}  {'kg CO2e':>16}  {'each kg less':>14}",
+    ]
+    for point in found.points:
+        each = "" if point.per_kg is None else f"{float(point.per_kg):.4f}"
+        cost = canonical(round_half_up(point.cost, minor))
+        lines.append(f"{cost:>16}  {canonical(round_half_up(point.emissions, 1)):>16}  {each:>14}".rstrip())
+    if len(found.points) == 1:
+        lines.append("The cheapest plan is also the one that emits least.")
+    if found.today.emissions != first.emissions:
+        lines.append(f"The plan as it stands emits {canonical(found.today.emissions)} kg at the same cost.")
+    return lines
 
 
 def _lines(found: Stressed) -> list[str]:

@@ -26,8 +26,10 @@ def frontier_chart(found: Frontier, picked: int | None, mark: str) -> None:
             "number": range(1, len(found.points) + 1),
         }
     )
-    across = alt.X("emissions:Q", title="Emissions, kg CO2e", scale=alt.Scale(zero=False))
-    up = alt.Y("cost:Q", title=f"Freight and charges, {rules.currency}", scale=alt.Scale(zero=False))
+    across = alt.X("emissions:Q", title="Emissions, kg CO2e", scale=alt.Scale(zero=False, padding=18))
+    up = alt.Y(
+        "cost:Q", title=f"Freight and charges, {rules.currency}", scale=alt.Scale(zero=False, padding=18)
+    )
     base = alt.Chart(frame).encode(
         x=across,
         y=up,

@@ -51,7 +51,7 @@ def test_json_and_the_workbook(tmp_path: Path) -> None:
     book = tmp_path / "plan.xlsx"
     status, out, err = run(
         SMALL, "--lose", "depots", "--draw", "40", "--seed", "9", "--orders-stray", "triangular -20 0 30",
-        "--json", "-", "--out", str(book),
+        "--json", "-", "--out", str(book), "--emission-factor", "0.062", "--source", "our fuel book",
     )  # fmt: skip
     assert status == 3
     said = json.loads(out)
@@ -63,6 +63,10 @@ def test_json_and_the_workbook(tmp_path: Path) -> None:
     sheet = load_workbook(book)["Stress"]
     assert len(sheet._charts) == 3
     assert "Quarry lost" in {cell.value for cell in sheet["A"]}
+    traded = load_workbook(book)["Trade-off"]
+    assert len(traded._charts) == 1
+    said_there = [cell.value for cell in traded["A"] if isinstance(cell.value, str)]
+    assert any("0.062" in text and "our fuel book" in text for text in said_there)
     assert engine.read_week(book).week == engine.read_week(SMALL).week
 
 
@@ -72,6 +76,8 @@ def test_json_and_the_workbook(tmp_path: Path) -> None:
         (["--draw", "5"], "need to stray"),
         (["--orders", "-200"], "no change in percent"),
         (["--draw", "5", "--orders-stray", "odd 1 2"], "does not say how a figure strays"),
+        (["--emission-factor", "0.06"], "give --source"),
+        (["--emission-factor", "none", "--source", "us"], "no number above 0"),
         (["--workers", "2", "--cluster", "tcp://127.0.0.1:9"], "not both"),
     ],
 )
@@ -79,6 +85,14 @@ def test_what_makes_no_sense_is_refused_with_2(options: list[str], said: str) ->
     status, out, err = run(SMALL, *options)
     assert (status, out) == (2, "")
     assert said in " ".join(err.split())
+
+
+def test_the_trade_off_is_told_with_its_source() -> None:
+    status, out, _ = run(
+        SMALL, "--lose", "nothing", "--emission-factor", "0.062", "--source", "our fuel book"
+    )
+    assert status == 3
+    assert "0.062 kg CO2e per tonne-kilometre (our fuel book)" in out
 
 
 def test_figures_that_cannot_be_used_are_2(tmp_path: Path) -> None:

