@@ -11,6 +11,23 @@ from openpyxl.chart.shapes import GraphicalProperties
 from engine.report.look import DEEP
 from engine.report.text import cell_text
 
+ROW_HEIGHT = 0.53
+"""Centimetres of a row of a sheet."""
+
+
+JOINED_HEIGHT = 10.0
+"""Centimetres of a chart of joined points."""
+
+
+def chart_rows(height: float) -> int:
+    """How many rows a chart covers, and one more."""
+    return int(height / ROW_HEIGHT) + 2
+
+
+def bars_height(bars: int) -> float:
+    """Centimetres of a chart of so many ranked bars."""
+    return max(6.0, 0.62 * bars + 2)
+
 
 def ranked_bars(sheet: Any, title: str, names: tuple[int, int, int], column: int, number: str) -> Any:
     """Bars to the right, the first row on top, each with its figure.
@@ -32,7 +49,7 @@ def ranked_bars(sheet: Any, title: str, names: tuple[int, int, int], column: int
     chart.x_axis.delete, chart.y_axis.delete = False, True
     chart.y_axis.majorGridlines = None
     chart.gapWidth = 50
-    chart.width, chart.height = 18, max(6.0, 0.62 * (last - first + 1) + 2)
+    chart.width, chart.height = 17, bars_height(last - first + 1)
     return chart
 
 
@@ -76,7 +93,7 @@ def joined_points(
     chart.x_axis.delete = chart.y_axis.delete = False
     chart.x_axis.majorGridlines = None
     chart.layout = Layout(ManualLayout(x=0.12, y=0.12, w=0.82, h=0.66))
-    chart.width, chart.height = 18, 10
+    chart.width, chart.height = 24, JOINED_HEIGHT
     return chart
 
 

@@ -10,36 +10,37 @@ from engine.compare.stress_solve import Outcome
 from engine.exact import canonical
 from engine.money import minor_places
 from engine.report.look import DEEP, Style, number_format, places_of
-from engine.report.native_charts import columns, ranked_bars
+from engine.report.native_charts import bars_height, chart_rows, columns, ranked_bars
 from engine.report.sheet import Row, Sheet, Value
 
-_WIDTHS = (44, 15, 16, 16, 16, 16, 17, 60)
+_WIDTHS = (44, 15, 16, 16, 16, 16, 17, 66)
 _MOST_BARS = 15
-_MOST_NAMED = 6
+_MOST_NAMED = 4
 _COUNT = "#,##0"
 
 
 def stress_sheet(stressed: Stressed, header: str) -> Sheet:
-    """The sheet; the named cases first, then the drawn weeks."""
-    rows = _cases(stressed)
+    """The sheet; the named cases first, then the drawn weeks. Charts stand where they print with it."""
     listed = len(stressed.ranked())
+    bars = min(listed, _MOST_BARS)
+    above = _about(stressed)
+    charts_at = len(above) + 1
+    rows = [*above, *([Row([])] * chart_rows(bars_height(bars)) if bars else []), *_cases(stressed)]
     first = len(rows) - listed + 1
     bins = histogram([one.total for one in stressed.drawn])
-    rows += _drawn(stressed, len(rows))
+    rows += _drawn(stressed)
     first_bin = next((at for at, row in enumerate(rows, 1) if row.values[:1] == ("From",)), 0) + 1
 
     def finish(sheet: Any) -> None:
-        bars = min(listed, _MOST_BARS)
         money, unit = stressed.plan.week.rules.currency, stressed.plan.week.rules.unit
         if bars:
             where = (1, first, first + bars - 1)
-            sheet.add_chart(ranked_bars(sheet, f"Dearer by, {money}", where, 3, _COUNT), "J3")
-            short = ranked_bars(sheet, f"More short, {unit}", where, 2, "#,##0.##")
-            sheet.add_chart(short, "U3")
+            sheet.add_chart(ranked_bars(sheet, f"More short, {unit}", where, 2, "#,##0.##"), f"A{charts_at}")
+            sheet.add_chart(ranked_bars(sheet, f"Dearer by, {money}", where, 3, _COUNT), f"E{charts_at}")
         if bins:
             where = (1, first_bin, first_bin + len(bins) - 1)
             axes = (f"Freight and charges from, {money}", "Drawn weeks")
-            sheet.add_chart(columns(sheet, "Cost of the drawn weeks", where, 3, axes), f"J{first_bin + 2}")
+            sheet.add_chart(columns(sheet, "Cost of the drawn weeks", where, 3, axes), f"E{first_bin - 8}")
 
     return Sheet("Stress", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
 
@@ -59,12 +60,9 @@ def strays_in_words(spread: Spread | None) -> str:
     return f"even between {low} % and {high} %{alike}"
 
 
-def _cases(stressed: Stressed) -> list[Row]:
-    rules, ranked = stressed.plan.week.rules, stressed.ranked()
-    money, quantity = _formats(stressed)
-    styles = [Style(), quantity, money, money, money, money, quantity, Style(wrap=True)]
-    quiet = [Style("quiet")]
-    rows = [
+def _about(stressed: Stressed) -> list[Row]:
+    rules, quiet = stressed.plan.week.rules, [Style("quiet")]
+    return [
         Row([f"Stress of {rules.week}"], [Style("title")], height=26),
         Row(
             [
@@ -84,6 +82,13 @@ def _cases(stressed: Stressed) -> list[Row]:
         *([Row([f"Stopped early: {len(stressed.outcomes):,} of {stressed.asked:,} cases were done."],
                [Style("strong")])] if stressed.stopped else []),
         Row([]),
+    ]  # fmt: skip
+
+
+def _cases(stressed: Stressed) -> list[Row]:
+    money, quantity = _formats(stressed)
+    styles = [Style(), quantity, money, money, money, money, quantity, Style()]
+    rows = [
         _headings("Case", "More short", "Dearer by", "Freight", "Charge for short", "Charge for unsent",
                   "Goes another way", "Who is hit"),
     ]  # fmt: skip
@@ -95,8 +100,7 @@ def _cases(stressed: Stressed) -> list[Row]:
             [style._replace(kind="total") for style in styles],
         )
     )  # fmt: skip
-    for one in ranked:
-        rows.append(Row(_cells(stressed, one), styles))
+    rows += [Row(_cells(stressed, one), styles) for one in stressed.ranked()]
     return rows
 
 
@@ -110,8 +114,8 @@ def _cells(stressed: Stressed, one: Outcome) -> list[Value]:
     ]  # fmt: skip
 
 
-def _drawn(stressed: Stressed, above: int) -> list[Row]:
-    """The part on drawn weeks, below so many rows."""
+def _drawn(stressed: Stressed) -> list[Row]:
+    """The part on drawn weeks."""
     drawn, draws = stressed.drawn, stressed.draws
     if not drawn or draws is None:
         return []

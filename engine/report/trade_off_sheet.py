@@ -7,7 +7,7 @@ from engine.compare.frontier import Frontier
 from engine.exact import canonical, total_of
 from engine.money import minor_places
 from engine.report.look import DEEP, Style, number_format
-from engine.report.native_charts import joined_points
+from engine.report.native_charts import JOINED_HEIGHT, chart_rows, joined_points
 from engine.report.sheet import Row, Sheet
 
 _WIDTHS = (14, 18, 18, 18, 18, 16, 18, 18)
@@ -36,8 +36,9 @@ def trade_off_sheet(found: Frontier, header: str) -> Sheet:
         *(Row([sentence], quiet) for sentence in about),
         *([] if found.complete else [Row(["The search was stopped: breakpoints are missing."], strong)]),
         Row([]),
-        _headings(rules.currency),
     ]
+    chart_at = len(rows) + 1
+    rows += [*([Row([])] * chart_rows(JOINED_HEIGHT)), _headings(rules.currency)]
     first = len(rows) + 1
     money = Style(number=number_format(minor_places(rules.currency)), align="right")
     kilograms, each = Style(number="#,##0.0", align="right"), Style(number="#,##0.0000", align="right")
@@ -58,7 +59,9 @@ def trade_off_sheet(found: Frontier, header: str) -> Sheet:
 
     def finish(sheet: Any) -> None:
         across, up = (2, "Emissions, kg CO2e"), (3, f"Freight and charges, {rules.currency}")
-        sheet.add_chart(joined_points(sheet, "Cost against emissions", (first, last), across, up), "J3")
+        sheet.add_chart(
+            joined_points(sheet, "Cost against emissions", (first, last), across, up), f"A{chart_at}"
+        )
 
     return Sheet("Trade-off", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
 
