@@ -100,6 +100,7 @@ def _one(state: Desk, kept: Uploaded, finding: Finding, key: str) -> None:
 def _answer(finding: Finding, key: str) -> str | None:
     """The answer that was picked: one click where the options are few."""
     if len(finding.options) <= FEW:
+        st.caption("The answer is remembered for the weeks to come.")
         with st.container(horizontal=True):
             clicked = [
                 st.button(plain(option), key=f"answer-{key}-{number}", type="primary")

@@ -61,7 +61,10 @@ def _ods_cell(value):
 
 
 def xlsb(sheets, name="week.xlsb"):
-    """(name, bytes) of a binary workbook, by the record numbers of [MS-XLSB] section 2.3."""
+    """(name, bytes) of a binary workbook, by the record numbers of [MS-XLSB] section 2.3.
+
+    A cell that is a pair is a number and its style: 1 and 2 show percent, 3 shows a mark that is only text.
+    """
     kind = "application/vnd.ms-excel.sheet.binary.macroEnabled.main"
     office = "http://schemas.openxmlformats.org/officeDocument/2006/relationships"
     package = "http://schemas.openxmlformats.org/package/2006"
@@ -88,6 +91,12 @@ def xlsb(sheets, name="week.xlsb"):
         + _record(144)
         + _record(132),
     }
+    formats = _record(44, struct.pack("<H", 164) + _wide('0.0%" of fuel"')) + _record(
+        44, struct.pack("<H", 165) + _wide('0" %"')
+    )
+    styles = b"".join(_record(47, struct.pack("<HH", 0, number) + bytes(12)) for number in (0, 10, 164, 165))
+    formats = _record(615, struct.pack("<I", 2)) + formats + _record(616)
+    parts["xl/styles.bin"] = formats + _record(617, struct.pack("<I", 4)) + styles + _record(618)
     for n, (_, rows) in numbered:
         parts[f"xl/worksheets/sheet{n}.bin"] = _binary_sheet(rows)
     return name, _packed(parts)
@@ -99,7 +108,10 @@ def _binary_sheet(rows):
     for number, row in enumerate(rows):
         body.append(_record(0, struct.pack("<IIHBBBI", number, 0, 300, 0, 0, 0, 0)))
         for column, value in enumerate(row):
-            head = struct.pack("<II", column, 0)
+            style = 0
+            if isinstance(value, tuple):
+                value, style = value
+            head = struct.pack("<II", column, style)
             if value is None or value == "":
                 continue
             if value in ERRORS:

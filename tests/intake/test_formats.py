@@ -3,6 +3,7 @@
 import contextlib
 import io
 import zipfile
+from decimal import Decimal
 from pathlib import Path
 
 import pytest
@@ -78,3 +79,12 @@ def test_several_files_and_formats_at_once():
     ]
     week = read_week(sources).week
     assert (len(week.depots), len(week.customers), len(week.rates)) == (2, 2, 4)
+
+
+def test_percent_formats_of_a_binary_workbook():
+    table = [["Depot", "Customer", "Rate", "Surcharge %"]]
+    table += [["Northgate", "Aster", 12.5, (0.125, 1)], ["Northgate", "Birch", 13, (0.04, 2)]]
+    table += [["Quarry", "Aster", 9, (4, 3)], ["Quarry", "Birch", 11, 5]]
+    sheets = {"Depots": DEPOTS, "Customers": CUSTOMERS, "Rates": table}
+    reading = read_week(xlsb(sheets))
+    assert [row.surcharge for row in reading.week.rates] == [Decimal("12.5"), 4, 4, 5]
