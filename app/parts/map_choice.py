@@ -37,12 +37,15 @@ def map_follows_list(view: str | None) -> Focus | None:
 
 def chosen_lanes(state: Desk, plan: Plan, lines: list[MapFlow]) -> list[MapFlow]:
     """The lanes that are wanted on the map: all, the dearest, those changed, those to who goes short."""
-    names = {ALL: "All lanes", DEAREST: "The dearest: half of the freight"}
+    names = {ALL: "All lanes on the map", DEAREST: "The dearest: half of the freight"}
     if state.issued is not None:
         names[CHANGED] = f"Changed since plan {state.issued.number}"
     if plan.short:
         names[SHORT] = "To customers who go short"
-    choice = st.selectbox("Lanes on the map", list(names), format_func=names.__getitem__, key="map-lanes")
+    choice = st.selectbox(
+        "Lanes on the map", list(names), format_func=names.__getitem__, key="map-lanes",
+        label_visibility="collapsed",
+    )  # fmt: skip
     if choice == DEAREST:
         kept = asked(plan, ("dearest lanes",), lambda: dearest_lanes(plan))
         return [line for line in lines if (line.depot, line.customer) in kept]
