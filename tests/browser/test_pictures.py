@@ -1,4 +1,4 @@
-"""The pictures in the README are made here: `HITHE_PICTURES=app python -m pytest tests/browser/test_pictures.py`.
+"""Makes the pictures of the README: `HITHE_PICTURES=app python -m pytest tests/browser/test_pictures.py`.
 
 Without that variable they are made in a folder of the test's own, so that a page that no longer can be
 pictured fails.
