@@ -29,6 +29,7 @@ class Draft:
     `named` is the draft with the names that the week has for its rows, where those on screen cannot be read.
     `week` is the one that `named` was last shown with. `again` counts fresh starts of this grid alone.
     `unread` are texts that are on screen and not in the week: the grid shows them when it starts afresh.
+    `clean` is the table as the week has it, and `made_of` what of the week it was made of, in which style.
     """
 
     key: str = ""
@@ -39,6 +40,8 @@ class Draft:
     named: pd.DataFrame = field(default_factory=pd.DataFrame)
     problems: tuple[CellProblem, ...] = ()
     unread: tuple[Unused, ...] = ()
+    made_of: tuple[object, NumberStyle] | None = None
+    clean: pd.DataFrame = field(default_factory=pd.DataFrame)
 
     @property
     def findings(self) -> list[Finding]:
@@ -69,7 +72,11 @@ def start(draft: Draft, week: Week, table: str, style: NumberStyle) -> list[Chan
 
     Returns the changes that those of them make which can be read by now.
     """
-    draft.named, draft.week = frame_of(week, table, style), week
+    part = getattr(week, table)
+    if draft.made_of is None or draft.made_of[0] is not part or draft.made_of[1] != style:
+        # A change shares what it did not touch: a depot's stock is no reason to write all rates anew.
+        draft.clean, draft.made_of = frame_of(week, table, style), (part, style)
+    draft.named, draft.week = draft.clean.copy(), week
     draft.problems = ()
     if not draft.unread:
         draft.draft = draft.named
