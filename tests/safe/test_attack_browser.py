@@ -15,6 +15,7 @@ from engine.records.depot_links import depot_link
 from tests.safe.attack import DEPOTS, attack_week
 from tests.safe.conftest import Start
 
+CHOICES = '[data-testid="stButtonGroup"] button, [role="tab"]'
 WORD_JOINER = "\u2060"  # stands unseen behind a colon, so that it begins no code
 PAGES = ("Figures", "Plan", "Reasons", "Compare", "Hand over", "Weeks")
 INJECTED = """() => {
@@ -79,10 +80,10 @@ def looked_at(page: Page, wrong: list[str], where: str) -> None:
 def every_view(page: Page, wrong: list[str], where: str) -> None:
     """Each choice of each row of buttons on the page."""
     looked_at(page, wrong, where)
-    for place in range(page.locator('[data-testid="stButtonGroup"] button, [role="tab"]').count()):
-        choice = page.locator('[data-testid="stButtonGroup"] button, [role="tab"]').nth(place)
+    choices = page.locator(CHOICES)
+    for name in dict.fromkeys(choices.all_inner_texts()):
+        choice = page.locator(CHOICES, has_text=re.compile(f"^{re.escape(name)}$")).first
         if choice.count() and choice.is_visible():
-            name = choice.inner_text()
             choice.click()
             looked_at(page, wrong, f"{where}, {name}")
     for opener in page.locator('[data-testid="stExpander"] summary').all():
@@ -157,5 +158,6 @@ def downloads(page: Page, folder: Path) -> None:
     for button in page.locator('[data-testid="stDownloadButton"] button:visible').all():
         with page.expect_download(timeout=60_000) as download:
             button.click()
+        settled(page)
         assert re.fullmatch(r"[A-Za-z0-9_-]{1,100}\.(xlsx|zip|csv|json)", download.value.suggested_filename)
         download.value.save_as(folder / download.value.suggested_filename)
