@@ -66,12 +66,14 @@ def build_figures(
     taught = _taught(answers)
     columns = _said_of_rates(answers)
     found = _found(sheets, taught, columns, known)
-    products, product, about_products, left = _products(sheets, found, answers, known, product)
+    of = _by_kind(found)
+    grids, no_rates = _grids(found, of, sheets, known)
+    products, product, about_products, left = _products(sheets, found, grids, answers, product)
     if left is not sheets:
         sheets = left
         found = _found(sheets, taught, columns, known)
-    of: dict[str, list[Table]] = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
-    grids, no_rates = _grids(found, of, sheets, known)
+        of = _by_kind(found)
+        grids, no_rates = _grids(found, of, sheets, known)
     stated = stated_by(of["rules"], answers)
     if known is not None:
         stated = {"unit": known.rules.unit, "currency": known.rules.currency, **stated}
@@ -139,16 +141,18 @@ def _said_of_rates(answers: Answers) -> dict[str, str]:
     return said
 
 
+def _by_kind(found: Found) -> dict[str, list[Table]]:
+    return {kind: [table for table in found.tables if table.kind == kind] for kind in TITLES}
+
+
 def _products(
-    sheets: Sequence[Sheet], found: Found, answers: Answers, known: Week | None, asked: str | None
+    sheets: Sequence[Sheet], found: Found, grids: Sequence[Grid], answers: Answers, asked: str | None
 ) -> tuple[tuple[str, ...], str | None, list[Finding], Sequence[Sheet]]:
     """The products that are named, the one to read where they are several, and the sheets with its rows only.
 
     No sheets are left where it has to be asked first. An answer given earlier counts where nothing is asked
     for and the figures name that product.
     """
-    of = {kind: [t for t in found.tables if t.kind == kind] for kind in TITLES}
-    grids, _ = _grids(found, of, sheets, known)
     products = products_in(found, grids)
     answered = answers.to(SEVERAL, SUBJECT)
     product = named_among(asked or answered or "", products)

@@ -50,7 +50,9 @@ def about_dittos(sheet: Sheet, rows: range, columns: Iterable[int]) -> list[Find
     """That ditto marks in columns of names were read as the names above them."""
     findings = []
     for column in columns:
-        places = [number for number in rows if is_ditto(sheet.rows[number][column])]
+        cells = [sheet.rows[number][column] for number in rows]
+        marks = {cell for cell in set(cells) if is_ditto(cell)}
+        places = [number for number, cell in zip(rows, cells, strict=True) if cell in marks] if marks else []
         if places:
             findings.append(
                 Finding(
