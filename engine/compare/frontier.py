@@ -17,6 +17,7 @@ from math import gcd
 import numpy as np
 import numpy.typing as npt
 
+from engine.compare.stress_ground import is_no_network
 from engine.exact import BLANK, LARGEST, TooLarge, places_needed, to_decimal, to_integer, total_of
 from engine.figures import RateKey
 from engine.network import Flow, Problem, least_cost
@@ -119,7 +120,7 @@ def frontier(
         stop: asked now and then; once it says so, what is found is kept, widest gaps closed first.
 
     Raises:
-        NoTradeOff: a used rate row has no Km, or the week has no unit of weight.
+        NoTradeOff: a used rate row has no Km, the week has no unit of weight, or it is no plain network.
         TooLarge: cost and emissions together do not fit the exact integers.
     """
     ground = _ground(plan, emissions)
@@ -249,6 +250,8 @@ _TOO_LARGE = (
 
 
 def _ground(plan: Plan, emissions: Emissions) -> _Ground:
+    if is_no_network(plan):
+        raise NoTradeOff("A week with whole loads or single depots cannot be traded off exactly yet.")
     model, flat = plan.model, plan.week.rates.flat
     kilograms = emissions.per_unit_km(plan.week.rules.unit)
     column = flat.decimals.get("km")

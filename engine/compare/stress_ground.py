@@ -24,7 +24,6 @@ from engine.planning.model import EVEN_SHARE, NO_RATE, Model, model_of, step_of
 from engine.planning.plan import Plan
 from engine.planning.prices import limits_of
 from engine.rates import NO_CODE, Codes
-from engine.week import Week
 
 Integers = npt.NDArray[np.int64]
 Flags = npt.NDArray[np.bool_]
@@ -153,7 +152,7 @@ def ground_of(plan: Plan) -> Ground:
         TooLarge: quantities rounded to the week's step do not fit the exact integers.
     """
     week = plan.week
-    if is_no_network(week):
+    if is_no_network(plan):
         raise NeedsWholeLoads(
             "The week has whole loads, trip minimums, charges per use, smallest drops or single depots."
         )
@@ -182,14 +181,16 @@ def ground_of(plan: Plan) -> Ground:
     )
 
 
-def is_no_network(week: Week) -> bool:
+def is_no_network(plan: Plan) -> bool:
     """Whether whole loads, charges per use, smallest drops or a choice of single depots play a part."""
+    week = plan.week
     flat = week.rates.flat
     charged = [
         flat.decimals[name].values for name in ("trip_minimum", "charge_per_use") if name in flat.decimals
     ]
     return bool(
-        any((values > 0).any() for values in charged)
+        getattr(plan, "whole", None) is not None
+        or any((values > 0).any() for values in charged)
         or flat.per_load.any()
         or any(c.smallest_drop or c.one_depot == ANY_SINGLE_DEPOT for c in week.customers.values())
     )

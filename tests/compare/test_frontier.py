@@ -11,8 +11,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.optimize import linprog
 
+from engine.compare import frontier as module
 from engine.compare.frontier import Emissions, Frontier, NoTradeOff, frontier, sent_at
-from engine.exact import total_of
+from engine.compare.stress_ground import NeedsWholeLoads, ground_of
+from engine.exact import TooLarge, total_of
 from engine.figures import Customer, Depot, Hold, Order, RateKey, RateRow
 from engine.planning.model import NO_RATE
 from engine.planning.plan import Plan
@@ -248,3 +250,32 @@ def test_holds_stay() -> None:
     assert total_of(sent_at(found, found.points[-1]).values()) == total_of(
         one.quantity for one in found.plan.shipments
     )
+
+
+def test_slopes_with_too_many_digits_are_rounded_and_no_point_is_lost(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    """With less room for whole numbers the first slopes do not fit; the last, narrower ones do."""
+    plan = plan_week(drawn_week(4, 12, 1))
+    whole = [(p.cost, p.emissions) for p in frontier(plan, FACTOR).points]
+    for bits in range(60, 20, -1):
+        monkeypatch.setattr(module, "LARGEST", 2**bits)
+        try:
+            found = [(p.cost, p.emissions) for p in frontier(plan, FACTOR).points]
+        except TooLarge:
+            break
+        assert found == whole
+    assert bits < 40
+
+
+def test_a_week_of_whole_loads_is_refused() -> None:
+    plan = plan_week(drawn_week(2, 3, 1))
+    week = plan.week
+    rows = tuple(replace(row, per="load") for row in week.rates)
+    loads = replace(
+        plan, week=Week.of(tuple(week.depots.values()), tuple(week.customers.values()), rows, week.rules)
+    )
+    with pytest.raises(NoTradeOff, match="whole loads"):
+        frontier(loads, FACTOR)
+    with pytest.raises(NeedsWholeLoads, match="whole loads"):
+        ground_of(loads)
