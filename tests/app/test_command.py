@@ -14,6 +14,7 @@ import engine
 import sample_data
 from app.command import main
 from tests.browser.conftest import environment
+from tests.intake.sheets import workbook
 
 SMALL = str(sample_data.path(sample_data.SMALL_WEEK))
 MESSY = str(sample_data.path(sample_data.MESSY_WEEK))
@@ -162,3 +163,19 @@ def test_records_that_cannot_be_opened_are_said_before_the_desk_opens(tmp_path: 
     ended = CliRunner().invoke(main, ["desk", "--no-browser", "--records", "mysql://a@b/c"])
     assert ended.exit_code == 2
     assert "postgresql://USER@HOST/DATABASE" in ended.stderr
+
+
+def test_the_product_is_named_where_there_are_several(tmp_path: Path) -> None:
+    from tests.intake.test_answers import PRODUCTS
+
+    file = tmp_path / "week.xlsx"
+    file.write_bytes(workbook(PRODUCTS)[1])
+    asked = hithe("check", str(file))
+    assert asked.exit_code == 2
+    assert "--product 'Lime'" in asked.stderr
+    named = hithe("check", str(file), "--product", "ash")
+    assert named.exit_code == 0
+    assert "8 t ordered, 20 t available" in named.stdout
+    wrong = hithe("plan", str(file), "--product", "Sand")
+    assert wrong.exit_code == 2
+    assert "the figures are of Lime, Ash" in wrong.stderr
