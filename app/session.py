@@ -88,6 +88,11 @@ class Desk:
         self.issued = None
 
     @property
+    def only_reads(self) -> bool:
+        """Whether the week was opened by its link for reading only."""
+        return self.kept is not None and not self.kept.may_change
+
+    @property
     def near(self) -> Quantities | None:
         """What later plans stay nearest to: the plan issued last, None before the first."""
         return None if self.issued is None else self.issued.quantities

@@ -35,6 +35,8 @@ else:
     else:
         cost_line(plan, state.decimal_mark)
         proposal(state)
+        if state.only_reads:
+            st.caption("🔒 This link is for reading only: the grids show the plan and take no edits.")
         follow_the_map(plan)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:

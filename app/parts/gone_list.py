@@ -22,7 +22,8 @@ def gone_list(state: Desk, plan: Plan) -> None:
         "count it too."
     )
     _table(state)
-    _form(state, plan)
+    if not state.only_reads:
+        _form(state, plan)
 
 
 def _table(state: Desk) -> None:
@@ -51,6 +52,8 @@ def _table(state: Desk) -> None:
         selection_mode="multi-row",
         column_config={name: right(alignment="right") for name in ("Quantity", "Rate", "Cost")},
     )
+    if state.only_reads:
+        return
     rows = chosen["selection"]["rows"] if chosen else []
     wrong = tuple(Remove("gone", gone[row].name) for row in rows if row < len(gone))
     if st.button("Take the chosen out: they have not gone", disabled=not wrong, key="not-gone"):

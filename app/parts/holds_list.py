@@ -15,7 +15,7 @@ def holds_list(state: Desk, plan: Plan) -> None:
     """A table of holds with their price, and a button to lift those that are chosen."""
     holds = plan.week.holds
     if not holds:
-        st.caption("Nothing is held. Type a quantity in the plan to hold it.")
+        st.caption("Nothing is held." if state.only_reads else "Nothing is held. Type a quantity to hold it.")
         return
     if len(holds) > MOST_PRICED:
         st.caption(f"{counted(len(holds), 'hold')}: too many to price one by one.")
@@ -49,6 +49,8 @@ def holds_list(state: Desk, plan: Plan) -> None:
             ),
         },
     )
+    if state.only_reads:
+        return
     rows = chosen["selection"]["rows"] if chosen else []
     lift = all_lifted(priced[row].key for row in rows if row < len(priced))
     if st.button("Lift the chosen holds", disabled=lift is None, key="lift-chosen") and lift is not None:

@@ -38,9 +38,11 @@ def matrix_grid(state: Desk, plan: Plan) -> None:
         hide_index=True,
         height=560,
         column_config=config,
+        disabled=state.only_reads,
         alt="Plan as a matrix: customers down, depots across",
     )
-    _take_edits(state, plan, depots, customers, base, edited)
+    if not state.only_reads:
+        _take_edits(state, plan, depots, customers, base, edited)
 
 
 def _frame(state: Desk, plan: Plan, depots: list[str], customers: list[str]) -> pd.DataFrame:

@@ -46,10 +46,12 @@ def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
         key=f"shipments-{state.generation}-{by}-{view.name}-{view.unused}-{view.limits}",
         hide_index=True,
         height=520,
-        disabled=[name for name in base.columns if name not in typed],
+        disabled=True if state.only_reads else [name for name in base.columns if name not in typed],
         column_config=_config(plan),
         alt="Shipments of the plan: depot, customer, haulier, quantity, rate and cost",
     )
+    if state.only_reads:
+        return
     _take_edits(state, shown, base, edited)
     _hold_many(state, shown, view)
 

@@ -56,7 +56,8 @@ def steady(state: Desk, plan: Plan) -> None:
     _table(state, found)
     trade_chart(found, plan.week.rules.currency)
     _longer(plan, state.issued, found)
-    _pick(state, found)
+    if not state.only_reads:
+        _pick(state, found)
     st.caption(
         "A lane is a depot, a customer and a haulier, changed where its quantity of the week is another. "
         "Only plans that leave nobody shorter than the least-cost plan are compared."

@@ -9,10 +9,10 @@ from dataclasses import dataclass, replace
 from decimal import Decimal
 from typing import Any
 
-from engine.changes import Add, Alter, Change, Together
+from engine.changes import Add, Alter, Change, Remove, Together
 from engine.columns import RULE_COLUMNS
 from engine.exact import canonical
-from engine.figures import RateKey, RateRow
+from engine.figures import Gone, RateKey, RateRow
 from engine.findings import Finding, by_gravity
 from engine.intake.answers import Answers
 from engine.intake.cells import Source
@@ -71,6 +71,7 @@ def read_part(
         ("customers", _customers),
         ("rates", _rates),
         ("rules", _rules),
+        ("gone", _gone),
     ):
         if table in reading.tables:
             more, said = compare(reading, week)
@@ -167,6 +168,36 @@ def _rates(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
     return changes, told
 
 
+def _gone(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
+    """What has gone by the upload: new loads come in, one told otherwise is replaced, the rest stays."""
+    changes: list[Change] = []
+    told: list[str] = []
+    unit = week.rules.unit
+    depots = {folded(name): name for name in week.depots}
+    customers = {folded(name): name for name in week.customers}
+    for name, said in reading.week.gone.items():
+        depot = depots.get(folded(said.depot), said.depot)
+        load = replace(said, depot=depot, customer=customers.get(folded(said.customer), said.customer))
+        before = week.gone.get(name)
+        if before == load:
+            continue
+        what = f"{canonical(load.quantity)} {unit} from {load.depot} to {load.customer}"
+        if before is None:
+            told.append(f"Load {name} has gone: {what}.")
+        else:
+            changes.append(Remove("gone", name))
+            told.append(f"Load {name} has gone otherwise than it said: {what}{_by(load)}.")
+        changes.append(Add(load))
+    left = len(week.gone.keys() - reading.week.gone.keys())
+    if left:
+        told.append(
+            f"{left} loads that have gone are not in the upload and stay."
+            if left > 1
+            else "1 load that has gone is not in the upload and stays."
+        )
+    return changes, told
+
+
 def _altered(week: Week, key: RateKey, row: RateRow, fields: set[str]) -> tuple[list[Change], list[str]]:
     number = week.rates.find(key)
     current = None if number is None else week.rates.row(number)
@@ -203,7 +234,7 @@ def _rules(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
     return changes, told
 
 
-def _by(row: RateRow) -> str:
+def _by(row: RateRow | Gone) -> str:
     return f" by {row.haulier}" if row.haulier else ""
 
 
