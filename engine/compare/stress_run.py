@@ -10,6 +10,7 @@ from concurrent.futures import FIRST_COMPLETED, Executor, Future, ProcessPoolExe
 from concurrent.futures.process import BrokenProcessPool
 from dataclasses import dataclass, field
 from multiprocessing import get_context
+from signal import SIG_IGN, SIGINT, signal
 
 from engine.compare.stress_cases import Case
 from engine.compare.stress_ground import Ground
@@ -116,7 +117,13 @@ def part_of(ground: Ground, cases: Sequence[Case]) -> tuple[list[Outcome], float
 
 def processes(workers: int) -> ProcessPoolExecutor:
     """An executor of processes of this machine that are started afresh, their machine code loaded."""
-    return ProcessPoolExecutor(workers, mp_context=get_context("spawn"), initializer=ready)
+    return ProcessPoolExecutor(workers, mp_context=get_context("spawn"), initializer=_begin)
+
+
+def _begin() -> None:
+    """A worker leaves a stop from the keyboard to the process that started it, which keeps what is done."""
+    signal(SIGINT, SIG_IGN)
+    ready()
 
 
 def ready() -> bool:

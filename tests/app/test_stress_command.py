@@ -1,6 +1,7 @@
 """`hithe stress` as a person runs it: statuses, tables, JSON, a workbook that reads back as the same week."""
 
 import json
+import signal
 from pathlib import Path
 
 import pytest
@@ -9,6 +10,11 @@ from openpyxl import load_workbook
 
 import engine
 from app.command import main
+from app.stress_command import _stopping
+from engine.compare import stress_run
+from engine.compare.stress_cases import Case
+from engine.compare.stress_ground import Ground
+from engine.compare.stress_solve import Outcome
 
 SMALL = "sample_data/small_week.xlsx"
 HEADINGS = "Depot,Available\n", "Customer,Ordered\n", "Depot,Customer,Rate,Haulier\n"
@@ -100,3 +106,31 @@ def test_figures_that_cannot_be_used_are_2(tmp_path: Path) -> None:
     bad.write_text("Depot,Available\nNorth,many\n")
     status, out, _ = run(str(bad))
     assert (status, out) == (2, "")
+
+
+def test_the_first_ctrl_c_asks_for_a_stop_and_the_second_ends() -> None:
+    with _stopping() as stop:
+        assert not stop.is_set()
+        signal.raise_signal(signal.SIGINT)
+        assert stop.is_set()
+        with pytest.raises(KeyboardInterrupt):
+            signal.raise_signal(signal.SIGINT)
+
+
+def test_a_stopped_run_keeps_what_is_done_and_answers_130(
+    plenty: list[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    solve, solved = stress_run.outcome_of, []
+
+    def third_time(ground: Ground, case: Case) -> Outcome:
+        solved.append(case)
+        if len(solved) == 3:
+            signal.raise_signal(signal.SIGINT)
+        return solve(ground, case)
+
+    monkeypatch.setattr(stress_run, "outcome_of", third_time)
+    options = ["--lose", "depots", "--draw", "50", "--rates-stray", "even 0 5", "--json", "-"]
+    status, out, err = run(*plenty, *options)
+    assert status == 130
+    assert json.loads(out)["done"] == 3
+    assert "Stopped: 3 of 52 cases are done." in err

@@ -82,7 +82,7 @@ def may_be(week: Week, name: str, priority: str) -> bool:
     return not customer.may_decline and (customer.priority or "C") == priority
 
 
-@settings(deadline=None, max_examples=40)
+@settings(deadline=None, max_examples=25)
 @given(weeks())
 def test_every_case_costs_what_a_fresh_plan_of_the_altered_week_costs(week: Week) -> None:
     plan = planned(week)
@@ -93,7 +93,7 @@ def test_every_case_costs_what_a_fresh_plan_of_the_altered_week_costs(week: Week
         agree(week, case, outcome_of(ground, case))
 
 
-@settings(deadline=None, max_examples=25)
+@settings(deadline=None, max_examples=15)
 @given(weeks(), st.sampled_from(["0.5", "2", "0.25"]))
 def test_even_shares_gone_goods_and_steps_are_kept(week: Week, step: str) -> None:
     rules = replace(week.rules, when_short="even share", step=D(step))
@@ -109,7 +109,7 @@ def test_even_shares_gone_goods_and_steps_are_kept(week: Week, step: str) -> Non
         agree(week, case, outcome_of(ground, case))
 
 
-@settings(deadline=None, max_examples=40)
+@settings(deadline=None, max_examples=15)
 @given(weeks())
 def test_few_rows_at_first_give_the_same_as_all(week: Week) -> None:
     plan = planned(week)
@@ -130,7 +130,7 @@ def test_a_lost_depot_against_linear_programming() -> None:
     """The same outcome as HiGHS finds aim by aim for the altered week (an independent solver)."""
     seen = 0
 
-    @settings(deadline=None, max_examples=50)
+    @settings(deadline=None, max_examples=30)
     @given(weeks())
     def check(week: Week) -> None:
         nonlocal seen
