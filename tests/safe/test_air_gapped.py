@@ -32,6 +32,7 @@ def test_no_page_and_no_process_asks_anybody_outside(
     context = chromium.new_context(viewport={"width": 1280, "height": 900})
     asked: list[str] = []
     context.on("request", lambda request: asked.append(request.url))
+    context.set_default_timeout(90_000)
     page = context.new_page()
     page.on("websocket", lambda socket: asked.append(socket.url))
     page.goto(desk)

@@ -44,6 +44,7 @@ INJECTED = """() => {
 def watched(chromium: Browser) -> Iterator[tuple[Page, list[str]]]:
     """A page, and what should not have happened on it."""
     context = chromium.new_context(viewport={"width": 1280, "height": 900}, accept_downloads=True)
+    context.set_default_timeout(90_000)
     page, wrong = context.new_page(), []
     page.on("dialog", lambda dialog: (wrong.append(f"dialog: {dialog.message}"), dialog.dismiss()))
     page.on("popup", lambda other: wrong.append(f"window: {other.url}"))
