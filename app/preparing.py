@@ -1,5 +1,6 @@
 """The solver's machine code is made once after installation; what the desk shows while that goes on."""
 
+import gc
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -24,6 +25,24 @@ def _prepare() -> None:
         prepare_reasons()
     finally:
         _done.set()
+    _settle()
+
+
+def _settle() -> None:
+    """Take what stays until the end out of the garbage collector's rounds.
+
+    Streamlit has all objects of the process looked through after every run of a page, also where a page only
+    asks whether others changed the week; most of them are modules, which never become garbage.
+    """
+    import altair
+    import pydeck
+
+    import engine.compare
+    import engine.report
+
+    _ = altair, pydeck, engine
+    gc.collect()
+    gc.freeze()
 
 
 @contextmanager

@@ -23,7 +23,8 @@ def let_in() -> bool:
     said = claims()
     if somebody(said) is not None:
         return True
-    with st.container(key="door", border=True, width=520):
+    middle = st.container(horizontal_alignment="center", key="doorway")
+    with middle.container(key="door", border=True, width=520):
         st.title("Hithe", anchor=False)
         if not said:
             _sign_in("The week's plan of this freight desk. Sign in to work on it or to read it.", sign_in)

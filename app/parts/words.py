@@ -7,13 +7,15 @@ from engine.exact import canonical
 from engine.money import minor_places, round_half_up
 
 _PUNCTUATION = re.compile(r"([!-/:-@\[-`{-~])")
+_WOULD_LINK = re.compile(r"\\[:@]|\bwww(?=\\\.)", re.IGNORECASE)
 _WORD_JOINER = "\u2060"
 
 
 def plain(text: str) -> str:
     """A name or note that a person typed, safe inside Markdown: every mark is escaped, no code forms."""
     escaped = _PUNCTUATION.sub(r"\\\1", " ".join(text.split()))
-    return escaped.replace(r"\:", rf"\:{_WORD_JOINER}")
+    # Neither codes like :icon: nor bare addresses can be escaped: a word joiner, unseen, breaks them.
+    return _WOULD_LINK.sub(rf"\g<0>{_WORD_JOINER}", escaped)
 
 
 def number(value: Decimal, mark: str = ".", places: int | None = None) -> str:
