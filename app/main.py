@@ -12,6 +12,7 @@ from app.parts.door import let_in, who_is_here
 from app.parts.others import clashes, news, watch
 from app.parts.words import counted, plain
 from app.rights import person
+from app.search_time import seconds_of_desk
 from app.session import Desk, desk, read_files
 
 HERE = Path(__file__).parent
@@ -26,6 +27,7 @@ def opened_at_start(state: Desk) -> tuple[str, ...]:
     if state.started:
         return ()
     state.started = True
+    state.searching.seconds = seconds_of_desk()
     named = tuple(sys.argv[1:])
     if named_in_address(state) or not named or made_at_start(state, named):
         return ()

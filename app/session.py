@@ -1,6 +1,6 @@
 """One desk's state in one browser session: the list of changes, the plan it leads to, what was said."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Hashable, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import Any
@@ -10,6 +10,7 @@ import streamlit as st
 import engine
 from app.drafts import Draft, opened, renamed, unread_in
 from app.kept import Kept
+from app.search import Searching, longer, needs_search, search
 from engine.changes import Change, SetHold, Together
 from engine.findings import Finding, Severity, by_gravity
 from engine.history import Entry, History
@@ -55,6 +56,7 @@ class Desk:
     news: tuple[Entry, ...] = ()
     clashes: tuple[Clash, ...] = ()
     issued: Issued | None = None
+    searching: Searching = field(default_factory=Searching)
 
     @property
     def week(self) -> Week:
@@ -129,6 +131,8 @@ class Desk:
             alone = len(self.history.entries) == made + 1
             if proposed.plan is not None and not why and alone:
                 self.planned_for, self.plan, self.stopped = self.week, proposed.plan, ()
+                if proposed.plan.whole is not None and not proposed.plan.proof.exact:
+                    self.search_on()
             self.start_afresh()
 
     def take_back(self) -> None:
@@ -222,9 +226,32 @@ class Desk:
             self.stopped, self.planned_for = tuple(stopping), None
             return None
         if self.planned_for is not self.week:
-            plan, self.stopped = try_plan(self.week, near=self.near or self.plan)
+            plan, self.stopped = try_plan(lambda: self._plan_of(self.week))
             self.planned_for, self.plan = self.week, plan
         return self.plan
+
+    def _plan_of(self, week: Week) -> engine.Plan:
+        if needs_search(week):
+            return search(self.searching, self.search_key, len(self.history.entries), week, self.plan)
+        self.searching.job = None
+        return engine.plan_week(week, near=self.near or self.plan)
+
+    @property
+    def search_key(self) -> Hashable:
+        """What a search for this desk goes by: the week in the records, so that every tab finds it."""
+        return id(self) if self.kept is None else self.kept.week_id
+
+    def take_best(self) -> None:
+        """Show the best plan that the search has come to."""
+        job = self.searching.job
+        if job is not None and self.planned_for is self.week:
+            self.plan = job.so_far()
+            self.start_afresh()
+
+    def search_on(self) -> None:
+        """Search on from the plan on screen, for the time that the desk gives."""
+        if self.plan is not None and self.planned_for is self.week:
+            longer(self.searching, self.search_key, len(self.history.entries), self.plan)
 
 
 def reasoned(change: Change, why: str) -> Change:
@@ -244,12 +271,10 @@ def desk() -> Desk:
     return found
 
 
-def try_plan(
-    week: Week, near: engine.Plan | Quantities | None
-) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
+def try_plan(make: Callable[[], engine.Plan]) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
     """The week's plan, or the findings that stop it."""
     try:
-        return engine.plan_week(week, near=near), ()
+        return make(), ()
     except engine.NotPlannable as stopped:
         return None, stopped.findings
     except engine.TooLarge as too_large:

@@ -13,7 +13,7 @@ from engine.week import Week
 class Altered:
     """One figure that differs; None for `before` or `after` is a blank, or a record that is not there.
 
-    what: 'depot', 'customer', 'rate', 'rule', 'hold' or 'gone'; field: empty for a whole record
+    what: 'depot', 'customer', 'rate', 'haulier', 'rule', 'hold' or 'gone'; field: empty for a whole record
     """
 
     what: str
@@ -32,6 +32,7 @@ def altered(before: Week, after: Week) -> tuple[Altered, ...]:
         *_records("depot", before.depots, after.depots),
         *_records("customer", before.customers, after.customers),
         *_rates(before.rates, after.rates),
+        *_records("haulier", before.hauliers, after.hauliers),
         *_fields("rule", "", before.rules, after.rules),
         *_whole("hold", before.holds, after.holds),
         *_whole("gone", before.gone, after.gone),

@@ -3,27 +3,27 @@
 from dataclasses import dataclass
 from typing import Any, Literal
 
-from engine.figures import Customer, Depot, Gone, RateKey, RateRow
+from engine.figures import Customer, Depot, Gone, Haulier, RateKey, RateRow
 
-What = Literal["depot", "customer", "rate", "rule", "gone"]
+What = Literal["depot", "customer", "rate", "rule", "gone", "haulier"]
 Key = str | RateKey
 
 
 @dataclass(frozen=True, slots=True)
 class Add:
-    """Put in a depot, a customer, a rate row, or a quantity that has gone.
+    """Put in a depot, a customer, a rate row, a haulier, or a quantity that has gone.
 
     `place` is the position among its like, or the id of a rate row that was taken
     out before and comes back; None puts it last.
     """
 
-    record: Depot | Customer | RateRow | Gone
+    record: Depot | Customer | RateRow | Haulier | Gone
     place: int | None = None
 
 
 @dataclass(frozen=True, slots=True)
 class Remove:
-    """Take out a depot, a customer, a rate row, or a quantity that was said to have gone."""
+    """Take out a depot, a customer, a rate row, a haulier, or a quantity that was said to have gone."""
 
     what: What
     key: Key
@@ -35,7 +35,7 @@ class Alter:
 
     The field `name` of a depot or customer renames it everywhere. What has gone is altered whole: take it
     out and put it in again. The lane and haulier of a rate row
-    are what names it: to alter those, remove the row and add another.
+    are what names it: to alter those, remove the row and add another; likewise the name of a haulier.
     """
 
     what: What

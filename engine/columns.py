@@ -45,6 +45,7 @@ DEPOT_COLUMNS = (
     Column("Must move", "must_move", Kind.QUANTITY, "The part of Available that should leave this week"),
     Column("Charge if unsent", "charge_if_unsent", Kind.CHARGE, "Cost per unit kept; negative is a credit"),
     Column("Loads a day", "loads_a_day", Kind.COUNT, "How many vehicles it can load in a day"),
+    Column("Opening charge", "opening_charge", Kind.PRICE, "Paid once if anything is sent this week"),
     Column("Latitude", "latitude", Kind.LATITUDE, "Degrees, north is positive"),
     Column("Longitude", "longitude", Kind.LONGITUDE, "Degrees, east is positive"),
 )
@@ -74,13 +75,25 @@ RATE_COLUMNS = (
     Column("At least", "at_least", Kind.QUANTITY, "This much goes on the row, whatever it costs"),
     Column("At most", "at_most", Kind.QUANTITY, "No more than this goes on the row"),
     Column("Closed", "closed", Kind.YES, "yes: nothing goes on the row"),
-    Column("Load size", "load_size", Kind.QUANTITY, "What one vehicle carries; blank takes the week's"),
+    Column(
+        "Load size",
+        "load_size",
+        Kind.QUANTITY,
+        "One vehicle carries it; blank: the haulier's, or the week's",
+    ),
     Column("Trip minimum", "trip_minimum", Kind.PRICE, "The least a load is charged"),
     Column("Charge per use", "charge_per_use", Kind.PRICE, "Paid once in the week if the row is used at all"),
     Column("Surcharge %", "surcharge", Kind.PERCENT, "On top of the rate; blank takes the week's"),
     Column("Valid from", "valid_from", Kind.DATE, "First day of the rate"),
     Column("Km", "km", Kind.DISTANCE, "Length of the lane"),
 )
+
+HAULIER_COLUMNS = (
+    Column("Haulier", "name", Kind.NAME, "As it is called on Rates", needed=True),
+    Column("At most", "at_most", Kind.QUANTITY, "What it carries in the whole week, over all its lanes"),
+    Column("Load size", "load_size", Kind.QUANTITY, "What one of its vehicles carries; blank: the week's"),
+)
+"""An optional sheet: hauliers of whom there is something to say."""
 
 RULE_COLUMNS = (
     Column("Week", "week", Kind.TEXT, "What the week is called"),
@@ -93,6 +106,7 @@ RULE_COLUMNS = (
         "Charge if short", "charge_if_short", Kind.PRICE, "Per unit, where a customer has none of its own"
     ),
     Column("Step", "step", Kind.QUANTITY, "What even shares are rounded down to, a pallet for instance"),
+    Column("Days", "days", Kind.COUNT, "Loading days of the week, for Loads a day; blank is 5"),
 )
 """The rows of the *Rules* sheet (its own headings are Rule and Value)."""
 

@@ -16,6 +16,9 @@ PRIORITIES = ("A", "B", "C")
 """Who is served first when goods run short; a blank priority counts as the last of them."""
 
 WHEN_SHORT = ("charge", "priority", "even share")
+USUAL_DAYS = 5
+"""Loading days of a week where the desk says nothing: Monday to Friday (common practice)."""
+
 ANY_SINGLE_DEPOT = "yes"
 """What *One depot* holds when any single depot will do; otherwise it holds that depot's name."""
 
@@ -28,6 +31,8 @@ class Depot:
 
     `must_move` is the part of `available` that should leave this week (blank: none).
     `charge_if_unsent` is per unit kept: a cost when positive, a credit when negative (blank: 0).
+    `loads_a_day` is how many vehicles it can load in a day (blank: any number); `opening_charge` is due once
+    if anything is sent this week (blank: none).
     """
 
     name: str
@@ -37,6 +42,20 @@ class Depot:
     loads_a_day: Decimal | None = None
     latitude: Decimal | None = None
     longitude: Decimal | None = None
+    opening_charge: Decimal | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Haulier:
+    """Somebody who carries goods, where there is anything to say of it.
+
+    `at_most` is what it carries in the whole week over all its lanes (blank: no limit); `load_size` is what
+    one of its vehicles carries, where a rate row says nothing else.
+    """
+
+    name: str
+    at_most: Decimal | None = None
+    load_size: Decimal | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -86,8 +105,9 @@ class RateKey(NamedTuple):
 class RateRow:
     """What one haulier charges on a lane, before surcharge.
 
-    Blank `at_least` is 0, blank `at_most` is no limit, blank `load_size` and `surcharge` (in percent)
-    take the week's rule.
+    Blank `at_least` is 0, blank `at_most` is no limit; blank `load_size` takes the haulier's, else the
+    week's, and blank `surcharge` (in percent) the week's. `trip_minimum` is what a load costs at least,
+    `charge_per_use` is due once in the week if the row is used.
     """
 
     depot: str
@@ -135,6 +155,12 @@ class Rules:
     when_short: str = "charge"
     charge_if_short: Decimal | None = None
     step: Decimal | None = None
+    days: Decimal | None = None
+
+    @property
+    def loading_days(self) -> Decimal:
+        """How many days of the week vehicles are loaded on."""
+        return Decimal(USUAL_DAYS) if self.days is None else self.days
 
 
 @dataclass(frozen=True, slots=True)

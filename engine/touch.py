@@ -10,13 +10,13 @@ from dataclasses import dataclass
 from typing import NamedTuple
 
 from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
-from engine.figures import ANY_SINGLE_DEPOT, Customer, Depot, Gone, RateKey, RateRow
+from engine.figures import ANY_SINGLE_DEPOT, Customer, Depot, Gone, Haulier, RateKey, RateRow
 
 Named = tuple[str, str]
 """'depot' or 'customer', and its name."""
 
 Subject = tuple[str, str | tuple[str, str, str | None]]
-"""What a figure belongs to: a depot, customer, gone quantity by name; a rate row by lane and haulier."""
+"""What a figure belongs to: a depot, customer, haulier or gone quantity by name, a rate row by its lane."""
 
 NEXT_ROW = 0
 """The number that a rate row which is yet to be added goes by."""
@@ -106,6 +106,8 @@ def _figures(change: Change) -> Iterator[tuple[Subject, Figure]]:
             yield ("customer", customer.name), Figure(1, None)
         case Add(record=Gone() as gone):
             yield ("gone", gone.name), Figure(1, None)
+        case Add(record=Haulier() as haulier):
+            yield ("haulier", haulier.name), Figure(1, None)
         case Remove(key=RateKey() as key):
             yield ("rate", key[:3]), Figure(key.number, None)
         case Remove(what=what, key=str(name)):

@@ -7,7 +7,7 @@ from types import MappingProxyType
 from typing import Any
 
 from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together, What
-from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
+from engine.figures import Customer, Depot, Gone, Haulier, Hold, Order, RateKey, RateRow, Rules
 from engine.rates import Rates
 
 FIELDS = {
@@ -15,7 +15,10 @@ FIELDS = {
     "customer": frozenset(f.name for f in fields(Customer)) | {"ordered"},
     "rate": frozenset(f.name for f in fields(RateRow)) - {"depot", "customer", "haulier"},
     "rule": frozenset(f.name for f in fields(Rules)),
+    "haulier": frozenset(f.name for f in fields(Haulier)) - {"name"},
 }
+
+_TABLE = {"depot": "depots", "customer": "customers", "gone": "gone", "haulier": "hauliers"}
 
 
 class Refused(ValueError):
@@ -39,6 +42,7 @@ class Week:
     rules: Rules = field(default_factory=Rules)
     holds: Mapping[RateKey, Hold] = field(default_factory=dict)
     gone: Mapping[str, Gone] = field(default_factory=dict)
+    hauliers: Mapping[str, Haulier] = field(default_factory=dict)
 
     @classmethod
     def of(
@@ -49,9 +53,15 @@ class Week:
         rules: Rules | None = None,
         holds: Mapping[RateKey, Hold] | None = None,
         gone: tuple[Gone, ...] = (),
+        hauliers: tuple[Haulier, ...] = (),
     ) -> "Week":
         """A week of these figures; names must be distinct."""
-        for what, records in (("depot", depots), ("customer", customers), ("gone quantity", gone)):
+        for what, records in (
+            ("depot", depots),
+            ("customer", customers),
+            ("gone quantity", gone),
+            ("haulier", hauliers),
+        ):
             names = [record.name for record in records]
             twice = next((name for name in names if names.count(name) > 1), None) if _repeats(names) else None
             if twice is not None:
@@ -64,6 +74,7 @@ class Week:
             rules or Rules(),
             MappingProxyType(holds or {}),
             _named(gone),
+            _named(hauliers),
         )
 
     def __eq__(self, other: object) -> bool:
@@ -75,6 +86,7 @@ class Week:
             and self.rules == other.rules
             and self.holds == other.holds
             and list(self.gone.values()) == list(other.gone.values())
+            and list(self.hauliers.values()) == list(other.hauliers.values())
             and self.rates == other.rates
         )
 
@@ -91,7 +103,7 @@ class Week:
         match change:
             case Add(record=RateRow() as row, place=place):
                 return replace(self, rates=_with_row(self.rates, row, place))
-            case Add(record=Depot() | Customer() | Gone() as record, place=place):
+            case Add(record=Depot() | Customer() | Gone() | Haulier() as record, place=place):
                 what = _what(record)
                 return self._with(what, _inserted(what, self._of(what), record, place))
             case Remove(what="rate", key=RateKey() as key):
@@ -123,7 +135,7 @@ class Week:
             case Add(record=RateRow() as row, place=place):
                 rates = _with_row(self.rates, row, place)
                 return Remove("rate", rates.key_of(rates.end - 1 if place is None else place))
-            case Add(record=Depot() | Customer() | Gone() as record):
+            case Add(record=Depot() | Customer() | Gone() | Haulier() as record):
                 return Remove(_what(record), record.name)
             case Remove(what="rate", key=RateKey() as key):
                 return Add(self._rate_row(key), place=_row_id(self.rates, key))
@@ -152,13 +164,11 @@ class Week:
         raise Refused(f"This is no change that a week knows: {change!r}.")
 
     def _of(self, what: str) -> Mapping[str, Any]:
-        return {"depot": self.depots, "customer": self.customers, "gone": self.gone}[what]
+        return getattr(self, _TABLE[what])  # type: ignore[no-any-return]
 
     def _with(self, what: str, records: Mapping[str, Any]) -> "Week":
-        frozen = MappingProxyType(records)
-        if what == "gone":
-            return replace(self, gone=frozen)
-        return replace(self, depots=frozen) if what == "depot" else replace(self, customers=frozen)
+        table: dict[str, Any] = {_TABLE[what]: MappingProxyType(records)}
+        return replace(self, **table)
 
     def _holding(self, holds: dict[RateKey, Hold]) -> "Week":
         return replace(self, holds=MappingProxyType(holds))
@@ -238,9 +248,11 @@ def describe(key: RateKey) -> str:
     return f"{key.depot} to {key.customer}{haulier}{count}"
 
 
-def _what(record: Depot | Customer | Gone) -> What:
+def _what(record: Depot | Customer | Gone | Haulier) -> What:
     if isinstance(record, Depot):
         return "depot"
+    if isinstance(record, Haulier):
+        return "haulier"
     return "customer" if isinstance(record, Customer) else "gone"
 
 

@@ -136,13 +136,18 @@ else:
     proposal(state)
     grids, remarks = st.columns([13, 7], gap="medium")
     with grids:
-        depots, customers, rates, rules = st.tabs(["Depots", "Customers", "Rates", "Rules"])
+        depots, customers, rates, hauliers, rules = st.tabs(
+            ["Depots", "Customers", "Rates", "Hauliers", "Rules"]
+        )
         with depots:
             figures_grid(state, "depots")
         with customers:
             figures_grid(state, "customers")
         with rates:
             figures_grid(state, "rates")
+        with hauliers:
+            st.caption("Only hauliers with a limit over all their lanes, or a load size of their own.")
+            figures_grid(state, "hauliers")
         with rules:
             rules_grid(state)
     with remarks:

@@ -6,10 +6,12 @@ from app.parts.costs import cost_line
 from app.parts.findings_panel import findings_panel
 from app.parts.gone_list import gone_list
 from app.parts.holds_list import holds_list
+from app.parts.loads_panel import LOADS, loads_panel, loads_view
 from app.parts.matrix_grid import matrix_grid
 from app.parts.nothing_yet import nothing_yet
 from app.parts.plan_map import follow_the_map, plan_map
 from app.parts.proposal import proposal
+from app.parts.search_panel import search_panel
 from app.parts.shipments_grid import shipments_grid
 from app.parts.steady import steady
 from app.parts.words import plain
@@ -37,6 +39,7 @@ else:
         proposal(state)
         if state.only_reads:
             st.caption("🔒 This link is for reading only: the grids show the plan and take no edits.")
+        search_panel(state, plan)
         follow_the_map(plan)
         grid, chart = st.columns([13, 9], gap="medium")
         with grid:
@@ -47,6 +50,7 @@ else:
                 "holds": "Holds",
                 "gone": "Gone",
                 "steady": "Fewer changes",
+                **loads_view(plan),
             }
             view = st.segmented_control(
                 "View", list(views), default="depot", format_func=views.__getitem__, required=True,
@@ -60,6 +64,8 @@ else:
                 gone_list(state, plan)
             elif view == "steady":
                 steady(state, plan)
+            elif view == LOADS:
+                loads_panel(state, plan)
             else:
                 shipments_grid(state, plan, view or "depot")
         with chart:

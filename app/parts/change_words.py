@@ -5,9 +5,9 @@ from decimal import Decimal
 from typing import Any
 
 from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, RATE_COLUMNS, RULE_COLUMNS
+from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, HAULIER_COLUMNS, RATE_COLUMNS, RULE_COLUMNS
 from engine.exact import canonical, total_of
-from engine.figures import Customer, Depot, Gone, Order, RateKey, RateRow
+from engine.figures import Customer, Depot, Gone, Haulier, Order, RateKey, RateRow
 from engine.week import describe
 
 HEADINGS = {
@@ -17,6 +17,7 @@ HEADINGS = {
         "customer": CUSTOMER_COLUMNS,
         "rate": RATE_COLUMNS,
         "rule": RULE_COLUMNS,
+        "haulier": HAULIER_COLUMNS,
     }.items()
 }
 SHOWN = 3
@@ -30,7 +31,7 @@ def words_of(change: Change) -> str:
             return f"Rate added: {describe(key)} at {canonical(row.rate)}"
         case Add(record=Gone() as gone):
             return f"Gone: {canonical(gone.quantity)} from {gone.depot} to {gone.customer} ({gone.name})"
-        case Add(record=Depot() | Customer() as record):
+        case Add(record=Depot() | Customer() | Haulier() as record):
             return f"{type(record).__name__} added: {record.name}"
         case Remove(what=what, key=key):
             return f"{what.capitalize()} taken out: {_named(key)}"

@@ -3,6 +3,7 @@
 import streamlit as st
 
 from app.parts.words import counted, money, number
+from engine.planning.fills import loads_total
 from engine.planning.plan import Plan
 from engine.planning.totals import totals
 
@@ -21,8 +22,21 @@ def cost_line(plan: Plan, mark: str) -> None:
     short.metric(f"Short, {rules.unit}", number(sums.short, mark))
     unsent.metric(f"Unsent, {rules.unit}", number(sums.unsent, mark))
     st.caption(
-        f"{counted(len(plan.shipments), 'rate')} used on {counted(sums.lanes, 'lane')}. "
+        f"{counted(len(plan.shipments), 'rate')} used on {counted(sums.lanes, 'lane')}{_vehicles(plan)}. "
         f"Charges beside freight: short {money(plan.short_cost, rules.currency, mark)}, "
-        f"unsent {money(plan.unsent_cost, rules.currency, mark)}. "
-        "Proved in whole numbers: no other plan that serves these aims costs less."
+        f"unsent {money(plan.unsent_cost, rules.currency, mark)}{_opened(plan, mark)}. "
+        + ("" if plan.whole else "Proved in whole numbers: no other plan that serves these aims costs less.")
     )
+
+
+def _opened(plan: Plan, mark: str) -> str:
+    """What opening depots costs, where any does."""
+    if not plan.openings:
+        return ""
+    return f", opening {money(plan.opening_cost, plan.week.rules.currency, mark)}"
+
+
+def _vehicles(plan: Plan) -> str:
+    """How many vehicles that takes, where a load size says so."""
+    loads = loads_total(plan)
+    return "" if loads is None else f" in {counted(loads, 'load')}"

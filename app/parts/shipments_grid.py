@@ -12,6 +12,7 @@ from engine.changes import Alter, Change, Lift, SetHold, Together
 from engine.columns import RATE_COLUMNS, SEND
 from engine.findings import Finding
 from engine.intake.fields import read_field, show_field
+from engine.planning.fills import fill_of
 from engine.planning.holds import all_lifted, held_as_planned
 from engine.planning.lanes import Lane, lanes
 from engine.planning.plan import Plan
@@ -90,8 +91,10 @@ def _config(plan: Plan) -> dict[str, ColumnConfig]:
             f"{SEND.heading}, {rules.unit}", alignment="right", width="small",
             help="Type a quantity to hold it; empty the cell to lift the hold",
         ),
+        "Loads": text("Loads", width="small", help="Full vehicles, and how full the last one is"),
         "Rate": text(
-            f"Rate, {rules.currency}", alignment="right", width="small", help="Per unit, with the surcharge"
+            f"Rate, {rules.currency}", alignment="right", width="small",
+            help="Per unit, or per load where it says so; with the surcharge",
         ),
         "Cost": text(f"Cost, {rules.currency}", alignment="right", width="small"),
         "Held": text("Held", width="small"),
@@ -111,7 +114,11 @@ def _frame(state: Desk, plan: Plan, shown: list[Lane], view: _View) -> pd.DataFr
     columns |= {
         "Haulier": [lane.key.haulier or "" for lane in shown],
         SEND.heading: [show_field(SEND, lane.quantity, state.style) for lane in shown],
-        "Rate": [number(lane.rate, mark) for lane in shown],
+    }
+    if any(lane.load_size for lane in shown):
+        columns["Loads"] = [_fill(lane) for lane in shown]
+    columns |= {
+        "Rate": [number(lane.rate, mark) + (" a load" if lane.per == "load" else "") for lane in shown],
         "Cost": [money(lane.cost, currency, mark).removesuffix(f" {currency}") for lane in shown],
     }
     if view.limits:
@@ -121,6 +128,11 @@ def _frame(state: Desk, plan: Plan, shown: list[Lane], view: _View) -> pd.DataFr
         REASON: [lane.hold.reason if lane.hold else "" for lane in shown],
     }
     return pd.DataFrame(columns, dtype="string")
+
+
+def _fill(lane: Lane) -> str:
+    fill = fill_of(lane.quantity, lane.load_size) if lane.quantity else None
+    return "" if fill is None else fill.words()
 
 
 def _limit(state: Desk, lane: Lane, field: str) -> str:

@@ -1,4 +1,4 @@
-"""The blank workbook: the four sheets with their headings, an explanation at each, and nothing else."""
+"""The blank workbook: the five sheets with their headings, an explanation at each, and nothing else."""
 
 import os
 from typing import BinaryIO
@@ -9,7 +9,14 @@ from openpyxl.styles import Alignment, Font, PatternFill
 from openpyxl.utils import get_column_letter
 from openpyxl.worksheet.worksheet import Worksheet
 
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, RATE_COLUMNS, RULE_COLUMNS, Column
+from engine.columns import (
+    CUSTOMER_COLUMNS,
+    DEPOT_COLUMNS,
+    HAULIER_COLUMNS,
+    RATE_COLUMNS,
+    RULE_COLUMNS,
+    Column,
+)
 from engine.figures import Rules
 from engine.intake.fields import show_field
 
@@ -18,7 +25,7 @@ _OPTIONAL = PatternFill("solid", start_color="DDE6EA")
 
 
 def write_blank(target: str | os.PathLike[str] | BinaryIO) -> None:
-    """Write the blank workbook: sheets Depots, Customers, Rates and Rules, headings explained in comments.
+    """Write the blank workbook: Depots, Customers, Rates, Hauliers, Rules; headings explained in comments.
 
     target: a path, or a file open for writing bytes
 
@@ -32,6 +39,7 @@ def write_blank(target: str | os.PathLike[str] | BinaryIO) -> None:
         ("Depots", DEPOT_COLUMNS),
         ("Customers", CUSTOMER_COLUMNS),
         ("Rates", RATE_COLUMNS),
+        ("Hauliers", HAULIER_COLUMNS),
     ):
         sheet = book.create_sheet(title)
         for number, column in enumerate(columns, start=1):
@@ -63,5 +71,7 @@ def _rules(sheet: Worksheet) -> None:
 
 
 def _about(column: Column, default: Rules) -> str:
-    usual = show_field(column, getattr(default, column.field))
+    usual = show_field(
+        column, default.loading_days if column.field == "days" else getattr(default, column.field)
+    )
     return f"{column.about} (blank: {usual or 'none'})"

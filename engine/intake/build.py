@@ -7,6 +7,7 @@ from engine.findings import Finding, Severity
 from engine.intake.about_sheets import LEAVE_OUT, WHICH_COLUMN, about_headings, about_sheets
 from engine.intake.answers import Answers
 from engine.intake.build_gone import build_gone
+from engine.intake.build_hauliers import build_hauliers
 from engine.intake.build_lists import Built, Unused, build_customers, build_depots, with_depot_spelling
 from engine.intake.build_rates import build_rates
 from engine.intake.build_rules import build_rules, stated_by
@@ -92,8 +93,18 @@ def build_figures(
     settings = rules.records[0]
     if product is not None:
         settings = replace(settings, week=week_of_product(settings.week, product))
-    week = Week.of(depots.records, spelled, rates.rates, settings, rates.holds, gone.records)
+    hauliers = build_hauliers(of["hauliers"], rates.rates.flat.haulier_names, manner)
+    week = Week.of(
+        depots.records,
+        spelled,
+        rates.rates,
+        settings,
+        rates.holds,
+        gone.records,
+        hauliers.records,
+    )
     counts = depots.counts.plus(customers.counts).plus(rules.counts).plus(rates.counts).plus(gone.counts)
+    counts = counts.plus(hauliers.counts)
     outside, left_out = about_sheets(found, grids, no_rates)
     return Figures(
         week,
@@ -109,13 +120,16 @@ def build_figures(
             *customers.findings,
             *rates.findings,
             *gone.findings,
+            *hauliers.findings,
             *rules.findings,
         ),
         counts.plus(left_out),
         manner.base,
         in_words(manner.marks, manner.usual),
-        Places({**depots.spots, **customers.spots, **rules.spots, **gone.spots}, rates.rows),
-        (*depots.unused, *customers.unused, *rates.unused, *rules.unused, *gone.unused),
+        Places(
+            {**depots.spots, **customers.spots, **rules.spots, **gone.spots, **hauliers.spots}, rates.rows
+        ),
+        (*depots.unused, *customers.unused, *rates.unused, *rules.unused, *gone.unused, *hauliers.unused),
         frozenset(kind for kind, tables in of.items() if tables) | ({"rates"} if grids else set()),
         products,
     )

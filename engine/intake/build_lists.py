@@ -44,7 +44,9 @@ class Built:
     unused: tuple[Unused, ...] = ()
 
 
-class _Row(NamedTuple):
+class NamedRow(NamedTuple):
+    """A row of a list: its sheet row, its name, its figures by field, and what stops any of them."""
+
     number: int
     name: str
     values: Mapping[str, Any]
@@ -60,15 +62,15 @@ def build_depots(tables: Sequence[Table], manner: Manner) -> Built:
     unused: list[Unused] = []
     counts = Counts()
     for table in tables:
-        rows, remarks, read = _rows(table, manner, "available")
-        unused.extend(_nameless_rows(table, remarks))
+        rows, remarks, read = named_rows(table, manner, "available")
+        unused.extend(nameless_rows(table, remarks))
         used = 0
         for row in rows:
             fault = row.problems.get("available")
             if fault is not None or row.values.get("available") is None:
                 if fault is None:
                     remarks.append(Remark(row.number, "available", _missing(row.name, "Available"), True))
-                unused.append(Unused("depots", _texts(table, row.number)))
+                unused.append(Unused("depots", texts_of(table, row.number)))
                 continue
             depot = Depot(row.name, **{name: row.values[name] for name in row.values if name != "name"})
             first = spelled.setdefault(folded(row.name), row.name)
@@ -80,12 +82,12 @@ def build_depots(tables: Sequence[Table], manner: Manner) -> Built:
                 answer = manner.answers.to("same depot twice", row.name)
                 if answer is None:
                     remarks.append(Remark(row.number, "name", _twice(kept[first], depot), True))
-                    unused.append(Unused("depots", _texts(table, row.number)))
+                    unused.append(Unused("depots", texts_of(table, row.number)))
                 else:
                     kept[first] = _settled(kept[first], depot, answer)
                     remarks.append(Remark(row.number, "name", _settled_note(depot, answer)))
                     used += 1
-            unused.extend(_unread(table, row))
+            unused.extend(unread_cells(table, row))
         found, named = gathered(remarks, table.sheet, lambda remark, t=table: t.columns[remark.field])  # type: ignore[misc]
         findings.extend(found)
         counts = counts.plus(Counts(read, used, named))
@@ -101,12 +103,12 @@ def build_customers(tables: Sequence[Table], manner: Manner) -> Built:
     unused: list[Unused] = []
     counts = Counts()
     for table in tables:
-        rows, remarks, read = _rows(table, manner, "ordered")
-        unused.extend(_nameless_rows(table, remarks))
+        rows, remarks, read = named_rows(table, manner, "ordered")
+        unused.extend(nameless_rows(table, remarks))
         used = 0
         for row in rows:
             if "ordered" in row.problems:
-                unused.append(Unused("customers", _texts(table, row.number)))
+                unused.append(Unused("customers", texts_of(table, row.number)))
                 continue
             quantity = row.values.get("ordered")
             if quantity is None:
@@ -122,7 +124,7 @@ def build_customers(tables: Sequence[Table], manner: Manner) -> Built:
             else:
                 orders[key].append(order)
                 remarks.extend(_merged(kept[key], values, row))
-            unused.extend(_unread(table, row))
+            unused.extend(unread_cells(table, row))
         found, named = gathered(remarks, table.sheet, lambda remark, t=table: t.columns[remark.field])  # type: ignore[misc]
         findings.extend(found)
         counts = counts.plus(Counts(read, used, named))
@@ -141,7 +143,7 @@ def with_depot_spelling(customers: Sequence[Customer], depots: Sequence[Depot]) 
     )
 
 
-def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list[Remark], int]:
+def named_rows(table: Table, manner: Manner, quantity: str) -> tuple[list[NamedRow], list[Remark], int]:
     """The rows of a list that have a name, the remarks on its cells, and how many rows hold anything."""
     values: dict[str, list[Any]] = {}
     problems: dict[str, dict[int, Finding]] = {}
@@ -152,7 +154,7 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
         if by is not None:
             values[name] = [None if v is None else times(v, by) for v in values[name]]
         problems[name] = dict(found)
-    rows: list[_Row] = []
+    rows: list[NamedRow] = []
     remarks: list[Remark] = []
     read = 0
     since: dict[str, Decimal] = {}
@@ -185,7 +187,7 @@ def _rows(table: Table, manner: Manner, quantity: str) -> tuple[list[_Row], list
                 stops = finding.severity is Severity.STOPS
                 remarks.append(Remark(number, field_name, finding, stops and field_name == quantity))
             faults = {n: finding for n, finding in here.items() if finding.severity is Severity.STOPS}
-            rows.append(_Row(number, name, {n: column[offset] for n, column in values.items()}, faults))
+            rows.append(NamedRow(number, name, {n: column[offset] for n, column in values.items()}, faults))
             for field_name in sums:
                 sums[field_name] += values[field_name][offset] or 0
                 since[field_name] = since.get(field_name, Decimal(0)) + (values[field_name][offset] or 0)
@@ -306,7 +308,7 @@ def _settled_note(depot: Depot, answer: str) -> Finding:
     )
 
 
-def _merged(kept: dict[str, Any], values: Mapping[str, Any], row: _Row) -> list[Remark]:
+def _merged(kept: dict[str, Any], values: Mapping[str, Any], row: NamedRow) -> list[Remark]:
     """What a further order row adds to the customer; what it says otherwise is asked."""
     remarks = []
     for name, value in values.items():
@@ -325,22 +327,25 @@ def _merged(kept: dict[str, Any], values: Mapping[str, Any], row: _Row) -> list[
     return remarks
 
 
-def _texts(table: Table, number: int) -> dict[str, str]:
+def texts_of(table: Table, number: int) -> dict[str, str]:
+    """The texts of a row, by field."""
     cells = table.sheet.rows[number]
     return {
         name: text_of(cells[column]) for name, column in table.columns.items() if not is_blank(cells[column])
     }
 
 
-def _nameless_rows(table: Table, remarks: Sequence[Remark]) -> list[Unused]:
+def nameless_rows(table: Table, remarks: Sequence[Remark]) -> list[Unused]:
+    """Rows with figures and no name, which wait on screen until they have one."""
     rules = ("no name", "error cell", "formula without value", "long name")
     rows = [r.row for r in remarks if r.field == "name" and r.sets_aside and r.finding.rule in rules]
-    return [Unused(table.kind, _texts(table, row)) for row in rows]
+    return [Unused(table.kind, texts_of(table, row)) for row in rows]
 
 
-def _unread(table: Table, row: _Row) -> list[Unused]:
+def unread_cells(table: Table, row: NamedRow, name: str = "") -> list[Unused]:
+    """The texts of cells that could not be read, and wait on screen."""
     if not row.problems:
         return []
     cells = table.sheet.rows[row.number]
     texts = {name: text_of(cells[table.columns[name]]) for name in row.problems}
-    return [Unused(table.kind, texts, row.name)]
+    return [Unused(table.kind, texts, name or row.name)]

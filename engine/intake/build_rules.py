@@ -128,7 +128,7 @@ def _value(column: Column, raw: Any, style: NumberStyle, answers: Answers) -> tu
             )  # fmt: skip
         return plain_unit(text), None
     value, finding = read_field(column, raw, style)
-    if column.field in ("load_size", "step") and value is not None and value <= 0:
+    if column.field in ("load_size", "step", "days") and value is not None and value <= 0:
         return None, _no_rule(column, raw, "takes a number above 0")
     if column.kind in NUMBER_KINDS and finding is not None and value is None:
         return None, finding

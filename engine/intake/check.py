@@ -6,16 +6,15 @@ from decimal import Decimal
 from engine.exact import canonical
 from engine.figures import ANY_SINGLE_DEPOT, WHEN_SHORT
 from engine.findings import Finding, Severity
+from engine.intake.check_loads import about_loads
 from engine.intake.check_rates import (
     contradicting_limits,
-    loads_without_size,
     out_of_reach,
     same_rows,
     unknown_names,
 )
 from engine.intake.check_sizes import out_of_proportion, swapped_places
 from engine.intake.names import nearly_alike
-from engine.intake.not_yet import not_planned_yet
 from engine.intake.places import Where, nowhere
 from engine.week import Week, describe
 
@@ -35,13 +34,12 @@ def check_week(week: Week, where: Where = nowhere) -> tuple[Finding, ...]:
         *_rules(week, where),
         *unknown_names(week, where),
         *contradicting_limits(week, where),
-        *loads_without_size(week, where),
+        *about_loads(week, where),
         *same_rows(week, where),
         *out_of_reach(week, where),
         *out_of_proportion(week, where),
         *swapped_places(week, where),
         *_holds(week, where),
-        *not_planned_yet(week, where),
     ]
     return tuple(sorted(findings, key=lambda finding: finding.severity))
 
@@ -141,7 +139,7 @@ def _rules(week: Week, where: Where) -> Iterator[Finding]:
             f"Choose {', '.join(WHEN_SHORT[:-1])} or {WHEN_SHORT[-1]}.",
             rules.when_short,
         )
-    for name, value in (("load_size", rules.load_size), ("step", rules.step)):
+    for name, value in (("load_size", rules.load_size), ("step", rules.step), ("days", rules.days)):
         if value is not None and value <= 0:
             yield _on(
                 where("rules", name, "value"),

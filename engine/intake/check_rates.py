@@ -77,25 +77,6 @@ def contradicting_limits(week: Week, where: Where) -> Iterator[Finding]:
         )  # fmt: skip
 
 
-def loads_without_size(week: Week, where: Where) -> Iterator[Finding]:
-    """Rates per load where neither the row nor the week says what a load is."""
-    if week.rules.load_size is not None:
-        return
-    table = week.rates.flat
-    size = table.decimals.get("load_size")
-    without = table.per_load if size is None else table.per_load & (size.values == BLANK)
-    for row in np.flatnonzero(without)[:1].tolist():
-        count = int(without.sum())
-        more = f" and {count - 1} more" if count > 1 else ""
-        yield _finding(
-            where("rates", row, "per"),
-            Severity.STOPS,
-            "load size missing",
-            f"{_lane(table, row)}{more}: the rate is per load, and no load size is given.",
-            "Give the load size of the row, or on Rules.",
-        )
-
-
 def same_rows(week: Week, where: Where) -> Iterator[Finding]:
     """Rows of one lane and one haulier: alternatives on paper, more often a slip."""
     table = week.rates.flat

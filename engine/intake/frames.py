@@ -12,8 +12,15 @@ from typing import Any
 import pandas as pd
 
 from engine.changes import Add, Alter, Change, Remove
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, RATE_COLUMNS, RULE_COLUMNS, Column
-from engine.figures import Customer, Depot, Order, RateKey, RateRow, Rules
+from engine.columns import (
+    CUSTOMER_COLUMNS,
+    DEPOT_COLUMNS,
+    HAULIER_COLUMNS,
+    RATE_COLUMNS,
+    RULE_COLUMNS,
+    Column,
+)
+from engine.figures import Customer, Depot, Haulier, Order, RateKey, RateRow, Rules
 from engine.findings import Finding, Severity
 from engine.intake.build_lists import Unused
 from engine.intake.build_rules import read_rule
@@ -23,11 +30,12 @@ from engine.intake.names import folded
 from engine.intake.numbers import NumberStyle
 from engine.week import Week
 
-TABLES = ("depots", "customers", "rates", "rules")
+TABLES = ("depots", "customers", "rates", "hauliers", "rules")
 GRID_COLUMNS: Mapping[str, tuple[Column, ...]] = {
     "depots": DEPOT_COLUMNS,
     "customers": tuple(column for column in CUSTOMER_COLUMNS if column.field not in ("number", "day")),
     "rates": RATE_COLUMNS,
+    "hauliers": HAULIER_COLUMNS,
     "rules": RULE_COLUMNS,
 }
 """The columns that each grid shows; the rules stand one a row, under Rule and Value."""
@@ -58,7 +66,7 @@ def style_of(week: Week, decimal_mark: str = ".") -> NumberStyle:
 def frame_of(week: Week, table: str, style: NumberStyle | None = None) -> pd.DataFrame:
     """One table of a week as text, one row a figure, under the headings of `engine.columns`.
 
-    table: 'depots', 'customers' (one row a customer, Ordered is the total), 'rates' or 'rules'
+    table: 'depots', 'customers' (one row a customer, Ordered is the total), 'rates', 'hauliers' or 'rules'
     """
     if table == "rules":
         cells = [(c.heading, show_field(c, getattr(week.rules, c.field), style)) for c in RULE_COLUMNS]
@@ -179,7 +187,7 @@ def changes_between(
 def _keys_in_order(week: Week, table: str) -> list[Any]:
     if table == "rates":
         return [week.rates.key_of(number) for number in week.rates.ids_in_order.tolist()]
-    return list(week.depots if table == "depots" else week.customers)
+    return list(_named(week, table))
 
 
 def _named_by(table: str, key: Any) -> dict[str, str]:
@@ -189,7 +197,12 @@ def _named_by(table: str, key: Any) -> dict[str, str]:
     return {GRID_COLUMNS[table][0].heading: str(key)}
 
 
-_WHAT: Mapping[str, Any] = {"depots": "depot", "customers": "customer", "rates": "rate"}
+_WHAT: Mapping[str, Any] = {
+    "depots": "depot",
+    "customers": "customer",
+    "rates": "rate",
+    "hauliers": "haulier",
+}
 
 
 def _spelled(week: Week, name: str, value: Any) -> Any:
@@ -203,9 +216,12 @@ def _spelled(week: Week, name: str, value: Any) -> Any:
 
 
 def _records(week: Week, table: str) -> Sequence[Any]:
-    if table == "depots":
-        return list(week.depots.values())
-    return list(week.customers.values()) if table == "customers" else list(week.rates)
+    return list(week.rates) if table == "rates" else list(_named(week, table).values())
+
+
+def _named(week: Week, table: str) -> Mapping[str, Any]:
+    """The records of a table whose records go by their names."""
+    return {"depots": week.depots, "customers": week.customers, "hauliers": week.hauliers}[table]
 
 
 def _texts(frame: pd.DataFrame, column: Column) -> list[Any]:
@@ -222,7 +238,7 @@ def _keys(week: Week, table: str, before: pd.DataFrame) -> dict[Hashable, Any]:
     """The name, or id of the rate row, of each row of a frame; rows that are not in the week are left out."""
     if table != "rates":
         names = _texts(before, GRID_COLUMNS[table][0])
-        known = week.depots if table == "depots" else week.customers
+        known = _named(week, table)
         keys: dict[Hashable, Any] = {}
         seen: set[str] = set()
         for label, cell in zip(before.index, names, strict=True):
@@ -326,11 +342,13 @@ def _row_changes(
     return _record_changes(week, table, key, row, unread), said
 
 
-def _record(table: str, row: Mapping[str, Any]) -> Depot | Customer | RateRow:
+def _record(table: str, row: Mapping[str, Any]) -> Depot | Customer | Haulier | RateRow:
     if table == "depots":
         return Depot(**row)
     if table == "rates":
         return RateRow(**row)
+    if table == "hauliers":
+        return Haulier(**row)
     values = {name: value for name, value in row.items() if name != "ordered"}
     return Customer(orders=(Order(row["ordered"] or Decimal(0)),), **values)
 
@@ -338,7 +356,11 @@ def _record(table: str, row: Mapping[str, Any]) -> Depot | Customer | RateRow:
 def _record_changes(
     week: Week, table: str, key: str, row: Mapping[str, Any], unread: set[str]
 ) -> list[Change]:
-    record: Any = (week.depots if table == "depots" else week.customers)[key]
+    record: Any = _named(week, table)[key]
+    if table == "hauliers" and "name" not in unread and row["name"] != key:
+        place = list(week.hauliers).index(key)
+        values = {name: getattr(record, name) if name in unread else value for name, value in row.items()}
+        return [Remove("haulier", key), Add(Haulier(**values), place)]  # its name is what rate rows go by
     changes: list[Change] = []
     for name, value in row.items():
         if name in unread or name == "name":

@@ -12,6 +12,7 @@ from engine.columns import (
     CUSTOMER_COLUMNS,
     DEPOT_COLUMNS,
     GONE_COLUMNS,
+    HAULIER_COLUMNS,
     HOLD_HEADINGS,
     RATE_COLUMNS,
     RULE_COLUMNS,
@@ -32,10 +33,18 @@ COLUMNS_OF: Mapping[str, tuple[Column, ...]] = {
     "rates": (*RATE_COLUMNS, HOLD_COLUMN, HOLD_REASON_COLUMN),
     "rules": (RULE_COLUMN, VALUE_COLUMN),
     "gone": GONE_COLUMNS,
+    "hauliers": HAULIER_COLUMNS,
 }
 """The columns that a sheet of each table may have."""
 
-TITLES = {"depots": "Depots", "customers": "Customers", "rates": "Rates", "rules": "Rules", "gone": "Gone"}
+TITLES = {
+    "depots": "Depots",
+    "customers": "Customers",
+    "rates": "Rates",
+    "rules": "Rules",
+    "gone": "Gone",
+    "hauliers": "Hauliers",
+}
 
 PLAN_HEADINGS = frozenset(
     {"send", "sent", "short", "unsent", "delivered", "payable", "freight payable", "one more", "one less"}
@@ -55,6 +64,11 @@ _CUSTOMER_WORDS = (
     "customer|customers|customer name|to|to customer|destination|dest|consignee|client|ship to|deliver to|"
     "delivery point|delivery place|unloading point|buyer|receiver|drop|account|sold to"
 )
+_HAULIER_WORDS = (
+    "haulier|hauliers|haulage company|carrier|carriers|transporter|transport company|forwarder|contractor|"
+    "vendor|trucker|hauler"
+)
+_LOAD_SIZE_WORDS = "load size|load|size of load|truck size|vehicle size|payload|full load|capacity per load"
 _WORDS: dict[str, dict[str, str]] = {
     "depots": {
         "name": _DEPOT_WORDS + "|name|location",
@@ -72,6 +86,7 @@ _WORDS: dict[str, dict[str, str]] = {
             "loads a day|loads per day|loads day|daily loads|vehicles a day|trucks a day|"
             "trucks per day|loading slots|slots a day"
         ),
+        "opening_charge": "opening charge|opening cost|charge for opening|charge to open|cost of opening",
         "latitude": "latitude|lat|y",
         "longitude": "longitude|long|lon|lng|x",
     },
@@ -108,19 +123,14 @@ _WORDS: dict[str, dict[str, str]] = {
             "unit cost|unit rate|unit price|freight cost|charge|quote|quoted rate"
         ),
         "per": "per|basis|rate basis|charged per|unit or load|uom|unit",
-        "haulier": (
-            "haulier|haulage company|carrier|transporter|transport company|forwarder|contractor|"
-            "vendor|trucker|hauler"
-        ),
+        "haulier": _HAULIER_WORDS,
         "at_least": "at least|minimum|min|minimum quantity|min quantity|min qty|minimum qty|not under",
         "at_most": (
             "at most|maximum|max|maximum quantity|max quantity|max qty|maximum qty|limit|"
             "weekly limit|lane limit|not over|cap|lane capacity"
         ),
         "closed": "closed|lane closed|blocked|shut|lane shut|not allowed",
-        "load_size": (
-            "load size|load|size of load|truck size|vehicle size|payload|full load|capacity per load"
-        ),
+        "load_size": _LOAD_SIZE_WORDS,
         "trip_minimum": (
             "trip minimum|minimum charge|min charge|minimum per trip|minimum per load|trip min|"
             "minimum freight"
@@ -144,6 +154,14 @@ _WORDS: dict[str, dict[str, str]] = {
         "rate": "paid per unit|paid|rate paid|rate",
         "day": "day gone|gone on|left on|day|date",
     },
+    "hauliers": {
+        "name": _HAULIER_WORDS + "|name",
+        "at_most": (
+            "at most|maximum|max|limit|weekly limit|most a week|at most a week|maximum a week|max a week|"
+            "capacity|weekly capacity|capacity a week|cap"
+        ),
+        "load_size": _LOAD_SIZE_WORDS,
+    },
     "rules": {
         "rule": "rule|rules|setting|settings|parameter|option",
         "value": "value|values|set to",
@@ -158,6 +176,7 @@ _RULE_WORDS = {
     "when_short": "when short|if short|short rule|what when short",
     "charge_if_short": "charge if short|short charge|shortage charge|penalty",
     "step": "step|rounding step|round to|smallest step",
+    "days": "days|loading days|working days|days a week|loading days a week",
 }
 
 _FIELDS = {

@@ -70,6 +70,7 @@ def read_part(
         ("depots", _depots),
         ("customers", _customers),
         ("rates", _rates),
+        ("hauliers", _hauliers),
         ("rules", _rules),
         ("gone", _gone),
     ):
@@ -93,6 +94,10 @@ def _depots(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
 
 def _customers(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
     return _records(reading, week, "customers", "customer", reading.week.customers, week.customers)
+
+
+def _hauliers(reading: Reading, week: Week) -> tuple[list[Change], list[str]]:
+    return _records(reading, week, "hauliers", "haulier", reading.week.hauliers, week.hauliers)
 
 
 def _records(

@@ -23,7 +23,9 @@ _TOP_ROWS = 60
 """Headings are looked for in so many rows from the top, and below every blank row."""
 
 _MOST_HEADINGS = 200
-_ORDER = ("gone", "rates", "depots", "customers", "rules")
+_ORDER = ("gone", "rates", "depots", "customers", "hauliers", "rules")
+_OF_LANES = ("depot", "customer", "rate")
+"""Fields of rate rows: a list with one of them is none of hauliers."""
 _FROM = re.compile(r"^(rates?\b[ :]*)?((from|ex|of|depot)\b[ :]*)?|[ :]*\brates?$", re.IGNORECASE)
 _TOTAL = re.compile(r"(grand |sub-?|sub )?totals?\b.*|sums?\b.*|all (depots|customers)|.* totals?|σ|∑|Σ")
 
@@ -256,6 +258,8 @@ def _tables_at(
     tables: list[Table] = []
     for run in runs:
         kinds = [kind for kind in _ORDER if _complete(kind, _matched(kind, run, texts, taught))]
+        if "hauliers" in kinds and set(_OF_LANES) & set(_matched("rates", run, texts, taught)):
+            kinds.remove("hauliers")
         if kinds:
             if kinds[0] in ("gone", "rates") or len(kinds) == 1:
                 kinds = kinds[:1]
@@ -268,7 +272,7 @@ def _tables_at(
     if not tables:
         whole = list(texts)
         for kind in _ORDER:
-            if _complete(kind, _matched(kind, whole, texts, taught)):
+            if kind != "hauliers" and _complete(kind, _matched(kind, whole, texts, taught)):
                 return _split(sheet, head, texts, whole, [kind], taught)
     return tables
 
@@ -315,6 +319,8 @@ def _matched(
 
 
 def _complete(kind: str, matched: Mapping[str, int]) -> bool:
+    if kind == "hauliers" and not {"at_most", "load_size"} & set(matched):
+        return False  # a list of names alone says nothing
     return all(column.field in matched for column in COLUMNS_OF[kind] if column.needed)
 
 

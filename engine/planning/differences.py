@@ -67,6 +67,8 @@ class Costed(Protocol):
     def short_cost(self) -> Decimal: ...
     @property
     def unsent_cost(self) -> Decimal: ...
+    @property
+    def opening_cost(self) -> Decimal: ...
 
 
 def difference(before: Costed, after: Costed) -> Difference:
@@ -79,10 +81,18 @@ def difference(before: Costed, after: Costed) -> Difference:
     ]
     return Difference(
         freight_payable=total_of((after.freight_payable, -before.freight_payable)),
-        charges=total_of((after.short_cost, after.unsent_cost, -before.short_cost, -before.unsent_cost)),
+        charges=total_of((_charges(after), -_charges(before))),
         short=total_of([*(s.quantity for s in after.short), *(-s.quantity for s in before.short)]),
         rows=tuple(sorted(rows, key=lambda row: -abs(row.more))),
     )
+
+
+@dataclass(frozen=True, slots=True)
+class Bounds:
+    """Between what a change certainly costs, charges included, where a search was cut short."""
+
+    at_least: Decimal
+    at_most: Decimal
 
 
 @dataclass(frozen=True, slots=True)
@@ -93,24 +103,51 @@ class Outcome:
     plan: Plan | None
     difference: Difference | None
     findings: tuple[Finding, ...] = ()
+    bounds: Bounds | None = None
 
 
-def outcome(plan: Plan, change: Change, near: Plan | Quantities | None = None) -> Outcome:
+WHAT_IF_SECONDS = 5.0
+"""How long a search by whole loads may take for the price of a change that is only put up."""
+
+
+def outcome(
+    plan: Plan,
+    change: Change,
+    near: Plan | Quantities | None = None,
+    time_limit: float | None = WHAT_IF_SECONDS,
+) -> Outcome:
     """What a change to a plan's week would cost and move, and whether it can be done at all.
 
     near: the plan that the changed one stays nearest to; None: `plan` itself
+    time_limit: seconds for a search by whole loads
     """
     try:
         week = plan.week.apply(change)
     except Refused as refused:
         return Outcome(plan.week, None, None, (Finding(Severity.STOPS, "refused", str(refused)),))
     try:
-        after = plan_week(week, near=plan if near is None else near)
+        near = plan if near is None or plan.whole is not None else near
+        after = plan_week(week, near=near, time_limit=time_limit)
     except NotPlannable as stopped:
         return Outcome(week, None, None, stopped.findings)
     except TooLarge as too_large:
         return Outcome(week, None, None, (Finding(Severity.STOPS, "too large", str(too_large)),))
-    return Outcome(week, after, difference(plan, after))
+    return Outcome(week, after, difference(plan, after), bounds=_bounds(plan, after))
+
+
+def _bounds(before: Plan, after: Plan) -> Bounds | None:
+    """None where both plans are proved to cost the least."""
+    if not before.proof.gap and not after.proof.gap:
+        return None
+    return Bounds(
+        total_of((after.proof.lower_bound, -before.total_cost)),
+        total_of((after.total_cost, -before.proof.lower_bound)),
+    )
+
+
+def _charges(plan: Costed) -> Decimal:
+    """Charges for short, unsent and opened."""
+    return total_of((plan.short_cost, plan.unsent_cost, plan.opening_cost))
 
 
 def _by_row(plan: Costed) -> dict[RateKey, Decimal]:

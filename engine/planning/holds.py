@@ -62,5 +62,5 @@ def hold_on_lane(plan: Plan, depot: str, customer: str, quantity: Decimal) -> Se
         raise NoSingleRow(
             f"Several rates share the lane from {depot} to {customer}: show one depot and type there."
         )
-    row = used[0] if used else min(rows, key=lambda lane: lane.rate)
+    row = used[0] if used else min(rows, key=lambda lane: lane.per_unit)
     return SetHold(row.key, quantity)

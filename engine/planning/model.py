@@ -13,10 +13,12 @@ import numpy.typing as npt
 
 from engine.exact import BLANK, LARGEST, DecimalColumn, TooLarge, to_integer
 from engine.figures import ANY_SINGLE_DEPOT, PRIORITIES, Customer, Depot, Rules
+from engine.load_sizes import load_sizes
 from engine.network import Problem
 from engine.network.problem import UNLIMITED
 from engine.planning.aims import MUST_MOVE, Weights, weights
 from engine.planning.gone import left, remaining, superseded
+from engine.planning.spread import places_of_loads, spread_over_loads
 from engine.rates import RateTable
 from engine.week import Week
 
@@ -215,12 +217,12 @@ def _quantity_places(week: Week, flat: RateTable) -> int:
     if week.rules.when_short == EVEN_SHARE:
         quantities.append(step_of(week.rules))
     limits = [flat.decimals[name].places for name in ("at_least", "at_most") if name in flat.decimals]
-    return max(DecimalColumn.of(quantities).places, *limits, 0)
+    return max(DecimalColumn.of(quantities).places, *limits, places_of_loads(week))
 
 
 def _money(week: Week, flat: RateTable) -> tuple[Integers, Integers, int]:
     """Rates with surcharge, charges (depots, then customers), and their common places."""
-    rate = rates_with_surcharge(flat, week.rules)
+    rate = spread_over_loads(flat, rates_with_surcharge(flat, week.rules), load_sizes(week))
     charges = DecimalColumn.of(
         [charge_if_unsent(d) for d in week.depots.values()]
         + [charge_if_short(c, week.rules) for c in week.customers.values()]

@@ -4,22 +4,31 @@ from collections.abc import Callable
 
 import numpy as np
 
-from engine.exact import canonical, to_decimal, to_integer, total_of
+from engine.exact import to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity, by_gravity, stops
 from engine.intake.check import check_week
 from engine.intake.earlier import Quantities
+from engine.load_sizes import load_sizes, loads_of
+from engine.loads import NoPlan
 from engine.money import minor_places, round_half_up
 from engine.network import Flow, least_cost
+from engine.planning.accounts import about_the_plan, gone_shipments, short_of, unsent_of
 from engine.planning.contradictions import contradictions
-from engine.planning.gone import about_gone, cost_of, key_of, used_up
+from engine.planning.gone import about_gone, used_up
+from engine.planning.load_plan import Improved, ShouldStop, in_words, plan_loads, search_of
 from engine.planning.model import EVEN_SHARE, Model, model_of
 from engine.planning.near import nearest_flow
-from engine.planning.plan import Plan, Proof, Shipment, Short, UnitPrice, Unsent
+from engine.planning.plan import Plan, Proof, Shipment, UnitPrice
 from engine.planning.prices import unit_prices
-from engine.planning.shortage import evenly_shared, shortages
+from engine.planning.shortage import evenly_shared
+from engine.planning.spread import has_whole_loads
 from engine.week import Week
 
 Progress = Callable[[str], None]
+
+
+USUAL_SECONDS = 60.0
+"""How long a search by whole loads may take where nobody says otherwise."""
 
 
 class NotPlannable(ValueError):
@@ -30,13 +39,27 @@ class NotPlannable(ValueError):
         super().__init__(" ".join(f.message for f in findings if f.severity is Severity.STOPS))
 
 
-def plan_week(week: Week, near: Plan | Quantities | None = None, progress: Progress | None = None) -> Plan:
+def plan_week(
+    week: Week,
+    near: Plan | Quantities | None = None,
+    progress: Progress | None = None,
+    improved: Improved | None = None,
+    should_stop: ShouldStop | None = None,
+    time_limit: float | None = USUAL_SECONDS,
+) -> Plan:
     """The plan of least cost that serves the aims in order (see `engine.planning.aims`), proved.
+
+    With whole loads it is the best plan found in the time given, with a proved lower bound.
 
     Args:
         week: what to plan.
-        near: an earlier plan; among plans of equal cost the one nearest to it is taken.
+        near: an earlier plan; among plans of equal cost the one nearest to it is taken. With whole loads the
+            search starts from it, and nearness decides nothing else.
         progress: told in words what is being done.
+        improved: with whole loads, told of every better plan and bound.
+        should_stop: with whole loads, an event or a question asked often; once set or true, the best plan so
+            far is returned.
+        time_limit: seconds after which that happens; None searches until the plan is proved best.
 
     Raises:
         NotPlannable: a finding stops the week, or limits and holds contradict each other.
@@ -55,15 +78,34 @@ def plan_week(week: Week, near: Plan | Quantities | None = None, progress: Progr
         tell("Sharing evenly")
         model = evenly_shared(week, model)
     tell("Solving")
+    if has_whole_loads(week):
+        search = search_of(week, model, least_cost(model.problem), found)
+        tell("Searching by whole loads")
+        start = near if isinstance(near, Plan) else None
+        try:
+            return plan_loads(search, start, improved, should_stop, time_limit)
+        except NotImplementedError:
+            raise NotPlannable((_not_yet(), *found)) from None
+        except NoPlan as refused:
+            raise NotPlannable((in_words(week, search, refused), *found)) from None
     flow = nearest_flow(week, model, least_cost(model.problem), near)
     tell("Writing the plan down")
     return _plan(week, model, flow, found)
 
 
+def _not_yet() -> Finding:
+    return Finding(
+        Severity.STOPS,
+        "not planned yet",
+        "Whole loads and charges due once cannot be planned yet.",
+        "Give rates per unit, and take out such charges and limits.",
+    )
+
+
 def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> Plan:
-    gone = _gone(week)
+    gone = gone_shipments(week)
     shipments = (*gone, *_shipments(week, model, flow))
-    short, unsent = _short(model, flow), _unsent(model, flow)
+    short, unsent = short_of(model, flow.quantity), unsent_of(model, flow.quantity)
     freight, short_cost, unsent_cost = _costs(model, flow)
     minor = minor_places(week.rules.currency)
     payable = sum(to_integer(shipment.payable, minor) for shipment in shipments)
@@ -92,23 +134,12 @@ def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> P
         ),
         depot_prices=_named_prices(model.depots, prices.depot, model.money_places),
         customer_prices=_named_prices(model.customers, prices.customer, model.money_places),
-        findings=tuple(by_gravity((*found, *_about_the_plan(week, model, short, unsent)))),
+        findings=tuple(by_gravity((*found, *about_the_plan(week, model, short, unsent)))),
         model=model,
         flow=flow,
         closure=prices.closure,
+        quantity=flow.quantity,
     )
-
-
-def _gone(week: Week) -> tuple[Shipment, ...]:
-    """What has gone, at the rates it went at."""
-    minor = minor_places(week.rules.currency)
-    found = []
-    for one in week.gone.values():
-        cost = cost_of(one)
-        found.append(
-            Shipment(key_of(one), one.quantity, one.rate, cost, round_half_up(cost, minor), gone=one.name)
-        )
-    return tuple(found)
 
 
 def _costs(model: Model, flow: Flow) -> tuple[int, int, int]:
@@ -133,11 +164,12 @@ def _shipments(week: Week, model: Model, flow: Flow) -> tuple[Shipment, ...]:
     used = np.flatnonzero((flow.quantity > 0) & (model.rate_row >= 0))
     used = used[np.argsort(model.rate_row[used], kind="stable")]
     minor = minor_places(week.rules.currency)
-    ids = week.rates.ids_in_order
+    ids, sizes = week.rates.ids_in_order, load_sizes(week)
     places = model.quantity_places + model.money_places
     shipments = []
     for row in used.tolist():
         key = week.rates.key_of(int(ids[model.rate_row[row]]))
+        size = sizes.get(int(model.rate_row[row]))
         quantity, rate = int(flow.quantity[row]), int(model.money[row])
         cost = to_decimal(quantity * rate, places)
         shipments.append(
@@ -147,90 +179,9 @@ def _shipments(week: Week, model: Model, flow: Flow) -> tuple[Shipment, ...]:
                 to_decimal(rate, model.money_places),
                 cost,
                 round_half_up(cost, minor),
+                loads=loads_of(to_decimal(quantity, model.quantity_places), size),
                 held=key in week.holds,
+                load_size=size,
             )
         )
     return tuple(shipments)
-
-
-def _short(model: Model, flow: Flow) -> tuple[Short, ...]:
-    found = []
-    for j, row in enumerate(model.short_rows.tolist()):
-        quantity, charge = int(flow.quantity[row]), int(model.money[row])
-        if quantity:
-            found.append(
-                Short(
-                    model.customers[j],
-                    to_decimal(quantity, model.quantity_places),
-                    to_decimal(charge, model.money_places),
-                    to_decimal(quantity * charge, model.quantity_places + model.money_places),
-                )
-            )
-    return tuple(found)
-
-
-def _unsent(model: Model, flow: Flow) -> tuple[Unsent, ...]:
-    found = []
-    for i, (stay, must) in enumerate(zip(model.stay_rows.tolist(), model.must_row.tolist(), strict=True)):
-        must_stay = int(flow.quantity[must]) if must >= 0 else 0
-        quantity, charge = int(flow.quantity[stay]) + must_stay, int(model.money[stay])
-        if quantity:
-            found.append(
-                Unsent(
-                    model.depots[i],
-                    to_decimal(quantity, model.quantity_places),
-                    to_decimal(charge, model.money_places),
-                    to_decimal(quantity * charge, model.quantity_places + model.money_places),
-                    to_decimal(must_stay, model.quantity_places),
-                )
-            )
-    return tuple(found)
-
-
-def _about_the_plan(
-    week: Week, model: Model, short: tuple[Short, ...], unsent: tuple[Unsent, ...]
-) -> tuple[Finding, ...]:
-    """Remarks that only the plan shows."""
-    found = []
-    unpriced = [
-        one.customer
-        for one in short
-        if week.customers[one.customer].charge_if_short is None and week.rules.charge_if_short is None
-    ]
-    if unpriced:
-        found.append(
-            Finding(
-                Severity.CHECK,
-                "freight alone decided who is short",
-                f"{_listed(unpriced)} went short and no charge if short is given: freight alone decided who.",
-                "Give a charge if short to the customers or to the week if that is not what you want.",
-            )
-        )
-    unit = week.rules.unit
-    found.extend(
-        Finding(
-            Severity.CHECK,
-            "short",
-            group.sentence(unit),
-            "Add stock, open a lane or raise a limit; or lower the orders.",
-        )
-        for group in (shortages(model) if short else ())
-    )
-    found.extend(
-        Finding(
-            Severity.CHECK,
-            "must move not reached",
-            f"{one.depot} keeps {canonical(one.must_move)} {unit} that must move: "
-            "orders and rates leave no way to send it.",
-            "Raise an order, open a lane, or lower Must move.",
-        )
-        for one in unsent
-        if one.must_move
-    )
-    return tuple(found)
-
-
-def _listed(names: list[str]) -> str:
-    """The first five names and how many there are."""
-    shown = ", ".join(names[:5])
-    return shown if len(names) <= 5 else f"{shown} and {len(names) - 5} more"

@@ -2,6 +2,7 @@
 
 from engine.reasons.chains import Chain, Leg, Move, Step, chain, more_on
 from engine.reasons.curve import Curve, CurvePoint, curve
+from engine.reasons.ground import Withheld
 from engine.reasons.options import NearLane, Option, Unquoted, nearest_to_paying, options, unquoted
 from engine.reasons.pairs import Pair, pairs
 from engine.reasons.rates import RateInterval, RateIntervals, rate_intervals
@@ -26,6 +27,7 @@ __all__ = [
     "Unquoted",
     "Values",
     "Why",
+    "Withheld",
     "chain",
     "curve",
     "more_on",

@@ -19,7 +19,17 @@ from engine.network.closure import NO_WAY, Exchange
 from engine.planning.model import EVEN_SHARE, NO_RATE, Integers
 from engine.planning.plan import Plan
 from engine.reasons.ends import End, moved
-from engine.reasons.ground import OVERRUN, SHARED, Ground, ground_of, grounded_again, is_shared, overrun
+from engine.reasons.ground import (
+    OVERRUN,
+    SHARED,
+    WHOLE,
+    Ground,
+    Withheld,
+    ground_of,
+    grounded_again,
+    is_shared,
+    overrun,
+)
 from engine.reasons.rows import gone_on, key_at, row_of
 
 MOST_LEGS = 200
@@ -144,6 +154,8 @@ def chain(plan: Plan, change: Change) -> Chain:
 
 
 def _of_end(plan: Plan, end: End, asked: Chain) -> Chain:
+    if plan.whole is not None:
+        raise Withheld(WHOLE)
     if is_shared(plan):
         return replace(asked, note=SHARED)
     if (end.what, asked.depot or asked.customer) in overrun(plan):
@@ -185,7 +197,7 @@ def _of_row(plan: Plan, key: RateKey, quantity: Decimal) -> Chain:
 
 def more_on(plan: Plan, key: RateKey, quantity: Decimal) -> SetHold:
     """The hold that puts so much more on a rate row than the plan does, with what has gone on it."""
-    now = to_decimal(int(plan.flow.quantity[row_of(plan, key)]), plan.model.quantity_places)
+    now = to_decimal(int(plan.quantity[row_of(plan, key)]), plan.model.quantity_places)
     return SetHold(key, total_of((now, gone_on(plan, key), quantity)))
 
 

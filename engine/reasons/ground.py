@@ -21,6 +21,18 @@ Flags = npt.NDArray[np.bool_]
 OVERRUN = "More has gone already than this figure: it changes nothing until what has gone fits."
 """Why a figure has no value and no curve."""
 
+WHOLE = (
+    "This plan has whole loads: a unit more or less may need another vehicle, or none, so that no single "
+    "cost of a unit and no rate at which the plan would change can be told. Put the change up on Plan: "
+    "its price is worked out there."
+)
+"""Why there are no reasons for a plan with whole loads."""
+
+
+class Withheld(ValueError):
+    """A question that has no exact answer for this plan; the message says why."""
+
+
 SHARED = "Goods are shared evenly: a unit more or less moves everybody's share."
 """Why values are withheld."""
 
@@ -99,8 +111,11 @@ def ground_of(plan: Plan) -> Ground:
     """What all reasons of a plan start from.
 
     Raises:
+        Withheld: the plan has whole loads.
         TooLarge: a chain's cost could leave the exact integers.
     """
+    if plan.whole is not None:
+        raise Withheld(WHOLE)
     return Ground(plan.model, plan.closure, *limits_of(plan.model))
 
 

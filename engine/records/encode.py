@@ -14,7 +14,7 @@ from typing import Any, cast
 
 from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
 from engine.exact import canonical
-from engine.figures import Customer, Depot, Gone, Order, RateKey, RateRow
+from engine.figures import Customer, Depot, Gone, Haulier, Order, RateKey, RateRow
 
 KINDS: Mapping[str, type] = {
     "add": Add,
@@ -32,6 +32,7 @@ RECORDS: Mapping[str, type] = {
     "order": Order,
     "rate_row": RateRow,
     "gone": Gone,
+    "haulier": Haulier,
 }
 """The values with fields of their own that a change may carry."""
 

@@ -6,11 +6,11 @@ from typing import Any
 
 from sqlalchemy import Connection, Table, delete, select
 
-from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
+from engine.figures import Customer, Depot, Gone, Haulier, Hold, Order, RateKey, RateRow, Rules
 from engine.rates import Rates, RateTable
 from engine.records.bulk import insert_columns, insert_rows
 from engine.records.decimals import Row, as_row, cells_of, columns_of, from_row, row_of, values_in
-from engine.records.schema import customers, depots, gone, holds, orders, rate_changes
+from engine.records.schema import customers, depots, gone, hauliers, holds, orders, rate_changes
 from engine.week import Week
 
 UPLOADED = "uploaded"
@@ -44,6 +44,8 @@ def store_figures(connection: Connection, week_id: str, week: Week) -> None:
     ]
     _insert(connection, orders, [key for _, key in listed], Order, [order for order, _ in listed])
     insert_rows(connection, rate_changes, _rate_rows(of_week, week.rates))
+    numbers = [(week_id, number) for number in range(len(week.hauliers))]
+    _insert(connection, hauliers, numbers, Haulier, week.hauliers.values())
     store_facts(connection, week_id, week, UPLOADED)
     store_facts(connection, week_id, week, NOW)
 
@@ -100,6 +102,7 @@ def load_figures(connection: Connection, week_id: str, head: Mapping[Any, Any], 
         rules_in(head),
         _holds(connection, week_id),
         tuple(Gone(**values_in(row, Gone)) for row in _facts(connection, gone, week_id, UPLOADED)),
+        tuple(Haulier(**values_in(row, Haulier)) for row in _rows(connection, hauliers, week_id)),
     )
 
 

@@ -19,7 +19,7 @@ from engine.records.journal import NO_SUCH_WEEK
 from engine.records.opening import Records
 from engine.records.schema import plans, shipments, short, unsent, weeks
 
-COSTS = ("freight_payable", "short_cost", "unsent_cost")
+COSTS = ("freight_payable", "short_cost", "unsent_cost", "opening_cost")
 EXACT = ("freight_cost", "total_cost")
 
 
@@ -45,6 +45,7 @@ class Issued:
     shipments: tuple[Shipment, ...]
     short: tuple[Short, ...]
     unsent: tuple[Unsent, ...]
+    opening_cost: Decimal
 
     @property
     def quantities(self) -> Mapping[RateKey, Decimal]:
@@ -160,6 +161,7 @@ def _issued(connection: Connection, head: RowMapping) -> Issued:
     }
     plain |= {name: Decimal(head[f"{name}_exact"]) for name in (*EXACT, "lower_bound")}
     plain |= from_row(head, COSTS, COSTS)
+    plain["opening_cost"] = plain["opening_cost"] or Decimal(0)
     return Issued(
         **plain,
         issued=_utc(head["issued"]),

@@ -146,6 +146,7 @@ weeks = Table(
     Column("customer_list_id", Integer, ForeignKey("name_lists.id"), nullable=False),
     Column("haulier_list_id", Integer, ForeignKey("name_lists.id"), nullable=False),
     Column("rates_added", Integer, nullable=False),
+    *decimal("days"),
 )
 """A week as uploaded, its rules among it. `version` counts the changes made since."""
 
@@ -161,6 +162,7 @@ depots = Table(
     *decimal("loads_a_day"),
     *decimal("latitude"),
     *decimal("longitude"),
+    *decimal("opening_charge"),
 )
 
 customers = Table(
@@ -177,6 +179,17 @@ customers = Table(
     *decimal("latitude"),
     *decimal("longitude"),
 )
+
+hauliers = Table(
+    "hauliers",
+    metadata,
+    of_week(),
+    place(),
+    Column("name", Text, nullable=False),
+    *decimal("at_most"),
+    *decimal("load_size"),
+)
+"""Hauliers of whom there is something to say."""
 
 orders = Table(
     "orders",
@@ -265,6 +278,7 @@ plans = Table(
     Column("freight_cost_exact", Text, nullable=False),
     Column("total_cost_exact", Text, nullable=False),
     Column("lower_bound_exact", Text, nullable=False),
+    *decimal("opening_cost"),
     UniqueConstraint("week_id", "number"),
 )
 """Plans as they were issued; `version` is that of the week which they answer."""
@@ -285,6 +299,9 @@ shipments = Table(
     Column("loads", Integer),
     Column("held", Boolean, nullable=False),
     Column("gone", Text, nullable=False, server_default=""),
+    Column("per", Text, nullable=False, server_default="unit"),
+    *decimal("load_size"),
+    *decimal("once"),
 )
 """`gone` is the name of a quantity that had left when the plan was issued, empty for what was still to go."""
 

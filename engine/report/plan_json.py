@@ -5,7 +5,8 @@ from decimal import Decimal
 from typing import Any
 
 from engine.exact import canonical
-from engine.planning.plan import Plan
+from engine.planning.load_plan import cost_of_wholeness
+from engine.planning.plan import Plan, Shipment, Wholeness
 from engine.reasons import RateInterval, UnitValue, rate_intervals, values
 
 
@@ -29,19 +30,7 @@ def plan_as_json(plan: Plan, full: bool = False) -> dict[str, Any]:
         "short_cost": canonical(plan.short_cost),
         "total_cost": canonical(plan.total_cost),
         "freight_payable": canonical(plan.freight_payable),
-        "shipments": [
-            {
-                "depot": one.depot,
-                "customer": one.customer,
-                "haulier": one.haulier,
-                "quantity": canonical(one.quantity),
-                "loads": one.loads,
-                "rate": canonical(one.rate),
-                "cost": canonical(one.cost),
-                "payable": canonical(one.payable),
-            }
-            for one in plan.shipments
-        ],
+        "shipments": [_shipment(one, plan.whole is not None) for one in plan.shipments],
         "short": [{"customer": one.customer, "quantity": canonical(one.quantity)} for one in plan.short],
         "unsent": [{"depot": one.depot, "quantity": canonical(one.quantity)} for one in plan.unsent],
         "depot_values": list(_values("depot", value_of.depots)),
@@ -62,7 +51,46 @@ def plan_as_json(plan: Plan, full: bool = False) -> dict[str, Any]:
             for finding in plan.findings
         ],
     }
-    return {**written, "rates": [_rate(one) for one in rate_intervals(plan)]} if full else written
+    if plan.whole is not None:
+        written |= {
+            "opening_cost": canonical(plan.opening_cost),
+            "openings": [{"depot": one.depot, "charge": canonical(one.charge)} for one in plan.openings],
+            "whole_loads": _wholeness(plan, plan.whole),
+            "values_withheld": value_of.withheld,
+        }
+    if not full:
+        return written
+    return {**written, "rates": [] if plan.whole else [_rate(one) for one in rate_intervals(plan)]}
+
+
+def _shipment(one: Shipment, whole: bool) -> dict[str, Any]:
+    """With whole loads it says as well what the rate is charged by, and what is due once."""
+    said: dict[str, Any] = {
+        "depot": one.depot,
+        "customer": one.customer,
+        "haulier": one.haulier,
+        "quantity": canonical(one.quantity),
+        "loads": one.loads,
+        "rate": canonical(one.rate),
+        "cost": canonical(one.cost),
+        "payable": canonical(one.payable),
+    }
+    if whole:
+        said |= {"per": one.per, "load_size": _text(one.load_size), "charge_per_use": _text(one.once)}
+    return said
+
+
+def _wholeness(plan: Plan, whole: Wholeness) -> dict[str, Any]:
+    """How the plan was found, and what whole vehicles cost beside the network plan of the same week."""
+    cost = cost_of_wholeness(plan)
+    return {
+        "found": whole.loads.how,
+        "ended": whole.loads.ended,
+        "seconds": round(whole.loads.seconds, 3),
+        "divisible_cost": canonical(whole.divisible_cost),
+        "divisible_short": canonical(whole.divisible_short),
+        "cost_of_wholeness": None if cost is None else canonical(cost),
+    }
 
 
 def _rate(one: RateInterval) -> dict[str, str | None]:

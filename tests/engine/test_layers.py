@@ -17,6 +17,7 @@ ROOMS = [
     "engine.intake",
     "engine.history",
     "engine.altered",
+    "engine.load_sizes",
     "engine.week",
     "engine.touch",
     "engine.changes",

@@ -246,7 +246,7 @@ CASES = [
         ),
     ),
     book(
-        "what_is_not_planned_yet",
+        "loads_without_a_load_size",
         Rates=rates(
             ["Northgate", "Aster", 250, "load", None, None],
             ["Quarry", "Birch", 11, "t", 90, 40],

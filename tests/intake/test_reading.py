@@ -158,12 +158,8 @@ FAULTS = [
         ("stops", "unknown name", "Customers", "C2"),
     ),
     (
-        {"Customers": [["Customer", "Ordered", "One depot"], ["Aster", 60, "yes"], ["Birch", 40, None]]},
-        ("stops", "not planned yet", "Customers", "C2"),
-    ),
-    (
-        {"Customers": [["Customer", "Ordered", "Smallest drop"], ["Aster", 60, None], ["Birch", 40, 20]]},
-        ("stops", "not planned yet", "Customers", "C3"),
+        {"Customers": [["Customer", "Ordered", "Smallest drop"], ["Aster", 60, None], ["Birch", 40, 50]]},
+        ("check", "smallest drop over order", "Customers", "C3"),
     ),
     ({"Rates": None}, ("stops", "no rates", "Rates", "")),
     ({"Rates": [*RATES, ["Nothgate", "Aster", 3]]}, ("check", "unknown name", "Rates", "A6")),
@@ -178,20 +174,33 @@ FAULTS = [
     ),
     (
         {"Rates": rates(["Northgate", "Aster", 3, "load"], *RATES[2:], headings=["Per"])},
-        ("stops", "not planned yet", "Rates", "D2"),
+        ("stops", "load size missing", "Rates", "D2"),
     ),
     (
         {"Rates": [["Depot", "Customer", "Rate EUR/load"], *RATES[1:]]},
-        ("stops", "not planned yet", "Rates", "C2"),
+        ("stops", "load size missing", "Rates", "C2"),
     ),
     (
         {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Trip minimum"])},
-        ("stops", "not planned yet", "Rates", "D2"),
+        ("stops", "load size missing", "Rates", "D2"),
     ),
     (
-        {"Rates": rates(["Northgate", "Aster", 3, 50], *RATES[2:], headings=["Charge per use"])},
-        ("stops", "not planned yet", "Rates", "D2"),
+        {"Rates": rates(["Northgate", "Aster", -3, "load", 25], *RATES[2:], headings=["Per", "Load size"])},
+        ("stops", "negative rate per load", "Rates", "C2"),
     ),
+    (
+        {"Rates": rates(["Northgate", "Aster", 3, "load", 0], *RATES[2:], headings=["Per", "Load size"])},
+        ("stops", "load size", "Rates", "E2"),
+    ),
+    (
+        {"Hauliers": [["Haulier", "At most"], ["Packhrose", 50]]},
+        ("check", "unknown haulier", "Hauliers", "A2"),
+    ),
+    (
+        {"Hauliers": [["Haulier", "Load size"], ["Vole", 25], ["vole", 24]]},
+        ("stops", "same haulier twice", "Hauliers", "A3"),
+    ),
+    ({"Rules": [["Rule", "Value"], ["Days", 0]]}, ("stops", "rule", "Rules", "B2")),
     (
         {"Rates": [["Depot", "Customer", "Rate £/t"], *RATES[1:]]},
         ("stops", "column in other currency", "Rates", "C1"),
