@@ -11,6 +11,7 @@ from openpyxl.chart.shapes import GraphicalProperties
 
 from engine.exact import canonical
 from engine.money import minor_places
+from engine.planning.load_plan import cost_of_wholeness
 from engine.planning.plan import Plan
 from engine.report.lines import NO_HAULIER, Line, quantity_format, total
 from engine.report.look import DEEP, Style, number_format, places_of
@@ -32,17 +33,18 @@ class Formats(NamedTuple):
 
 
 def costs_sheet(plan: Plan, lines: Sequence[Line], header: str) -> tuple[Sheet, dict[str, str]]:
-    """Sheet *Costs*, and the cells in which 'payable' and 'rounding' stand."""
+    """Sheet *Costs*, and the cells in which 'payable', 'rounding', 'short', 'unsent' and 'total' stand."""
     formats = _formats(plan)
     rows = _headline(plan, formats)
     cells = {
         what: f"Costs!$B${1 + next(r for r, row in enumerate(rows) if row.values and row.values[0] == label)}"
-        for what, label in (("payable", _HEADLINE), ("rounding", _ROUNDING))
+        for what, label in _CELLS.items()
     }
     hauliers = _by_haulier(lines, formats)
     first, last = len(rows) + 3, len(rows) + len(hauliers) - 2
     rows += hauliers
     rows += _by_depot(plan, lines, formats)
+    rows += _openings(plan, formats)
     rows += _short(plan, formats)
     rows += _unsent(plan, formats)
 
@@ -64,11 +66,17 @@ def service_in_words(plan: Plan) -> str:
 
 
 _HEADLINE, _ROUNDING = "Freight payable", "Rounding, once per shipment"
+_SHORT, _UNSENT = "Charges for what is short", "Charges for what is unsent"
+_TOTAL = "Made least: exact freight and charges"
+_CELLS = {
+    "payable": _HEADLINE, "rounding": _ROUNDING, "short": _SHORT, "unsent": _UNSENT, "total": _TOTAL,
+}  # fmt: skip
 
 
 def _formats(plan: Plan) -> Formats:
     minor = minor_places(plan.week.rules.currency)
     exact = [plan.freight_cost, plan.total_cost, plan.short_cost, plan.unsent_cost, plan.proof.rounding]
+    exact += [plan.opening_cost, plan.proof.lower_bound] if plan.whole else []
     return Formats(
         number_format(minor), number_format(max(places_of(exact), minor), always=minor), quantity_format(plan)
     )
@@ -116,13 +124,44 @@ def _headline(plan: Plan, formats: Formats) -> list[Row]:
             if plan.week.gone
             else []
         ),
-        _line(["Charges for what is short", plan.short_cost, NOTIONAL], exact),
-        _line(["Charges for what is unsent", plan.unsent_cost, NOTIONAL], exact),
-        _line(["Made least: exact freight and charges", plan.total_cost, None], exact, "total"),
+        *(
+            [_line(["Charges for opening depots", plan.opening_cost, PAYABLE], exact)]
+            if plan.openings
+            else []
+        ),
+        _line([_SHORT, plan.short_cost, NOTIONAL], exact),
+        _line([_UNSENT, plan.unsent_cost, NOTIONAL], exact),
+        _line([_TOTAL, plan.total_cost, None], exact, "total"),
+        *_of_whole_loads(plan, exact),
         Row(
             ["Notional: it steers the plan and stands on no invoice, unless the desk knows better."],
             [Style("quiet")],
         ),
+        Row([]),
+    ]
+
+
+def _of_whole_loads(plan: Plan, exact: Sequence[str | None]) -> list[Row]:
+    """What must be paid at least, and what whole vehicles cost beside a plan with parts of vehicles."""
+    cost = cost_of_wholeness(plan)
+    if plan.whole is None or cost is None:
+        return []
+    return [
+        _line(["No plan costs less than", plan.proof.lower_bound, None], exact),
+        _line(["This plan is above that by", plan.proof.gap, None], exact),
+        _line(["Cost of wholeness, beside parts of vehicles", cost, None], exact),
+    ]
+
+
+def _openings(plan: Plan, formats: Formats) -> list[Row]:
+    if not plan.openings:
+        return []
+    numbers = (None, formats.exact)
+    return [
+        _part("Opened depots", 3),
+        _headings("Depot", "Opening charge", "Kind"),
+        *(_line([one.depot, one.charge, PAYABLE], numbers) for one in plan.openings),
+        _line(["Total", plan.opening_cost, PAYABLE], numbers, "total"),
         Row([]),
     ]
 

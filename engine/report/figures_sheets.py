@@ -12,6 +12,7 @@ from engine.columns import (
     CUSTOMER_COLUMNS,
     DEPOT_COLUMNS,
     GONE_COLUMNS,
+    HAULIER_COLUMNS,
     HOLD_HEADINGS,
     RATE_COLUMNS,
     RULE_COLUMNS,
@@ -57,11 +58,14 @@ def all_fit(week: Week) -> bool:
     others += [customer.charge_if_short for customer in week.customers.values()]
     others += [figure for gone in week.gone.values() for figure in (gone.quantity, gone.rate)]
     others += [hold.quantity for hold in week.holds.values()]
+    others += [depot.opening_charge for depot in week.depots.values()]
+    others += [figure for one in week.hauliers.values() for figure in (one.at_most, one.load_size)]
+    others += [week.rules.load_size, week.rules.days]
     return small and all(figure is None or fits_a_number(figure) for figure in others)
 
 
 def figures_sheets(week: Week, header: str) -> list[Sheet]:
-    """The sheets, *Gone* only where anything has.
+    """The sheets, *Gone* and *Hauliers* only where there is anything on them.
 
     *Rates* goes on in *Rates 2* and so on where one sheet cannot hold all rows.
     """
@@ -70,6 +74,7 @@ def figures_sheets(week: Week, header: str) -> list[Sheet]:
         _customers(week, header),
         *_rates(week, header),
         *([_gone(week, header)] if week.gone else []),
+        *([_hauliers(week, header)] if week.hauliers else []),
         _rules(week, header),
     ]
 
@@ -90,6 +95,11 @@ def _customers(week: Week, header: str) -> Sheet:
 def _gone(week: Week, header: str) -> Sheet:
     rows = [[_shown(getattr(gone, c.field)) for c in GONE_COLUMNS] for gone in week.gone.values()]
     return _sheet("Gone", GONE_COLUMNS, rows, header)
+
+
+def _hauliers(week: Week, header: str) -> Sheet:
+    rows = [[_shown(getattr(one, c.field)) for c in HAULIER_COLUMNS] for one in week.hauliers.values()]
+    return _sheet("Hauliers", HAULIER_COLUMNS, rows, header)
 
 
 def _of_order(customer: Customer, order: Order, column: Column, first: bool) -> Value:

@@ -24,6 +24,7 @@ from engine.report.lines import (
     styles_of,
     total,
 )
+from engine.report.load_columns import filled, per_columns
 from engine.report.look import height_of, number_format, places_of
 from engine.report.plan_sheet import total_values
 from engine.report.sheet import Formula, Row, Sheet, Value
@@ -45,6 +46,7 @@ def loading_columns(plan: Sent) -> list[ListColumn]:
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
         columns.insert(4, ListColumn("Loads", 8, lambda line: line.shipment.loads, "0"))
+        columns.insert(5, ListColumn("Filled", 18, filled))
     return columns
 
 
@@ -72,6 +74,7 @@ def by_haulier_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
             lambda line: line.shipment.rate,
             number_format(places_of(shipment.rate for shipment in plan.shipments), always=2),
         ),
+        *per_columns(plan),
         ListColumn("Payable", 15, lambda line: line.shipment.payable, payable),
         ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),

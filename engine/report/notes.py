@@ -21,9 +21,8 @@ CAUTIONS = (
 )
 
 NOT_CHECKED = (
-    "Whether a haulier has the vehicles, or a depot the loading bays, on a given day (Loads a day is kept "
-    "for the "
-    "loading lists, not planned with).",
+    "Whether a haulier has the vehicles, or a depot the loading bays, on a given day: Loads a day counts for "
+    "the whole week, and only where load sizes are given.",
     "On which day of the week a quantity goes: order numbers and days are carried along, not scheduled.",
     "Distances and positions: Km, Latitude and Longitude are not used in the costs.",
     "Whether the figures themselves are right. Findings name what looks wrong; nobody but the desk can say "

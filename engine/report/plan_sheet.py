@@ -16,6 +16,7 @@ from engine.report.lines import (
     styles_of,
     total,
 )
+from engine.report.load_columns import loads_columns, per_columns
 from engine.report.look import DEEP, number_format, places_of
 from engine.report.sheet import Formula, Row, Sheet, Value
 
@@ -43,7 +44,9 @@ def plan_columns(plan: Plan) -> list[ListColumn]:
         *gone_columns(plan),
     ]
     if any(shipment.loads is not None for shipment in plan.shipments):
-        columns.insert(5, ListColumn("Loads", 8, lambda line: line.shipment.loads, "0"))
+        columns[5:5] = loads_columns()
+        after = 1 + [column.heading for column in columns].index("Rate")
+        columns[after:after] = per_columns(plan)
     return columns
 
 

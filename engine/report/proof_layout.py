@@ -6,7 +6,14 @@ from typing import NamedTuple
 
 import numpy as np
 
-from engine.columns import CUSTOMER_COLUMNS, DEPOT_COLUMNS, GONE_COLUMNS, RULE_COLUMNS, Column
+from engine.columns import (
+    CUSTOMER_COLUMNS,
+    DEPOT_COLUMNS,
+    GONE_COLUMNS,
+    HAULIER_COLUMNS,
+    RULE_COLUMNS,
+    Column,
+)
 from engine.exact import Integers
 from engine.money import minor_places
 from engine.planning.plan import Plan
@@ -82,11 +89,12 @@ def layout_of(
         all_fit(plan.week),
         plan_letters,
         1 + len(lines),
-        _places(plan),
+        places_of_plan(plan),
     )
 
 
-def _places(plan: Plan) -> Places:
+def places_of_plan(plan: Plan) -> Places:
+    """Decimal places of a plan's figures, as far as a spreadsheet number keeps them."""
     model = plan.model
     rates = int(np.abs(model.money).max(initial=0)) // 10**model.money_places
     cost = max((abs(shipment.cost) for shipment in plan.shipments), default=Decimal(0))
@@ -128,6 +136,11 @@ def on_rates(heading: str, position: int) -> str:
 def on_gone(field: str, place: int) -> str:
     """The cell of *Gone* that holds a field of what has gone, at a position."""
     return f"Gone!${_letter_of(GONE_COLUMNS, field)}${place + 2}"
+
+
+def on_hauliers(field: str, place: int) -> str:
+    """The cell of *Hauliers* that holds a field of the haulier at a position."""
+    return f"Hauliers!${_letter_of(HAULIER_COLUMNS, field)}${place + 2}"
 
 
 def on_rules(field: str) -> str:

@@ -5,8 +5,10 @@ from typing import NamedTuple
 
 from engine.exact import canonical
 from engine.figures import ANY_SINGLE_DEPOT, Customer, Depot
+from engine.load_sizes import counted_depots, given
 from engine.money import is_known, minor_places
 from engine.planning.gone import superseded
+from engine.planning.load_plan import cost_of_wholeness
 from engine.planning.plan import Plan
 
 
@@ -115,6 +117,69 @@ def _unsent_charges(plan: Plan) -> str:
     )
 
 
+def _load_sizes(plan: Plan) -> str:
+    week, said = plan.week, []
+    if "load_size" in week.rates.flat.decimals:
+        said.append("A rate row's own load size goes first")
+    theirs = [f"{h.name} {canonical(h.load_size)}" for h in week.hauliers.values() if h.load_size is not None]
+    if theirs:
+        said.append(f"{'then' if said else 'First goes'} that of the haulier ({_listed(theirs)})")
+    if week.rules.load_size is not None:
+        size, of_week = f"{canonical(week.rules.load_size)} {week.rules.unit}", "the week's, "
+        said.append(f"{'then' if said else 'A load is'} {of_week if said else ''}{size}")
+    return ", ".join(said) + ". All loads of a shipment are full but the last."
+
+
+def _smallest_drops(plan: Plan) -> str:
+    listed = [
+        f"{c.name} {canonical(c.smallest_drop)} {plan.week.rules.unit}"
+        for c in plan.week.customers.values()
+        if c.smallest_drop
+    ]
+    return f"By one rate a customer gets nothing, or at least its smallest drop: {_listed(listed)}."
+
+
+def _loads_a_day(plan: Plan) -> str:
+    rules, counted = plan.week.rules, counted_depots(plan.week)
+    days = canonical(rules.loading_days)
+    why = "" if rules.days is not None else ", Monday to Friday, the common practice where Days says nothing"
+    listed = [
+        f"{d.name} {canonical(d.loads_a_day * rules.loading_days)}"
+        for d in plan.week.depots.values()
+        if d.loads_a_day is not None and counted.get(d.name)
+    ]
+    return (
+        f"The week has {days} loading days{why}. So many loads may leave in it, Loads a day times days: "
+        f"{_listed(listed)}. On which day each goes is not planned."
+    )
+
+
+def _hauliers(plan: Plan) -> str:
+    listed = [
+        f"{h.name} {canonical(h.at_most)} {plan.week.rules.unit}"
+        for h in plan.week.hauliers.values()
+        if h.at_most is not None
+    ]
+    return f"Over all lanes together a haulier carries at most: {_listed(listed)}."
+
+
+def _how_found(plan: Plan) -> str:
+    whole, currency = plan.whole, plan.week.rules.currency
+    if whole is None:
+        return ""
+    cost = cost_of_wholeness(plan)
+    beside = (
+        ""
+        if cost is None
+        else (
+            f" A plan that could send parts of vehicles, without the rules on whole loads, would cost "
+            f"{canonical(whole.divisible_cost)} {currency}: {canonical(cost)} less."
+        )
+    )
+    near = " A plan that was issued before decides nothing here but where the search starts."
+    return whole.how + beside + near
+
+
 _RULES = (
     Rule("Order of aims", _always, _order_of_aims),
     Rule(
@@ -164,12 +229,53 @@ _RULES = (
     Rule("Rounding", _always, _rounding),
     Rule(
         "Whole loads",
-        lambda plan: any(shipment.loads is not None for shipment in plan.shipments),
+        lambda plan: bool(plan.week.rates.flat.per_load.any()),
         lambda _: (
             "Where a rate is per load, the quantity is divided by the load size and rounded up per customer "
             "and rate row: a part load pays whole."
         ),
     ),
+    Rule(
+        "Load size",
+        lambda plan: any(shipment.loads is not None for shipment in plan.shipments),
+        _load_sizes,
+    ),
+    Rule(
+        "Trip minimum",
+        lambda plan: bool(given(plan.week.rates.flat, "trip_minimum").any()),
+        lambda _: (
+            "A load costs at least its trip minimum. It is compared with what the load costs with its "
+            "surcharge, and bears none itself."
+        ),
+    ),
+    Rule(
+        "Charge per use",
+        lambda plan: bool(given(plan.week.rates.flat, "charge_per_use").any()),
+        lambda _: (
+            "A charge per use is paid once in the week for a rate row that carries anything, within the "
+            "shipment that it belongs to; no surcharge is on it."
+        ),
+    ),
+    Rule(
+        "Opening charge",
+        _any_depot(lambda depot: depot.opening_charge),
+        lambda _: (
+            "A depot's opening charge is paid once if anything is sent from it this week. It is payable and "
+            "no freight: it stands apart, on Costs."
+        ),
+    ),
+    Rule("Smallest drop", _any_customer(lambda customer: customer.smallest_drop), _smallest_drops),
+    Rule("Loads a day", lambda plan: any(counted_depots(plan.week).values()), _loads_a_day),
+    Rule("Hauliers", lambda plan: any(h.at_most is not None for h in plan.week.hauliers.values()), _hauliers),
+    Rule(
+        "Gone and whole loads",
+        lambda plan: plan.whole is not None and bool(plan.week.gone),
+        lambda _: (
+            "What has gone is paid as its own rate says, charges due once included: its rate row and its "
+            "depot count as paid for. Its loads count against Loads a day."
+        ),
+    ),
+    Rule("How it was found", lambda plan: plan.whole is not None, _how_found),
     Rule(
         "Limits",
         lambda plan: (

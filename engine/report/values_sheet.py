@@ -46,6 +46,12 @@ _ABOUT_RATES = (
 def values_sheet(plan: Plan, header: str) -> Sheet:
     """Sheet *Values*: depots, then customers, then rates in use and those nearest to paying."""
     found = values(plan, holds=True)
+    if plan.whole is not None:
+        rows = [
+            Row(["What a unit is worth"], [Style("title")], height=26),
+            Row([found.withheld], [Style("quiet")]),
+        ]
+        return Sheet("Values", _WIDTHS, rows, length=len(rows), header=header)
     used = list(_used(plan))
     near = nearest_to_paying(plan, MOST_UNUSED)
     rows = [*_rows(plan, found), *_rate_rows(plan, found, used, near)]

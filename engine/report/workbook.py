@@ -12,6 +12,7 @@ from engine.report.lines import lines_of
 from engine.report.notes import notes_sheet
 from engine.report.plan_sheet import plan_columns, plan_letters, plan_sheet
 from engine.report.proof_layout import MOST_ROWS_LISTED
+from engine.report.proof_loads import load_proof_sheet
 from engine.report.proof_sheet import proof_sheet
 from engine.report.sheet import Sheet
 from engine.report.values_sheet import values_sheet
@@ -39,6 +40,7 @@ def workbook_sheets(plan: Plan, made: datetime | None = None, more: Sequence[She
     """The sheets of the workbook, in order."""
     lines, header = lines_of(plan), header_of(plan)
     costs, cells = costs_sheet(plan, lines, header)
+    proof = proof_sheet if plan.whole is None else load_proof_sheet
     return [
         plan_sheet(plan, lines, header),
         by_depot_sheet(plan, lines, header),
@@ -46,7 +48,7 @@ def workbook_sheets(plan: Plan, made: datetime | None = None, more: Sequence[She
         by_haulier_sheet(plan, lines, header),
         costs,
         values_sheet(plan, header),
-        proof_sheet(plan, lines, plan_letters(plan_columns(plan)), cells, header),
+        proof(plan, lines, plan_letters(plan_columns(plan)), cells, header),
         *more,
         notes_sheet(plan, header, made, _remarks(plan)),
         *figures_sheets(plan.week, header),
