@@ -63,5 +63,7 @@ def _of_load(plan: Plan, one: BadlyFilled, mark: str) -> dict[str, str]:
         "Haulier": shipment.haulier or "",
         "Loads": one.fill.words(),
         "Saves": money(one.saved, rules.currency, mark),
-        "What would fill or save it": one.words(rules.unit, rules.currency, lambda n: number(n, mark)),
+        "What would fill or save it": one.words(
+            rules.unit, lambda n: number(n, mark), lambda n: money(n, rules.currency, mark)
+        ),
     }

@@ -117,8 +117,8 @@ class BadlyFilled:
     elsewhere: tuple[tuple[str, Decimal], ...]
     saved: Decimal
 
-    def words(self, unit: str, currency: str, number: Number = canonical) -> str:
-        """What would fill the load, or save it, as a sentence."""
+    def words(self, unit: str, number: Number = canonical, money: Number = canonical) -> str:
+        """What would fill the load, or save it, as a sentence; `money` writes an amount with its currency."""
         said = [f"{number(self.missing)} {unit} more would fill it"]
         if self.short:
             said.append(f"{self.shipment.customer} goes short of {number(self.short)} {unit}")
@@ -127,7 +127,7 @@ class BadlyFilled:
         ]
         ways = ": ".join(said[:2]) if len(said) > 1 else said[0]
         rest = "; " + "; ".join(said[2:]) if len(said) > 2 else ""
-        spare = f". An order {number(self.holds)} {unit} smaller would save {number(self.saved)} {currency}."
+        spare = f". An order {number(self.holds)} {unit} smaller would save {money(self.saved)}."
         return ways + rest + spare
 
 

@@ -1,4 +1,4 @@
-"""Sheet *Proof* of a plan with whole loads: loads, costs and payable amounts worked out again from the figures.
+"""Sheet *Proof* of a plan with whole loads: loads, costs and payable amounts worked out again.
 
 Nothing on a sheet can prove that no other plan with whole loads costs less; the bound is stated as it was
 proved. What the sheet proves live is that this plan keeps every limit and costs what *Plan* and *Costs* say.
@@ -31,7 +31,8 @@ DEPOT_HEADINGS = (
     "Opening charge", "Opened", "Charge",
 )  # fmt: skip
 CUSTOMER_HEADINGS = (
-    "No.", "Customer", "Whole order", "Received", "Short", "Left over", "Smallest drop", "One depot", "Depots",
+    "No.", "Customer", "Whole order", "Received", "Short", "Left over", "Smallest drop", "One depot",
+    "Depots",
 )  # fmt: skip
 HAULIER_HEADINGS = ("No.", "Haulier", "At most", "Carries", "Over")
 
@@ -96,16 +97,16 @@ def _top(plan: Plan) -> list[Row]:
         Row([f"Proof of the plan for {rules.week}"], [Style("title")], height=26),
         Row(
             [
-                f"Money in {rules.currency}, quantities in {rules.unit}. The figures below point at Plan, Depots, "
-                "Customers, Hauliers, Rates and Rules: edit those and look here."
+                f"Money in {rules.currency}, quantities in {rules.unit}. The figures below point at Plan, "
+                "Depots, Customers, Hauliers, Rates and Rules: edit those and look here."
             ],
             quiet,
         ),
         Row([None, verdict, *[None] * 6], [Style(), *[Style("good")] * 7], height=22),
         Row(
             [
-                "No plan costs less than the lower bound on Costs: that was proved in whole numbers while the "
-                "plan was searched for, and is no matter of a few formulas."
+                "No plan costs less than the lower bound on Costs: that was proved in whole numbers while "
+                "the plan was searched for, and is no matter of a few formulas."
             ],
             quiet,
         ),
