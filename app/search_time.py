@@ -2,7 +2,7 @@
 
 from contextlib import suppress
 
-from app.keeping import records
+from app.access import records
 from app.search import Searching
 from engine.findings import Finding, Severity
 from engine.planning.planner import USUAL_SECONDS
