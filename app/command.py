@@ -11,9 +11,11 @@ import click
 
 import engine
 from app.compare_command import compare
+from app.search_line import end_line, progress_line, stopped_by_keyboard
 from app.stress_command import stress
 from engine.exact import canonical
 from engine.findings import Finding, Severity, by_gravity, stops
+from engine.planning.planner import USUAL_SECONDS
 
 if TYPE_CHECKING:
     from app.sign_in import SignIn
@@ -180,6 +182,9 @@ PRODUCT = click.option("--product", metavar="NAME", help="Which one, where a col
 @click.option("--values", "detail", type=click.Choice(["brief", "full"]), default="brief",
               show_default=True,
               help="full: the JSON also says how far values hold, and rates to stay within.")  # fmt: skip
+@click.option("--time-limit", type=click.FloatRange(min=0), default=USUAL_SECONDS,
+              show_default=True, metavar="SECONDS",
+              help="With whole loads: how long to search; Ctrl-C keeps the best.")  # fmt: skip
 @click.pass_context
 def plan(
     ctx: click.Context,
@@ -189,16 +194,27 @@ def plan(
     out: Path | None,
     as_json: str | None,
     detail: str,
+    time_limit: float,
 ) -> None:
     """Plan the week in these files (one workbook, or separate tables)."""
     reading = _read(ctx, week, product)
     earlier = None if near is None else _earlier(ctx, near)
     try:
-        made = engine.plan_week(reading.week, near=earlier, progress=_progress)
+        with stopped_by_keyboard() as stop:
+            made = engine.plan_week(
+                reading.week,
+                near=earlier,
+                progress=_progress,
+                improved=progress_line(reading.week.rules.currency),
+                should_stop=stop,
+                time_limit=time_limit,
+            )
     except engine.NotPlannable as stopped:
         _refuse(ctx, _together(reading.findings, stopped.findings))
     except engine.TooLarge as too_large:
         _refuse(ctx, [*reading.findings, Finding(Severity.STOPS, "too large", str(too_large))])
+    if made.whole is not None:
+        end_line()
     made = engine.with_findings(made, reading.findings)
     if out is not None:
         engine.write_workbook(made, out)
@@ -291,9 +307,21 @@ def _summary(made: engine.Plan) -> str:
         f"Freight payable {canonical(made.freight_payable)} {rules.currency}",
         f"Charges: short {canonical(made.short_cost)}, unsent {canonical(made.unsent_cost)} {rules.currency}",
     ]
+    lines += _of_loads(made)
     lines += [f"Short: {one.customer} {canonical(one.quantity)} {rules.unit}" for one in made.short]
     lines += [f"Unsent: {one.depot} {canonical(one.quantity)} {rules.unit}" for one in made.unsent]
     return "\n".join(lines)
+
+
+def _of_loads(made: engine.Plan) -> list[str]:
+    """With whole loads: how far the plan may be above the least cost, and what is opened."""
+    if made.whole is None:
+        return []
+    currency = made.week.rules.currency
+    lines = [f"Opened: {one.depot} {canonical(one.charge)} {currency}" for one in made.openings]
+    bound, gap = (canonical(amount) for amount in (made.proof.lower_bound, made.proof.gap))
+    lines.append(f"All costs {canonical(made.total_cost)} {currency}, at least {bound}: gap {gap}")
+    return [*lines, made.whole.how]
 
 
 if __name__ == "__main__":

@@ -2,11 +2,12 @@
 
 from contextlib import suppress
 
-from app.access import records
+from app.access import answers, learn
 from app.search import Searching
 from engine.findings import Finding, Severity
 from engine.planning.planner import USUAL_SECONDS
-from engine.records import NotSaved, load_answers, save_answers
+from engine.records import NotSaved
+from engine.week import Refused
 
 TIMES = (10.0, 30.0, 60.0, 120.0, 300.0, 900.0, 3600.0)
 """What a desk can choose from."""
@@ -29,16 +30,16 @@ _SETTING = Finding(Severity.NOTE, "setting", "", subject="seconds for a search")
 
 def seconds_of_desk() -> float:
     """How long a search may take on this desk; the usual time where nobody chose another."""
+    said = answers().to(_SETTING.rule, _SETTING.subject)
     try:
-        said = load_answers(records()).to(_SETTING.rule, _SETTING.subject)
         return USUAL_SECONDS if said is None else float(said)
-    except (NotSaved, ValueError):
+    except ValueError:
         return USUAL_SECONDS
 
 
 def remember_seconds(searching: Searching, seconds: float) -> None:
     """Let searches of this desk take so long, from now on."""
     searching.seconds = seconds
-    with suppress(NotSaved):  # the time holds for this session all the same
-        before = load_answers(records())
-        save_answers(records(), before.with_answer(_SETTING, f"{seconds:g}"), before)
+    with suppress(NotSaved, Refused):  # the time holds for this session all the same
+        before = answers()
+        learn(before.with_answer(_SETTING, f"{seconds:g}"), before)

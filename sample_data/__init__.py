@@ -17,6 +17,7 @@ SMALL_WEEK_CSV = (
 WEEK_BEFORE = "week_before.xlsx"
 LARGE_WEEK = "large_week.xlsx"
 MESSY_WEEK = "messy_week.xlsx"
+LOADS_WEEK = "loads_week.xlsx"
 
 
 def path(name: str) -> Path:

@@ -21,6 +21,7 @@ from openpyxl.styles import Alignment, Font, PatternFill
 from openpyxl.utils import get_column_letter
 from openpyxl.worksheet.worksheet import Worksheet
 
+from tests.sample_loads import HAULIERS, loads_week
 from tests.sample_trade import Figures, Row, large_week, small_week
 
 DEPOT_HEADINGS = (
@@ -67,6 +68,7 @@ def main(folder: Path) -> None:
     write(folder / "week_before.xlsx", as_lists(small_week(before=True)))
     write(folder / "large_week.xlsx", as_lists(large_week()))
     write(folder / "messy_week.xlsx", messy(small))
+    write(folder / "loads_week.xlsx", of_loads())
     write_csv(folder / "small_week_depots.csv", DEPOT_HEADINGS, small.depots)
     write_csv(folder / "small_week_customers.csv", CUSTOMER_HEADINGS, small.customers)
     write_csv(folder / "small_week_rates.csv", RATE_HEADINGS, small.rates)
@@ -81,6 +83,21 @@ def as_lists(figures: Figures) -> Workbook:
     table(book.create_sheet("Customers"), CUSTOMER_HEADINGS, figures.customers)
     table(book.create_sheet("Rates"), RATE_HEADINGS, figures.rates)
     table(book.create_sheet("Rules"), RULE_HEADINGS, figures.rules)
+    return book
+
+
+def of_loads() -> Workbook:
+    """The week of whole loads, with the columns and the sheet that only it needs."""
+    week, book = loads_week(), Workbook()
+    book.remove(book.worksheets[0])
+    depots = [*DEPOT_HEADINGS[:5], "Opening charge", *DEPOT_HEADINGS[5:]]
+    customers = [*CUSTOMER_HEADINGS[:5], "Smallest drop", *CUSTOMER_HEADINGS[5:]]
+    rates = [*RATE_HEADINGS[:3], "Per", *RATE_HEADINGS[3:], "Load size", "Trip minimum", "Charge per use"]
+    table(book.create_sheet("Depots"), depots, week.depots)
+    table(book.create_sheet("Customers"), customers, week.customers)
+    table(book.create_sheet("Rates"), rates, week.rates)
+    table(book.create_sheet("Hauliers"), ("Haulier", "At most", "Load size"), HAULIERS)
+    table(book.create_sheet("Rules"), RULE_HEADINGS, week.rules)
     return book
 
 

@@ -225,10 +225,10 @@ def summary_of(figures: Figures) -> str:
     parts.append(f"{counted(lanes, 'lane')} of {possible}{rates}")
     ordered = sum((customer.ordered for customer in week.customers.values()), Decimal(0))
     available = sum((depot.available for depot in week.depots.values()), Decimal(0))
-    unit = week.rules.unit
+    unit, by_load = week.rules.unit, " or load" if table.per_load.any() else ""
     return (
         f"{', '.join(parts)}; {ordered:,f} {unit} ordered, {available:,f} {unit} available; "
-        f"rates in {week.rules.currency} per {unit}; {figures.marks}"
+        f"rates in {week.rules.currency} per {unit}{by_load}; {figures.marks}"
     )
 
 

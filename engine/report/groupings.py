@@ -107,6 +107,7 @@ def by_customer_sheet(plan: Plan, lines: Sequence[Line], header: str) -> Sheet:
         ListColumn("Goes short of", 12, lambda _: None, quantity),
         ListColumn("Days", 12, lambda line: line.days or None, wrap=True),
         ListColumn("Order numbers", 28, lambda line: line.orders or None, wrap=True),
+        *(loads_columns() if any(one.loads is not None for one in plan.shipments) else []),
         *gone_columns(plan),
     ]
     styles = styles_of(columns)

@@ -8,7 +8,7 @@ from decimal import Decimal
 from typing import Any
 
 from engine.changes import Add, Alter, Change, Lift, Remove, SetHold, Together
-from engine.figures import Customer, Depot, Gone, Hold, Order, RateKey, RateRow, Rules
+from engine.figures import Customer, Depot, Gone, Haulier, Hold, Order, RateKey, RateRow, Rules
 from engine.intake.reading import Reading
 from engine.intake.remarks import Counts
 from engine.rates import Rates
@@ -23,7 +23,14 @@ def small_week() -> Week:
     return Week.of(
         (
             Depot("Northgate", D("50.5"), latitude=D("-61.25"), longitude=D("12.125")),
-            Depot("Quarry", D(30), must_move=D(5), charge_if_unsent=D("-0.75"), loads_a_day=D(4)),
+            Depot(
+                "Quarry",
+                D(30),
+                must_move=D(5),
+                charge_if_unsent=D("-0.75"),
+                loads_a_day=D(4),
+                opening_charge=D(35),
+            ),
         ),
         (
             Customer("Aster", (Order(D(20), "A-1", "Mon"), Order(D("15.125"), "A-2", "Wed")), priority="A"),
@@ -37,9 +44,10 @@ def small_week() -> Week:
             RateRow("Quarry", "Birch", D("3.25"), closed=True, valid_from=date(2031, 2, 3)),
             RateRow("Nowhere", "Birch", D("1.00"), charge_per_use=D("12.34")),
         ),
-        Rules("Week 6", "t", "EUR", D("3.5"), D(24), "priority", D("9.99"), D("0.01")),
+        Rules("Week 6", "t", "EUR", D("3.5"), D(24), "priority", D("9.99"), D("0.01"), D(4)),
         {TEAL: Hold(D("5.5"), "promised")},
         (Gone("L1", "Quarry", "Birch", D("2.5"), D("3.25"), "Vole", date(2031, 2, 4)),),
+        (Haulier("Vole", D("99.5")), Haulier("Teal", load_size=D("22.5"))),
     )
 
 
@@ -73,6 +81,7 @@ def a_change(week: Week, pick: Pick, step: int) -> Change:
         Add(Depot(f"Depot {step}", amount), pick([None, 0])),
         Add(Customer(f"Customer {step}", (Order(amount),))),
         Add(RateRow("Quarry", pick(["Aster", "Elm"]), amount, haulier="Vole")),
+        Add(Haulier(f"Haulier {step}", amount), pick([None, 0])),
         Add(Gone(f"G{step}", "Quarry", "Birch", amount, D("1.5"))),
         Alter("rule", "", "fuel_surcharge", amount),
         Alter("rule", "", "when_short", pick(["charge", "priority"])),
@@ -87,6 +96,9 @@ def a_change(week: Week, pick: Pick, step: int) -> Change:
         options += [Alter("rate", key, "rate", amount), SetHold(key, amount, f"why {step}")]
         options.append(Lift(key) if key in week.holds else Remove("rate", key))
     options += [Remove("gone", name) for name in week.gone]
+    for name in week.hauliers:
+        options += [Remove("haulier", name), Alter("haulier", name, "at_most", amount)]
+        options += [Alter("haulier", name, "load_size", pick([None, amount]))]
     chosen: Change = pick(options)
     if pick([False, False, False, True]):
         return Together((chosen, Alter("rule", "", "step", amount)), "a paste")
@@ -96,7 +108,8 @@ def a_change(week: Week, pick: Pick, step: int) -> Change:
 def in_any_order(week: Week) -> tuple[Any, ...]:
     """What a week says, whatever the order in which its records were put in."""
     rows = sorted(repr(row) for row in week.rates)
-    return dict(week.depots), dict(week.customers), rows, week.rules, dict(week.holds), dict(week.gone)
+    named = (dict(each) for each in (week.depots, week.customers, week.holds, week.gone, week.hauliers))
+    return (*named, rows, week.rules)
 
 
 def renamed(week: Week, name: str) -> Week:
