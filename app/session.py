@@ -226,7 +226,7 @@ class Desk:
             self.stopped, self.planned_for = tuple(stopping), None
             return None
         if self.planned_for is not self.week:
-            plan, self.stopped = try_plan(lambda: self._plan_of(self.week))
+            plan, self.stopped = _tried(lambda: self._plan_of(self.week))
             self.planned_for, self.plan = self.week, plan
         return self.plan
 
@@ -271,8 +271,15 @@ def desk() -> Desk:
     return found
 
 
-def try_plan(make: Callable[[], engine.Plan]) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
-    """The week's plan, or the findings that stop it."""
+def try_plan(
+    week: Week, near: engine.Plan | Quantities | None
+) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
+    """The week's plan, made at once, or the findings that stop it."""
+    return _tried(lambda: engine.plan_week(week, near=near))
+
+
+def _tried(make: Callable[[], engine.Plan]) -> tuple[engine.Plan | None, tuple[Finding, ...]]:
+    """What is made, or the findings that stop it."""
     try:
         return make(), ()
     except engine.NotPlannable as stopped:

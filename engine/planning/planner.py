@@ -84,22 +84,11 @@ def plan_week(
         start = near if isinstance(near, Plan) else None
         try:
             return plan_loads(search, start, improved, should_stop, time_limit)
-        except NotImplementedError:
-            raise NotPlannable((_not_yet(), *found)) from None
         except NoPlan as refused:
             raise NotPlannable((in_words(week, search, refused), *found)) from None
     flow = nearest_flow(week, model, least_cost(model.problem), near)
     tell("Writing the plan down")
     return _plan(week, model, flow, found)
-
-
-def _not_yet() -> Finding:
-    return Finding(
-        Severity.STOPS,
-        "not planned yet",
-        "Whole loads and charges due once cannot be planned yet.",
-        "Give rates per unit, and take out such charges and limits.",
-    )
 
 
 def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> Plan:

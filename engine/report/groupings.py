@@ -24,7 +24,7 @@ from engine.report.lines import (
     styles_of,
     total,
 )
-from engine.report.load_columns import filled, per_columns
+from engine.report.load_columns import filled, loads_columns, per_columns
 from engine.report.look import height_of, number_format, places_of
 from engine.report.plan_sheet import total_values
 from engine.report.sheet import Formula, Row, Sheet, Value
