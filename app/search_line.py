@@ -52,9 +52,8 @@ def progress_line(currency: str) -> Callable[[Improving], None]:
             canonical(round_half_up(amount, minor_places(currency)))
             for amount in (news.cost, news.lower_bound, news.gap)
         )
-        line = (
-            f"{news.seconds:.0f} s: best so far {cost} {currency}, at least {bound}, gap {gap} ({news.doing})"
-        )
+        short = f", {canonical(news.short)} short" if news.short else ""
+        line = f"{news.seconds:.0f} s: best so far {cost} {currency}{short}, at least {bound}, gap {gap}"
         click.echo(f"\r{line:<100}" if on_terminal else line, err=True, nl=not on_terminal)
 
     return tell

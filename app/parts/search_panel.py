@@ -1,9 +1,12 @@
 """A search by whole loads, watched: the best plan so far, its bound, stop, look, search on."""
 
+from decimal import Decimal
+
 import streamlit as st
 
 from app import jobs
-from app.parts.words import counted, money, plain
+from app.jobs import Job
+from app.parts.words import counted, money, number, plain
 from app.search_time import longer_times, remember_seconds, said_seconds
 from app.session import Desk
 from engine.planning.load_plan import cost_of_wholeness
@@ -88,15 +91,23 @@ def _watch(state: Desk) -> None:
             cost, bound, gap = (
                 money(amount, rules.currency, mark) for amount in (best.cost, best.lower_bound, best.gap)
             )
-            text += f" · {plain(best.doing)} · best so far {cost}, at least {bound}, gap {gap}"
+            short = f", {number(best.short, mark)} {plain(rules.unit)} short" if best.short else ""
+            text += f" · best so far {cost}{short} · at least {bound} · gap {gap}"
         st.progress(done, text=text)
     with st.container(horizontal=True):
         if st.button("Stop and keep the best", key="search-stop", disabled=job.is_done):
             job.stop.set()
-        newer = job.best is not None and state.plan is not None and job.best.cost < state.plan.total_cost
-        if st.button("Show the best so far", key="search-show", disabled=not newer):
+        if st.button("Show the best so far", key="search-show", disabled=not _is_better(state, job)):
             state.take_best()
             st.rerun()
+
+
+def _is_better(state: Desk, job: Job) -> bool:
+    """Whether the search has come to a better plan than the one on screen: less short, or as much for less."""
+    if job.best is None or state.plan is None:
+        return False
+    shown = sum((one.quantity for one in state.plan.short), start=Decimal(0))
+    return (job.best.short, job.best.cost) < (shown, state.plan.total_cost)
 
 
 def _search_on(state: Desk) -> None:

@@ -35,12 +35,14 @@ class NotAdded(ArithmeticError):
 class Improving:
     """How far a search is: `plan` makes the best plan so far, valid and checked, at any time.
 
-    cost, lower_bound: of that plan, charges and what has gone included; seconds: since the start
+    cost, lower_bound: of that plan, charges and what has gone included; short: what goes short in it, which
+    comes before cost; seconds: since the start
     """
 
     doing: str
     cost: Decimal
     lower_bound: Decimal
+    short: Decimal
     seconds: float
     plan: Callable[[], Plan]
 
@@ -128,7 +130,9 @@ def _key_words(week: Week, search: Search, row: int) -> str:
 
 def _improving(search: Search, progress: Progress) -> Improving:
     cost, bound = _whole_cost(search, progress.best.cost), _whole_cost(search, progress.best.lower_bound)
-    return Improving(progress.doing, cost, bound, progress.seconds, lambda: plan_of(search, progress.best))
+    best, places = progress.best, search.model.quantity_places
+    short = to_decimal(int(best.short.sum()) + int(search.loads.fixed_short.sum()), places)
+    return Improving(progress.doing, cost, bound, short, progress.seconds, lambda: plan_of(search, best))
 
 
 def _whole_cost(search: Search, cost: int) -> Decimal:
