@@ -42,6 +42,11 @@ else:
     if plan is None:
         st.error("This week cannot be planned as it stands, so there is nothing to compare.")
         findings_panel(state.stopped, key="stopped")
+    elif plan.whole is not None:
+        st.info(
+            "This week has whole loads. The usual plan, the way from one plan to another, stress and emissions "
+            "are worked out for rates per unit only, so nothing is compared here: it would mislead."
+        )
     else:
         first = next(iter(VIEWS))
         view = st.segmented_control(

@@ -33,7 +33,7 @@ def steady(state: Desk, plan: Plan) -> None:
             "No plan of this week was issued yet. Issue one on Hand over: later plans are compared here."
         )
         return
-    if any(shipment.loads is not None for shipment in plan.shipments):
+    if plan.whole is not None:
         st.caption("In a week with whole loads lanes cannot be traded against money yet.")
         return
     found = _worked_out(state, plan, state.issued)

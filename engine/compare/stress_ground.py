@@ -17,12 +17,13 @@ import numpy.typing as npt
 
 from engine.compare.stress_kernels import DEAREST, keep_cheapest
 from engine.exact import LARGEST, TooLarge, places_needed, to_integer, total_of
-from engine.figures import ANY_SINGLE_DEPOT, Customer, Rules
+from engine.figures import Customer, Rules
 from engine.network import UNLIMITED, Flow, Problem
 from engine.planning.gone import cost_of, left
 from engine.planning.model import EVEN_SHARE, NO_RATE, Model, model_of, step_of
 from engine.planning.plan import Plan
 from engine.planning.prices import limits_of
+from engine.planning.spread import has_whole_loads
 from engine.rates import NO_CODE, Codes
 
 Integers = npt.NDArray[np.int64]
@@ -154,7 +155,8 @@ def ground_of(plan: Plan) -> Ground:
     week = plan.week
     if is_no_network(plan):
         raise NeedsWholeLoads(
-            "The week has whole loads, trip minimums, charges per use, smallest drops or single depots."
+            "The week has whole loads, charges due once, smallest drops, single depots or limits on loads or "
+            "hauliers."
         )
     even = week.rules.when_short == EVEN_SHARE
     step = step_of(week.rules)
@@ -182,18 +184,8 @@ def ground_of(plan: Plan) -> Ground:
 
 
 def is_no_network(plan: Plan) -> bool:
-    """Whether whole loads, charges per use, smallest drops or a choice of single depots play a part."""
-    week = plan.week
-    flat = week.rates.flat
-    charged = [
-        flat.decimals[name].values for name in ("trip_minimum", "charge_per_use") if name in flat.decimals
-    ]
-    return bool(
-        getattr(plan, "whole", None) is not None
-        or any((values > 0).any() for values in charged)
-        or flat.per_load.any()
-        or any(c.smallest_drop or c.one_depot == ANY_SINGLE_DEPOT for c in week.customers.values())
-    )
+    """Whether whole loads, charges due once, smallest drops and the like make the plan more than a network."""
+    return plan.whole is not None or has_whole_loads(plan.week)
 
 
 def _grains(quantities: list[Decimal], places: int) -> Integers:
