@@ -44,8 +44,8 @@ else:
         findings_panel(state.stopped, key="stopped")
     elif plan.whole is not None:
         st.info(
-            "This week has whole loads. The usual plan, the way from one plan to another, stress and emissions "
-            "are worked out for rates per unit only, so nothing is compared here: it would mislead."
+            "This week has whole loads. The usual plan, the way from one plan to another, stress and "
+            "emissions are worked out for rates per unit only, so nothing is compared: it would mislead."
         )
     else:
         first = next(iter(VIEWS))

@@ -103,7 +103,7 @@ def _watch(state: Desk) -> None:
 
 
 def _is_better(state: Desk, job: Job) -> bool:
-    """Whether the search has come to a better plan than the one on screen: less short, or as much for less."""
+    """Whether the search has a better plan than the one on screen: less short, or as much for less."""
     if job.best is None or state.plan is None:
         return False
     shown = sum((one.quantity for one in state.plan.short), start=Decimal(0))
