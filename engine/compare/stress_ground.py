@@ -184,7 +184,7 @@ def ground_of(plan: Plan) -> Ground:
 
 
 def is_no_network(plan: Plan) -> bool:
-    """Whether whole loads, charges due once, smallest drops and the like make the plan more than a network."""
+    """Whether whole loads, charges due once, smallest drops and the like make it more than a network."""
     return plan.whole is not None or has_whole_loads(plan.week)
 
 
