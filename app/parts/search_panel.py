@@ -26,7 +26,7 @@ def search_panel(state: Desk, plan: Plan) -> None:
         st.markdown(_standing(state, plan))
         if state.searching.job is not None:
             _watch(state)
-        elif not plan.proof.exact:
+        elif not plan.proof.exact and not state.only_reads:
             _search_on(state)
 
 
@@ -95,7 +95,7 @@ def _watch(state: Desk) -> None:
             text += f" · best so far {cost}{short} · at least {bound} · gap {gap}"
         st.progress(done, text=text)
     with st.container(horizontal=True):
-        if st.button("Stop and keep the best", key="search-stop", disabled=job.is_done):
+        if st.button("Stop and keep the best", key="search-stop", disabled=job.is_done or state.only_reads):
             job.stop.set()
         if st.button("Show the best so far", key="search-show", disabled=not _is_better(state, job)):
             state.take_best()
