@@ -37,7 +37,9 @@ def main() -> None:
     """Prints the table."""
     parser = argparse.ArgumentParser(description=__doc__)
     parser.add_argument(
-        "sizes", nargs="*", help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order"
+        "sizes",
+        nargs="*",
+        help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order; or screen",
     )
     parser.add_argument("--codes", default=",".join(CODES), help="which codes, separated by commas")
     parser.add_argument("--rates", choices=["road", "random"], default="road", help="how rates are made")
@@ -48,6 +50,9 @@ def main() -> None:
     )
     parser.add_argument("--child", help=argparse.SUPPRESS)
     options = parser.parse_args()
+    if options.sizes == ["screen"]:
+        subprocess.run([sys.executable, "-m", "tests.speed_screen"], check=True)
+        return
     if options.child:
         print(json.dumps(timed(options.child, options.sizes[0], options)))
         return
