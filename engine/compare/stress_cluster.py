@@ -5,7 +5,7 @@ from concurrent.futures import Executor
 from contextlib import contextmanager
 from typing import Any
 
-LONGEST_WAIT = 20
+LONGEST_WAIT = 60
 """Seconds in which a scheduler must answer."""
 
 
