@@ -114,7 +114,9 @@ def keep_inside() -> None:
     from streamlit import net_util
 
     # Streamlit asks a host outside for its own address when a browser comes from an unknown origin.
+    # For its inner one it turns to an outside address, though it sends nothing there.
     net_util.get_external_ip = lambda: None
+    net_util.get_internal_ip = lambda: None
     keep_log_plain()
 
 

@@ -1,4 +1,7 @@
-"""Nothing leaves the machine: not from any page in the browser, and not from the desk behind it."""
+"""Nothing leaves the machine: not from any page in the browser, and not from the desk behind it.
+
+The views of each page are gone through, and their requests recorded, in `test_attack_browser.py`.
+"""
 
 import os
 from pathlib import Path
@@ -14,7 +17,7 @@ from app import serve
 from tests.browser.conftest import environment
 from tests.browser.test_two_sessions import opened_sample
 from tests.safe.conftest import Start
-from tests.safe.test_attack_browser import every_view
+from tests.safe.test_attack_browser import settled
 
 HERE = {"127.0.0.1", "localhost", "::1", "0.0.0.0", ""}
 PAGES = ("Plan", "Reasons", "Compare", "Hand over", "Weeks", "Figures")
@@ -41,7 +44,7 @@ def test_no_page_and_no_process_asks_anybody_outside(
     for name in PAGES:
         page.get_by_role("link", name=name, exact=True).click()
         page.get_by_role("heading", name=name, exact=True).wait_for(timeout=60_000)
-        every_view(page, [], name)
+        settled(page)
     fonts = page.evaluate("() => [...document.fonts].filter(f => f.status === 'loaded').map(f => f.family)")
     context.close()
     assert fonts
@@ -61,10 +64,12 @@ def test_what_would_tell_or_ask_is_off(monkeypatch: pytest.MonkeyPatch) -> None:
     assert flags["server_enableAgentApi"] is False
     assert flags["client_showErrorLinks"] == "false"
     assert flags["secrets_files"] == []
-    monkeypatch.setattr(net_util, "get_external_ip", net_util.get_external_ip)
+    for name in ("get_external_ip", "get_internal_ip"):
+        monkeypatch.setattr(net_util, name, getattr(net_util, name))
     monkeypatch.setattr(serve, "keep_log_plain", lambda: None)
     serve.keep_inside()
     assert net_util.get_external_ip() is None
+    assert net_util.get_internal_ip() is None
 
 
 def test_the_package_names_no_host_outside() -> None:
