@@ -104,7 +104,7 @@ def crash(place: str, kills: int, seconds: float, seed: int) -> tuple[int, int, 
         try:
             visitor = arrive(port, week_id)
             assert made(visitor) == before, (
-                f"kill {done}: {made(visitor)} changes on the page, {before} on disk"
+                f"kill {done}: {made(visitor)} changes on the page, {before} on disk: {visitor.said}"
             )
             killer = threading.Timer(chance.random() * LONGEST, os.kill, (child, signal.SIGKILL))
             killer.start()

@@ -3,10 +3,14 @@
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+import numpy as np
+import numpy.typing as npt
+
 from app.parts.map_drawing import Mark
 from app.parts.map_plane import HEIGHT, WIDTH, Spot
 
 Box = tuple[float, float, float, float]
+Boxes = npt.NDArray[np.float64]
 """Left, top, right, bottom in pixels."""
 
 RING = 5.0
@@ -46,19 +50,21 @@ def placed(wishes: Sequence[Wish], depots: Sequence[Mark], customers: Sequence[M
     """Labels for the wishes in their order, each where it covers least; those without room are left out."""
     squares = [_around(mark) for mark in depots]
     squares += [_around(mark) for mark in customers if mark.short > 0]
-    dots = [_around(mark) for mark in customers if mark.short <= 0]
+    dots = _boxes([_around(mark) for mark in customers if mark.short <= 0])
+    in_the_way = _boxes(squares)
     taken: list[Box] = []
     labels: list[Label] = []
     for wish in wishes:
         half_width = len(wish.text) * wish.height * LETTER / 2 + 2
         half_height = wish.height / 2 + 1
         best: tuple[float, Label, Box, float] | None = None
+        others = _boxes(taken)
         for rank, (right, down) in enumerate(SIDES):
             gap = _reach(wish.mark) + (3 if right == 0 or down == 0 else 0)
             near = (right * gap, down * (half_height + gap))
             x, y = wish.mark.spot[0] + near[0] + right * half_width, wish.mark.spot[1] + near[1]
             box = (x - half_width, y - half_height, x + half_width, y + half_height)
-            covered = 20 * _overlap(box, taken) + 10 * _overlap(box, squares) + 30 * _outside(box)
+            covered = 20 * _overlap(box, others) + 10 * _overlap(box, in_the_way) + 30 * _outside(box)
             cost = covered + _overlap(box, dots) + 3 * rank
             if best is None or cost < best[0]:
                 anchor = ("middle", "start", "end")[right]
@@ -74,6 +80,11 @@ def placed(wishes: Sequence[Wish], depots: Sequence[Mark], customers: Sequence[M
     return tuple(labels)
 
 
+def _boxes(boxes: Sequence[Box]) -> Boxes:
+    """(boxes, 4) left, top, right, bottom."""
+    return np.array(boxes, dtype=np.float64).reshape(-1, 4)
+
+
 def _reach(mark: Mark) -> float:
     """Half a mark's width, with its ring if it goes short."""
     return mark.size + (RING if mark.short > 0 else 0)
@@ -84,14 +95,14 @@ def _around(mark: Mark) -> Box:
     return x - size, y - size, x + size, y + size
 
 
-def _overlap(box: Box, others: Sequence[Box]) -> float:
+def _overlap(box: Box, others: Boxes) -> float:
     """The area, in square pixels, that a box shares with others."""
+    if not len(others):
+        return 0.0
     left, top, right, bottom = box
-    return sum(
-        max(0.0, min(right, other[2]) - max(left, other[0]))
-        * max(0.0, min(bottom, other[3]) - max(top, other[1]))
-        for other in others
-    )
+    wide = np.minimum(right, others[:, 2]) - np.maximum(left, others[:, 0])
+    high = np.minimum(bottom, others[:, 3]) - np.maximum(top, others[:, 1])
+    return float((np.maximum(wide, 0.0) * np.maximum(high, 0.0)).sum())
 
 
 def _outside(box: Box) -> float:
