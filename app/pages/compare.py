@@ -7,6 +7,7 @@ import streamlit as st
 from app.parts.compare_bridge import bridge_view
 from app.parts.compare_summary import summary_view
 from app.parts.compare_usual import usual_view
+from app.parts.compare_variants import variants_view
 from app.parts.compare_weeks import weeks_view
 from app.parts.findings_panel import findings_panel
 from app.parts.frontier_view import frontier_view
@@ -22,6 +23,7 @@ from engine.records import Missing, NotSaved
 VIEWS: dict[str, tuple[str, Callable[[Desk, Plan], None]]] = {
     "summary": ("This week", summary_view),
     "usual": ("Usual plan", usual_view),
+    "variants": ("Variants", variants_view),
     "bridge": ("Any two plans", bridge_view),
     "weeks": ("Over time", weeks_view),
     "stress": ("Stress", stress_view),

@@ -21,12 +21,13 @@ from engine.compare.events import events_of
 from engine.compare.quantities import Priced
 from engine.compare.service import Saving, saving
 from engine.compare.usual import Rule, UsualPlan, rules_possible, usual_plan
+from engine.compare.variants import Variant
 from engine.figures import RateKey
 from engine.intake.earlier import Quantities
 from engine.planning.near import sent_by
 from engine.planning.plan import Plan
 from engine.planning.planner import plan_week
-from engine.records import Issued, Listed, Missing
+from engine.records import Issued, Listed, Missing, list_variants, load_sent
 
 USUAL_PLAN = "usual plan"
 """What the desk's answer goes by: how it would have planned without the tool."""
@@ -129,8 +130,9 @@ def desk_rule(state: Desk, plan: Plan) -> Rule:
     """The rule that this desk goes by: what it said, else the first that the figures allow."""
     possible = rules_possible(plan.week, plan.model)
     said = answers().to(USUAL_PLAN, "")
-    wanted = [rule for rule in Rule if rule.value == said]
-    return wanted[0] if wanted and (wanted[0] in possible or wanted[0] is Rule.SHARES) else possible[0]
+    if said == Rule.SHARES or (said == Rule.ACTUAL and sent_of(state)):
+        return Rule(said)
+    return next((rule for rule in possible if rule.value == said), possible[0])
 
 
 def remember_rule(rule: Rule) -> None:
@@ -144,11 +146,38 @@ def remember_rule(rule: Rule) -> None:
     learn(replace(answers(), given=MappingProxyType(given)), answers())
 
 
+def sent_of(state: Desk) -> Quantities:
+    """The plan that was really sent in the week on the desk, empty where nobody said.
+
+    Raises:
+        NotSaved: the records cannot be read.
+    """
+    return {} if state.kept is None else load_sent(state.kept.records, state.kept.week_id)
+
+
+def variants_of(state: Desk) -> tuple[Variant, ...]:
+    """The variants that are kept beside the week on the desk.
+
+    Raises:
+        NotSaved: the records cannot be read.
+    """
+    if state.kept is None:
+        return ()
+    found = list_variants(state.kept.records, state.kept.week_id)
+    return tuple(Variant(name, changes) for name, changes, _ in found)
+
+
 def usual_of(state: Desk, plan: Plan, rule: Rule, sent: Quantities | None = None) -> tuple[UsualPlan, Saving]:
     """The usual plan by a rule, and what the plan saves against it.
 
-    sent: the plan as it was sent; for shares the last week's is taken
+    sent: the plan as it was sent, None for the one in the records; for shares the last week's is taken
+
+    Raises:
+        NoRule: the rule needs what is not there.
+        NotPlannable: the week cannot be planned with that service.
     """
+    if rule is Rule.ACTUAL and sent is None:
+        sent = sent_of(state) or None
     point = last_week(state) if rule is Rule.SHARES else None
     key = ("usual", rule, None if point is None else point.key, None if sent is None else tuple(sent.items()))
 

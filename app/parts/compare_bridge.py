@@ -10,7 +10,7 @@ from app.parts.words import money, plain, quantity
 from app.session import Desk
 from engine.compare.bridge import Bridge
 from engine.compare.bridge_words import paragraph
-from engine.compare.mixed import NotComparable
+from engine.compare.mixed import NotComparable, is_event
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable
@@ -41,16 +41,15 @@ def bridge_shown(state: Desk, found: Bridge, key: str) -> None:
             *([] if found.averaged else [Heading(f"then, {found.currency}", "Where freight stands", minor)]),
             Heading(f"Charges, {found.currency}", "For short and unsent: they stand apart", minor),
             Heading(f"Short, {found.unit}"),
-            Heading("What it is"),
         ]
         rows: list[list[Cell]] = [
             [
                 step.name, step.freight, *([] if step.after is None else [step.after]), step.charges,
-                step.short, step.about,
+                step.short,
             ]
             for step in found.steps
         ]  # fmt: skip
-        total: list[Cell] = ["Together", found.freight, found.charges, found.short, ""]
+        total: list[Cell] = ["Together", found.freight, found.charges, found.short]
         if not found.averaged:
             total.insert(2, found.second_freight)
         reasons_table(headings, [*rows, total], f"bridge-{key}", mark, pick=False)
@@ -60,6 +59,8 @@ def bridge_shown(state: Desk, found: Bridge, key: str) -> None:
             else "The steps in this order, each planned anew as a whole week"
         )
         st.caption(f"{how}; cents by largest remainder, so that they add up.")
+        meanings = "; ".join(f"{step.name}: {step.about}" for step in found.steps if not is_event(step.key))
+        st.caption(plain(meanings))
     for sentence in found.remarks[:MOST_REMARKS]:
         st.caption(plain(sentence))
     if len(found.remarks) > MOST_REMARKS:

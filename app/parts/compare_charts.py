@@ -18,6 +18,9 @@ from engine.compare.bridge import Bridge
 from engine.money import minor_places
 
 ROW, LONGEST_NAME = 34, 44
+FEW_WEEKS = 12
+"""So many points have their figures beside them; more have an axis instead."""
+
 UP, DOWN, END = "dearer", "cheaper", "end"
 
 
@@ -43,7 +46,11 @@ def waterfall(bridge: Bridge, mark: str) -> None:
                       scale=alt.Scale(domain=[UP, DOWN], range=[tones.tones[1], tones.halo])),
         stroke=alt.Stroke("kind:N", legend=None,
                           scale=alt.Scale(domain=[UP, DOWN], range=[tones.tones[1], tones.tones[0]])),
-        tooltip=[alt.Tooltip("label:N", title="Step"), alt.Tooltip("written:N", title=bridge.currency)],
+        tooltip=[
+            alt.Tooltip("label:N", title="Step"),
+            alt.Tooltip("written:N", title=bridge.currency),
+            alt.Tooltip("about:N", title="What it is"),
+        ],
     )  # fmt: skip
     ends = base.transform_filter(f"datum.kind == '{END}'").mark_tick(
         thickness=4, height=24, color=tones.ink
@@ -51,10 +58,9 @@ def waterfall(bridge: Bridge, mark: str) -> None:
     texts = base.mark_text(align="left", dx=8, fontSize=12, color=tones.ink).encode(
         x=alt.X("high:Q"), y=down, text="written:N"
     )
-    links = base.transform_filter("isValid(datum.next)").mark_rule(
-        color=tones.faint_ink, strokeDash=[2, 2], yOffset=ROW / 2
-    ).encode(x=alt.X("to:Q"), y=down)  # fmt: skip
-    _show(bars + ends + texts + links, ROW * len(frame) + 40)
+    links = base.transform_filter("isValid(datum.next)").mark_rule(color=tones.faint_ink, strokeDash=[2, 2])
+    links = links.encode(x=alt.X("to:Q"), y=down, y2="next:N")
+    _show(links + bars + ends + texts, ROW * len(frame) + 40)
 
 
 def waterfall_frame(bridge: Bridge, mark: str) -> pd.DataFrame:
@@ -72,6 +78,7 @@ def waterfall_frame(bridge: Bridge, mark: str) -> pd.DataFrame:
                 "from": float(at),
                 "to": float(to),
                 "written": arrow + number(step.freight, mark, minor),
+                "about": step.about,
             }
         )
         at = to
@@ -79,8 +86,8 @@ def waterfall_frame(bridge: Bridge, mark: str) -> pd.DataFrame:
     frame = pd.DataFrame(rows)
     frame["place"] = range(len(frame))
     frame["low"], frame["high"] = frame[["from", "to"]].min(axis=1), frame[["from", "to"]].max(axis=1)
-    frame["next"] = frame["to"].shift(-1)
     frame["label"] = _apart([_short(label) for label in frame["label"]])
+    frame["next"] = frame["label"].shift(-1)
     return frame
 
 
@@ -91,6 +98,7 @@ def _end(name: str, freight: Decimal, mark: str, minor: int) -> dict[str, Any]:
         "from": float(freight),
         "to": float(freight),
         "written": number(freight, mark, minor),
+        "about": "freight payable",
     }
 
 
@@ -109,7 +117,7 @@ def _apart(labels: Sequence[str]) -> list[str]:
 
 
 def figures_by_week(
-    names: Sequence[str], values: Sequence[Decimal], title: str, mark: str, places: int
+    names: Sequence[str], values: Sequence[Decimal], title: str, mark: str, places: int | None
 ) -> None:
     """One figure a week as a line with its numbers beside the points."""
     tones = colours(st.context.theme.type)
@@ -121,13 +129,20 @@ def figures_by_week(
             "written": [number(value, mark, places) for value in values],
         }
     )
-    across = alt.X("Week:N", sort=alt.EncodingSortField("place", op="min"), title=None)
-    up = alt.Y("figure:Q", title=None, scale=alt.Scale(zero=False, padding=24))
+    across = alt.X(
+        "Week:N",
+        sort=alt.EncodingSortField("place", op="min"),
+        title=None,
+        axis=alt.Axis(labelAngle=0 if len(names) <= FEW_WEEKS else -60, labelLimit=110, grid=False),
+    )
+    plain = alt.Axis(labels=False, ticks=False, domain=False, grid=False)
+    up = alt.Y("figure:Q", title=None, scale=alt.Scale(zero=False, padding=24),
+               axis=plain if len(names) <= FEW_WEEKS else alt.Axis(tickCount=5))  # fmt: skip
     base = alt.Chart(frame, title=title)
     line = base.mark_line(strokeWidth=2, color=tones.tones[0], point={"size": 60, "color": tones.tones[0]})
     line = line.encode(x=across, y=up, tooltip=["Week:N", alt.Tooltip("written:N", title=title)])
     texts = base.mark_text(dy=-13, fontSize=11, color=tones.ink).encode(x=across, y=up, text="written:N")
-    _show(line + texts if len(names) <= 20 else line, 230)
+    _show(line + texts if len(names) <= FEW_WEEKS else line, 230)
 
 
 def _show(chart: Any, height: int) -> None:

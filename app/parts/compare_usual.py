@@ -3,7 +3,7 @@
 import streamlit as st
 
 import engine
-from app.parts.compare_asked import desk_rule, remember_rule, usual_of
+from app.parts.compare_asked import desk_rule, remember_rule, sent_of, usual_of
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import money, number, plain
 from app.session import Desk
@@ -13,9 +13,9 @@ from engine.intake.earlier import Quantities
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable
+from engine.records import save_sent
 
 TYPES = ["xlsx", "xlsm", "xls", "xlsb", "ods", "csv", "tsv", "txt"]
-SENT = "usual-sent"
 
 
 def usual_view(state: Desk, plan: Plan) -> None:
@@ -44,27 +44,36 @@ def _rule(state: Desk, plan: Plan) -> Rule:
         "The usual way", rules, default=said, required=True, key="usual-chosen",
         format_func=lambda rule: rule.words[:1].upper() + rule.words[1:], label_visibility="collapsed",
     ) or said  # fmt: skip
-    if chosen is not said and chosen is not Rule.ACTUAL and state.kept is not None and state.kept.may_change:
+    chooses = state.kept is not None and state.kept.may_change
+    if chosen is not said and chosen is not Rule.ACTUAL and chooses:
         remember_rule(chosen)
     return chosen
 
 
 def _sent(state: Desk) -> Quantities | None:
-    """The plan as it was sent, from an uploaded list; kept for this session and this week."""
-    file = st.file_uploader(
-        "The plan as it was sent: a plan workbook, or a list of Depot, Customer and Quantity",
-        type=TYPES,
-        key=f"sent-{state.uploads}",
-    )
-    held: tuple[int, Quantities] | None = st.session_state.get(SENT)
+    """The plan as it was sent, from an uploaded list; kept beside the week, for readers too."""
+    kept = state.kept
+    may_change = kept is None or kept.may_change
+    file = None
+    if may_change:
+        file = st.file_uploader(
+            "The plan as it was sent: a plan workbook, or a list of Depot, Customer and Quantity",
+            type=TYPES,
+            key=f"sent-{state.uploads}",
+        )
     if file is None:
-        return held[1] if held is not None and held[0] == state.uploads else None
+        found = sent_of(state)
+        if not found and not may_change:
+            st.info("Nobody has said yet what was really sent.")
+        return found or None
     try:
         read = engine.read_quantities((file.name, file.getvalue()), state.style)
     except engine.Unreadable as refused:
         st.error(f"{plain(refused.finding.message)} {plain(refused.finding.mend)}")
         return None
-    st.session_state[SENT] = (state.uploads, read)
+    if kept is not None and dict(sent_of(state)) != dict(read):
+        save_sent(kept.records, kept.week_id, read)
+        remember_rule(Rule.ACTUAL)
     return read
 
 

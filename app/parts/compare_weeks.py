@@ -30,7 +30,7 @@ def weeks_view(state: Desk, plan: Plan) -> None:
         figures_by_week(
             names, [one.freight_payable for one in found], f"Freight payable, {rules.currency}", mark, minor
         )
-        figures_by_week(names, [one.delivered for one in found], f"Delivered, {rules.unit}", mark, 1)
+        figures_by_week(names, [one.delivered for one in found], f"Delivered, {rules.unit}", mark, None)
     with right:
         figures_by_week(
             names,
@@ -39,7 +39,7 @@ def weeks_view(state: Desk, plan: Plan) -> None:
             mark,
             2,
         )
-        figures_by_week(names, [one.short for one in found], f"Short, {rules.unit}", mark, 1)
+        figures_by_week(names, [one.short for one in found], f"Short, {rules.unit}", mark, None)
     st.dataframe(_table(found, mark), hide_index=True, key="weeks-over-time")
 
 

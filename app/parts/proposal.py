@@ -2,6 +2,7 @@
 
 import streamlit as st
 
+from app.parts.variant_kept import keep_as_variant
 from app.parts.words import counted, money, number, plain
 from app.session import Desk
 from engine.changes import Change, SetHold, Together
@@ -36,6 +37,8 @@ def proposal(state: Desk) -> None:
             ):
                 state.accept(why.strip())
                 st.rerun()
+            if possible:
+                keep_as_variant(state)
             if st.button("Leave it", key="leave"):
                 state.take_back()
                 st.rerun()

@@ -19,7 +19,7 @@ from typing import NamedTuple
 
 from engine.compare.cents import apportioned
 from engine.compare.effects import ABOUT, NAMES
-from engine.compare.mixed import EVENT, Event, Mixture, NotComparable, event_key
+from engine.compare.mixed import Event, Mixture, NotComparable, event_key, is_event
 from engine.compare.possible import made_possible
 from engine.compare.quantities import Priced
 from engine.exact import TooLarge, places_needed, total_of
@@ -143,7 +143,7 @@ def bridge(
     effects = ordered(mixture.effects, order)
     if average and len(effects) > MOST_AVERAGED and mixture.events:
         mixture = Mixture.of(first.week, second.week)
-        effects = ordered(mixture.effects, [key for key in order if not key.startswith(EVENT)])
+        effects = ordered(mixture.effects, [key for key in order if not is_event(key)])
     if average and len(effects) > MOST_AVERAGED:
         raise NotComparable(
             f"{len(effects)} effects differ; an average over all orders of more than {MOST_AVERAGED} would "

@@ -4,7 +4,7 @@ from collections.abc import Callable, Iterable
 from decimal import Decimal
 
 from engine.compare.bridge import Bridge, Step
-from engine.compare.mixed import EVENT
+from engine.compare.mixed import is_event
 from engine.exact import canonical, total_of
 
 MOST_REASONS = 4
@@ -69,4 +69,4 @@ def _signed(value: Decimal, pay: Written) -> str:
 
 def _lower(step: Step) -> str:
     """Its name inside a sentence; an event keeps the name that it was given."""
-    return step.name if step.key.startswith(EVENT) else step.name[:1].lower() + step.name[1:]
+    return step.name if is_event(step.key) else step.name[:1].lower() + step.name[1:]

@@ -1,11 +1,13 @@
 """How far it is along each rate row of a week: the kilometres given, else from the coordinates."""
 
+from decimal import Decimal
 from typing import NamedTuple
 
 import numpy as np
 import numpy.typing as npt
 
 from engine.exact import BLANK
+from engine.figures import RateKey
 from engine.planning.model import NO_RATE, Model
 from engine.week import Week
 
@@ -83,3 +85,17 @@ def _great_circle(here: Floats, there: Floats) -> Floats:
 def _plane(here: Floats, there: Floats) -> Floats:
     found: Floats = np.hypot(*(there - here).T)
     return found
+
+
+def km_along(week: Week, key: RateKey) -> Decimal | None:
+    """Kilometres of a lane: the *Km* of its rate row, else the straight line to a tenth, None if unknown."""
+    number = week.rates.find(key)
+    row = None if number is None else week.rates.row(number)
+    if row is not None and row.km is not None:
+        return row.km
+    depot, customer = week.depots.get(key.depot), week.customers.get(key.customer)
+    if depot is None or customer is None:
+        return None
+    here, there = (_places([(one.latitude, one.longitude)]) for one in (depot, customer))
+    line = (_great_circle if _are_degrees(here, there) else _plane)(here, there)
+    return None if np.isnan(line[0]) else Decimal(f"{float(line[0]):.1f}")

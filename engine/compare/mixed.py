@@ -259,6 +259,11 @@ def event_key(number: int) -> str:
     return f"{EVENT}{number + 1}"
 
 
+def is_event(key: str) -> bool:
+    """Whether what goes by this key is an event and no effect of figures."""
+    return key.startswith(EVENT)
+
+
 def _either(one: Any, two: Any, effect_of: Any, chosen: frozenset[str]) -> Any:
     """A record with each figure from the week that its effect takes; borrowed where one week has none."""
     if one is None or two is None:

@@ -16,6 +16,7 @@ from engine.records.opening import Records, default_place, open_records
 from engine.records.plans import Issued, find_plan, issue_plan, latest_number, list_plans
 from engine.records.remarks import save_remarks
 from engine.records.totals import WeekTotals, note_totals, totals_by_week
+from engine.records.variants import list_variants, load_sent, remove_variant, save_sent, save_variant
 from engine.records.weeks import (
     Listed,
     Opened,
@@ -50,16 +51,21 @@ __all__ = [
     "issue_plan",
     "latest_number",
     "list_plans",
+    "list_variants",
     "list_weeks",
     "load_answers",
+    "load_sent",
     "merge",
     "note_totals",
     "open_records",
     "open_week",
+    "remove_variant",
     "restore_as_new",
     "save",
     "save_answers",
     "save_remarks",
+    "save_sent",
+    "save_variant",
     "totals_by_week",
     "version_of",
     "week_before",

@@ -398,3 +398,29 @@ totals = Table(
     *decimal("freight_payable", needed=True),
 )
 """What the latest plan of a week adds up to, whether it was issued or not."""
+
+variants = Table(
+    "variants",
+    metadata,
+    of_week(),
+    place(),
+    Column("name", Text, nullable=False),
+    Column("body", Text, nullable=False),
+    Column("who", Text, nullable=False),
+    Column("made", DateTime(timezone=True), nullable=False),
+    UniqueConstraint("week_id", "name"),
+)
+"""Named lists of changes on top of a week's figures; `body` is one grouped change, as in `changes`."""
+
+sent = Table(
+    "sent",
+    metadata,
+    of_week(),
+    place(),
+    Column("depot", Text, nullable=False),
+    Column("customer", Text, nullable=False),
+    Column("haulier", Text),
+    Column("number", Integer, nullable=False),
+    *decimal("quantity", needed=True),
+)
+"""The plan that was really sent in a week, where somebody said: what the usual plan may be."""

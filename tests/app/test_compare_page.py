@@ -1,16 +1,26 @@
 """The Compare page: every view with every kind of week; what a manager sees without a click."""
 
 import os
+from decimal import Decimal
 from pathlib import Path
 
+import pytest
 from streamlit.testing.v1 import AppTest
 
 import engine
 import sample_data
+from app.parts.compare_asked import variants_of
 from app.session import KEY, Desk
+from engine.changes import Alter
 from engine.compare.service import saving
 from engine.compare.usual import Rule, usual_plan
-from engine.records import create_week, open_records
+from engine.figures import Customer, Depot, Order, RateRow, Rules
+from engine.intake.reading import Reading
+from engine.intake.remarks import Counts
+from engine.records import Opened, create_week, open_records, save, save_variant
+from engine.week import Week
+
+D = Decimal
 
 APP = Path(__file__).parents[2] / "app"
 SCRIPT = """
@@ -103,3 +113,87 @@ def test_no_week_and_a_week_that_cannot_be_planned() -> None:
     test.switch_page("pages/compare.py").run()
     assert not test.exception
     assert "no week to compare" in said(test)
+
+
+def kept_in(tmp_path: Path, monkeypatch: pytest.MonkeyPatch, *names: str) -> list[Opened]:
+    """Weeks in records of their own, which the desk then uses."""
+    place = str(tmp_path / "own.sqlite")
+    monkeypatch.setenv("HITHE_RECORDS", place)
+    records = open_records(place)
+    return [create_week(records, engine.read_week(sample_data.path(name))) for name in names]
+
+
+def at(test: AppTest, view: str) -> AppTest:
+    test.session_state["compare-view"] = view
+    test.switch_page("pages/compare.py").run()
+    assert not test.exception
+    return test
+
+
+@pytest.mark.parametrize("names", [["small_week.xlsx"], ["week_before.xlsx", "small_week.xlsx"]])
+def test_every_view_stands_with_one_week_and_with_two(
+    names: list[str], tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    *_, now = kept_in(tmp_path, monkeypatch, *names)
+    test = whole({"week": now.listed.id})
+    for view in ("summary", "usual", "variants", "bridge", "weeks"):
+        at(test, view)
+
+
+def test_a_variant_is_kept_compared_and_put_up(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    (now,) = kept_in(tmp_path, monkeypatch, sample_data.SMALL_WEEK)
+    test = whole({"week": now.listed.id})
+    state: Desk = test.session_state[KEY]
+    state.propose(Alter("depot", "Northgate", "available", D(500)))
+    test.switch_page("pages/plan.py").run()
+    test.button(key="variant-open").click().run()
+    test.text_input(key="variant-name").input("Northgate half").run()
+    test.button(key="variant-keep").click().run()
+    assert not test.exception
+    assert state.proposal is None
+    assert not state.history.entries
+    at(test, "variants")
+    table = test.dataframe[0].value
+    assert list(table["Variant"]) == ["The week as it stands", "Northgate half"]
+    plan = engine.plan_week(state.week.apply(Alter("depot", "Northgate", "available", D(500))))
+    assert table["Freight, EUR"][1] == float(plan.freight_payable)
+    (variant,) = variants_of(state)
+    state.propose(variant.as_one)
+    state.accept()
+    assert state.week.depots["Northgate"].available == 500
+    assert len(state.history.entries) == 1
+
+
+def test_a_reader_sees_variants_and_cannot_touch_them(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    (now,) = kept_in(tmp_path, monkeypatch, sample_data.SMALL_WEEK)
+    change = Alter("depot", "Northgate", "available", D(500))
+    save_variant(open_records(str(tmp_path / "own.sqlite")), now.listed.id, "Northgate half", (change,))
+    test = at(whole({"read": now.listed.read_id}), "variants")
+    assert list(test.dataframe[0].value["Variant"])[1:] == ["Northgate half"]
+    assert not [b for b in test.button if b.key in ("variant-promote", "variant-remove")]
+
+
+def test_names_are_never_markdown(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    bad = "![i](http://x.example/y) *Elm* $z$"
+    week = Week.of(
+        (Depot("Quarry", D(5)), Depot(bad, D(20))),
+        (Customer(bad + "!", (Order(D(10)),)),),
+        (RateRow("Quarry", bad + "!", D(4)), RateRow(bad, bad + "!", D(5))),
+        Rules(unit="t", week=bad),
+    )
+    place = str(tmp_path / "own.sqlite")
+    monkeypatch.setenv("HITHE_RECORDS", place)
+    records = open_records(place)
+    create_week(records, Reading(week, (), Counts(0, 0, 0), ""))
+    now = create_week(records, Reading(week, (), Counts(0, 0, 0), ""))
+    save_variant(records, now.listed.id, bad, (Alter("depot", bad, "available", D(9)),))
+    change = Alter("depot", bad, "available", D(7))
+    save(records, now.listed.id, now.history.after(change, why=bad), 0)
+    test = whole({"week": now.listed.id})
+    for view in ("summary", "usual", "variants", "bridge", "weeks"):
+        at(test, view)
+        text = said(test) + "".join(metric.label for metric in test.metric)
+        assert "![" not in text
+        assert "*Elm*" not in text
