@@ -4,6 +4,7 @@ import streamlit as st
 
 from app.parts.compare_asked import Point, change_from, desk_rule, last_week, usual_of
 from app.parts.compare_bridge import bridge_shown
+from app.parts.compare_file import compared_file
 from app.parts.words import money, number, plain
 from app.session import Desk
 from engine.compare.bridge import Bridge
@@ -34,6 +35,7 @@ def summary_view(state: Desk, plan: Plan) -> None:
     if change is not None:
         st.subheader(f"Why {plain(change.second)} costs other than {plain(change.first)}", anchor=False)
         bridge_shown(state, change, "summary")
+    compared_file(state, plan, usual, change)
 
 
 def _this_week(state: Desk, plan: Plan) -> None:

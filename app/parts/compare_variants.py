@@ -32,6 +32,8 @@ def variants_view(state: Desk, plan: Plan) -> None:
         return
     found = kept(state, plan, ("variants", variants), lambda: side_by_side(plan, variants))
     picked = _table(state, plan, found)
+    if any(one.difference is not None and one.difference.short for one in found):
+        st.caption("Where less is delivered, freight falls: read it with what goes short.")
     if picked is None:
         st.caption("Pick a row to see what it changes, lane by lane.")
     else:
