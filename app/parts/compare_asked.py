@@ -155,6 +155,11 @@ def sent_of(state: Desk) -> Quantities:
     return {} if state.kept is None else load_sent(state.kept.records, state.kept.week_id)
 
 
+def quantities_at(point: Point) -> Quantities:
+    """What the plan at a point sends, as it was issued or as it would be planned."""
+    return _sent(side_of(point).plan)
+
+
 def variants_of(state: Desk) -> tuple[Variant, ...]:
     """The variants that are kept beside the week on the desk.
 

@@ -3,7 +3,8 @@
 import streamlit as st
 
 import engine
-from app.parts.compare_asked import desk_rule, remember_rule, sent_of, usual_of
+from app.parts.compare_asked import desk_rule, quantities_at, remember_rule, sent_of, usual_of
+from app.parts.compare_bridge import points_of
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import money, number, plain
 from app.session import Desk
@@ -51,30 +52,44 @@ def _rule(state: Desk, plan: Plan) -> Rule:
 
 
 def _sent(state: Desk) -> Quantities | None:
-    """The plan as it was sent, from an uploaded list; kept beside the week, for readers too."""
+    """The plan as it was sent: an uploaded list or a plan of the records; kept beside the week."""
     kept = state.kept
     may_change = kept is None or kept.may_change
-    file = None
-    if may_change:
+    now = sent_of(state)
+    if not may_change:
+        if not now:
+            st.info("Nobody has said yet what was really sent.")
+        return now or None
+    left, right = st.columns(2, gap="medium", vertical_alignment="bottom")
+    with left:
         file = st.file_uploader(
-            "The plan as it was sent: a plan workbook, or a list of Depot, Customer and Quantity",
+            "A plan workbook, or a list of Depot, Customer and Quantity",
             type=TYPES,
             key=f"sent-{state.uploads}",
         )
+    with right:
+        points = points_of(state)
+        name = st.selectbox("Or a plan of the records", list(points), index=None, key="sent-point")
+        if (
+            st.button("Take this plan as the one that was sent", key="sent-take", disabled=name is None)
+            and name
+        ):
+            return _taken(state, now, quantities_at(points[name]))
     if file is None:
-        found = sent_of(state)
-        if not found and not may_change:
-            st.info("Nobody has said yet what was really sent.")
-        return found or None
+        return now or None
     try:
-        read = engine.read_quantities((file.name, file.getvalue()), state.style)
+        return _taken(state, now, engine.read_quantities((file.name, file.getvalue()), state.style))
     except engine.Unreadable as refused:
         st.error(f"{plain(refused.finding.message)} {plain(refused.finding.mend)}")
         return None
-    if kept is not None and dict(sent_of(state)) != dict(read):
-        save_sent(kept.records, kept.week_id, read)
+
+
+def _taken(state: Desk, now: Quantities, sent: Quantities) -> Quantities:
+    """Let this be what was sent, on disk too; readers then see the saving against it."""
+    if state.kept is not None and dict(now) != dict(sent):
+        save_sent(state.kept.records, state.kept.week_id, sent)
         remember_rule(Rule.ACTUAL)
-    return read
+    return sent
 
 
 def saving_line(state: Desk, plan: Plan, usual: UsualPlan, found: Saving) -> None:

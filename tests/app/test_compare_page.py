@@ -17,6 +17,7 @@ from engine.compare.usual import Rule, usual_plan
 from engine.figures import Customer, Depot, Order, RateRow, Rules
 from engine.intake.reading import Reading
 from engine.intake.remarks import Counts
+from engine.planning.near import sent_by
 from engine.records import Opened, create_week, open_records, save, save_variant
 from engine.week import Week
 
@@ -197,3 +198,22 @@ def test_names_are_never_markdown(tmp_path: Path, monkeypatch: pytest.MonkeyPatc
         text = said(test) + "".join(metric.label for metric in test.metric)
         assert "![" not in text
         assert "*Elm*" not in text
+
+
+def test_a_plan_of_the_records_is_taken_as_the_one_that_was_sent(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    before, now = kept_in(tmp_path, monkeypatch, "week_before.xlsx", sample_data.SMALL_WEEK)
+    test = whole({"week": now.listed.id})
+    test.session_state["usual-chosen"] = Rule.ACTUAL
+    at(test, "usual")
+    test.selectbox(key="sent-point").select(before.listed.name).run()
+    test.button(key="sent-take").click().run()
+    assert not test.exception
+    sent = sent_by(engine.plan_week(before.history.week))
+    week = now.history.week
+    found = saving(engine.plan_week(week), usual_plan(week, Rule.ACTUAL, sent).costs)
+    assert f"{found.freight:,} EUR" in said(test)
+    reader = whole({"read": now.listed.read_id})  # the desk goes by it from now on, for the manager too
+    shown = {metric.label.replace("\\", ""): metric.value for metric in reader.metric}
+    assert shown["Saving against the plan as it was sent"] == f"{found.freight:,} EUR"
