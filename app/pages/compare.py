@@ -44,11 +44,6 @@ else:
     if plan is None:
         st.error("This week cannot be planned as it stands, so there is nothing to compare.")
         findings_panel(state.stopped, key="stopped")
-    elif plan.whole is not None:
-        st.info(
-            "This week has whole loads. The usual plan, the way from one plan to another, stress and "
-            "emissions are worked out for rates per unit only, so nothing is compared: it would mislead."
-        )
     else:
         first = next(iter(VIEWS))
         view = st.segmented_control(
@@ -56,6 +51,7 @@ else:
             format_func=lambda name: VIEWS[name][0], label_visibility="collapsed",
         ) or first  # fmt: skip
         try:
-            VIEWS[view][1](state, plan)
+            with st.spinner("Comparing …", show_time=True):
+                VIEWS[view][1](state, plan)
         except (TooLarge, NotSaved, Missing) as failure:
             st.error(plain(str(failure)))

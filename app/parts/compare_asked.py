@@ -19,7 +19,7 @@ from app.session import Desk
 from engine.compare.bridge import Bridge, Side, bridge
 from engine.compare.events import events_of
 from engine.compare.quantities import Priced
-from engine.compare.service import Saving, saving
+from engine.compare.service import SECONDS, Saving, saving
 from engine.compare.usual import Rule, UsualPlan, rules_possible, usual_plan
 from engine.compare.variants import Variant
 from engine.figures import RateKey
@@ -97,7 +97,9 @@ def side_of(point: Point, since: int | None = None) -> Side:
     """
     history = opened(point.week.id).history
     week = history.week if point.version == len(history.entries) else history.at(point.version)
-    plan: Priced = issued_of(point.week, point.number) if point.number else plan_week(week)
+    plan: Priced = (
+        issued_of(point.week, point.number) if point.number else plan_week(week, time_limit=SECONDS)
+    )
     figures, events = events_of(history, words_of, since or 0, point.version)
     return Side(point.name, week, plan, figures, events)
 

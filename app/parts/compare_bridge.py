@@ -39,7 +39,7 @@ def bridge_shown(state: Desk, found: Bridge, key: str) -> None:
             Heading("Step"),
             Heading(f"Freight, {found.currency}", places=minor),
             *([] if found.averaged else [Heading(f"then, {found.currency}", "Where freight stands", minor)]),
-            Heading(f"Charges, {found.currency}", "For short and unsent: they stand apart", minor),
+            Heading(f"Charges, {found.currency}", "For short, unsent and opening: they stand apart", minor),
             Heading(f"Short, {found.unit}"),
         ]
         rows: list[list[Cell]] = [

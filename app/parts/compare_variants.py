@@ -49,7 +49,7 @@ def _table(state: Desk, plan: Plan, found: tuple[Measured, ...]) -> int | None:
         Heading(f"Freight, {currency}", places=minor),
         Heading(f"Against the week, {currency}", places=minor),
         Heading(f"per {unit}", places=4),
-        Heading(f"Charges, {currency}", "For short and unsent; they stand apart", minor),
+        Heading(f"Charges, {currency}", "For short, unsent and opening; they stand apart", minor),
         Heading(f"Short, {unit}"),
         Heading(f"Left, {unit}", "What depots keep"),
         Heading("Lanes"),

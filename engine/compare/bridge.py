@@ -21,8 +21,9 @@ from engine.compare.cents import apportioned
 from engine.compare.effects import ABOUT, NAMES
 from engine.compare.mixed import Event, Mixture, NotComparable, event_key, is_event
 from engine.compare.possible import made_possible
-from engine.compare.quantities import Priced
-from engine.exact import TooLarge, places_needed, total_of
+from engine.compare.quantities import Priced, charges_of
+from engine.compare.service import SECONDS
+from engine.exact import TooLarge, canonical, places_needed, total_of
 from engine.money import minor_places, round_half_up
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable, plan_week
@@ -125,6 +126,7 @@ def bridge(
     order: Sequence[str] = (),
     average: bool = False,
     progress: Progress | None = None,
+    seconds: float = SECONDS,
 ) -> Bridge:
     """The difference between two plans, effect by effect.
 
@@ -133,6 +135,7 @@ def bridge(
         order: effects to be taken first, in this order; the others follow in the stated one.
         average: the average over all orders instead of one order.
         progress: told how many of how many weeks are planned.
+        seconds: how long each week with whole loads is searched for; what is not proved then is remarked.
 
     Raises:
         NotComparable: units or currencies differ, an effect is not known or does not differ, or there are
@@ -149,7 +152,9 @@ def bridge(
             f"{len(effects)} effects differ; an average over all orders of more than {MOST_AVERAGED} would "
             f"take {2 ** len(effects):,} plans. Compare in one order."
         )
-    plans = _Plans(mixture, first, second, progress, 2 ** len(effects) if average else len(effects) + 1)
+    plans = _Plans(
+        mixture, (first, second), seconds, progress, 2 ** len(effects) if average else len(effects) + 1
+    )
     found = _averaged(plans, effects) if average else _in_order(plans, effects)
     ends = plans.worth(()), plans.worth(effects)
     if ends[0] is None or ends[1] is None:
@@ -179,10 +184,18 @@ class _Plans:
     """The worth of each mixed week, planned once; of the two ends, what the sides themselves plan."""
 
     def __init__(
-        self, mixture: Mixture, first: Side, second: Side, progress: Progress | None, expected: int
+        self,
+        mixture: Mixture,
+        ends: tuple[Side, Side],
+        seconds: float,
+        progress: Progress | None,
+        expected: int,
     ) -> None:
         self.mixture, self.count = mixture, 0
-        self._ends = (first, second)
+        self._seconds, self._last = seconds, None if not isinstance(ends[0].plan, Plan) else ends[0].plan
+        if self._last is not None and self._last.whole is None:
+            self._last = None
+        self._ends = ends
         self._known: dict[frozenset[str], tuple[Worth | None, tuple[str, ...]]] = {}
         self._progress, self._expected = progress, expected
 
@@ -201,24 +214,37 @@ class _Plans:
 
     def _plan(self, chosen: frozenset[str]) -> tuple[Worth | None, tuple[str, ...]]:
         if not chosen or len(chosen) == len(self.mixture.effects):
-            return _end(self._ends[bool(chosen)]), ()
+            return _end(self._ends[bool(chosen)], self._seconds)
         week, said = self.mixture.week(chosen)
         week, shrunk = made_possible(week)
         try:
-            return _worth(plan_week(week)), (*said, *shrunk)
+            plan = plan_week(week, near=self._last, time_limit=self._seconds)
+            self._last = plan if plan.whole is not None else None  # where the next search starts from
+            return _worth(plan), (*said, *shrunk, *_not_proved(plan))
         except (NotPlannable, TooLarge) as stopped:
             why = f"Could not be planned on its own and is counted with the next: {stopped}"
             return None, (*said, *shrunk, why)
 
 
-def _end(side: Side) -> Worth:
+def _end(side: Side, seconds: float) -> tuple[Worth, tuple[str, ...]]:
     """What the cheapest plan of a side's week comes to; of equal ones, the one that the side has."""
     own = _worth(side.plan)
     if isinstance(side.plan, Plan):
-        return own
-    best = _worth(plan_week(side.week))
+        return own, tuple(f"{side.name}: {said}" for said in _not_proved(side.plan))
+    plan = plan_week(side.week, time_limit=seconds)
+    best = _worth(plan)
     alike = own.freight + own.charges == best.freight + best.charges and own.short == best.short
-    return own if alike else best
+    return own if alike else best, tuple(f"{side.name}: {said}" for said in _not_proved(plan))
+
+
+def _not_proved(plan: Plan) -> tuple[str, ...]:
+    """A remark on a plan with whole loads that may not be the cheapest."""
+    if not plan.proof.gap:
+        return ()
+    return (
+        f"The search ended within {canonical(plan.proof.gap)} {plan.week.rules.currency} of the least cost "
+        "that is proved: this step may be so much larger or smaller.",
+    )
 
 
 _Found = tuple[str, Worth, tuple[str, ...]]
@@ -227,13 +253,14 @@ _Found = tuple[str, Worth, tuple[str, ...]]
 def _in_order(plans: _Plans, effects: Sequence[str]) -> list[_Found]:
     """Each effect as the difference that it makes after those before it."""
     found: list[_Found] = []
-    at = plans.worth(())
+    at, before = plans.planned(())
     for number, effect in enumerate(effects, 1):
         now, remarks = plans.planned(effects[:number])
         if now is None or at is None:
             now = at
-        found.append((effect, _NOTHING if now is None or at is None else now.less(at), remarks))
-        at = now
+        worth = _NOTHING if now is None or at is None else now.less(at)
+        found.append((effect, worth, (*before, *remarks)))
+        at, before = now, ()
     return found
 
 
@@ -269,7 +296,7 @@ def _averaged(plans: _Plans, effects: Sequence[str]) -> list[_Found]:
 def _worth(plan: Priced) -> Worth:
     return Worth(
         Fraction(plan.freight_cost),
-        Fraction(plan.short_cost) + Fraction(plan.unsent_cost),
+        Fraction(charges_of(plan)),
         Fraction(total_of(one.quantity for one in plan.short)),
     )
 
@@ -282,7 +309,7 @@ def _written(
     ends = [
         (
             side.plan.freight_payable,
-            round_half_up(total_of((side.plan.short_cost, side.plan.unsent_cost)), minor),
+            round_half_up(charges_of(side.plan), minor),
             total_of(one.quantity for one in side.plan.short),
         )
         for side in (first, second)

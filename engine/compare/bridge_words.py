@@ -60,7 +60,7 @@ def _service(bridge: Bridge, pay: Written, much: Written) -> Iterable[str]:
         yield f"{much(abs(bridge.short))} {word} go short, most of it by {_lower(most)}."
     if bridge.charges:
         word = "more" if bridge.charges > 0 else "less"
-        yield f"Charges for short and unsent, which stand apart, come to {pay(abs(bridge.charges))} {word}."
+        yield f"Charges, which stand apart from freight, come to {pay(abs(bridge.charges))} {word}."
 
 
 def _signed(value: Decimal, pay: Written) -> str:

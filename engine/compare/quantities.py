@@ -1,5 +1,6 @@
 """Quantities on the rows of a model as a costed plan: shipments, what is short and unsent, and the money."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from decimal import Decimal
 from typing import Protocol
@@ -8,9 +9,12 @@ import numpy as np
 
 from engine.exact import to_decimal, total_of
 from engine.money import minor_places, round_half_up
-from engine.planning.gone import cost_of, key_of
+from engine.planning.accounts import gone_shipments
+from engine.planning.load_plan import openings_of, shipments_of
+from engine.planning.load_week import load_week
 from engine.planning.model import NO_RATE, Integers, Model
 from engine.planning.plan import Shipment, Short, Unsent
+from engine.planning.spread import has_whole_loads
 from engine.week import Week
 
 
@@ -31,6 +35,8 @@ class Priced(Protocol):
     def short_cost(self) -> Decimal: ...
     @property
     def unsent_cost(self) -> Decimal: ...
+    @property
+    def opening_cost(self) -> Decimal: ...
 
 
 @dataclass(frozen=True, eq=False)
@@ -44,6 +50,7 @@ class Costed:
     freight_payable: Decimal
     short_cost: Decimal
     unsent_cost: Decimal
+    opening_cost: Decimal = Decimal(0)
 
     @property
     def status(self) -> str:
@@ -60,7 +67,13 @@ def costs_of(plan: Priced) -> Costed:
         plan.freight_payable,
         plan.short_cost,
         plan.unsent_cost,
+        plan.opening_cost,
     )
+
+
+def charges_of(plan: Priced) -> Decimal:
+    """Everything that is not freight: for short and unsent, and for opening depots."""
+    return total_of((plan.short_cost, plan.unsent_cost, plan.opening_cost))
 
 
 def costed(week: Week, model: Model, sent: Integers) -> Costed:
@@ -68,7 +81,8 @@ def costed(week: Week, model: Model, sent: Integers) -> Costed:
 
     sent: (rows,) grains on the model's rate rows; what is short and unsent follows
     """
-    shipments = (*_gone(week), *_shipments(week, model, sent))
+    going, opening_cost = _going(week, model, sent)
+    shipments = (*gone_shipments(week), *going)
     short, unsent = _short(model, sent), _unsent(model, sent)
     return Costed(
         shipments,
@@ -78,22 +92,18 @@ def costed(week: Week, model: Model, sent: Integers) -> Costed:
         freight_payable=total_of(one.payable for one in shipments),
         short_cost=total_of(one.cost for one in short),
         unsent_cost=total_of(one.cost for one in unsent),
+        opening_cost=opening_cost,
     )
 
 
-def _gone(week: Week) -> list[Shipment]:
-    minor = minor_places(week.rules.currency)
-    return [
-        Shipment(
-            key_of(one),
-            one.quantity,
-            one.rate,
-            cost_of(one),
-            round_half_up(cost_of(one), minor),
-            gone=one.name,
-        )
-        for one in week.gone.values()
-    ]
+def _going(week: Week, model: Model, sent: Integers) -> tuple[Sequence[Shipment], Decimal]:
+    """What is still to go, with whole vehicles where the week has them, and what opening depots costs."""
+    if not has_whole_loads(week):
+        return _shipments(week, model, sent), Decimal(0)
+    loads = load_week(week, model)
+    quantity = sent[loads.rows]
+    openings = openings_of(model, loads, quantity)
+    return shipments_of(week, model, loads, quantity), total_of(one.charge for one in openings)
 
 
 def _shipments(week: Week, model: Model, sent: Integers) -> list[Shipment]:

@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 from decimal import Decimal
 from types import MappingProxyType
 
-from engine.compare.quantities import Costed, Priced, costs_of
+from engine.compare.quantities import Costed, Priced, charges_of, costs_of
 from engine.exact import canonical, total_of
 from engine.figures import Order
 from engine.money import round_half_up
@@ -21,6 +21,8 @@ from engine.week import Week
 
 PER_UNIT_PLACES = 4
 SHOWN = 5
+SECONDS = 10.0
+"""How long a plan with whole loads is searched for, where the service has to be made equal."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,14 +63,21 @@ class Saving:
     lanes: tuple[LaneSaving, ...]
 
 
-def saving(plan: Plan, other: Priced) -> Saving:
+def saving(plan: Plan, other: Priced, seconds: float = SECONDS) -> Saving:
     """What the plan saves against another way of doing its week, at equal service.
+
+    seconds: how long a plan with whole loads is searched for
 
     Raises:
         NotPlannable: the other's service cannot be planned, so it does not keep the week's limits and holds.
     """
-    differs = tuple(_differences(plan, other))
-    against = costs_of(plan if not differs else plan_week(with_service(plan.week, other)))
+    differs = tuple(_differences(plan.week.rules.unit, plan, other))
+    against = costs_of(plan if not differs else plan_week(with_service(plan.week, other), time_limit=seconds))
+    if differs and any(_differences(plan.week.rules.unit, against, other)):
+        differs += (
+            "No plan that keeps loads a day, hauliers' limits, smallest drops and One depot serves like "
+            "that: the plan beside it delivers otherwise too.",
+        )
     freight = total_of((other.freight_payable, -against.freight_payable))
     delivered = total_of(one.quantity for one in other.shipments)
     return Saving(
@@ -76,7 +85,7 @@ def saving(plan: Plan, other: Priced) -> Saving:
         _per_unit(freight, delivered),
         not differs,
         against,
-        total_of((other.short_cost, other.unsent_cost, -against.short_cost, -against.unsent_cost)),
+        total_of((charges_of(other), -charges_of(against))),
         differs,
         lane_savings(other, against),
     )
@@ -119,9 +128,8 @@ def _by(shipments: Iterable[Shipment], what: str) -> dict[str, Decimal]:
     return {name: total_of(quantities) for name, quantities in sums.items()}
 
 
-def _differences(plan: Plan, other: Priced) -> Iterable[str]:
+def _differences(unit: str, plan: Priced, other: Priced) -> Iterable[str]:
     """What the other plan delivers otherwise, and what it moves less of what must move."""
-    unit = plan.week.rules.unit
     mine, theirs = _by(plan.shipments, "customer"), _by(other.shipments, "customer")
     by = {
         name: total_of((theirs.get(name, Decimal(0)), -mine.get(name, Decimal(0))))

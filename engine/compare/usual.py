@@ -24,6 +24,7 @@ from engine.exact import canonical, to_decimal
 from engine.figures import PRIORITIES
 from engine.intake.earlier import Quantities
 from engine.planning.model import NO_RATE, Integers, Model, model_of, priority_of
+from engine.planning.spread import has_whole_loads
 from engine.week import Week
 
 
@@ -105,6 +106,11 @@ def usual_plan(
         remarks.append(f"The other {amount} {week.rules.unit} were sent {filling.words}.")
     if filling is Rule.NEAREST:
         remarks += _about_distances(week, model)
+    if has_whole_loads(week):
+        remarks.append(
+            "Loads a day, hauliers' limits, smallest drops and single depots were not minded, so the usual "
+            "plan may be cheaper here than it could be."
+        )
     return UsualPlan(rule, costed(week, model, ground.sent), tuple(remarks))
 
 

@@ -6,7 +6,8 @@ from decimal import Decimal
 
 from engine.changes import Change, Together
 from engine.compare.distances import km_along
-from engine.compare.service import PER_UNIT_PLACES
+from engine.compare.quantities import charges_of
+from engine.compare.service import PER_UNIT_PLACES, SECONDS
 from engine.exact import TooLarge, places_needed, to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity
 from engine.money import round_half_up
@@ -31,7 +32,7 @@ class Variant:
 
 @dataclass(frozen=True, slots=True)
 class Measures:
-    """What a plan comes to. `freight` is payable; `charges` are for short and unsent, exact.
+    """What a plan comes to. `freight` is payable; `charges` are for short, unsent and opening, exact.
 
     per_unit: freight by unit delivered, to four places; None where nothing is delivered
     loads: None where nothing is charged by the load; unit_km: None where a used lane has no distance
@@ -65,7 +66,7 @@ def measured(plan: Plan) -> Measures:
     return Measures(
         plan.freight_payable,
         round_half_up(plan.freight_payable / delivered, PER_UNIT_PLACES) if delivered else None,
-        total_of((plan.short_cost, plan.unsent_cost)),
+        charges_of(plan),
         delivered,
         total_of(one.quantity for one in plan.short),
         total_of(one.quantity for one in plan.unsent),
@@ -82,7 +83,7 @@ def side_by_side(base: Plan, variants: Iterable[Variant]) -> tuple[Measured, ...
 
 def _measured(base: Plan, variant: Variant) -> Measured:
     try:
-        plan = plan_week(base.week.apply(variant.as_one), near=base)
+        plan = plan_week(base.week.apply(variant.as_one), near=base, time_limit=SECONDS)
     except NotPlannable as stopped:
         return Measured(variant, None, None, stopped.findings)
     except (Refused, TooLarge) as refused:

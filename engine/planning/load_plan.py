@@ -154,9 +154,9 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
     week, model = search.week, search.model
     quantity = _quantities(search, flow)
     gone = gone_shipments(week)
-    shipments = (*gone, *_shipments(search, flow))
+    shipments = (*gone, *shipments_of(week, model, search.loads, flow.quantity))
     short, unsent = short_of(model, quantity), unsent_of(model, quantity)
-    openings = _openings(search, flow)
+    openings = openings_of(model, search.loads, flow.quantity)
     freight = total_of(one.cost for one in shipments)
     short_cost, unsent_cost = total_of(s.cost for s in short), total_of(u.cost for u in unsent)
     opening_cost = total_of(one.charge for one in openings)
@@ -209,26 +209,25 @@ def _quantities(search: Search, flow: LoadFlow) -> Integers:
     return quantity
 
 
-def _shipments(search: Search, flow: LoadFlow) -> tuple[Shipment, ...]:
-    """The used rate rows, in sheet order."""
-    week, loads = search.week, search.loads
+def shipments_of(week: Week, model: Model, loads: LoadWeek, quantity: Integers) -> tuple[Shipment, ...]:
+    """The used rate rows, in sheet order; `quantity` is what goes on each rate row of `loads`."""
     problem, q, m = loads.problem, loads.quantity_places, loads.money_places
-    position = search.model.rate_row[loads.rows]
-    used = np.flatnonzero(flow.quantity)
+    position = model.rate_row[loads.rows]
+    used = np.flatnonzero(quantity)
     minor = minor_places(week.rules.currency)
     found = []
     for row in used[np.argsort(position[used], kind="stable")].tolist():
         key = week.rates.key_of(int(week.rates.ids_in_order[position[row]]))
-        cost = to_decimal(cost_on_row(problem, row, int(flow.quantity[row])), q + m)
+        cost = to_decimal(cost_on_row(problem, row, int(quantity[row])), q + m)
         size, once = int(problem.load_size[row]), int(problem.charge_per_use[row])
         found.append(
             Shipment(
                 key,
-                to_decimal(int(flow.quantity[row]), q),
+                to_decimal(int(quantity[row]), q),
                 to_decimal(int(loads.rate[row]), m),
                 cost,
                 round_half_up(cost, minor),
-                loads=loads_on_row(problem, row, int(flow.quantity[row])) if size else None,
+                loads=loads_on_row(problem, row, int(quantity[row])) if size else None,
                 held=key in week.holds,
                 per="load" if loads.per_load[row] else "unit",
                 load_size=to_decimal(size, q) if size else None,
@@ -255,11 +254,12 @@ def cost_on_row(problem: LoadProblem, row: int, quantity: int) -> int:
     return (loads - 1) * full + last + loads * int(problem.per_load[row]) + int(problem.charge_per_use[row])
 
 
-def _openings(search: Search, flow: LoadFlow) -> tuple[Opening, ...]:
-    problem, places = search.loads.problem, search.loads.quantity_places + search.loads.money_places
-    sends = np.bincount(problem.depot[flow.quantity > 0], minlength=problem.depots) > 0
+def openings_of(model: Model, loads: LoadWeek, quantity: Integers) -> tuple[Opening, ...]:
+    """The depots that are opened, and what that costs; `quantity` is what goes on each rate row."""
+    problem, places = loads.problem, loads.quantity_places + loads.money_places
+    sends = np.bincount(problem.depot[quantity > 0], minlength=problem.depots) > 0
     return tuple(
-        Opening(search.model.depots[i], to_decimal(int(problem.opening_charge[i]), places))
+        Opening(model.depots[i], to_decimal(int(problem.opening_charge[i]), places))
         for i in np.flatnonzero(sends & (problem.opening_charge > 0)).tolist()
     )
 

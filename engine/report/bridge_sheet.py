@@ -55,7 +55,7 @@ def _above(bridge: Bridge) -> list[Row]:
         Row([f"Money in {bridge.currency}, quantities in {bridge.unit}. Freight is what is payable."], quiet),
         Row([how], quiet),
         Row(
-            ["Charges are for short and unsent and stand apart. Cents by largest remainder: they add up."],
+            ["Charges (short, unsent, opening) stand apart. Cents by largest remainder: they add up."],
             quiet,
         ),
         Row([]),

@@ -58,7 +58,7 @@ def compare_sheet(plan: Plan, usual: UsualPlan, found: Saving, header: str) -> S
     if found.charges:
         rows.append(
             Row(
-                ["Charges for short and unsent, apart", None, None, None, found.charges],
+                ["Charges, apart", None, None, None, found.charges],
                 [*[Style()] * 4, paid],
             )
         )
