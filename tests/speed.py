@@ -24,6 +24,7 @@ from typing import Any
 import numpy as np
 
 from engine.network import Problem, least_cost, prepare
+from tests.loads import speed_loads
 
 DENSE = ("5x60", "20x500", "50x2000", "100x10000", "20x100000", "300x3000", "500x5000", "1000x1000")
 SPARSE = ("2500x2500:6", "500x200000:5", "1000x1000000:10")
@@ -39,7 +40,7 @@ def main() -> None:
     parser.add_argument(
         "sizes",
         nargs="*",
-        help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order; or screen",
+        help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order; or screen, or loads",
     )
     parser.add_argument("--codes", default=",".join(CODES), help="which codes, separated by commas")
     parser.add_argument("--rates", choices=["road", "random"], default="road", help="how rates are made")
@@ -55,6 +56,9 @@ def main() -> None:
         return
     if options.child:
         print(json.dumps(timed(options.child, options.sizes[0], options)))
+        return
+    if options.sizes == ["loads"]:
+        speed_loads.run(options.limit, options.clock)
         return
     prepare()
     print(f"{'size':>16} {'code':>9} {'ms':>10} {'ratio':>7} {'passes':>7} {'MB':>6}  cost")

@@ -15,14 +15,20 @@ from engine.loads.stage import Stage
 LONGEST = 10.0**7
 """Seconds; HiGHS is stopped by being told to."""
 
+SMALLEST_GAP = 1e-9
+"""Part of the cost that HiGHS may leave open."""
+
 
 @dataclass
 class Beside:
     """One model being solved in a thread of its own.
 
-    all_rows: whether every row that may better the plan is in the model
+    open_rows: the rows in the model; all others carry what they do in `base`
+    all_rows:  whether every row that may better the plan is in the model
     """
 
+    open_rows: Flags
+    base: Integers
     all_rows: bool
     stopping: threading.Event = field(default_factory=threading.Event)
     thread: threading.Thread | None = None
@@ -42,14 +48,11 @@ class Beside:
             self.thread.join()
 
 
-def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool, gap: float) -> Beside:
-    """Begins with the best plan; rows that are not open keep what they carry there.
-
-    gap: share of the cost below which HiGHS need not go
-    """
+def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool) -> Beside:
+    """Begins with the best plan; rows that are not open keep what they carry there."""
     model = compact(stage, open_rows, best)
-    model.solver.setOptionValue("mip_rel_gap", gap)
-    work = Beside(all_rows)
+    model.solver.setOptionValue("mip_rel_gap", SMALLEST_GAP)
+    work = Beside(open_rows, best, all_rows)
 
     def solve() -> None:
         found = run(model, best, work.stopping.is_set, LONGEST, work.quantities.append)
@@ -62,10 +65,10 @@ def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool, gap: f
     return work
 
 
-def taken(work: Beside, best: Integers, open_rows: Flags) -> list[Integers]:
+def taken(work: Beside) -> list[Integers]:
     """The plans that have come since the last time."""
     found = []
     while work.quantities:
         quantity = work.quantities.pop(0)
-        found.append(np.where(open_rows, quantity, best))
+        found.append(np.where(work.open_rows, quantity, work.base))
     return found

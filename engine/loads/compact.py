@@ -102,8 +102,11 @@ class Found:
     optimal: bool
 
 
-def compact(stage: Stage, open_rows: Flags, kept: Integers) -> Compact:
-    """The model of the rows in `open_rows`, with the quantities `kept` on all others."""
+def compact(stage: Stage, open_rows: Flags, kept: Integers, tight: bool = True) -> Compact:
+    """The model of the rows in `open_rows`, with the quantities `kept` on all others.
+
+    tight: with the least number of loads that each order needs as a cut
+    """
     problem = stage.problem
     free = np.zeros(problem.customers, dtype=np.bool_)
     free[problem.customer[open_rows]] = True
@@ -115,7 +118,7 @@ def compact(stage: Stage, open_rows: Flags, kept: Integers) -> Compact:
     openings = _openings(problem, model, money, kept)
     for row in rows.tolist():
         _row_columns(problem, model, columns, openings, (row, unit, money))
-    _customers(stage, model, columns, free, (unit, money), kept)
+    _customers(stage, model, columns, free, (unit, money), kept, tight)
     _depots(stage, model, columns, openings, (unit, money), kept)
     constant = _constant(problem, free, kept)
     return Compact(
@@ -207,6 +210,7 @@ def _customers(
     free: Flags,
     units: tuple[float, float],
     kept: Integers,
+    tight: bool,
 ) -> None:
     """Sums at customers, what is short, caps on it, and one depot only."""
     problem = stage.problem
@@ -226,7 +230,7 @@ def _customers(
         model.limit(needed, needed, entries)
         loads = [row for row in rows if columns["loads"][row] >= 0]
         sizes = {int(problem.load_size[row]) for row in loads}
-        if not stage.short_most[j] and len(sizes) == 1 and len(loads) == len(entries):
+        if tight and not stage.short_most[j] and len(sizes) == 1 and len(loads) == len(entries):
             enough = -(-int(problem.demand[j] - received[j]) // sizes.pop())
             model.limit(float(enough), INFINITE, [(int(columns["loads"][row]), 1.0) for row in loads])
         if problem.one_depot[j]:

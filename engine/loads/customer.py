@@ -12,7 +12,7 @@ import numpy as np
 
 from engine.exact import Integers
 from engine.loads.arrays import NEVER, Answers, Corners, Priced, Room, Rows, Sums
-from engine.network.compiled import kernel, part
+from engine.loads.compiled import kernel, part
 
 MOST_SUMS = 1024
 """More sums than this are not followed at one step; what is left out is accounted for in the bound."""
@@ -172,16 +172,7 @@ def serve_in_turn(rows: Rows, priced: Priced, order: Integers, room: Room, answe
         for row in range(first, last):
             before[row - first] = answers.quantity[row]
             use_room(rows, room, row, -answers.quantity[row])
-        for row in range(first, last):
-            i, size = rows.depot[row], rows.load_size[row]
-            by_loads = room.limit[row]
-            if size > 0 and room.vehicles[i] < by_loads // size:
-                by_loads = room.vehicles[i] * size
-            elif room.vehicles[i] == 0:
-                by_loads = 0
-            rows.most[row] = min(room.limit[row], room.supply[i], by_loads)
-            if room.whose[row] >= 0:
-                rows.most[row] = min(rows.most[row], room.haulier[room.whose[row]])
+        limit_to_room(rows, room, j)
         fits = False
         for _ in range(4):
             at_customer(rows, priced, answers, corners, sums, active, best, j)
@@ -207,6 +198,21 @@ def serve_in_turn(rows: Rows, priced: Priced, order: Integers, room: Room, answe
         for row in range(first, last):
             received += answers.quantity[row]
         answers.short[j] = rows.demand[j] - received
+
+
+@part
+def limit_to_room(rows: Rows, room: Room, j: int) -> None:
+    """Sets `most` on a customer's rows to what each of them could still get."""
+    for row in range(rows.start[j], rows.start[j + 1]):
+        i, size = rows.depot[row], rows.load_size[row]
+        most = min(room.limit[row], room.supply[i])
+        if size > 0 and room.vehicles[i] < most // size + 1:
+            most = min(most, room.vehicles[i] * size)
+        elif room.vehicles[i] == 0:
+            most = 0
+        if room.whose[row] >= 0:
+            most = min(most, room.haulier[room.whose[row]])
+        rows.most[row] = most
 
 
 @part
@@ -567,3 +573,10 @@ def sort_sums(sums: Sums, begin: int, count: int) -> None:
                 at -= step
             order[at] = s
         step //= 3
+
+
+@kernel
+def values_of(rows: Rows, priced: Priced, answers: Answers) -> None:
+    """Fills `value` with what the ways that stand in `answers` cost."""
+    for j in range(len(rows.demand)):
+        answers.value[j] = value_of(rows, priced, answers, j)

@@ -38,11 +38,12 @@ def serve(problem: LoadProblem, quantity: Integers, order: Integers) -> Integers
     never = np.full(problem.customers, NEVER, dtype=np.int64)
     answers = Answers(quantity.copy(), short_of(problem, quantity), never, never.copy())
     room = room_beside(problem, quantity)
-    serve_in_turn(_rows(problem), _priced(problem), np.ascontiguousarray(order), room, answers)
+    serve_in_turn(rows_alone(problem), priced_alone(problem), np.ascontiguousarray(order), room, answers)
     return answers.quantity
 
 
-def _rows(problem: LoadProblem) -> Rows:
+def rows_alone(problem: LoadProblem) -> Rows:
+    """The rows with the problem's own costs."""
     return Rows(
         problem.start,
         problem.depot,
@@ -58,7 +59,7 @@ def _rows(problem: LoadProblem) -> Rows:
     )
 
 
-def _priced(problem: LoadProblem) -> Priced:
+def priced_alone(problem: LoadProblem) -> Priced:
     """A shortage weighs more than any cost of serving, unless the customer may decline."""
     dear = DEAR // (2 * np.maximum(problem.demand, 1))
     short = np.where(problem.may_decline, problem.short_cost, np.minimum(dear, 2**40))

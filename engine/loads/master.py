@@ -241,10 +241,11 @@ def settle(
     should_stop: Callable[[], bool],
     start: Prices | None = None,
     tell: Callable[[int], None] | None = None,
+    tolerance: float = SETTLED,
 ) -> Bounded:
     """Generates ways until the node's bound reaches `cutoff`, or no better bound is to be had.
 
-    start: prices to begin with; tell: told of every better bound
+    start: prices to begin with; tell: told of every better bound; tolerance: part of the cost that may lack
     """
     stage = master.stage
     move_to(master, node)
@@ -254,8 +255,9 @@ def settle(
     best = bound_at(stage, node, rows, best_prices, answers)
     if best is None:
         return Bounded(None, np.zeros(0), np.zeros(0), best_prices, False)
-    everybody = np.arange(stage.problem.customers, dtype=np.int64)
-    add_patterns(master, patterns_of(stage, everybody, answers))
+    if not len(master.patterns.customer):
+        everybody = np.arange(stage.problem.customers, dtype=np.int64)
+        add_patterns(master, patterns_of(stage, everybody, answers))
     share = TOWARDS_BEST
     for _ in range(ROUNDS):
         solved = _solve(master)
@@ -267,7 +269,7 @@ def settle(
         if done:
             break
         lacking = value - best / stage.scale
-        if lacking <= SETTLED * max(abs(value), 1.0) and not _more_rows(master):
+        if lacking <= tolerance * max(abs(value), 1.0) and not _more_rows(master):
             if not _penalised(master):
                 break
             if not _raise_penalty(master):

@@ -9,11 +9,12 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from engine.exact import Integers
+from engine.loads.anneal import FIRST_ROUNDS, Annealing, begin, piece
 from engine.loads.beside import Beside, start, taken
 from engine.loads.cost import Score, score_of
 from engine.loads.fit import behind, mended, serve
 from engine.loads.master import master_of
-from engine.loads.prices import Floats
+from engine.loads.prices import Floats, Prices
 from engine.loads.problem import Flags, LoadProblem
 from engine.loads.proof import NotValid, check
 from engine.loads.stage import Stage, whole
@@ -21,6 +22,9 @@ from engine.loads.tree import Tree, close_rows, rounded, step, with_regrets
 
 FEW_ROWS = 700
 """About so many rows are given to HiGHS first."""
+
+SHARE = 4.0
+"""Time for rearranging, per time for the bound; less and less where it finds nothing."""
 
 MORE = 3
 """So many times as many the next time, if all were not in."""
@@ -90,78 +94,159 @@ def polish(best: Best, quantity: Integers, passes: int = 2) -> None:
             break
 
 
+@dataclass
+class Hunt:
+    """All that is at work on one stage.
+
+    value:  what the best plan comes to in the stage
+    prices: of the first bound
+    asked:  about how many rows HiGHS gets next
+    fixed:  value of the best plan when rows were closed last
+    run:    the rearranging that is under way, the runs-th, of so many rounds, for a share of the time
+    """
+
+    tree: Tree
+    best: Best
+    value: Callable[[], int]
+    told: Told
+    should_stop: Callable[[], bool]
+    prices: Prices | None = None
+    beside: Beside | None = None
+    asked: int = FEW_ROWS
+    fixed: int | None = None
+    run: Annealing | None = None
+    runs: int = 0
+    rounds: int = FIRST_ROUNDS
+    share: float = SHARE
+    steps: int = 0
+    last_told: float = field(default_factory=time.monotonic)
+
+
 def search(
-    stage: Stage, best: Best, value: Callable[[], int], told: Told, should_stop: Callable[[], bool]
+    stage: Stage,
+    best: Best,
+    value: Callable[[], int],
+    told: Told,
+    should_stop: Callable[[], bool],
+    by_cost: bool,
 ) -> None:
     """Betters plan and bound of a stage until they meet or it is told to stop.
 
-    value: what the best plan comes to in this stage
-    told:  its bound is kept up to date
+    value:   what the best plan comes to in this stage
+    told:    its bound is kept up to date
+    by_cost: whether the stage is the last, where cost is bettered
     """
-    tree = Tree(master_of(stage))
-    tree.push(told.bound, whole(stage), None)
-    work: Beside | None = None
-    open_rows: Flags = np.zeros(stage.problem.rows, dtype=np.bool_)
-    asked = FEW_ROWS
-    fixed_at: int | None = None
-    prices = None
-    steps, last_told = 0, time.monotonic()
-
-    def rising(bound: int) -> None:
-        nonlocal last_told
-        if steps == 0 and bound > told.bound:
-            told.bound = min(bound, value())
-            if time.monotonic() - last_told > 0.3:
-                last_told = time.monotonic()
-                told.tell("Pricing loads")
-
+    hunt = Hunt(Tree(master_of(stage)), best, value, told, should_stop)
+    hunt.tree.push(told.bound, whole(stage), None)
     try:
         while told.bound < value() and not should_stop():
-            if tree.heap:
-                before = value()
-                came = step(tree, before, should_stop, rising)
-                steps += 1
-                if came.mean is not None and (steps < 20 or steps % 10 == 0):
-                    exact = behind(best.problem, rounded_plan(best.problem, came.mean))
-                    if exact is None or not best.offer(exact):
-                        if steps == 1:
-                            polish(best, rounded(came.mean))
-                    elif steps == 1:
-                        polish(best, best.quantity)
-                if steps == 1:
-                    prices = tree.heap[0][3] if tree.heap else None
-            elif work is None or not work.running:
+            begun = time.monotonic()
+            if hunt.tree.heap:
+                _bound_step(hunt)
+            elif hunt.beside is None or not hunt.beside.running:
                 break
             else:
-                time.sleep(0.01)
-            told.bound = max(told.bound, tree.bound(value()))
-            if time.monotonic() - last_told > 0.5:
-                last_told = time.monotonic()
-                told.tell("Bettering the plan and its bound")
-            if work is not None:
-                for quantity in taken(work, best.quantity, open_rows):
-                    _take(best, quantity)
-            ended = work is not None and not work.running
-            if ended and work is not None and work.optimal and work.all_rows and work.bound is not None:
-                told.solver = round(work.bound)
-            again = work is None or (ended and not work.all_rows)
-            if prices is not None and (again or fixed_at is None or value() < fixed_at):
-                limit = value()
-                reached = with_regrets(tree, limit, prices)
-                if reached is not None:
-                    close_rows(tree, reached >= limit, limit)
-                    fixed_at = limit
-                    if again and told.bound < value():
-                        open_rows, complete = _open(best, reached, limit, asked)
-                        asked *= MORE
-                        work = start(stage, open_rows, best.quantity, complete, 1e-9)
-            told.bound = max(told.bound, tree.bound(value()))
+                time.sleep(0.005)
+            if by_cost and hunt.steps > 1:
+                _anneal(hunt, time.monotonic() - begun)
+            _beside_step(hunt)
+            told.bound = max(told.bound, hunt.tree.bound(value()))
+            _tell(hunt, "Bettering the plan and its bound", 0.5)
     finally:
-        if work is not None:
-            work.stop()
-            for quantity in taken(work, best.quantity, open_rows):
+        if hunt.beside is not None:
+            hunt.beside.stop()
+            for quantity in taken(hunt.beside):
                 _take(best, quantity)
-            told.bound = min(max(told.bound, tree.bound(value())), value())
+            _hear(hunt, hunt.beside)
+        told.bound = min(max(told.bound, hunt.tree.bound(value())), value())
+
+
+def _tell(hunt: Hunt, doing: str, seconds: float) -> None:
+    if time.monotonic() - hunt.last_told > seconds:
+        hunt.last_told = time.monotonic()
+        hunt.told.tell(doing)
+
+
+def _bound_step(hunt: Hunt) -> None:
+    """One step of the tree; plans are made of its first mixtures and of some later ones."""
+    best, told = hunt.best, hunt.told
+
+    def rising(bound: int) -> None:
+        if hunt.steps == 0 and bound > told.bound:
+            told.bound = min(bound, hunt.value())
+            _tell(hunt, "Pricing loads", 0.3)
+
+    came = step(hunt.tree, hunt.value(), hunt.should_stop, rising)
+    hunt.steps += 1
+    if hunt.steps == 1:
+        hunt.prices = hunt.tree.heap[0][3] if hunt.tree.heap else None
+    if came.mean is not None and (hunt.steps < 20 or hunt.steps % 10 == 0):
+        exact = behind(best.problem, rounded_plan(best.problem, came.mean))
+        better = exact is not None and best.offer(exact)
+        if hunt.steps == 1:
+            polish(best, best.quantity if better else rounded(came.mean))
+
+
+def _anneal(hunt: Hunt, seconds: float) -> None:
+    """Rearranges for a share of the time that the last step for the bound took."""
+    begun = time.monotonic()
+    while not hunt.should_stop() and hunt.told.bound < hunt.value():
+        _anneal_step(hunt)
+        if time.monotonic() - begun >= seconds * hunt.share:
+            return
+
+
+def _anneal_step(hunt: Hunt) -> None:
+    """A piece of a run of rearrangements; a run that found nothing is followed by a longer one."""
+    best, run = hunt.best, hunt.run
+    if run is None:
+        price = np.zeros(best.problem.depots, dtype=np.int64)
+        if hunt.prices is not None:
+            price = np.rint(hunt.prices.depot).astype(np.int64)
+        run = hunt.run = begin(best.problem, best.quantity, price, hunt.rounds, hunt.runs)
+        hunt.runs += 1
+    if piece(run):
+        best.offer(run.moves.best.copy())
+    if run.done >= run.rounds:
+        exact = behind(best.problem, best.quantity)
+        if exact is not None:
+            best.offer(exact)
+        if not run.found:
+            hunt.rounds *= 2
+            hunt.share /= 4
+        hunt.run = None
+
+
+def _beside_step(hunt: Hunt) -> None:
+    """Hears what HiGHS found, closes rows that can better nothing, and starts it again with more rows."""
+    best, work, value = hunt.best, hunt.beside, hunt.value
+    ended = work is not None and not work.running
+    if work is not None:
+        for quantity in taken(work):
+            _take(best, quantity)
+        if ended:
+            _hear(hunt, work)
+    again = work is None or (ended and not work.all_rows)
+    if hunt.prices is None or not (again or hunt.fixed is None or value() < hunt.fixed):
+        return
+    limit = value()
+    reached = with_regrets(hunt.tree, limit, hunt.prices)
+    if reached is None:
+        return
+    close_rows(hunt.tree, reached >= limit, limit)
+    hunt.fixed = limit
+    if again and hunt.told.bound < limit:
+        open_rows, complete = _open(best, reached, limit, hunt.asked)
+        hunt.asked *= MORE
+        hunt.beside = start(hunt.tree.master.stage, open_rows, best.quantity, complete)
+
+
+def _hear(hunt: Hunt, work: Beside) -> None:
+    """Notes the bound that HiGHS claims, if all rows that matter were in its model."""
+    if work.all_rows and work.bound is not None:
+        claimed = min(int(work.bound), hunt.value())
+        if hunt.told.solver is None or claimed > hunt.told.solver:
+            hunt.told.solver = claimed
 
 
 def rounded_plan(problem: LoadProblem, mean: Floats) -> Integers:

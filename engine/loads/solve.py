@@ -86,12 +86,12 @@ def least_cost_loads(
                 limit = None if left is None else time.monotonic() - begin + SHARE_OF_AN_AIM * left
                 aim = Told(bounds[place])
                 stage = stage_of(problem, best.score.aims, place)
-                search(stage, best, partial(_aim, best, place), aim, stop_at(limit))
+                search(stage, best, partial(_aim, best, place), aim, stop_at(limit), False)
                 # what was known of later aims held for plans that reach the first bound of this one
                 bounds = (*bounds[:place], aim.bound, *(0 for _ in bounds[place + 1 :]))
         told.tell = tell
         stage = stage_of(problem, best.score.aims, len(bounds))
-        search(stage, best, lambda: best.score.cost, told, stop_at(time_limit))
+        search(stage, best, lambda: best.score.cost, told, stop_at(time_limit), True)
     except KeyboardInterrupt:
         stopped.set()
     best.tell = lambda: None

@@ -115,7 +115,7 @@ def split(master: Master, node: Node, found: Bounded) -> tuple[Node, Node] | Non
     patterns = master.patterns
     inside = found.weight[patterns.way] > EVEN
     row, x, share = patterns.row[inside], patterns.quantity[inside], found.weight[patterns.way][inside]
-    loads = _loads(stage, row, x)
+    loads = loads_of(stage, row, x)
     for amount in (loads, x):
         at = _most_divided(stage, row, amount, share)
         if at is None:
@@ -138,7 +138,8 @@ def split(master: Master, node: Node, found: Bounded) -> tuple[Node, Node] | Non
     return None
 
 
-def _loads(stage: Stage, row: Integers, x: Integers) -> Integers:
+def loads_of(stage: Stage, row: Integers, x: Integers) -> Integers:
+    """How many loads quantities on rows make."""
     size = stage.problem.load_size[row]
     return -(-x // np.where(size > 0, size, np.maximum(x, 1)))
 

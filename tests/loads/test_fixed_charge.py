@@ -64,7 +64,7 @@ def test_trip_minimum_is_per_load() -> None:
 
 
 def test_charge_per_use_is_once() -> None:
-    """Rows at 3 and at 2 a unit, the second with 10 for its use: 8 by the first (24), 12 by the second (34)."""
+    """Rows at 3 and at 2 a unit, the second with 10 for its use: 8 by the first, 12 by the second."""
     for demand, cost in ((8, 24), (10, 30), (12, 34)):
         week = LoadProblem.of(
             supply=[99], demand=[demand], start=[0, 2], depot=[0, 0], per_unit=[3, 2], charge_per_use=[0, 10]

@@ -90,3 +90,32 @@ def road_week(depots: int, customers: int, seed: int = 1, slack: float = 0.08) -
         load_size=np.full(rows, 2400),
         short_cost=np.full(customers, 100_000),
     )
+
+
+def mixed_week(depots: int, customers: int, seed: int = 2) -> LoadProblem:
+    """Two hauliers on every lane: loads of 24 t at a rate per load, loads of 26 t by the tonne from 14 t on.
+
+    One customer in ten takes from one depot only, one in five no drop below 6 t; nobody is short.
+    """
+    plain = road_week(depots, customers, seed)
+    generator = np.random.default_rng(seed)
+    by_load = np.repeat(plain.per_load, 2)
+    by_tonne = np.arange(2 * plain.rows) % 2 == 1
+    dearness = generator.uniform(0.95, 1.1, 2 * plain.rows)
+    # cents per hundredth of a tonne
+    rate = np.maximum((by_load * dearness / 2200).astype(np.int64), 1)
+    drops = generator.random(customers) < 0.2
+    customer = np.repeat(np.arange(customers), 2 * depots)
+    return LoadProblem.of(
+        supply=plain.supply,
+        demand=plain.demand,
+        short_cost=plain.short_cost,
+        one_depot=generator.random(customers) < 0.1,
+        start=plain.start * 2,
+        depot=np.repeat(plain.depot, 2),
+        per_load=np.where(by_tonne, 0, by_load),
+        per_unit=np.where(by_tonne, rate, 0),
+        trip_minimum=np.where(by_tonne, rate * 1400, 0),
+        load_size=np.where(by_tonne, 2600, 2400),
+        smallest_drop=np.where(drops[customer], np.minimum(600, plain.demand[customer]), 0),
+    )
