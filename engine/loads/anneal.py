@@ -7,12 +7,11 @@ from dataclasses import dataclass
 import numpy as np
 
 from engine.exact import Integers
-from engine.loads.arrays import NEVER, Answers, Priced, Room, Rows
+from engine.loads.arrays import NEVER, Answers, Moves, Priced, Room, Rows
 from engine.loads.cost import row_costs, short_of
-from engine.loads.customer import values_of
 from engine.loads.fit import priced_alone, room_beside, rows_alone
 from engine.loads.problem import LoadProblem
-from engine.loads.rearrange import LONG, Moves, rearrange
+from engine.loads.turns import LONG, rearrange, values_of
 
 NEIGHBOURS = 60
 """So many customers count as near each other."""

@@ -101,3 +101,41 @@ class Room(NamedTuple):
     haulier: Integers
     whose: Integers
     limit: Integers
+
+
+class Moves(NamedTuple):
+    """What is moved, and by which rules.
+
+    near:     (customers, neighbours) customers that share good depots with each
+    opening:  (depots,) cost of opening
+    supply:   (depots,) all that each depot has
+    stay:     (depots,) most that may stay in each depot
+    setting:  [rounds, customers taken out at most, heat]: how much dearer a plan may be that is gone on from
+    standing: [how much cheaper the plan is than at first, how much the best one, state of chance]
+    best:     (rows,) the quantities of the best
+    """
+
+    near: Integers
+    opening: Integers
+    supply: Integers
+    stay: Integers
+    setting: Integers
+    standing: Integers
+    best: Integers
+
+
+class Scratch(NamedTuple):
+    """Room to work in.
+
+    before:  (customers taken out, rows of one) their quantities before
+    chosen:  (customers taken out,) who they are
+    value:   (customers taken out,) what they cost before
+    """
+
+    corners: Corners
+    sums: Sums
+    active: Integers
+    best: Integers
+    before: Integers
+    chosen: Integers
+    value: Integers

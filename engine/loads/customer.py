@@ -8,11 +8,9 @@ others are searched by sums, one row after the other (Bellman 1957), without sum
 
 from __future__ import annotations
 
-import numpy as np
-
 from engine.exact import Integers
-from engine.loads.arrays import NEVER, Answers, Corners, Priced, Room, Rows, Sums
-from engine.loads.compiled import kernel, part
+from engine.loads.arrays import NEVER, Answers, Corners, Priced, Rows, Sums
+from engine.loads.compiled import part
 
 MOST_SUMS = 1024
 """More sums than this are not followed at one step; what is left out is accounted for in the bound."""
@@ -112,132 +110,6 @@ def value_of(rows: Rows, priced: Priced, answers: Answers, j: int) -> int:
     if left != 0:
         return NEVER
     return int(cost)
-
-
-@part
-def widest_of(rows: Rows, which: Integers) -> int:
-    """The most rows that a customer of `which` has."""
-    widest = 1
-    for j in which:
-        widest = max(widest, rows.start[j + 1] - rows.start[j])
-    return widest
-
-
-@kernel
-def cheapest(rows: Rows, priced: Priced, which: Integers, answers: Answers) -> None:
-    """The cheapest way at each customer of `which`."""
-    widest = widest_of(rows, which)
-    most = widest * (MOST_CORNERS + 8)
-    integers = np.int64
-    corners = Corners(np.empty(widest + 1, integers), np.empty(most, integers), np.empty(most, integers))
-    deep = (widest + 2) * MOST_SUMS
-    sums = Sums(
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-    )
-    active = np.empty(widest, integers)
-    best = np.empty(widest + 1, integers)
-    for j in which:
-        at_customer(rows, priced, answers, corners, sums, active, best, j)
-
-
-@kernel
-def serve_in_turn(rows: Rows, priced: Priced, order: Integers, room: Room, answers: Answers) -> None:
-    """Serves the customers of `order` anew, one by one, each as cheaply as what is left allows.
-
-    answers: `quantity` is a plan that fits, and stays one
-    """
-    widest = widest_of(rows, order)
-    most = widest * (MOST_CORNERS + 8)
-    integers = np.int64
-    corners = Corners(np.empty(widest + 1, integers), np.empty(most, integers), np.empty(most, integers))
-    deep = (widest + 2) * MOST_SUMS
-    sums = Sums(
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-        np.empty(deep, integers),
-    )
-    active = np.empty(widest, integers)
-    best = np.empty(widest + 1, integers)
-    before = np.empty(widest, integers)
-    for j in order:
-        first, last = rows.start[j], rows.start[j + 1]
-        for row in range(first, last):
-            before[row - first] = answers.quantity[row]
-            use_room(rows, room, row, -answers.quantity[row])
-        limit_to_room(rows, room, j)
-        fits = False
-        for _ in range(4):
-            at_customer(rows, priced, answers, corners, sums, active, best, j)
-            if answers.value[j] == NEVER:
-                break
-            largest = 0
-            for row in range(first, last):
-                use_room(rows, room, row, answers.quantity[row])
-                largest = max(largest, answers.quantity[row])
-            fits = has_room(rows, room, first, last)
-            if fits:
-                break
-            # rows of one depot or haulier took more together: the largest of them alone
-            for row in range(first, last):
-                use_room(rows, room, row, -answers.quantity[row])
-                if answers.quantity[row] < largest and rows.forced[row] == 0:
-                    rows.most[row] = 0
-        if not fits:
-            for row in range(first, last):
-                answers.quantity[row] = before[row - first]
-                use_room(rows, room, row, before[row - first])
-        received = 0
-        for row in range(first, last):
-            received += answers.quantity[row]
-        answers.short[j] = rows.demand[j] - received
-
-
-@part
-def limit_to_room(rows: Rows, room: Room, j: int) -> None:
-    """Sets `most` on a customer's rows to what each of them could still get."""
-    for row in range(rows.start[j], rows.start[j + 1]):
-        i, size = rows.depot[row], rows.load_size[row]
-        most = min(room.limit[row], room.supply[i])
-        if size > 0 and room.vehicles[i] < most // size + 1:
-            most = min(most, room.vehicles[i] * size)
-        elif room.vehicles[i] == 0:
-            most = 0
-        if room.whose[row] >= 0:
-            most = min(most, room.haulier[room.whose[row]])
-        rows.most[row] = most
-
-
-@part
-def use_room(rows: Rows, room: Room, row: int, x: int) -> None:
-    """Takes `x` from what can still be given, or gives minus `x` back."""
-    i, size, amount = rows.depot[row], rows.load_size[row], abs(x)
-    loads = min(1, amount)
-    if size > 0:
-        loads = (amount + size - 1) // size
-    room.supply[i] -= x
-    room.vehicles[i] -= loads if x > 0 else -loads
-    if room.whose[row] >= 0:
-        room.haulier[room.whose[row]] -= x
-
-
-@part
-def has_room(rows: Rows, room: Room, first: int, last: int) -> bool:
-    """Whether no depot and no haulier of these rows gives more than it has."""
-    for row in range(first, last):
-        i = rows.depot[row]
-        if room.supply[i] < 0 or room.vehicles[i] < 0:
-            return False
-        if room.whose[row] >= 0 and room.haulier[room.whose[row]] < 0:
-            return False
-    return True
 
 
 @part
@@ -573,10 +445,3 @@ def sort_sums(sums: Sums, begin: int, count: int) -> None:
                 at -= step
             order[at] = s
         step //= 3
-
-
-@kernel
-def values_of(rows: Rows, priced: Priced, answers: Answers) -> None:
-    """Fills `value` with what the ways that stand in `answers` cost."""
-    for j in range(len(rows.demand)):
-        answers.value[j] = value_of(rows, priced, answers, j)

@@ -7,9 +7,9 @@ import numpy as np
 from engine.exact import Integers
 from engine.loads.arrays import NEVER, Answers, Priced, Room, Rows
 from engine.loads.cost import loads_on, sent_by, short_of
-from engine.loads.customer import serve_in_turn
 from engine.loads.linear import lines_behind, solve_lines
 from engine.loads.problem import NO_LIMIT, LoadProblem
+from engine.loads.turns import serve_in_turn
 from engine.network import Contradiction
 
 DEAR = 2**59

@@ -14,9 +14,9 @@ from numpy.typing import NDArray
 
 from engine.exact import Integers, total
 from engine.loads.arrays import NEVER, Answers, Priced, Rows
-from engine.loads.customer import cheapest
 from engine.loads.problem import NO_LIMIT
 from engine.loads.stage import LARGEST_PRICED, Node, Stage
+from engine.loads.turns import cheapest
 
 Floats = NDArray[np.float64]
 

@@ -1,7 +1,7 @@
 """Weeks with whole loads, planned here and by a plain HiGHS model: gaps after the same time, in one run.
 
-Called by `python -m tests.speed loads --limit SECONDS [--clock cpu]`; nothing here is asserted. The plain model has
-x <= size * loads on every row and no cut of ours; its plan is rounded and checked in integers like our own.
+Called by `python -m tests.speed loads --limit SECONDS [--clock cpu]`; nothing here is asserted. The plain
+model has x <= size * loads on every row and no cut of ours; its plan is checked in integers like our own.
 """
 
 # ruff: noqa: T201
