@@ -321,7 +321,7 @@ def _of_loads(made: engine.Plan) -> list[str]:
     lines = [f"Opened: {one.depot} {canonical(one.charge)} {currency}" for one in made.openings]
     bound, gap = (canonical(amount) for amount in (made.proof.lower_bound, made.proof.gap))
     lines.append(f"All costs {canonical(made.total_cost)} {currency}, at least {bound}: gap {gap}")
-    return [*lines, made.whole.how]
+    return [*lines, made.whole.how(made.proof.exact)]
 
 
 if __name__ == "__main__":

@@ -24,6 +24,10 @@ def loads_panel(state: Desk, plan: Plan) -> None:
     st.dataframe(
         pd.DataFrame([_of_depot(one, unit, mark) for one in vehicles(plan)], dtype="string"),
         hide_index=True,
+        column_config={
+            name: st.column_config.TextColumn(name, alignment="right")
+            for name in (f"Send, {unit}", "Loads", "Full", "Filled", "May leave", "Free")
+        },
     )
     badly = badly_filled(plan)
     if not badly:
@@ -34,7 +38,10 @@ def loads_panel(state: Desk, plan: Plan) -> None:
     st.dataframe(
         pd.DataFrame(rows, dtype="string"),
         hide_index=True,
-        column_config={"What would fill or save it": st.column_config.TextColumn(width="large")},
+        column_config={
+            "Paid for empty room": st.column_config.TextColumn(alignment="right"),
+            "What would fill or save it": st.column_config.TextColumn(width="large"),
+        },
     )
     if len(badly) > SHOWN:
         st.caption(f"And {counted(len(badly) - SHOWN, 'more load')}.")
@@ -62,7 +69,7 @@ def _of_load(plan: Plan, one: BadlyFilled, mark: str) -> dict[str, str]:
         "Customer": shipment.customer,
         "Haulier": shipment.haulier or "",
         "Loads": one.fill.words(),
-        "Saves": money(one.saved, rules.currency, mark),
+        "Paid for empty room": money(one.idle, rules.currency, mark) if one.idle else "",
         "What would fill or save it": one.words(
             rules.unit, lambda n: number(n, mark), lambda n: money(n, rules.currency, mark)
         ),

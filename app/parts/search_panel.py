@@ -34,7 +34,9 @@ def _standing(state: Desk, plan: Plan) -> str:
     """The plan on screen in money: how far it may be above the least, and what whole vehicles cost."""
     rules, mark, whole = plan.week.rules, state.decimal_mark, plan.whole
     said = []
-    if plan.proof.exact:
+    if state.searching.is_on and plan.proof.lower_bound <= 0 < plan.total_cost:
+        said.append("**A first plan; how far it is from the least cost is not known yet.**")
+    elif plan.proof.exact:
         said.append("**Proved: no plan with whole loads that serves these aims costs less.**")
     elif plan.proof.gap:
         gap = money(plan.proof.gap, rules.currency, mark)
@@ -54,7 +56,8 @@ def _standing(state: Desk, plan: Plan) -> str:
         )
         if whole.divisible_short != sum(one.quantity for one in plan.short):
             said.append("That plan would not leave the same quantities short.")
-        said.append(whole.how)
+        if not state.searching.is_on:
+            said.append(whole.how(plan.proof.exact))
     return " ".join(said)
 
 

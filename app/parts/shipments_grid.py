@@ -91,10 +91,11 @@ def _config(plan: Plan) -> dict[str, ColumnConfig]:
             f"{SEND.heading}, {rules.unit}", alignment="right", width="small",
             help="Type a quantity to hold it; empty the cell to lift the hold",
         ),
-        "Loads": text("Loads", width="small", help="Full vehicles, and how full the last one is"),
+        "Loads": text("Loads", width=130, help="Full vehicles, and how full the last one is"),
+        "Per": text("Per", width=50, help="What the rate is charged by"),
         "Rate": text(
             f"Rate, {rules.currency}", alignment="right", width="small",
-            help="Per unit, or per load where it says so; with the surcharge",
+            help="Per unit, or per load where Per says so; with the surcharge",
         ),
         "Cost": text(f"Cost, {rules.currency}", alignment="right", width="small"),
         "Held": text("Held", width="small"),
@@ -117,8 +118,10 @@ def _frame(state: Desk, plan: Plan, shown: list[Lane], view: _View) -> pd.DataFr
     }
     if any(lane.load_size for lane in shown):
         columns["Loads"] = [_fill(lane) for lane in shown]
+    columns["Rate"] = [number(lane.rate, mark) for lane in shown]
+    if any(lane.per == "load" for lane in shown):
+        columns["Per"] = ["load" if lane.per == "load" else plan.week.rules.unit for lane in shown]
     columns |= {
-        "Rate": [number(lane.rate, mark) + (" a load" if lane.per == "load" else "") for lane in shown],
         "Cost": [money(lane.cost, currency, mark).removesuffix(f" {currency}") for lane in shown],
     }
     if view.limits:

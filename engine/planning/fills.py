@@ -107,6 +107,7 @@ class BadlyFilled:
     missing: what more the load could take; holds: what it carries
     short: what the customer goes short of; elsewhere: what it gets by other rates, by depot
     saved: what its freight would fall by if the load did not go
+    idle: what of that is paid for empty room, since the load pays whole or its minimum
     """
 
     shipment: Shipment
@@ -116,6 +117,7 @@ class BadlyFilled:
     short: Decimal
     elsewhere: tuple[tuple[str, Decimal], ...]
     saved: Decimal
+    idle: Decimal
 
     def words(self, unit: str, number: Number = canonical, money: Number = canonical) -> str:
         """What would fill the load, or save it, as a sentence; `money` writes an amount with its currency."""
@@ -132,7 +134,7 @@ class BadlyFilled:
 
 
 def badly_filled(plan: Plan, below: Decimal = BADLY) -> tuple[BadlyFilled, ...]:
-    """Loads of a plan with whole loads that are less full than `below`, the emptiest first."""
+    """Loads that are less full than `below`: those that pay most for empty room first, then the emptiest."""
     short = {one.customer: one.quantity for one in plan.short}
     gets: dict[str, list[Shipment]] = defaultdict(list)
     for one in plan.shipments:
@@ -152,10 +154,21 @@ def badly_filled(plan: Plan, below: Decimal = BADLY) -> tuple[BadlyFilled, ...]:
                 fill.part,
                 short.get(one.customer, Decimal(0)),
                 tuple(sorted(others, key=lambda other: -other[1])),
-                _saved(plan, one, fill),
+                saved := _saved(plan, one, fill),
+                _idle(plan, one, fill, saved),
             )
         )
-    return tuple(sorted(found, key=lambda one: one.fill.part_of))
+    return tuple(sorted(found, key=lambda one: (-one.idle, one.fill.part_of)))
+
+
+def _idle(plan: Plan, one: Shipment, fill: Fill, saved: Decimal) -> Decimal:
+    """What the last load pays for the room in it that is empty."""
+    if fill.part is None:
+        return Decimal(0)
+    once = one.once if fill.full == 0 and one.once else Decimal(0)
+    if one.per == "load":
+        return (saved - once) * (fill.size - fill.part) / fill.size
+    return max(Decimal(0), saved - once - one.rate * fill.part)
 
 
 def _saved(plan: Plan, one: Shipment, fill: Fill) -> Decimal:

@@ -60,6 +60,7 @@ class Search:
     """Everything that a plan is made from, whichever flow the search has come to.
 
     model: with even shares worked in; network: its least-cost flow, loads divisible
+    divisible: what that costs, with what has gone; aims: what counts in it against each aim before cost
     """
 
     week: Week
@@ -67,6 +68,21 @@ class Search:
     network: Flow
     found: tuple[Finding, ...]
     loads: LoadWeek
+    divisible: Decimal
+    aims: tuple[int, ...]
+
+    def bound_of(self, flow: LoadFlow) -> Decimal:
+        """What any plan as good in the aims as this flow costs at least.
+
+        Whatever a plan sends costs no more with loads divisible. So where a flow serves the aims as well as
+        the network plan does, nothing can serve them better, and the network plan's cost is a bound too.
+        """
+        proved = _whole_cost(self, flow.lower_bound)
+        return max(proved, self.divisible) if self.best_aims(flow) else proved
+
+    def best_aims(self, flow: LoadFlow) -> bool:
+        """Whether a flow serves the aims as well as if loads were divisible."""
+        return _aims_in(self.loads.problem, flow.short, flow.unsent) == self.aims
 
 
 def plan_loads(
@@ -100,7 +116,27 @@ def plan_loads(
 
 def search_of(week: Week, model: Model, network: Flow, found: tuple[Finding, ...]) -> Search:
     """The search for a week whose network plan is known."""
-    return Search(week, model, network, found, load_week(week, model))
+    loads = load_week(week, model)
+    places = model.quantity_places + model.money_places
+    used = np.flatnonzero(network.quantity)
+    cost = sum(
+        a * b for a, b in zip(network.quantity[used].tolist(), model.money[used].tolist(), strict=True)
+    )
+    gone = total_of(one.cost for one in gone_shipments(week))
+    short = network.quantity[model.short_rows] - loads.fixed_short
+    unsent = network.quantity[model.stay_rows].copy()
+    must = np.flatnonzero(model.must_row >= 0)
+    unsent[must] += network.quantity[model.must_row[must]]
+    aims = _aims_in(loads.problem, short, unsent)
+    return Search(week, model, network, found, loads, total_of((to_decimal(cost, places), gone)), aims)
+
+
+def _aims_in(problem: LoadProblem, short: Integers, unsent: Integers) -> tuple[int, ...]:
+    """Units short by priority, of customers who may not decline, and units kept that must move."""
+    counted = ~problem.may_decline
+    ranks = [int(short[counted & (problem.rank == rank)].sum()) for rank in range(len(PRIORITIES))]
+    kept = np.maximum(0, unsent - (problem.supply - problem.must_move))
+    return (*ranks, int(kept.sum()))
 
 
 def in_words(week: Week, search: Search, refused: NoPlan) -> Finding:
@@ -129,7 +165,7 @@ def _key_words(week: Week, search: Search, row: int) -> str:
 
 
 def _improving(search: Search, progress: Progress) -> Improving:
-    cost, bound = _whole_cost(search, progress.best.cost), _whole_cost(search, progress.best.lower_bound)
+    cost, bound = _whole_cost(search, progress.best.cost), search.bound_of(progress.best)
     best, places = progress.best, search.model.quantity_places
     short = to_decimal(int(best.short.sum()) + int(search.loads.fixed_short.sum()), places)
     return Improving(progress.doing, cost, bound, short, progress.seconds, lambda: plan_of(search, best))
@@ -163,7 +199,8 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
     total = total_of((freight, short_cost, unsent_cost, opening_cost))
     if total != _whole_cost(search, flow.cost):
         raise NotAdded(f"The plan adds up to {total}, but was said to cost {_whole_cost(search, flow.cost)}.")
-    bound = _whole_cost(search, flow.lower_bound)
+    bound = search.bound_of(flow)
+    exact = bound == total if search.best_aims(flow) else flow.proved
     payable = total_of(one.payable for one in shipments)
     prices = unit_prices(model, search.network)
     remarks = (*search.found, *about_the_plan(week, model, short, unsent))
@@ -178,7 +215,7 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
         total_cost=total,
         freight_payable=payable,
         status="short" if short else "met",
-        proof=Proof(flow.proved, bound, total_of((total, -bound)), total_of((payable, -freight))),
+        proof=Proof(exact, bound, total_of((total, -bound)), total_of((payable, -freight))),
         depot_prices=(),
         customer_prices=(),
         findings=(),
@@ -266,16 +303,10 @@ def openings_of(model: Model, loads: LoadWeek, quantity: Integers) -> tuple[Open
 
 def _wholeness(search: Search, flow: LoadFlow) -> Wholeness:
     model, network = search.model, search.network
-    places = model.quantity_places + model.money_places
-    used = np.flatnonzero(network.quantity)
-    divisible = sum(
-        a * b for a, b in zip(network.quantity[used].tolist(), model.money[used].tolist(), strict=True)
-    )
-    gone = total_of(one.cost for one in gone_shipments(search.week))
     short = int(network.quantity[model.short_rows].sum())
     return Wholeness(
         flow,
-        divisible_cost=total_of((to_decimal(divisible, places), gone)),
+        divisible_cost=search.divisible,
         divisible_short=to_decimal(short, model.quantity_places),
         missed=tuple(
             Missed(
@@ -285,7 +316,7 @@ def _wholeness(search: Search, flow: LoadFlow) -> Wholeness:
                 to_decimal(aim.lower_bound, model.quantity_places),
             )
             for aim in flow.aims
-            if not aim.proved
+            if not aim.proved and not search.best_aims(flow)
         ),
     )
 

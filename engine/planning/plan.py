@@ -132,14 +132,13 @@ class Wholeness:
     divisible_short: Decimal
     missed: tuple[Missed, ...] = ()
 
-    @property
-    def how(self) -> str:
-        """How the plan was found, as a sentence."""
+    def how(self, proved: bool) -> str:
+        """How a plan was found that is proved, or is not, as a sentence."""
         found = self.loads
         if found.how == "network":
             return "Every quantity is whole loads, so it was solved as a network, exactly."
         seconds = f"{found.seconds:.0f} s" if found.seconds >= 1 else "less than a second"
-        if found.ended == "proved":
+        if proved:
             return f"Searched by whole loads until no better plan could exist ({seconds})."
         why = "the time was up" if found.ended == "time limit" else "it was stopped"
         return f"Searched by whole loads until {why} ({seconds}); a better plan may exist."

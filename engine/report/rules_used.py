@@ -177,7 +177,7 @@ def _how_found(plan: Plan) -> str:
         )
     )
     near = " A plan that was issued before decides nothing here but where the search starts."
-    return whole.how + beside + near
+    return whole.how(plan.proof.exact) + beside + near
 
 
 _RULES = (

@@ -10,6 +10,7 @@ import sample_data
 from engine.changes import Add, SetHold
 from engine.exact import total_of
 from engine.figures import Gone
+from engine.planning.differences import difference
 from engine.planning.plan import Plan
 from engine.records import (
     Missing,
@@ -42,6 +43,20 @@ def test_an_issued_plan_is_found_again_as_it_was(records: Records, plan: Plan) -
     assert found.lower_bound == plan.proof.lower_bound
     assert total_of(one.payable for one in found.shipments) == D("59566.18")  # as the sample's page shows it
     assert total_of(found.quantities.values()) == total_of(one.quantity for one in plan.shipments)
+
+
+def test_a_plan_with_whole_loads_is_found_again_as_it_was(records: Records) -> None:
+    week = engine.read_week(sample_data.path(sample_data.LOADS_WEEK)).week
+    plan = engine.plan_week(week, time_limit=0)
+    stored = create_week(records, read(week)).listed
+    issue_plan(records, stored.id, plan, version=0)
+    found = find_plan(records, stored.id)
+    assert found.shipments == plan.shipments
+    assert {one.per for one in found.shipments} == {"unit", "load"}
+    assert all(one.loads and one.load_size for one in found.shipments)
+    for name in ("freight_payable", "total_cost", "opening_cost"):
+        assert getattr(found, name) == getattr(plan, name), name
+    assert difference(found, plan).rows == ()
 
 
 def test_plans_are_numbered_and_never_altered(records: Records, plan: Plan) -> None:
