@@ -13,7 +13,12 @@ Written = Callable[[Decimal], str]
 
 
 def paragraph(bridge: Bridge, money: Written | None = None, quantity: Written | None = None) -> str:
-    """The bridge in plain words.
+    """The bridge in plain words; the arguments are those of `sentences`."""
+    return " ".join(sentences(bridge, money, quantity))
+
+
+def sentences(bridge: Bridge, money: Written | None = None, quantity: Written | None = None) -> list[str]:
+    """The bridge in plain words, sentence by sentence.
 
     money, quantity: how an amount and a quantity are written, unit and currency included
     """
@@ -31,7 +36,7 @@ def paragraph(bridge: Bridge, money: Written | None = None, quantity: Written | 
     said += _service(bridge, pay, much)
     if bridge.averaged:
         said.append("Each reason is its average over all orders in which they could have come.")
-    return " ".join(said)
+    return said
 
 
 def _headline(bridge: Bridge, pay: Written) -> str:

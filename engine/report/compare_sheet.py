@@ -14,9 +14,9 @@ from engine.report.look import DEEP, Style, number_format, places_of
 from engine.report.native_charts import ranked_bars
 from engine.report.sheet import Formula, Row, Sheet, Value
 
-_WIDTHS = (24, 26, 15, 15, 17, 17, 17)
+_WIDTHS = (24, 26, 15, 15, 17, 17, 17, 34)
 _MOST_BARS = 12
-_HEADINGS = ("Depot", "Customer", "Usual", SEND.heading, "Usual, payable", "Payable", "Saving")
+_HEADINGS = ("Depot", "Customer", "Usual", SEND.heading, "Usual, payable", "Payable", "Saving", "Lane")
 """With the heading of a plan's quantities, by which the sheet is never read as rates."""
 
 
@@ -68,9 +68,9 @@ def compare_sheet(plan: Plan, usual: UsualPlan, found: Saving, header: str) -> S
     def finish(sheet: Any) -> None:
         bars = min(len(found.lanes), _MOST_BARS)
         if bars:
-            where = (2, first, first + bars - 1)
+            where = (8, first, first + bars - 1)
             title = f"Saving by lane, {rules.currency} (the {bars} largest)"
-            sheet.add_chart(ranked_bars(sheet, title, where, 7, "#,##0"), "I3")
+            sheet.add_chart(ranked_bars(sheet, title, where, 7, "#,##0"), "J3")
 
     return Sheet("Compare", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
 
@@ -80,8 +80,8 @@ def _lanes(found: Saving, head: int, paid: Style) -> Sequence[Row]:
     right = Style("heading", align="right", wrap=True)
     quantity = number_format(places_of(q for one in found.lanes for q in (one.usual, one.planned)))
     much = Style("plain", quantity, "right")
-    styles = [Style(), Style(), much, much, paid, paid, paid]
-    rows = [Row(_HEADINGS, [Style("heading"), Style("heading"), *[right] * 5], height=30)]
+    styles = [Style(), Style(), much, much, paid, paid, paid, Style("quiet")]
+    rows = [Row(_HEADINGS, [Style("heading"), Style("heading"), *[right] * 5, Style("heading")], height=30)]
     for number, one in enumerate(found.lanes, head + 1):
         saved = Formula(f"E{number}-F{number}", one.saving)
         rows.append(
@@ -94,6 +94,7 @@ def _lanes(found: Saving, head: int, paid: Style) -> Sequence[Row]:
                     one.usual_payable,
                     one.planned_payable,
                     saved,
+                    f"{one.depot} to {one.customer}",
                 ],
                 styles,
             )

@@ -97,11 +97,13 @@ def joined_points(
     return chart
 
 
-def floating_bars(sheet: Any, title: str, names: tuple[int, int, int], parts: tuple[int, int, int]) -> Any:
+def floating_bars(
+    sheet: Any, title: str, names: tuple[int, int, int], parts: tuple[int, int, int], begins: float
+) -> Any:
     """Bars that begin where the one above ends: from one amount to another, step by step.
 
     names: column, first and last row of the names; parts: the columns of what lies below each bar (not
-    drawn), of what rises (filled) and of what falls (hollow)
+    drawn), of what rises (filled) and of what falls (hollow); begins: where the axis does
     """
     at, first, last = names
     chart: Any = BarChart()
@@ -120,6 +122,9 @@ def floating_bars(sheet: Any, title: str, names: tuple[int, int, int], parts: tu
     chart.x_axis.scaling.orientation = "maxMin"
     chart.x_axis.tickLblPos = "low"
     chart.x_axis.delete, chart.y_axis.delete = False, False
+    chart.y_axis.scaling.min = begins
+    chart.y_axis.number_format, chart.y_axis.numFmt.sourceLinked = "#,##0", False
+    chart.y_axis.majorGridlines = None
     chart.gapWidth = 40
     chart.width, chart.height = 20, max(7.0, 0.75 * (last - first + 1) + 2.5)
     return chart
