@@ -110,9 +110,12 @@ def change_from(state: Desk, plan: Plan, point: Point, average: bool = False) ->
 
     def work() -> Bridge:
         figures, events = events_of(state.history, words_of, point.version if here else 0)
-        return bridge(
-            side_of(point), Side(plan.week.rules.week, plan.week, plan, figures, events), average=average
-        )
+        second = Side(plan.week.rules.week, plan.week, plan, figures, events)
+        first = side_of(point)
+        if first.name == second.name:
+            opened_on = point.week.created.astimezone().strftime("%d %b, %H:%M")
+            first = replace(first, name=f"{first.name} as opened on {opened_on}")
+        return bridge(first, second, average=average)
 
     return kept(state, plan, ("bridge", point.key, average), work)
 
