@@ -40,7 +40,7 @@ def main() -> None:
     parser.add_argument(
         "sizes",
         nargs="*",
-        help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order; or screen, or loads",
+        help="DEPOTSxCUSTOMERS, :N for N lanes a customer, ! to re-plan one changed order; screen; loads",
     )
     parser.add_argument("--codes", default=",".join(CODES), help="which codes, separated by commas")
     parser.add_argument("--rates", choices=["road", "random"], default="road", help="how rates are made")
