@@ -110,8 +110,6 @@ def master_of(stage: Stage) -> Master:
     solver = quiet()
     solver.setOptionValue("presolve", "off")
     solver.setOptionValue("solver", "simplex")
-    # new columns leave the basis fit for the primal simplex only
-    solver.setOptionValue("simplex_strategy", 4)
     model = highspy.HighsLp()
     model.num_row_, model.num_col_ = row, 0
     model.row_lower_, model.row_upper_ = lower, upper
@@ -259,7 +257,9 @@ def settle(
         everybody = np.arange(stage.problem.customers, dtype=np.int64)
         add_patterns(master, patterns_of(stage, everybody, answers))
     share = TOWARDS_BEST
-    for _ in range(ROUNDS):
+    for turn in range(ROUNDS):
+        # limits that have moved leave the basis fit for the dual simplex, new columns for the primal one
+        master.solver.setOptionValue("simplex_strategy", 1 if turn == 0 else 4)
         solved = _solve(master)
         if solved is None:
             return Bounded(rounded_up(stage, best), np.zeros(0), np.zeros(0), best_prices, False)

@@ -147,7 +147,7 @@ def search(
                 break
             else:
                 time.sleep(0.005)
-            if by_cost and hunt.steps > 1:
+            if by_cost and hunt.steps > 1 and told.solver != value():
                 _anneal(hunt, time.monotonic() - begun)
             _beside_step(hunt)
             told.bound = max(told.bound, hunt.tree.bound(value()))

@@ -15,10 +15,16 @@ import numpy as np
 
 from engine.exact import Integers
 from engine.loads.arrays import NEVER
-from engine.loads.master import Bounded, Master, settle
+from engine.loads.master import SETTLED, Bounded, Master, settle
 from engine.loads.prices import Floats, Prices, answers_for, bound_at, in_integers, priced_by, regrets
 from engine.loads.problem import Flags
 from engine.loads.stage import Node, Stage, rounded_up, rows_of, whole
+
+ROUGHLY = 1e-5
+"""Prices of a part need not settle better than this part of the cost,"""
+
+NARROW = 1e-4
+"""unless its bound is nearer to the best plan than this."""
 
 EVEN = 1e-6
 """Shares of a mixture nearer to 0 or 1 than this count as that."""
@@ -74,7 +80,8 @@ def step(tree: Tree, best: int, should_stop: Callable[[], bool], tell: Callable[
     if old >= best:
         tree.leave_out(best)
         return Step(None, node)
-    found = settle(tree.master, node, best, should_stop, prices, tell)
+    loose = SETTLED if prices is None or best - old < NARROW * abs(best) else ROUGHLY
+    found = settle(tree.master, node, best, should_stop, prices, tell, loose)
     if found.bound is None or found.bound >= best:
         tree.leave_out(best)
         return Step(None, node)
