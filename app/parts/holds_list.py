@@ -17,7 +17,10 @@ def holds_list(state: Desk, plan: Plan) -> None:
     if not holds:
         st.caption("Nothing is held." if state.only_reads else "Nothing is held. Type a quantity to hold it.")
         return
-    if len(holds) > MOST_PRICED:
+    if plan.whole is not None:
+        st.caption("With whole loads a hold has no price of its own: lift it, and the price is shown before.")
+        priced = tuple(PricedHold(key, hold, None, None) for key, hold in holds.items())
+    elif len(holds) > MOST_PRICED:
         st.caption(f"{counted(len(holds), 'hold')}: too many to price one by one.")
         priced = tuple(PricedHold(key, hold, None, None) for key, hold in holds.items())
     else:

@@ -2,6 +2,7 @@
 
 import streamlit as st
 
+from app.parts.price_bounds import between
 from app.parts.variant_kept import keep_as_variant
 from app.parts.words import counted, money, number, plain
 from app.session import Desk
@@ -73,7 +74,8 @@ def _headline(state: Desk, found: Outcome) -> str:
     if by.charges:
         word = "more" if by.charges > 0 else "less"
         said.append(f"Charges {money(abs(by.charges), rules.currency, mark)} {word}.")
-    return " ".join(said)
+    said.append(between(found, rules.currency, mark))
+    return " ".join(one for one in said if one)
 
 
 def _moves(state: Desk, by: Difference) -> None:

@@ -7,6 +7,7 @@ the solver said: a plan that does not is not handed out.
 from collections.abc import Callable
 from dataclasses import dataclass, replace
 from decimal import Decimal
+from functools import cached_property
 from threading import Event
 
 import numpy as np
@@ -17,6 +18,7 @@ from engine.findings import Finding, Severity, by_gravity
 from engine.loads import LoadFlow, LoadProblem, NoPlan, Progress, least_cost_loads
 from engine.money import minor_places, round_half_up
 from engine.network import Flow
+from engine.network.closure import Closure
 from engine.planning.accounts import about_the_plan, gone_shipments, short_of, unsent_of
 from engine.planning.load_week import LoadWeek, load_week
 from engine.planning.model import Model
@@ -71,6 +73,11 @@ class Search:
     divisible: Decimal
     aims: tuple[int, ...]
 
+    @cached_property
+    def closure(self) -> Closure:
+        """The chains of exchanges in the network plan."""
+        return unit_prices(self.model, self.network).closure
+
     def bound_of(self, flow: LoadFlow) -> Decimal:
         """What any plan as good in the aims as this flow costs at least.
 
@@ -106,12 +113,16 @@ def plan_loads(
             improved(_improving(search, progress))
 
     earlier = None if start is None or start.whole is None else start.whole.loads
-    if earlier is not None and earlier.problem.rows != search.loads.problem.rows:
+    if earlier is not None and _size(earlier.problem) != _size(search.loads.problem):
         earlier = None
     flow = least_cost_loads(
         search.loads.problem, earlier, tell if improved else None, should_stop, time_limit
     )
     return plan_of(search, flow)
+
+
+def _size(problem: LoadProblem) -> tuple[int, int, int]:
+    return problem.depots, problem.customers, problem.rows
 
 
 def search_of(week: Week, model: Model, network: Flow, found: tuple[Finding, ...]) -> Search:
@@ -202,7 +213,6 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
     bound = search.bound_of(flow)
     exact = bound == total if search.best_aims(flow) else flow.proved
     payable = total_of(one.payable for one in shipments)
-    prices = unit_prices(model, search.network)
     remarks = (*search.found, *about_the_plan(week, model, short, unsent))
     plan = Plan(
         week=week,
@@ -221,7 +231,7 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
         findings=(),
         model=model,
         flow=search.network,
-        closure=prices.closure,
+        closure=search.closure,
         quantity=quantity,
         openings=openings,
         opening_cost=opening_cost,
