@@ -16,7 +16,8 @@ def issue_panel(state: Desk, plan: Plan) -> None:
     last = state.issued
     changed = True
     if last is None:
-        st.caption("No plan of this week was issued yet. Later plans stay nearest to the one issued last.")
+        later = "" if plan.whole else " Later plans stay nearest to the one issued last."
+        st.caption("No plan of this week was issued yet." + later)
     else:
         when = last.issued.astimezone().strftime("%d %b, %H:%M")
         by = f" by {plain(last.who)}" if last.who else ""

@@ -110,6 +110,11 @@ def _proof_in_words(plan: Plan) -> str:
             f"{canonical(plan.total_cost)} "
             f"{currency}, exactly (freight before rounding, and charges). Sheet Proof adds it up again."
         )
+    if plan.whole is not None:
+        return (
+            f"No plan with whole loads costs less than {canonical(plan.proof.lower_bound)} {currency}, which "
+            f"is proved; this one costs at most {canonical(plan.proof.gap)} {currency} more than it must."
+        )
     return (
         f"Not proved to the last digit: no plan costs less than {canonical(plan.proof.lower_bound)} "
         f"{currency}; "

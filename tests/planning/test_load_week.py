@@ -5,7 +5,11 @@ from types import MappingProxyType
 
 from hypothesis import HealthCheck, given, settings
 
-from engine.figures import Haulier
+import engine
+import sample_data
+from engine.changes import Alter
+from engine.figures import Customer, Depot, Haulier, Order, RateRow, Rules
+from engine.planning.differences import outcome
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable, plan_week
 from engine.week import Week
@@ -51,3 +55,27 @@ def test_the_search_agrees_with_the_exact_core(week: Week) -> None:
     assert whole.total_cost == network.total_cost
     assert whole.proof.lower_bound <= whole.total_cost
     assert whole.whole.divisible_cost == network.total_cost
+
+
+def test_a_price_that_is_not_proved_says_between_what_it_lies() -> None:
+    """With both plans cut short, the least costs differ by something between the bounds."""
+    week = engine.read_week(sample_data.path(sample_data.LOADS_WEEK)).week
+    plan = plan_week(week, time_limit=0)
+    found = outcome(plan, Alter("customer", "Alder", "ordered", D(300)), time_limit=0)
+    assert found.plan is not None
+    assert found.bounds is not None
+    assert found.bounds.at_least == found.plan.proof.lower_bound - plan.total_cost
+    assert found.bounds.at_most == found.plan.total_cost - plan.proof.lower_bound
+    assert found.bounds.at_least <= found.plan.total_cost - plan.total_cost <= found.bounds.at_most
+
+
+def test_a_price_that_is_proved_is_one_figure() -> None:
+    week = Week.of(
+        (Depot("Quarry", D(200)),),
+        (Customer("Elm", (Order(D(62)),)),),
+        (RateRow("Quarry", "Elm", D(240), per="load"),),
+        Rules(load_size=D(25)),
+    )
+    found = outcome(plan_week(week), Alter("customer", "Elm", "ordered", D(76)))
+    assert found.difference is not None
+    assert (found.bounds, found.difference.freight_payable) == (None, 240)
