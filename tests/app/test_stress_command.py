@@ -109,12 +109,16 @@ def test_figures_that_cannot_be_used_are_2(tmp_path: Path) -> None:
 
 
 def test_the_first_ctrl_c_asks_for_a_stop_and_the_second_ends() -> None:
-    with _stopping() as stop:
-        assert not stop.is_set()
-        signal.raise_signal(signal.SIGINT)
-        assert stop.is_set()
-        with pytest.raises(KeyboardInterrupt):
+    before = signal.signal(signal.SIGINT, signal.default_int_handler)  # a run in the background has none
+    try:
+        with _stopping() as stop:
+            assert not stop.is_set()
             signal.raise_signal(signal.SIGINT)
+            assert stop.is_set()
+            with pytest.raises(KeyboardInterrupt):
+                signal.raise_signal(signal.SIGINT)
+    finally:
+        signal.signal(signal.SIGINT, before)
 
 
 def test_a_stopped_run_keeps_what_is_done_and_answers_130(
