@@ -7,7 +7,7 @@ import streamlit as st
 from app.parts.change_words import words_of
 from app.parts.compare_asked import kept, variants_of
 from app.parts.reasons_table import Cell, Heading, reasons_table
-from app.parts.words import counted, money, plain
+from app.parts.words import counted, money, plain, quantity
 from app.session import Desk
 from engine.compare.variants import Measured, Measures, Variant, measured, side_by_side
 from engine.exact import total_of
@@ -98,7 +98,11 @@ def _one(state: Desk, plan: Plan, one: Measured) -> None:
         return
     word = "dearer" if by.freight_payable > 0 else "cheaper"
     cost = money(abs(by.freight_payable), rules.currency, state.decimal_mark)
-    st.markdown(f"Freight **{cost} {word}**; {counted(len(by.rows), 'rate row')} carry another quantity.")
+    said = f"Freight **{cost} {word}**"
+    if by.short:
+        much = quantity(abs(by.short), rules.unit, state.decimal_mark)
+        said += f", with **{plain(much)} {'more' if by.short > 0 else 'less'} short**"
+    st.markdown(f"{said}; another quantity on {counted(len(by.rows), 'rate row')}.")
     headings = [
         Heading("Depot"),
         Heading("Customer"),
