@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from engine.exact import Integers
+from engine.exact import Integers, TooLarge
 from engine.loads.arrays import NEVER, Answers, Priced, Room, Rows
 from engine.loads.cost import loads_on, sent_by, short_of
 from engine.loads.linear import lines_behind, solve_lines
@@ -81,7 +81,7 @@ def behind(problem: LoadProblem, quantity: Integers) -> Integers | None:
         return None
     try:
         return solve_lines(problem, lines)
-    except Contradiction:
+    except (Contradiction, TooLarge):
         return None
 
 

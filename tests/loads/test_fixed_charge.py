@@ -162,3 +162,22 @@ def test_the_check_refuses(figures: dict[str, list[int]], quantity: list[int], s
 def test_loads_are_counted_per_row() -> None:
     week = LoadProblem.of(supply=[99], demand=[99], start=[0, 3], depot=[0, 0, 0], load_size=[24, 24, 0])
     assert loads_on(week, np.array([24, 25, 70])).tolist() == [1, 2, 1]
+
+
+def test_costs_too_large_for_weights_are_still_solved() -> None:
+    """Rates so large that the aims do not fit one network solve: the search does without it."""
+    rate = 10**15
+    week = LoadProblem.of(
+        supply=[9, 9],
+        must_move=[0, 4],
+        demand=[4, 4, 4],
+        rank=[0, 1, 2],
+        start=[0, 2, 4, 6],
+        depot=[0, 1] * 3,
+        per_unit=[rate, 2 * rate] * 3,
+        charge_per_use=[rate, 0] * 3,
+    )
+    plan = least_cost_loads(week, time_limit=20)
+    assert (plan.short == 0).all()
+    assert plan.cost == (8 + 2 + 8) * rate
+    assert plan.proved
