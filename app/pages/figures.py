@@ -128,7 +128,7 @@ if state.message:
     state.message = None
 if state.week.is_empty:
     welcome(state)
-    st.subheader("Your own week", anchor=False)
+    st.header("Your own week", anchor=False)
     opening(state)
 else:
     with st.expander("Open other figures"):

@@ -50,7 +50,7 @@ else:
         name = safe_file_name(plan.week.rules.week)
         left, right = st.columns([2, 3], gap="large")
         with left:
-            st.subheader("Files", anchor=False)
+            st.header("Files", anchor=False)
             st.download_button(
                 "Plan as a workbook", written(engine.write_workbook, plan), f"plan_{name}.xlsx", WORKBOOK,
                 type="primary", on_click="ignore", width="stretch",
@@ -67,7 +67,7 @@ else:
             )  # fmt: skip
             issue_panel(state, plan)
         with right:
-            st.subheader("Notes that go with it", anchor=False)
+            st.header("Notes that go with it", anchor=False)
             for title, pairs in notes_of(plan):
                 st.markdown(f"**{plain(title)}**")
                 for label, words in pairs:

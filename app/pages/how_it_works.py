@@ -33,7 +33,7 @@ def lanes(quantities: dict[tuple[str, str], int]) -> pd.DataFrame:
 
 left, right = st.columns(2, gap="large")
 with left:
-    st.subheader("1. The figures", anchor=False)
+    st.header("1. The figures", anchor=False)
     st.markdown(
         "Two depots, three customers. **Weir** has 70 t to send, **Lock** 50 t. **Ash** ordered 40 t, "
         "**Elm** 30 t, **Oak** 45 t. A haulier charges for each lane, in EUR per t:"
@@ -44,7 +44,7 @@ with left:
         "priorities) is a column that you fill in or leave out. A blank cell is never taken for a zero."
     )
 
-    st.subheader("2. Why not the cheapest lane first?", anchor=False)
+    st.header("2. Why not the cheapest lane first?", anchor=False)
     st.markdown(
         "By hand one takes the cheapest lane, fills it, and goes on with the next: Lock to Elm, Weir to Ash, "
         f"Weir to Oak. Then Weir is empty, and the last 15 t for Oak come from Lock at 14. In all "
@@ -58,7 +58,7 @@ with left:
     sent = {(one.key.depot, one.key.customer): int(one.quantity) for one in plan.shipments}
     st.table(lanes(sent))
 
-    st.subheader("3. How one can be sure", anchor=False)
+    st.header("3. How one can be sure", anchor=False)
     st.markdown(
         "Every plan is checked twice before you see it. One check adds everything up again from your "
         "figures. The other needs no trust in how the plan was found: it puts a price on a tonne at each "
@@ -69,7 +69,7 @@ with left:
         "your own spreadsheet do it again."
     )
 with right:
-    st.subheader("4. What one more tonne costs", anchor=False)
+    st.header("4. What one more tonne costs", anchor=False)
     st.markdown(
         f"Oak's rate from Weir is 10, and yet one more tonne for Oak costs "
         f"**{number(example.one_more_for_oak, mark)} EUR**: Weir has nothing left, so it gives up a tonne "
@@ -79,7 +79,7 @@ with right:
         "quote must be before a lane pays."
     )
 
-    st.subheader("5. Which aim comes first", anchor=False)
+    st.header("5. Which aim comes first", anchor=False)
     st.markdown(
         "1. What has gone, what you hold and what limits say.\n"
         "2. The most delivered: priority A before B before C.\n"
@@ -90,7 +90,7 @@ with right:
         "*May decline* is served only where that is cheaper than its charge."
     )
 
-    st.subheader("6. Living with the week", anchor=False)
+    st.header("6. Living with the week", anchor=False)
     st.markdown(
         "- **Type a quantity** on *Plan* to hold it. The price of the hold is shown before it is made, "
         "and whom it moves; *Holds* shows what each one costs today.\n"
@@ -101,7 +101,7 @@ with right:
         "when and why on *Weeks*."
     )
 
-    st.subheader("7. What it does not do", anchor=False)
+    st.header("7. What it does not do", anchor=False)
     st.markdown(
         "The plan allocates quantities. It does not check axle or gross weights, drivers' hours, dangerous "
         "goods, temperature, site access or customs. Local codes and licensed practice decide those."

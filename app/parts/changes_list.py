@@ -41,7 +41,7 @@ def changes_list(state: Desk) -> None:
             name = f"{state.week.rules.week}, as before change {number}"
             show(state, restored(state.kept.week_id, int(number) - 1, name))
             st.rerun()
-    st.subheader("Against the figures as uploaded")
+    st.header("Against the figures as uploaded")
     _compared(state)
 
 

@@ -33,7 +33,7 @@ def summary_view(state: Desk, plan: Plan) -> None:
     with since:
         _since(state, plan, change, no_change)
     if change is not None:
-        st.subheader(f"What changed from {plain(change.first)}, and what that costs", anchor=False)
+        st.header(f"What changed from {plain(change.first)}, and what that costs", anchor=False)
         bridge_shown(state, change, "summary")
     compared_file(state, plan, usual, change)
 

@@ -82,7 +82,7 @@ def _cells(one: Measures, base: Measures) -> list[Cell]:
 
 def _one(state: Desk, plan: Plan, one: Measured) -> None:
     """What a variant changes, where it leads, and what can be done with it."""
-    st.subheader(plain(one.variant.name), anchor=False)
+    st.header(plain(one.variant.name), anchor=False)
     lines = [f"- {plain(words_of(change))}" for change in one.variant.changes[:SHOWN]]
     if len(one.variant.changes) > SHOWN:
         lines.append(f"- and {len(one.variant.changes) - SHOWN} more")

@@ -16,7 +16,7 @@ PLURALS = {Severity.STOPS: "stop the plan", Severity.CHECK: "to check", Severity
 
 def findings_panel(findings: Sequence[Finding], key: str) -> None:
     """The findings, or a word that there are none."""
-    st.subheader("Findings", anchor=False)
+    st.header("Findings", anchor=False)
     if not findings:
         st.caption("Nothing to remark on these figures.")
         return

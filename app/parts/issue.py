@@ -12,7 +12,7 @@ from engine.planning.plan import Plan
 
 def issue_panel(state: Desk, plan: Plan) -> None:
     """The plan issued last, what the plan on the desk does otherwise and whom to ring; issue it anew."""
-    st.subheader("Issue", anchor=False)
+    st.header("Issue", anchor=False)
     last = state.issued
     changed = True
     if last is None:

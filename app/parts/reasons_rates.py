@@ -69,7 +69,7 @@ def _near(state: Desk, plan: Plan) -> None:
         lane = found[picked or 0]
         if picked is None:
             st.caption("The nearest of them; pick another on the left.")
-        st.subheader(plain(f"{lane.interval.key.depot} to {lane.interval.key.customer}"), anchor=False)
+        st.header(plain(f"{lane.interval.key.depot} to {lane.interval.key.customer}"), anchor=False)
         st.caption("If it were used at today's rate:")
         change = more_on(plan, lane.interval.key, lane.carries)
         told = asked(plan, ("near chain", lane.interval.key), lambda: chain(plan, change))

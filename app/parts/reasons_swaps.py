@@ -58,7 +58,7 @@ def swaps_view(state: Desk, plan: Plan) -> None:
             st.info("Pick a lane on the left: whom the swap moves is told here.")
             return
         one = found[picked]
-        st.subheader(plain(f"{one.key.depot} to {one.key.customer}"), anchor=False)
+        st.header(plain(f"{one.key.depot} to {one.key.customer}"), anchor=False)
         change = more_on(plan, one.key, one.quantity)
         told = asked(plan, ("swap", one.key, one.quantity), lambda: chain(plan, change))
         chain_panel(plan, told, state.decimal_mark, f"swap-chain-{state.generation}")

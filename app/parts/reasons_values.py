@@ -81,7 +81,7 @@ def _row(plan: Plan, what: str, one: UnitValue, with_short: bool) -> list[Cell]:
 
 
 def _picked(state: Desk, plan: Plan, what: str, one: UnitValue) -> None:
-    st.subheader(plain(one.name), anchor=False)
+    st.header(plain(one.name), anchor=False)
     with st.container(horizontal=True, vertical_alignment="bottom"):
         side = st.segmented_control(
             "Side", list(SIDES), default="more", required=True, format_func=SIDES.__getitem__,

@@ -63,7 +63,7 @@ def why_view(state: Desk, plan: Plan) -> None:
         elif one.chain is None:
             st.info("No more can go on this lane: its limit, a hold or a closure stands.")
         else:
-            st.subheader(plain(f"{one.key.depot} to {customer}"), anchor=False)
+            st.header(plain(f"{one.key.depot} to {customer}"), anchor=False)
             chain_panel(plan, one.chain, state.decimal_mark, f"why-chain-{state.generation}")
 
 

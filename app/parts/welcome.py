@@ -33,7 +33,7 @@ def welcome(state: Desk) -> None:
     """Three steps, and one click to the plan of the sample week."""
     for column, (heading, text) in zip(st.columns(3, gap="medium"), STEPS, strict=True):
         with column.container(border=True, height="stretch"):
-            st.markdown(f"##### {heading}\n\n{text}")
+            st.markdown(f"**{heading}**\n\n{text}")
     with st.container(horizontal=True, vertical_alignment="center"):
         if st.button("See the plan of the sample week", type="primary"):
             open_sample(state)

@@ -35,7 +35,7 @@ def test_no_page_breaks_a_grave_rule(chromium: Browser, desk: str, scheme: str) 
         broken += [
             f"{name}: {one['id']}, {one['help']}: {one['nodes'][0]['html'][:200]}"
             for one in found["violations"]
-            if one["impact"] in GRAVE
+            if one["impact"] in GRAVE or one["id"] == "heading-order"
         ]
         assert page.evaluate("document.documentElement.scrollWidth") <= 1280, name
     page.close()

@@ -2,9 +2,11 @@
 
 import os
 import signal
+from collections.abc import Iterator
 from decimal import Decimal
 from typing import Any
 
+import dask
 import pytest
 from distributed import Client, LocalCluster
 
@@ -17,6 +19,16 @@ from engine.planning.planner import plan_week
 from tests.speed_reasons import dense_week
 
 
+@pytest.fixture
+def patience() -> Iterator[None]:
+    """On a busy machine a process may take its time to start and to answer."""
+    with dask.config.set(
+        {"distributed.comm.timeouts.connect": "120s", "distributed.comm.timeouts.tcp": "120s"}
+    ):
+        yield
+
+
+@pytest.mark.usefixtures("patience")
 def test_no_case_is_lost_or_counted_twice_when_a_worker_is_killed() -> None:
     plan = plan_week(dense_week(4, 20))
     ground = ground_of(plan)
