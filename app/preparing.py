@@ -17,7 +17,7 @@ def begin() -> None:
 
 
 def _prepare() -> None:
-    from engine.network import prepare
+    from engine.loads import prepare
     from engine.reasons.prepare import prepare as prepare_reasons
 
     try:

@@ -1,6 +1,7 @@
 """What has gone: entered as it left, at the rate valid on its day; no later plan moves or reprices it."""
 
 from datetime import date
+from decimal import Decimal
 
 import pandas as pd
 import streamlit as st
@@ -11,7 +12,7 @@ from engine.changes import Add, Remove, Together
 from engine.columns import SEND
 from engine.figures import Gone
 from engine.intake.fields import read_field
-from engine.planning.gone import cost_of, hauliers_of, rate_on, unused_name
+from engine.planning.gone import cost_of, hauliers_of, paid_per_unit, unused_name
 from engine.planning.plan import Plan
 
 
@@ -79,15 +80,17 @@ def _form(state: Desk, plan: Plan) -> None:
         st.caption("No rate is quoted on this lane: give one on Figures first.")
         return
     on = day if isinstance(day, date) else None
-    rate = rate_on(week, str(depot), str(customer), haulier, on)
-    if rate is None:
+    amount, finding = read_field(SEND, text, state.style)
+    rate = paid_per_unit(week, str(depot), str(customer), haulier, on, amount or Decimal(0))
+    if rate is None and amount:
         st.caption("No rate was valid on this lane that day: give one on Figures first.")
         return
-    st.caption(f"Rate with surcharge: {number(rate, state.decimal_mark)} {plain(plan.week.rules.currency)}")
+    if rate is not None:
+        said = f"{number(rate, state.decimal_mark)} {plain(plan.week.rules.currency)}"
+        st.caption(f"Paid per unit, surcharge and whole loads included: {said}")
     if not st.button("Record as gone", key="gone-add"):
         return
-    amount, finding = read_field(SEND, text, state.style)
-    if amount is None:
+    if amount is None or rate is None:
         said = f"{finding.message} {finding.mend}" if finding else "Type the quantity that left."
         st.error(plain(said))
         return

@@ -10,7 +10,7 @@ import numpy as np
 from engine.exact import to_decimal, total_of
 from engine.money import minor_places, round_half_up
 from engine.planning.accounts import gone_shipments
-from engine.planning.load_plan import openings_of, shipments_of
+from engine.planning.load_plan import opened_by_gone, openings_of, shipments_of
 from engine.planning.load_week import load_week
 from engine.planning.model import NO_RATE, Integers, Model
 from engine.planning.plan import Shipment, Short, Unsent
@@ -102,7 +102,7 @@ def _going(week: Week, model: Model, sent: Integers) -> tuple[Sequence[Shipment]
         return _shipments(week, model, sent), Decimal(0)
     loads = load_week(week, model)
     quantity = sent[loads.rows]
-    openings = openings_of(model, loads, quantity)
+    openings = (*opened_by_gone(week), *openings_of(model, loads, quantity))
     return shipments_of(week, model, loads, quantity), total_of(one.charge for one in openings)
 
 

@@ -10,6 +10,8 @@ import numpy as np
 from engine.exact import canonical, places_needed, to_decimal, to_integer
 from engine.figures import Gone, RateKey, RateRow
 from engine.findings import Finding, Severity
+from engine.load_sizes import loads_of
+from engine.money import round_half_up
 from engine.rates import NO_CODE, Codes, Flags, RateTable
 from engine.week import Week, describe
 
@@ -51,24 +53,62 @@ def rate_on(week: Week, depot: str, customer: str, haulier: str | None, day: dat
 
     Of several rows the one that became valid last counts; without a day, the latest of all.
     """
-    rows = [row for row in _rows(week, depot, customer, haulier) if row.per == "unit"]
+    row = _valid_row([row for row in _rows(week, depot, customer, haulier) if row.per == "unit"], day)
+    return None if row is None else _with_surcharge(week, row)
+
+
+def _valid_row(rows: list[RateRow], day: date | None) -> RateRow | None:
+    """The row that became valid last, by a day or of all."""
     valid = [row for row in rows if day is None or row.valid_from is None or row.valid_from <= day]
-    if not valid:
-        return None
-    row = max(valid, key=lambda row: row.valid_from or date.min)
+    return max(valid, key=lambda row: row.valid_from or date.min) if valid else None
+
+
+def _with_surcharge(week: Week, row: RateRow) -> Decimal:
     percent = row.surcharge if row.surcharge is not None else week.rules.fuel_surcharge or Decimal(0)
     places, percent_places = places_needed(row.rate), places_needed(percent)
     factor = 100 * 10**percent_places + to_integer(percent, percent_places)
     return to_decimal(to_integer(row.rate, places) * factor, places + percent_places + 2)
 
 
+def paid_per_unit(
+    week: Week, depot: str, customer: str, haulier: str | None, day: date | None, quantity: Decimal
+) -> Decimal | None:
+    """What is payable per unit for a quantity that left: in whole loads, by trip minimum, a charge due once.
+
+    Per unit exactly as quoted where the rate is. Else what the loads cost over the quantity, to so many
+    places that the amount payable is the same to the cent. The charge per use is in what leaves first.
+    """
+    row = _valid_row(_rows(week, depot, customer, haulier), day)
+    if row is None or not quantity:
+        return None if row is None else rate_on(week, depot, customer, haulier, day)
+    first = (depot, customer, haulier) not in left(week).row
+    once = (row.charge_per_use or Decimal(0)) if first else Decimal(0)
+    trip = row.trip_minimum or Decimal(0)
+    if row.per == "unit" and not trip and not once:
+        return rate_on(week, depot, customer, haulier, day)
+    rate = _with_surcharge(week, row)
+    theirs = week.hauliers.get(haulier or "")
+    size = row.load_size or (theirs.load_size if theirs else None) or week.rules.load_size
+    loads = loads_of(quantity, size) or 1
+    if row.per == "load":
+        cost = loads * max(rate, trip)
+    elif trip and size:
+        cost = (loads - 1) * max(rate * size, trip) + max(rate * (quantity - (loads - 1) * size), trip)
+    else:
+        cost = max(rate * quantity, trip)
+    return round_half_up((cost + once) / quantity, PAID_PLACES)
+
+
+PAID_PLACES = 10
+
+
 def hauliers_of(week: Week, depot: str, customer: str) -> list[str | None]:
-    """The hauliers that quote a rate per unit on a lane, in sheet order."""
+    """The hauliers that quote a rate on a lane, in sheet order."""
     flat = week.rates.flat
     rows = np.flatnonzero(
         _named(flat.depot_names, flat.depot, depot) & _named(flat.customer_names, flat.customer, customer)
     )
-    return list(dict.fromkeys(flat.haulier_of(int(row)) for row in rows if not flat.per_load[row]))
+    return list(dict.fromkeys(flat.haulier_of(int(row)) for row in rows))
 
 
 def unused_name(week: Week) -> str:

@@ -20,6 +20,7 @@ from engine.money import minor_places, round_half_up
 from engine.network import Flow
 from engine.network.closure import Closure
 from engine.planning.accounts import about_the_plan, gone_shipments, short_of, unsent_of
+from engine.planning.gone import left
 from engine.planning.load_week import LoadWeek, load_week
 from engine.planning.model import Model
 from engine.planning.plan import Missed, Opening, Plan, Proof, Shipment, Wholeness
@@ -85,7 +86,8 @@ class Search:
         the network plan does, nothing can serve them better, and the network plan's cost is a bound too.
         """
         proved = _whole_cost(self, flow.lower_bound)
-        return max(proved, self.divisible) if self.best_aims(flow) else proved
+        opened = total_of(one.charge for one in opened_by_gone(self.week))
+        return max(proved, total_of((self.divisible, opened))) if self.best_aims(flow) else proved
 
     def best_aims(self, flow: LoadFlow) -> bool:
         """Whether a flow serves the aims as well as if loads were divisible."""
@@ -189,7 +191,18 @@ def _whole_cost(search: Search, cost: int) -> Decimal:
         a * b for a, b in zip(loads.fixed_short.tolist(), loads.problem.short_cost.tolist(), strict=True)
     )
     gone = total_of(one.cost for one in gone_shipments(search.week))
-    return total_of((to_decimal(cost + short, loads.quantity_places + loads.money_places), gone))
+    opened = total_of(one.charge for one in opened_by_gone(search.week))
+    return total_of((to_decimal(cost + short, loads.quantity_places + loads.money_places), gone, opened))
+
+
+def opened_by_gone(week: Week) -> tuple[Opening, ...]:
+    """The depots that are open already, since something has left them, and what that costs."""
+    gone = left(week).depot
+    return tuple(
+        Opening(depot.name, depot.opening_charge)
+        for depot in week.depots.values()
+        if depot.opening_charge and depot.name in gone
+    )
 
 
 def plan_of(search: Search, flow: LoadFlow) -> Plan:
@@ -203,7 +216,7 @@ def plan_of(search: Search, flow: LoadFlow) -> Plan:
     gone = gone_shipments(week)
     shipments = (*gone, *shipments_of(week, model, search.loads, flow.quantity))
     short, unsent = short_of(model, quantity), unsent_of(model, quantity)
-    openings = openings_of(model, search.loads, flow.quantity)
+    openings = (*opened_by_gone(week), *openings_of(model, search.loads, flow.quantity))
     freight = total_of(one.cost for one in shipments)
     short_cost, unsent_cost = total_of(s.cost for s in short), total_of(u.cost for u in unsent)
     opening_cost = total_of(one.charge for one in openings)

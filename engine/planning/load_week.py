@@ -1,6 +1,6 @@
 """A week with whole vehicles in integers: what `engine.loads` solves.
 
-Gone goods are facts: they count against orders, stock and limits, and what they cost, charges due once
+Gone goods are facts: they count against orders, stock and limits, and what they cost, a charge per use
 included, is what their own rate says. So a row or a depot that something has gone on is open already.
 """
 

@@ -1,6 +1,7 @@
 """Week to plan: check the figures, solve the aims in order exactly, and say what came out."""
 
 from collections.abc import Callable
+from functools import cache
 
 import numpy as np
 
@@ -9,7 +10,7 @@ from engine.findings import Finding, Severity, by_gravity, stops
 from engine.intake.check import check_week
 from engine.intake.earlier import Quantities
 from engine.load_sizes import load_sizes, loads_of
-from engine.loads import NoPlan
+from engine.loads import NoPlan, prepare
 from engine.money import minor_places, round_half_up
 from engine.network import Flow, least_cost
 from engine.planning.accounts import about_the_plan, gone_shipments, short_of, unsent_of
@@ -80,6 +81,8 @@ def plan_week(
     tell("Solving")
     if has_whole_loads(week):
         search = search_of(week, model, least_cost(model.problem), found)
+        tell("Preparing the search")
+        _prepared()
         tell("Searching by whole loads")
         start = near if isinstance(near, Plan) else None
         try:
@@ -89,6 +92,12 @@ def plan_week(
     flow = nearest_flow(week, model, least_cost(model.problem), near)
     tell("Writing the plan down")
     return _plan(week, model, flow, found)
+
+
+@cache
+def _prepared() -> None:
+    """The kernels compiled before the time of a search runs: some seconds the very first time."""
+    prepare()
 
 
 def _plan(week: Week, model: Model, flow: Flow, found: tuple[Finding, ...]) -> Plan:

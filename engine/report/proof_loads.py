@@ -11,7 +11,6 @@ from decimal import Decimal
 from engine.exact import total_of
 from engine.figures import ANY_SINGLE_DEPOT
 from engine.planning.fills import vehicles
-from engine.planning.gone import left
 from engine.planning.plan import Plan
 from engine.report.figures_sheets import all_fit
 from engine.report.lines import Line, quantity_format
@@ -224,7 +223,6 @@ def _depots(plan: Plan, layout: Layout) -> Iterator[Row]:
     styles = _styles(plan, layout, "n_qqqqnnntnt")
     kept = {one.depot: one.quantity for one in plan.unsent}
     opened = {one.depot: one.charge for one in plan.openings}
-    gone = left(week).depot
     days = on_rules("days")
     fleet = {one.depot: (one.most, one.gone) for one in vehicles(plan)}
     for i, (name, depot) in enumerate(week.depots.items()):
@@ -242,8 +240,6 @@ def _depots(plan: Plan, layout: Layout) -> Iterator[Row]:
         unsent = kept.get(name, Decimal(0))
         over = total_of((depot.available, -sent, -unsent)) if sent <= depot.available else Decimal(0)
         numbers = layout.of("O", s)
-        still = f'SUMIFS({layout.of("E", s)},{numbers},A{r},{layout.of("H", s)},"<>gone")'
-        is_open = any(not one.gone for one in theirs) and name not in gone
         values: list[Value] = [
             i + 1,
             name,
@@ -255,7 +251,7 @@ def _depots(plan: Plan, layout: Layout) -> Iterator[Row]:
             may,
             0 if may is None else Formula(f"MAX(0,G{r}-H{r})", 0),
             link(layout.linked, f"N({on_depots('opening_charge', i)})", float(depot.opening_charge or 0)),
-            0 if name in gone else Formula(f"IF({still}>0,1,0)", int(is_open)),
+            Formula(f"IF(D{r}>0,1,0)", int(bool(sent))),
             Formula(f"J{r}*K{r}", float(opened.get(name, Decimal(0)))),
         ]
         yield Row(values, styles)

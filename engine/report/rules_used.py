@@ -271,8 +271,9 @@ _RULES = (
         "Gone and whole loads",
         lambda plan: plan.whole is not None and bool(plan.week.gone),
         lambda _: (
-            "What has gone is paid as its own rate says, charges due once included: its rate row and its "
-            "depot count as paid for. Its loads count against Loads a day."
+            "What has gone is paid as its own rate says, a charge per use included, which is not due again. "
+            "A depot that something has left is open: its opening charge stands. Its loads count against "
+            "Loads a day."
         ),
     ),
     Rule("How it was found", lambda plan: plan.whole is not None, _how_found),

@@ -27,7 +27,7 @@ def week(ordered: int = 62) -> Week:
 
 @pytest.fixture(scope="module")
 def plan() -> engine.Plan:
-    return engine.plan_week(week())
+    return engine.plan_week(week(), time_limit=None)
 
 
 class Held:

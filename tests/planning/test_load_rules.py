@@ -6,13 +6,21 @@ import pytest
 
 from engine.changes import Alter, SetHold
 from engine.figures import Customer, Depot, Gone, Haulier, Hold, Order, RateKey, RateRow, Rules
+from engine.money import round_half_up
+from engine.planning import planner
+from engine.planning.gone import paid_per_unit
 from engine.planning.load_plan import cost_of_wholeness
 from engine.planning.plan import Plan, Shipment
-from engine.planning.planner import NotPlannable, plan_week
+from engine.planning.planner import NotPlannable
 from engine.reasons import Withheld, chain, curve, options, pairs, rate_intervals, unquoted, values, why
 from engine.week import Week
 
 D = Decimal
+
+
+def plan_week(week: Week) -> Plan:
+    """The plan once it is proved, however long the first search on a machine takes to be compiled."""
+    return planner.plan_week(week, time_limit=None)
 
 
 def customer(name: str, ordered: str, **figures: object) -> Customer:
@@ -208,6 +216,44 @@ def test_what_has_gone_is_paid_as_it_says_and_counts_against_loads() -> None:
     still = {(s.depot, s.customer): s.quantity for s in plan.shipments if not s.gone}
     assert still == {("Quarry", "Elm"): 30, ("Harbour", "Elm"): 50}
     assert plan.total_cost == 60 + 30 + 100
+
+
+def test_a_depot_that_something_has_left_is_open() -> None:
+    """10 t have left Quarry at 3: its 50 for opening stand. The other 10 t come from Harbour,
+    where they cost 1 instead of 2: 30 + 50 + 10, and no plan could cost less.
+    """
+    week = Week.of(
+        (Depot("Quarry", D(90), opening_charge=D(50)), Depot("Harbour", D(90))),
+        (customer("Elm", "20"),),
+        (RateRow("Quarry", "Elm", D(2)), RateRow("Harbour", "Elm", D(1))),
+        gone=(Gone("Load 1", "Quarry", "Elm", D(10), D(3)),),
+    )
+    plan = plan_week(week)
+    assert [(o.depot, o.charge) for o in plan.openings] == [("Quarry", 50)]
+    assert (plan.total_cost, plan.freight_payable, plan.proof.gap) == (90, 40, 0)
+
+
+@pytest.mark.parametrize(
+    ("row", "quantity", "paid"),
+    [
+        (RateRow("Quarry", "Elm", D(10)), "30", D(11)),  # 10 and 10 %
+        (RateRow("Quarry", "Elm", D(200), per="load"), "30", D(440) / 30),  # two loads at 220
+        (RateRow("Quarry", "Elm", D(10), trip_minimum=D(200)), "30", D(475) / 30),  # 275, and 200 for 5 t
+        (RateRow("Quarry", "Elm", D(10), charge_per_use=D(60)), "30", D(13)),  # 330 and 60
+    ],
+)
+def test_what_leaves_is_paid_by_its_whole_loads(row: RateRow, quantity: str, paid: Decimal) -> None:
+    """Loads of 25 t, 10 % surcharge; the amount is right to the cent though the quotient may not end."""
+    week = Week.of(
+        (Depot("Quarry", D(90)),),
+        (customer("Elm", "90"),),
+        (row,),
+        Rules(load_size=D(25), fuel_surcharge=D(10)),
+    )
+    found = paid_per_unit(week, "Quarry", "Elm", None, None, D(quantity))
+    assert found is not None
+    assert abs(found - paid) < D("1e-9")
+    assert round_half_up(found * D(quantity), 2) == round_half_up(paid * D(quantity), 2)
 
 
 def test_a_hold_stands_whatever_it_costs() -> None:
