@@ -12,7 +12,7 @@ from engine.exact import Integers
 from engine.loads.arrays import NEVER, Answers, Corners, Priced, Rows, Sums
 from engine.loads.compiled import part
 
-MOST_SUMS = 1024
+MOST_SUMS = 128
 """More sums than this are not followed at one step; what is left out is accounted for in the bound."""
 
 MOST_CORNERS = 1024

@@ -7,6 +7,7 @@ floating-point numbers included: they are rounded to integers first, and the bou
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NamedTuple
 
 import numpy as np
@@ -147,10 +148,12 @@ def _at_depots(stage: Stage, node: Node, prices: tuple[Integers, Integers, Integ
     return worth
 
 
-def regrets(stage: Stage, rows: Rows, priced: Priced, answers: Answers) -> Integers:
+def regrets(
+    stage: Stage, rows: Rows, priced: Priced, answers: Answers, should_stop: Callable[[], bool]
+) -> Integers:
     """(rows,) by how much the bound rises, at least, where a row must be used; in scaled units.
 
-    answers: the customers' cheapest ways at the same prices
+    answers: the customers' cheapest ways at the same prices; rows not reached before a stop get 0
     """
     problem = stage.problem
     counts = np.diff(problem.start)
@@ -158,6 +161,9 @@ def regrets(stage: Stage, rows: Rows, priced: Priced, answers: Answers) -> Integ
     for place in range(int(counts.max(initial=0))):
         which = np.flatnonzero(counts > place)
         row = problem.start[which] + place
+        if should_stop():
+            regret[row] = 0
+            continue
         forced = rows.forced.copy()
         forced[row] = 1
         again = Answers(*(part.copy() for part in answers))

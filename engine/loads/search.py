@@ -26,6 +26,9 @@ FEW_ROWS = 700
 SHARE = 4.0
 """Time for rearranging, per time for the bound; less and less where it finds nothing."""
 
+LONG_ENOUGH = 2.0
+"""Seconds given to finding out which rows can be closed."""
+
 MORE = 3
 """So many times as many the next time, if all were not in."""
 
@@ -230,7 +233,10 @@ def _beside_step(hunt: Hunt) -> None:
     if hunt.prices is None or not (again or hunt.fixed is None or value() < hunt.fixed):
         return
     limit = value()
-    reached = with_regrets(hunt.tree, limit, hunt.prices)
+    until = time.monotonic() + LONG_ENOUGH
+    reached = with_regrets(
+        hunt.tree, limit, hunt.prices, lambda: hunt.should_stop() or time.monotonic() > until
+    )
     if reached is None:
         return
     close_rows(hunt.tree, reached >= limit, limit)

@@ -167,7 +167,7 @@ def _most_divided(stage: Stage, row: Integers, amount: Integers, share: Floats) 
     return place, float(mean[place])
 
 
-def with_regrets(tree: Tree, best: int, prices: Prices) -> Integers | None:
+def with_regrets(tree: Tree, best: int, prices: Prices, should_stop: Callable[[], bool]) -> Integers | None:
     """(rows,) how much using each row raises the bound of all plans at these prices, in units of cost.
 
     A row whose use raises it to `best` is of no use any more, see `close_rows`. None if nothing is left.
@@ -180,7 +180,7 @@ def with_regrets(tree: Tree, best: int, prices: Prices) -> Integers | None:
     if bound is None:
         return None
     priced = priced_by(stage, node, in_integers(stage, prices))
-    found = regrets(stage, rows, priced, answers)
+    found = regrets(stage, rows, priced, answers, should_stop)
     reached = np.array(
         [best if regret >= NEVER else rounded_up(stage, bound + regret) for regret in found.tolist()],
         dtype=np.int64,
