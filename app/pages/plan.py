@@ -36,7 +36,7 @@ else:
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)
-        proposal(state)
+        put_up = st.container()  # filled last: what is typed into the grid below is shown in the same run
         if state.only_reads:
             st.caption("🔒 This link is for reading only: the grids show the plan and take no edits.")
         search_panel(state, plan)
@@ -71,3 +71,5 @@ else:
         with chart:
             plan_map(state, plan, view)
         findings_panel(plan.findings, key="plan")
+        with put_up:
+            proposal(state)

@@ -11,6 +11,7 @@ from engine.findings import Severity
 from engine.planning.differences import Difference, Outcome
 
 SHOWN = 6
+WHY = "proposal-why"
 
 
 def proposal(state: Desk) -> None:
@@ -27,22 +28,24 @@ def proposal(state: Desk) -> None:
             st.markdown(f":red[■] {plain(finding.message)} *{plain(finding.mend)}*")
         possible = state.proposed.plan is not None
         with st.container(horizontal=True, vertical_alignment="bottom"):
-            why = ""
             if possible and _asks_why(state.proposal):
-                why = st.text_input(
-                    "Reason", key="proposal-why", placeholder="promised by telephone, …", width=320
-                )
-            makes = "Make the change" if possible else "Make it all the same"
-            if st.button(
-                makes, type="primary" if possible else "secondary", key="accept", disabled=_bare(state)
-            ):
-                state.accept(why.strip())
-                st.rerun()
+                st.text_input("Reason", key=WHY, placeholder="promised by telephone, …", width=320)
+            # as callbacks, so that the page is drawn once and not twice
+            st.button(
+                "Make the change" if possible else "Make it all the same",
+                type="primary" if possible else "secondary",
+                key="accept",
+                disabled=_bare(state),
+                on_click=_accept,
+                args=(state,),
+            )
             if possible:
                 keep_as_variant(state)
-            if st.button("Leave it", key="leave"):
-                state.take_back()
-                st.rerun()
+            st.button("Leave it", key="leave", on_click=state.take_back)
+
+
+def _accept(state: Desk) -> None:
+    state.accept(str(st.session_state.get(WHY, "")).strip())
 
 
 def _bare(state: Desk) -> bool:

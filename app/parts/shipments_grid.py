@@ -144,7 +144,7 @@ def _limit(state: Desk, lane: Lane, field: str) -> str:
 
 
 def _take_edits(state: Desk, shown: list[Lane], base: pd.DataFrame, edited: pd.DataFrame) -> None:
-    """Put up what differs from the plan as one change."""
+    """Put up what differs from the plan as one change; the page draws what is put up after the grid."""
     changes: list[Change] = []
     refused: list[Finding] = []
     differing = (base.fillna("") != edited.fillna("")).any(axis=1)
@@ -159,7 +159,8 @@ def _take_edits(state: Desk, shown: list[Lane], base: pd.DataFrame, edited: pd.D
     change = changes[0] if len(changes) == 1 else Together(tuple(changes))
     if change != state.proposal:
         state.propose(change)
-        st.rerun()
+        if state.proposal is None:  # made at once, so that all above is of yesterday
+            st.rerun()
 
 
 def _texts(edited: pd.DataFrame, position: int) -> dict[str, str]:
