@@ -53,8 +53,10 @@ def test_at_twice_the_size_the_plan_needs_no_scrolling_sideways(chromium: Browse
 
 def test_the_plan_is_reached_and_read_by_keyboard(chromium: Browser, desk: str) -> None:
     page = opened(chromium, desk, "light", 1280, 900)
+    page.get_by_text("Matrix", exact=True).wait_for(timeout=60_000)
+    page.locator("[data-testid=stApp][data-test-script-state=notRunning]").wait_for(timeout=60_000)
     seen: list[str] = []
-    for _ in range(40):
+    for _ in range(60):
         page.keyboard.press("Tab")
         seen.append(
             page.evaluate(
