@@ -95,7 +95,7 @@ def _watch(state: Desk) -> None:
                 money(amount, rules.currency, mark) for amount in (best.cost, best.lower_bound, best.gap)
             )
             short = f", {number(best.short, mark)} {plain(rules.unit)} short" if best.short else ""
-            text += f" · best so far {cost}{short} · at least {bound} · gap {gap}"
+            text += f" · freight and charges: best so far {cost}{short} · at least {bound} · gap {gap}"
         st.progress(done, text=text)
     with st.container(horizontal=True):
         if st.button("Stop and keep the best", key="search-stop", disabled=job.is_done or state.only_reads):
