@@ -102,4 +102,7 @@ def main() -> None:
         st.rerun()
 
 
-main()
+if (
+    __name__ == "__main__"
+):  # as Streamlit runs it; a process spawned from the desk loads it under another name
+    main()

@@ -1,9 +1,32 @@
-"""No test ever touches the records of whoever runs it."""
+"""No test ever touches the records of whoever runs it; all that need a browser share one."""
 
 import os
+import shutil
 from collections.abc import Iterator
 
 import pytest
+from playwright.sync_api import Browser, sync_playwright
+
+CHROMIUM = shutil.which("chromium") or "/usr/bin/chromium"
+ARGUMENTS = [
+    "--no-sandbox",
+    "--use-gl=angle",
+    "--use-angle=swiftshader",
+    "--enable-unsafe-swiftshader",
+    "--no-first-run",
+    "--disable-background-networking",
+    "--disable-component-update",
+    "--disable-sync",
+]
+
+
+@pytest.fixture(scope="session")
+def chromium() -> Iterator[Browser]:
+    """One for the whole run: Playwright allows no second while one is open."""
+    with sync_playwright() as playwright:
+        browser = playwright.chromium.launch(executable_path=CHROMIUM, args=ARGUMENTS)
+        yield browser
+        browser.close()
 
 
 @pytest.fixture(scope="session", autouse=True)

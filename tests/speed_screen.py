@@ -25,8 +25,9 @@ from playwright.sync_api import Browser, Page, sync_playwright
 import engine
 import sample_data
 from engine.records import create_week, open_records
-from tests.browser.conftest import ARGUMENTS, CHROMIUM, environment, free_port, wait_until_open
+from tests.browser.conftest import environment, free_port, wait_until_open
 from tests.browser.grids import column_of, pick, text_of
+from tests.conftest import ARGUMENTS, CHROMIUM
 from tests.records.making import read, wide_week
 
 NO_GL = ["--disable-gpu", "--disable-3d-apis"]

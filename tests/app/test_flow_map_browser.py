@@ -2,7 +2,6 @@
 
 import os
 import re
-import shutil
 import socket
 import subprocess
 import sys
@@ -14,7 +13,6 @@ from urllib.request import urlopen
 
 import pytest
 from PIL import Image
-from playwright.sync_api import sync_playwright
 
 from app.parts.map_colours import DARK, LIGHT, rgba
 from app.parts.map_drawing import drawing
@@ -22,7 +20,6 @@ from tests.app.flow_map_page import figures
 
 ROOT = Path(__file__).resolve().parents[2]
 PAGE = Path(__file__).with_name("flow_map_page.py")
-SOFTWARE_WEBGL = ["--no-sandbox", "--use-gl=angle", "--use-angle=swiftshader", "--enable-unsafe-swiftshader"]
 CANVAS = "[data-testid=stDeckGlJsonChart] canvas"
 PATIENCE = 90
 
@@ -66,21 +63,13 @@ def _until(holds):
         time.sleep(0.3)
 
 
-@pytest.fixture(scope="module")
-def browser():
-    with sync_playwright() as playwright:
-        started = playwright.chromium.launch(executable_path=shutil.which("chromium"), args=SOFTWARE_WEBGL)
-        yield started
-        started.close()
-
-
 @pytest.fixture
-def opened(browser, address):
+def opened(chromium, address):
     """Opens a page with a case on it; answers it and the hosts that were asked for anything."""
     contexts = []
 
     def open_page(case="", scheme="light"):
-        context = browser.new_context(viewport={"width": 1280, "height": 1100}, color_scheme=scheme)
+        context = chromium.new_context(viewport={"width": 1280, "height": 1100}, color_scheme=scheme)
         contexts.append(context)
         page = context.new_page()
         page.set_default_timeout(PATIENCE * 1000)

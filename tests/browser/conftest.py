@@ -1,7 +1,6 @@
 """A real desk on a free port, and a real browser that records every request."""
 
 import os
-import shutil
 import socket
 import subprocess
 import sys
@@ -12,19 +11,7 @@ from collections.abc import Iterator
 from pathlib import Path
 
 import pytest
-from playwright.sync_api import Browser, Page, Request, sync_playwright
-
-CHROMIUM = shutil.which("chromium") or "/usr/bin/chromium"
-ARGUMENTS = [
-    "--no-sandbox",
-    "--use-gl=angle",
-    "--use-angle=swiftshader",
-    "--enable-unsafe-swiftshader",
-    "--no-first-run",
-    "--disable-background-networking",
-    "--disable-component-update",
-    "--disable-sync",
-]
+from playwright.sync_api import Browser, Page, Request
 
 
 def free_port() -> int:
@@ -67,14 +54,6 @@ def environment() -> dict[str, str]:
     """The environment, with this checkout importable from anywhere."""
     root = str(Path(__file__).parents[2])
     return {**os.environ, "PYTHONPATH": os.pathsep.join([root, os.environ.get("PYTHONPATH", "")])}
-
-
-@pytest.fixture(scope="session")
-def chromium() -> Iterator[Browser]:
-    with sync_playwright() as playwright:
-        browser = playwright.chromium.launch(executable_path=CHROMIUM, args=ARGUMENTS)
-        yield browser
-        browser.close()
 
 
 @pytest.fixture

@@ -81,7 +81,7 @@ def test_quantities_are_found_again_when_lanes_come_and_go() -> None:
     assert new.tolist() == [10, 30, 0, 40]
 
 
-@pytest.mark.parametrize("depots", [20, 300])
+@pytest.mark.parametrize("depots", [12, 300])
 def test_one_changed_order_on_a_larger_week(depots: int) -> None:
     generator = np.random.default_rng(3)
     demand = generator.integers(1, 50, 1000)
@@ -92,5 +92,5 @@ def test_one_changed_order_on_a_larger_week(depots: int) -> None:
     supply[2] += 5
     problem = replace(before.problem, supply=supply, demand=demand)
     again = least_cost(problem, before)
-    assert again.method == ("exchange" if depots == 20 else "simplex")
+    assert again.method == ("exchange" if depots == 12 else "simplex")
     assert again.cost == least_cost(problem).cost

@@ -7,11 +7,11 @@ from pathlib import Path
 
 import pytest
 
-from tests.browser.conftest import chromium, environment, free_port, wait_until_open
+from tests.browser.conftest import environment, free_port, wait_until_open
 from tests.browser.test_two_sessions import visit
 from tests.safe.provider import CLIENT, SECRET, Provider
 
-__all__ = ["chromium", "visit"]
+__all__ = ["visit"]
 
 Start = Callable[..., str]
 
