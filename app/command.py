@@ -1,6 +1,5 @@
 """The command line: `hithe` opens the desk; its commands plan, check and hand out workbooks without one."""
 
-import json
 import socket
 import sys
 from collections.abc import Iterable
@@ -11,6 +10,7 @@ import click
 
 import engine
 from app.compare_command import compare
+from app.json_out import write_json
 from app.search_line import end_line, progress_line, stopped_by_keyboard
 from app.stress_command import stress
 from engine.exact import canonical
@@ -220,12 +220,7 @@ def plan(
         engine.write_workbook(made, out)
         click.echo(f"Wrote {out}", err=True)
     if as_json is not None:
-        text = json.dumps(engine.plan_as_json(made, full=detail == "full"), ensure_ascii=False, indent=1)
-        if as_json == "-":
-            click.echo(text)
-        else:
-            Path(as_json).write_text(text + "\n", encoding="utf-8")
-            click.echo(f"Wrote {as_json}", err=True)
+        write_json(engine.plan_as_json(made, full=detail == "full"), as_json)
     else:
         click.echo(_summary(made))
     _tell(made.findings)

@@ -1,12 +1,12 @@
 """`hithe compare`: why does one week, or one plan, cost more than another?"""
 
-import json
 import sys
 from pathlib import Path
 
 import click
 
 import engine
+from app.json_out import write_json
 from engine.compare.bridge import Bridge, Side, bridge
 from engine.compare.bridge_words import paragraph
 from engine.compare.effects import STATED_ORDER
@@ -67,12 +67,7 @@ def compare(
     if out is not None:
         _write(ctx, two, found, usual, out)
     if as_json is not None:
-        text = json.dumps(bridge_as_json(found), ensure_ascii=False, indent=1)
-        if as_json == "-":
-            click.echo(text)
-        else:
-            Path(as_json).write_text(text + "\n", encoding="utf-8")
-            click.echo(f"Wrote {as_json}", err=True)
+        write_json(bridge_as_json(found), as_json)
     else:
         click.echo("\n".join(_lines(found)))
     ctx.exit(SHORT if one.plan.short or two.plan.short else 0)

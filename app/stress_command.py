@@ -1,6 +1,5 @@
 """`hithe stress`: what each loss would do to a week, and how its cost is distributed if figures stray."""
 
-import json
 import signal
 import sys
 import threading
@@ -14,6 +13,7 @@ from typing import Any
 import click
 
 import engine
+from app.json_out import write_json
 from engine.compare.frontier import Emissions, Frontier, NoTradeOff, frontier
 from engine.compare.stress import Stressed, short_often, spreading, stressed
 from engine.compare.stress_cases import Case, all_by, depots_lost, drawn, hauliers_lost, lanes_lost
@@ -166,12 +166,7 @@ def stress(
         engine.write_workbook(made, out, more=sheets)
         click.echo(f"Wrote {out}", err=True)
     if as_json is not None:
-        text = json.dumps(stress_as_json(found), ensure_ascii=False, indent=1)
-        if as_json == "-":
-            click.echo(text)
-        else:
-            Path(as_json).write_text(text + "\n", encoding="utf-8")
-            click.echo(f"Wrote {as_json}", err=True)
+        write_json(stress_as_json(found), as_json)
     else:
         click.echo("\n".join([*_lines(found), *([] if traded is None else _trade_off(traded))]))
     _tell(reading.findings)

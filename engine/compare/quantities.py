@@ -10,6 +10,7 @@ import numpy as np
 from engine.exact import to_decimal, total_of
 from engine.money import minor_places, round_half_up
 from engine.planning.accounts import gone_shipments
+from engine.planning.differences import Delivered
 from engine.planning.load_plan import opened_by_gone, openings_of, shipments_of
 from engine.planning.load_week import load_week
 from engine.planning.model import NO_RATE, Integers, Model
@@ -18,25 +19,13 @@ from engine.planning.spread import has_whole_loads
 from engine.week import Week
 
 
-class Priced(Protocol):
-    """What has quantities and costs: a plan, an issued one, a usual one."""
+class Priced(Delivered, Protocol):
+    """What has quantities and all its costs: a plan, an issued one, a usual one."""
 
-    @property
-    def shipments(self) -> tuple[Shipment, ...]: ...
-    @property
-    def short(self) -> tuple[Short, ...]: ...
     @property
     def unsent(self) -> tuple[Unsent, ...]: ...
     @property
     def freight_cost(self) -> Decimal: ...
-    @property
-    def freight_payable(self) -> Decimal: ...
-    @property
-    def short_cost(self) -> Decimal: ...
-    @property
-    def unsent_cost(self) -> Decimal: ...
-    @property
-    def opening_cost(self) -> Decimal: ...
 
 
 @dataclass(frozen=True, eq=False)

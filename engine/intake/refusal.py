@@ -170,6 +170,7 @@ def unpacked(data: bytes, name: str, limits: Limits) -> dict[str, bytes]:
                     raise too_large(name, "The workbook is far larger inside than its size lets expect.")
                 parts[member.filename] = part
             return parts
+    # zipfile says NotImplementedError of a way of packing that it does not know
     except (zipfile.BadZipFile, zlib.error, NotImplementedError, EOFError, OSError, ValueError) as error:
         if isinstance(error, Unreadable):
             raise

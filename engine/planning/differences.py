@@ -54,7 +54,7 @@ class Difference:
         return tuple(dict.fromkeys(name for name in names if name))
 
 
-class Costed(Protocol):
+class Delivered(Protocol):
     """A plan as it stands, or as it was issued."""
 
     @property
@@ -71,7 +71,7 @@ class Costed(Protocol):
     def opening_cost(self) -> Decimal: ...
 
 
-def difference(before: Costed, after: Costed) -> Difference:
+def difference(before: Delivered, after: Delivered) -> Difference:
     """What the second plan does otherwise than the first."""
     first, second = (_by_row(plan) for plan in (before, after))
     rows = [
@@ -145,12 +145,12 @@ def _bounds(before: Plan, after: Plan) -> Bounds | None:
     )
 
 
-def _charges(plan: Costed) -> Decimal:
+def _charges(plan: Delivered) -> Decimal:
     """Charges for short, unsent and opened."""
     return total_of((plan.short_cost, plan.unsent_cost, plan.opening_cost))
 
 
-def _by_row(plan: Costed) -> dict[RateKey, Decimal]:
+def _by_row(plan: Delivered) -> dict[RateKey, Decimal]:
     """Quantities by rate row; what has gone on a row counts into it."""
     sums: dict[RateKey, list[Decimal]] = {}
     for shipment in plan.shipments:
