@@ -17,7 +17,6 @@ import subprocess
 import sys
 import time
 from collections.abc import Callable
-from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -234,7 +233,7 @@ def by_engine(figures: Figures, size: str) -> Run:
     supply[1] += 40
 
     def again() -> tuple[int, str]:
-        flow = least_cost(replace(before.problem, supply=supply, demand=demand), before)
+        flow = least_cost(before.problem.with_quantities(supply, demand), before)
         return flow.cost, flow.method + ", again"
 
     return again

@@ -91,6 +91,12 @@ def classify(rows: Rows) -> None:
 
 
 @part
+def depot_of(rows: Rows, row: int, j: int) -> int:
+    """The depot of a row of customer j, known without reading it where the rows are complete."""
+    return int(row - rows.start[j] if rows.kind[j] == COMPLETE else rows.depot[row])
+
+
+@part
 def assign(rows: Rows, state: State, chosen: Integers, known: int, gap: Integers) -> int:
     """Gives the `chosen` customers their cheapest rows, adds that to `excess` and notes their gaps.
 
@@ -270,13 +276,50 @@ def gap_limited(rows: Rows, state: State, j: int) -> int:
 
 
 @kernel
+def take_over(rows: Rows, state: State, before: Integers, changed: Integers) -> int:
+    """Fills the flow with that of an earlier problem, and serves the `changed` customers anew at its prices.
+
+    before: (rows,) the earlier flow, which suits `state.price`
+    `excess` comes as what the depots had too much before that, and is brought up to date.
+    Returns the customer whose rows cannot carry what it needs, or -1.
+    """
+    copy_flow(rows, state, before)
+    for j in changed:
+        state.home[j] = SEVERAL
+        for row in range(rows.start[j], rows.start[j + 1]):
+            state.excess[rows.depot[row]] -= before[row]
+    return assign(rows, state, changed, 1, np.empty(len(changed), dtype=np.int64))
+
+
+@part
+def copy_flow(rows: Rows, state: State, before: Integers) -> None:
+    """Fills `flow` and `home`; written so that it runs in vectors."""
+    for j in range(len(rows.demand)):
+        first, last = rows.start[j], rows.start[j + 1]
+        old, new = before[first:last], state.flow[first:last]
+        used, place = 0, 0
+        for n in range(len(old)):
+            carries = old[n] != 0
+            new[n] = old[n]
+            used += carries
+            place |= n if carries else 0
+        home = SEVERAL
+        if used == 1 and not rows.kind[j] & LIMITED:
+            home = first + place
+        state.home[j] = home
+
+
+@kernel
 def price_customers(rows: Rows, state: State, customer_price: Integers) -> None:
     """What one more unit costs each customer at the depot prices, within what its rows allow."""
     start, depot, cost, price, flow = rows.start, rows.depot, rows.cost, state.price, state.flow
     for j in range(len(customer_price)):
         first, last = start[j], start[j + 1]
         cheapest_free, dearest_used = FAR, -FAR
-        if rows.kind[j] == COMPLETE:
+        home = state.home[j]
+        if home >= 0:
+            cheapest_free = cost[home] - price[depot_of(rows, home, j)]
+        elif rows.kind[j] == COMPLETE:
             here = cost[first:last]
             for k in range(len(price)):
                 cheapest_free = min(cheapest_free, here[k] - price[k])

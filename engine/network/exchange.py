@@ -18,6 +18,7 @@ import numpy as np
 from engine.exact import Integers, TooLarge, total
 from engine.network.compiled import kernel, part
 from engine.network.customers import (
+    COMPLETE,
     FAR,
     SEVERAL,
     Rows,
@@ -26,15 +27,17 @@ from engine.network.customers import (
     classify,
     measure,
     price_customers,
+    take_over,
 )
 from engine.network.flow import Contradiction, Cut
-from engine.network.handover import let_in, new_users
+from engine.network.handover import let_in, list_all, new_users
 from engine.network.paths import (
     DONE,
     REACHED,
     RELIST,
     STUCK,
     TOO_FAR,
+    WIDEN,
     Search,
     find_paths,
     level_out,
@@ -51,6 +54,9 @@ STEP = 4
 WIDER = 4
 """Each time the prices move further than expected, so many times more customers enter the search."""
 
+SUITED = 0
+"""In place of `known`: the flow in `state` suits its prices at all customers, and `excess` goes with it."""
+
 UNSERVABLE = 5
 """Outcome: one customer's rows cannot carry what it needs."""
 
@@ -66,36 +72,78 @@ def solve(
     """
     _check_reach(problem)
     rows = _without_lower_limits(problem)
+    state = _state(problem, price)
     if quantity is None:
-        flow = np.zeros(problem.rows, dtype=np.int64)
-    elif problem.at_least is None:
-        flow = quantity.copy()
+        state.flow[:] = 0
     else:
-        flow = np.maximum(quantity - problem.at_least, 0)
+        above = quantity if problem.at_least is None else quantity - problem.at_least
+        np.maximum(above, 0, out=state.flow)
+    outcome, place = run(rows, state, quantity is not None)
+    return _answer(problem, rows, state, outcome, place)
+
+
+def resume(
+    problem: Problem, before: Problem, quantity: Integers, price: Integers
+) -> tuple[Integers, Integers, Integers] | None:
+    """`solve` from a least-cost flow of `before`, which has the same rows and limits and other quantities.
+
+    All customers whose orders are unchanged keep what they have, and nothing is sorted or measured anew.
+
+    quantity, price: of the least-cost flow
+    Returns None where it does not come to an end; raises Contradiction with the cut if there is no flow.
+    """
+    if not _within_reach(problem):
+        return None
+    rows = _without_lower_limits(problem)
+    state = _state(problem, price)
+    state.excess[:] = before.supply - problem.supply
+    above = quantity if problem.at_least is None else quantity - problem.at_least
+    changed = np.flatnonzero(before.demand != problem.demand)
+    if problem.look.every and problem.at_most is None:
+        rows.kind[:] = COMPLETE
+    else:
+        classify(rows)
+    place = take_over(rows, state, above, changed)
+    outcome = UNSERVABLE
+    if place < 0:
+        outcome, place = solve_sample(rows, state, new_search(problem.depots), 1, SUITED)
+    if outcome in (WIDEN, TOO_FAR):
+        return None
+    return _answer(problem, rows, state, outcome, place)
+
+
+def _state(problem: Problem, price: Integers) -> State:
+    """These prices and no flow yet."""
     depots = problem.depots
-    state = State(
-        flow,
+    return State(
+        np.empty(problem.rows, dtype=np.int64),
         price.copy(),
         np.zeros(depots, dtype=np.int64),
         np.full(problem.customers, SEVERAL, dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
         np.empty((depots, depots), dtype=np.int64),
     )
-    outcome, place = run(rows, state, quantity is not None)
+
+
+def _answer(
+    problem: Problem, rows: Rows, state: State, outcome: int, place: int
+) -> tuple[Integers, Integers, Integers]:
+    """Quantities, depot prices and customer prices of a search that has ended."""
     if outcome == TOO_FAR:
         raise TooLarge("Prices grow beyond what can be computed exactly: use a larger currency unit.")
     if outcome == UNSERVABLE:
-        raise Contradiction(cut(problem, np.zeros(depots, dtype=bool), np.arange(problem.customers) == place))
+        nobody = np.zeros(problem.depots, dtype=bool)
+        raise Contradiction(cut(problem, nobody, np.arange(problem.customers) == place))
     if outcome == STUCK:
         raise Contradiction(_cut_of_stuck(problem, rows, state))
     customer_price = np.empty(problem.customers, dtype=np.int64)
     price_customers(rows, state, customer_price)
-    if depots:
+    if problem.depots:
         customer_price += state.price[0]
         state.price[:] -= state.price[0]
     if problem.at_least is not None:
-        flow += problem.at_least
-    return flow, state.price, customer_price
+        state.flow[:] += problem.at_least
+    return state.flow, state.price, customer_price
 
 
 def cut(problem: Problem, depots: np.ndarray, customers: np.ndarray) -> Cut:
@@ -120,7 +168,7 @@ def cut(problem: Problem, depots: np.ndarray, customers: np.ndarray) -> Cut:
 def _cut_of_stuck(problem: Problem, rows: Rows, state: State) -> Cut:
     """Depots that the search reaches have too much, and their customers can take nothing from others."""
     search = new_search(problem.depots)
-    find_paths(state, search)
+    find_paths(rows, state, new_users(rows, state, np.arange(0)), search)
     depots = search.reach < REACHED
     customers = np.zeros(problem.customers, dtype=bool)
     customers[problem.customer[depots[problem.depot] & (state.flow > 0)]] = True
@@ -129,13 +177,19 @@ def _cut_of_stuck(problem: Problem, rows: Rows, state: State) -> Cut:
 
 def _check_reach(problem: Problem) -> None:
     """The longest path, twice the largest cost per depot, must stay below every bound of the search."""
-    largest = problem.dearest
-    bound = 2**57 // (problem.depots + 1)
-    if largest > bound:
+    if not _within_reach(problem):
         raise TooLarge(
-            f"A cost of {largest} is too large for {problem.depots} depots, up to {bound} can be "
-            f"computed with exactly: use a larger currency unit."
+            f"A cost of {problem.dearest} is too large for {problem.depots} depots, up to "
+            f"{_dearest_within_reach(problem)} can be computed with exactly: use a larger currency unit."
         )
+
+
+def _within_reach(problem: Problem) -> bool:
+    return problem.dearest <= _dearest_within_reach(problem)
+
+
+def _dearest_within_reach(problem: Problem) -> int:
+    return int(2**57 // (problem.depots + 1))
 
 
 def _without_lower_limits(problem: Problem) -> Rows:
@@ -200,28 +254,31 @@ def run(rows: Rows, state: State, again: bool) -> tuple[int, int]:
 def solve_sample(rows: Rows, state: State, search: Search, stride: int, known: int) -> tuple[int, int]:
     """Solves every `stride`-th customer, with shares of the supply, from the prices and flow in `state`.
 
-    known: every so many-th customer has flow already
+    known: every so many-th customer has flow already, or SUITED
     """
     depots = len(rows.supply)
     chosen = np.arange(0, len(rows.demand), stride)
-    share_out(rows, chosen, stride, state.excess)
-    gap = np.empty(len(chosen), dtype=np.int64)
-    place = assign(rows, state, chosen, known, gap)
-    if place >= 0:
-        return UNSERVABLE, place
-    wanted = len(chosen) // 16 + 4 * depots
+    gap = np.zeros(len(chosen), dtype=np.int64)
+    wanted = len(chosen)
+    if known != SUITED:
+        wanted = len(chosen) // 16 + 4 * depots
+        share_out(rows, chosen, stride, state.excess)
+        place = assign(rows, state, chosen, known, gap)
+        if place >= 0:
+            return UNSERVABLE, place
     users = new_users(rows, state, chosen)
     inside = np.zeros(len(chosen), dtype=np.uint8)
     clear(state)
     while True:
         slack = slack_for(gap, wanted)
         wanted *= WIDER
-        for n in range(len(chosen)):
-            if gap[n] <= slack and inside[n] == 0:
-                inside[n] = 1
-                let_in(rows, state, users, chosen[n])
+        if known == SUITED:
+            list_all(rows, state, users)
+            search.unknown[:] = 1
+        else:
+            let_in(rows, state, users, chosen, gap, slack, inside)
         outcome = level_out(rows, state, users, search, slack)
-        if outcome in (DONE, STUCK, TOO_FAR):
+        if outcome in (DONE, STUCK, TOO_FAR) or (outcome == WIDEN and known == SUITED):
             return outcome, 0
         if outcome == RELIST:
             users = new_users(rows, state, chosen)

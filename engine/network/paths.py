@@ -22,6 +22,7 @@ from engine.network.handover import (
     offer,
     offer_all,
     remove_user,
+    renew,
     repair,
     row_with_room,
 )
@@ -45,6 +46,7 @@ class Search(NamedTuple):
     giving, taking, place: the rows and customers of the exchanges along the path in hand
     event:  what happened to those rows, see `move`
     base:   prices at the beginning
+    unknown: 1 where what the depot can hand over is worked out only when the search comes by
     """
 
     reach: Integers
@@ -56,6 +58,7 @@ class Search(NamedTuple):
     place: Integers
     event: Integers
     base: Integers
+    unknown: Integers
 
 
 def new_search(depots: int) -> Search:
@@ -74,7 +77,7 @@ def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int
     for k in range(len(base)):
         base[k] = state.price[k]
     while True:
-        targets, limit = find_paths(state, search)
+        targets, limit = find_paths(rows, state, users, search)
         if limit < 0:
             return DONE
         if targets == 0 and slack == FAR:
@@ -104,7 +107,7 @@ def level_out(rows: Rows, state: State, users: Users, search: Search, slack: int
 
 
 @kernel
-def find_paths(state: State, search: Search) -> tuple[int, int]:
+def find_paths(rows: Rows, state: State, users: Users, search: Search) -> tuple[int, int]:
     """Dijkstra from all depots with too much at once (1959), to the nearest of those with too little.
 
     Returns how many of these were reached and the distance of the farthest; a negative distance if no
@@ -138,6 +141,9 @@ def find_paths(state: State, search: Search) -> tuple[int, int]:
             distance = nearest
             if targets == wanting:
                 break
+        if search.unknown[i]:
+            search.unknown[i] = 0
+            renew(rows, state, users, i)
         here = reach[i]
         handover = state.handover[i]
         nearest = 2 * FAR

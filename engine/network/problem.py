@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from copy import copy
 from dataclasses import dataclass, field
 from functools import cached_property
 from typing import Any, NamedTuple
@@ -100,9 +101,26 @@ class Problem:
             supply=np.asarray(supply),
             demand=np.asarray(demand),
             start=np.arange(customers + 1, dtype=np.int64) * depots,
-            depot=np.tile(np.arange(depots, dtype=np.int64), customers),
+            depot=np.broadcast_to(np.arange(depots, dtype=np.int64), (customers, depots)).reshape(-1),
             cost=matrix.T.reshape(-1),
         )
+
+    def with_quantities(self, supply: ArrayLike, demand: ArrayLike) -> Problem:
+        """The same rows with other quantities; what was checked about the rows is not checked again.
+
+        supply: (depots,); demand: (customers,). Raises as the class does.
+        """
+        other = copy(self)
+        for name, given, before in (("supply", supply, self.supply), ("demand", demand, self.demand)):
+            quantities = _whole_numbers(name, np.asarray(given))
+            if len(quantities) != len(before):
+                raise ValueError(
+                    f"{name} has {len(quantities)} entries where there were {len(before)}: give as many."
+                )
+            object.__setattr__(other, name, quantities)
+        other.__dict__.pop("figures", None)
+        _check_quantities(other)
+        return other
 
     @property
     def dearest(self) -> int:

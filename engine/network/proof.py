@@ -64,7 +64,7 @@ def prove(problem: Problem, quantity: Integers, depot_price: Integers, customer_
     sent = np.zeros(problem.depots, dtype=np.int64)
     paid = np.zeros(4, dtype=np.int64)
     bound = np.zeros(4, dtype=np.int64)
-    rule, place = check_rows(figures, answer, sent, paid, bound)
+    rule, place = check_rows(figures, problem.look.every, answer, Sums(sent, paid, bound))
     if rule:
         raise NotProved(_sentence(figures, answer, rule, place))
     if not np.array_equal(sent, problem.supply):
@@ -89,19 +89,35 @@ class Answer(NamedTuple):
 BELOW, ABOVE, DEAR, CHEAP, RECEIVED = 1, 2, 3, 4, 5
 
 
-@kernel
-def check_rows(
-    figures: Figures, answer: Answer, sent: Integers, paid: Integers, bound: Integers
-) -> tuple[int, int]:
-    """One pass over the rows: limits, signs of r, what customers receive, both sides of the cost.
+class Sums(NamedTuple):
+    """What the check adds up.
 
     sent:  (depots,) receives what each depot sends
     paid:  receives the sum of quantity * cost, in the four words of `add_product`
     bound: receives the rows' share of the lower bound, likewise
+    """
+
+    sent: Integers
+    paid: Integers
+    bound: Integers
+
+
+@kernel
+def check_rows(figures: Figures, every: bool, answer: Answer, sums: Sums) -> tuple[int, int]:
+    """One pass over the rows: limits, signs of r, what customers receive, both sides of the cost.
+
+    every: whether each customer has exactly one row from each depot, in the order of the depots
     Returns the first rule that is broken and the row or customer where, or (0, 0).
     """
+    return pass_over(figures, every, answer, sums)
+
+
+@part
+def pass_over(figures: Figures, every: bool, answer: Answer, sums: Sums) -> tuple[int, int]:
+    """`check_rows`; as a part it counts no references while it runs."""
     start, depot, cost = figures.start, figures.depot, figures.cost
     quantity, depot_price = answer.quantity, answer.depot_price
+    sent, paid, bound = sums.sent, sums.paid, sums.bound
     bounded, capped = len(figures.at_least) > 0, len(figures.at_most) > 0
     lower, upper = 0, UNLIMITED
     for j in range(len(figures.demand)):
@@ -109,14 +125,18 @@ def check_rows(
         first, last = start[j], start[j + 1]
         if not bounded:
             rows = slice(first, last)
-            used, last_used, cheap = glance(cost[rows], depot[rows], quantity[rows], depot_price, price)
-            if used + cheap == 0:
+            if every:
+                used, place, cheap = glance(cost[rows], quantity[rows], depot_price, price)
+            else:
+                used, place, cheap = look_up(cost[rows], depot[rows], quantity[rows], depot_price, price)
+            if used == 0 and not cheap:
                 last = first
-            elif used == 1 and cheap == 0:
-                first += last_used
+            elif used == 1 and not cheap:
+                first += place
                 last = first + 1
         for row in range(first, last):
-            i, x = depot[row], quantity[row]
+            i = row - start[j] if every else depot[row]
+            x = quantity[row]
             r = cost[row] - depot_price[i] - price
             if bounded:
                 lower = figures.at_least[row]
@@ -147,24 +167,36 @@ def check_rows(
 
 
 @part
-def glance(
-    cost: Integers, depot: Integers, quantity: Integers, depot_price: Integers, price: int
-) -> tuple[int, int, int]:
-    """How many of a customer's rows carry something, the sum of their places, and how many have r < 0.
+def glance(cost: Integers, quantity: Integers, depot_price: Integers, price: int) -> tuple[int, int, bool]:
+    """How many of a customer's rows carry something, where if it is one, and whether any has r < 0.
 
-    Most customers have one row that carries something: its place is then known, and no other row needs a
-    second look. Written so that it runs in vectors.
+    Most customers have one row that carries something and none with r < 0: no other row needs a second look.
+    For rows of all depots in their order; written so that it runs in vectors.
     """
-    used = places = cheap = 0
+    used, place, least = 0, 0, UNLIMITED
     for n in range(len(cost)):
         carries = quantity[n] != 0
         used += carries
-        places += n * carries
-        cheap += cost[n] - depot_price[depot[n]] < price
-    return used, places, cheap
+        place |= n if carries else 0
+        least = min(least, cost[n] - depot_price[n])
+    return used, place, least < price
 
 
-@kernel
+@part
+def look_up(
+    cost: Integers, depot: Integers, quantity: Integers, depot_price: Integers, price: int
+) -> tuple[int, int, bool]:
+    """`glance` for rows of any depots in any order."""
+    used, place, least = 0, 0, UNLIMITED
+    for n in range(len(cost)):
+        carries = quantity[n] != 0
+        used += carries
+        place |= n if carries else 0
+        least = min(least, cost[n] - depot_price[depot[n]])
+    return used, place, least < price
+
+
+@part
 def add_product(words: Integers, a: int, b: int) -> None:
     """Adds a * b to a number kept in four words of 31 bits, each with room for 2**30 carries.
 

@@ -4,14 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from engine.exact import Integers
+from engine.exact import Integers, TooLarge
 from engine.network import exchange
 from engine.network.flow import Flow, Method
 from engine.network.problem import Problem
 from engine.network.proof import prove
-from engine.network.restart import guess_from
+from engine.network.restart import few_orders_differ, guess_from
 
-Solver = Callable[[Problem, Integers, Integers | None], tuple[Integers, Integers, Integers]]
+Answer = tuple[Integers, Integers, Integers]
+Solver = Callable[[Problem, Integers, Integers | None], Answer]
 
 FEW_DEPOTS, SOME_DEPOTS, MANY_CUSTOMERS = 15, 20, 75_000
 """Up to few depots the exchange is about as fast, with many customers faster by far; up to some depots only
@@ -27,12 +28,25 @@ def least_cost(problem: Problem, start: Flow | None = None) -> Flow:
     Raises Contradiction, with the cut, if no flow keeps all sums and limits; TooLarge if numbers are so
     large that the arithmetic could leave int64.
     """
+    method, answer = _solved(problem, start)
+    proof = prove(problem, *answer)
+    return Flow(problem, *answer, proof, method)
+
+
+def _solved(problem: Problem, start: Flow | None) -> tuple[Method, Answer]:
+    """Quantities, depot prices and customer prices, and how they were found; not yet proved."""
     price, quantity = guess_from(problem, start)
-    method = method_for(problem)
-    solve = exchange.solve if method == "exchange" else _simplex()
-    quantity, depot_price, customer_price = solve(problem, price, quantity)
-    proof = prove(problem, quantity, depot_price, customer_price)
-    return Flow(problem, quantity, depot_price, customer_price, proof, method)
+    if start is not None and quantity is start.quantity and few_orders_differ(problem, start.problem):
+        answer = exchange.resume(problem, start.problem, quantity, price)
+        if answer is not None:
+            return "exchange", answer
+    if method_for(problem) == "exchange":
+        try:
+            return "exchange", exchange.solve(problem, price, quantity)
+        except TooLarge:
+            # its prices are only guarded while they rise; the simplex bounds its own beforehand
+            pass
+    return "simplex", _simplex()(problem, price, quantity)
 
 
 def _simplex() -> Solver:

@@ -81,3 +81,19 @@ def test_a_matrix_lies_depots_down_and_customers_across() -> None:
 def test_no_limit_is_a_limit_too() -> None:
     limited = Problem(**(GOOD | {"at_most": np.full(3, UNLIMITED), "at_least": np.zeros(3, dtype=np.int64)}))
     assert least_cost(limited).cost == least_cost(Problem(**GOOD)).cost
+
+
+def test_the_same_rows_with_other_quantities() -> None:
+    problem = Problem.dense([3, 4], [5, 2], [[1, 2], [3, 4]])
+    other = problem.with_quantities([3, 5], [6, 2])
+    assert other.cost is problem.cost
+    assert other.look is problem.look
+    assert other.figures.demand.tolist() == [6, 2]
+    assert problem.figures.demand.tolist() == [5, 2]
+    for supply, demand, sentence in (
+        ([3, 5], [5, 2], "must be equal"),
+        ([3, 4, 0], [5, 2], "there were 2"),
+        ([-1, 8], [5, 2], "negative"),
+    ):
+        with pytest.raises(ValueError, match=sentence):
+            problem.with_quantities(supply, demand)

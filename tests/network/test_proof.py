@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 
 from engine.exact import TooLarge
 from engine.network import Contradiction, NotProved, Problem, least_cost, prove
-from engine.network.proof import add_product
+from engine.network.proof import add_products
 from tests.network.cases import problems
 
 PROBLEM = Problem(
@@ -67,7 +67,7 @@ def test_one_unit_elsewhere_is_noticed(problem: Problem, place: int, by: int) ->
 def test_sums_of_products_do_not_wrap(pairs: list[tuple[int, int]]) -> None:
     words = np.zeros(4, dtype=np.int64)
     for a, b in pairs:
-        add_product(words, a, b)
+        add_products(words, np.array([a]), np.array([b]))
     value = sum(int(word) << (31 * place) for place, word in enumerate(words))
     assert value == sum(a * b for a, b in pairs)
 
