@@ -1,8 +1,11 @@
 """How many decimal places a currency is paid in, and rounding to them once."""
 
 from decimal import ROUND_HALF_UP, Context, Decimal
+from fractions import Fraction
 
 USUAL_PLACES = 2
+PER_UNIT_PLACES = 4
+"""Decimal places of money by unit of a quantity."""
 
 MINOR_PLACES = {
     "BHD": 3, "BIF": 0, "CLF": 4, "CLP": 0, "DJF": 0, "GNF": 0, "IQD": 3, "ISK": 0, "JOD": 3, "JPY": 0,
@@ -44,6 +47,15 @@ def round_half_up(exact: Decimal, places: int) -> Decimal:
     if not exact.is_finite():
         raise ValueError(f"{exact} is no amount of money: only an ordinary number can be rounded.")
     return exact.quantize(Decimal((0, (1,), -places)), context=_ROUNDING)
+
+
+def per_unit(money: Decimal, quantity: Decimal, places: int = PER_UNIT_PLACES) -> Decimal | None:
+    """Money by unit of a quantity, rounded half up once; None where the quantity is 0."""
+    if not quantity:
+        return None
+    shifted = Fraction(money) / Fraction(quantity) * 10**places
+    whole = (2 * abs(shifted.numerator) + shifted.denominator) // (2 * shifted.denominator)
+    return Decimal(whole if shifted >= 0 else -whole).scaleb(-places, _ROUNDING)
 
 
 def _code(currency: str) -> str:

@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from engine.money import is_known, minor_places, round_half_up
+from engine.money import is_known, minor_places, per_unit, round_half_up
 
 PUBLISHED = json.loads((Path(__file__).parent / "published" / "minor_units.json").read_text())
 
@@ -59,3 +59,17 @@ def test_rounding_agrees_with_fractions(exact: Decimal, places: int) -> None:
 def test_what_is_no_number_is_refused() -> None:
     with pytest.raises(ValueError, match="no amount of money"):
         round_half_up(Decimal("NaN"), 2)
+
+
+@given(
+    st.decimals(-(10**9), 10**9, places=2),
+    st.decimals("0.01", 10**6, places=2),
+    st.integers(0, 6),
+)
+def test_money_by_unit_is_rounded_once_and_not_twice(money: Decimal, quantity: Decimal, places: int) -> None:
+    found = per_unit(money, quantity, places)
+    assert found is not None
+    exact = Fraction(money) / Fraction(quantity)
+    assert abs(Fraction(found)) == Fraction(floor(abs(exact) * 10**places + Fraction(1, 2)), 10**places)
+    assert found * money >= 0
+    assert per_unit(money, Decimal(0), places) is None

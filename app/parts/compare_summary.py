@@ -12,7 +12,7 @@ from engine.compare.mixed import NotComparable
 from engine.compare.service import Saving
 from engine.compare.usual import NoRule, Rule, UsualPlan
 from engine.exact import TooLarge
-from engine.money import round_half_up
+from engine.money import per_unit
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable
 from engine.planning.totals import totals
@@ -42,9 +42,9 @@ def _this_week(state: Desk, plan: Plan) -> None:
     rules, sums, mark = plan.week.rules, totals(plan), state.decimal_mark
     st.metric(f"{_label(rules.week)}: freight payable", money(plan.freight_payable, rules.currency, mark))
     each = ""
-    if sums.delivered:
-        per_unit = round_half_up(plan.freight_payable / sums.delivered, 2)
-        each = f", {number(per_unit, mark, 2)} {plain(rules.currency)} per {plain(rules.unit)}"
+    by_unit = per_unit(plan.freight_payable, sums.delivered, 2)
+    if by_unit is not None:
+        each = f", {number(by_unit, mark, 2)} {plain(rules.currency)} per {plain(rules.unit)}"
     st.caption(f"{number(sums.delivered, mark)} {plain(rules.unit)} delivered{each}.")
     short = (
         f"{number(sums.short, mark)} {plain(rules.unit)} of {number(sums.ordered, mark)} ordered go short."

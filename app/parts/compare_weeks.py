@@ -9,11 +9,9 @@ from app.access import totals
 from app.parts.compare_charts import figures_by_week
 from app.parts.words import money, number, quantity
 from app.session import Desk
-from engine.money import minor_places, round_half_up
+from engine.money import minor_places, per_unit
 from engine.planning.plan import Plan
 from engine.records import WeekTotals
-
-PLACES = 4
 
 
 def weeks_view(state: Desk, plan: Plan) -> None:
@@ -34,7 +32,7 @@ def weeks_view(state: Desk, plan: Plan) -> None:
     with right:
         figures_by_week(
             names,
-            [per_unit(one) for one in found],
+            [_each(one) for one in found],
             f"Freight per unit, {rules.currency} per {rules.unit}",
             mark,
             2,
@@ -43,9 +41,9 @@ def weeks_view(state: Desk, plan: Plan) -> None:
     st.dataframe(_table(found, mark), hide_index=True, key="weeks-over-time")
 
 
-def per_unit(one: WeekTotals) -> Decimal:
+def _each(one: WeekTotals) -> Decimal:
     """Freight payable per unit delivered, 0 where nothing was."""
-    return round_half_up(one.freight_payable / one.delivered, PLACES) if one.delivered else one.delivered
+    return per_unit(one.freight_payable, one.delivered) or Decimal(0)
 
 
 def _table(found: list[WeekTotals], mark: str) -> pd.DataFrame:
@@ -55,7 +53,7 @@ def _table(found: list[WeekTotals], mark: str) -> pd.DataFrame:
                 "Week": one.week.name,
                 "Opened": f"{one.week.created:%d %b %Y}",
                 "Freight payable": money(one.freight_payable, one.week.currency, mark),
-                "Per unit": number(per_unit(one), mark, 2),
+                "Per unit": number(_each(one), mark, 2),
                 "Delivered": quantity(one.delivered, one.week.unit, mark),
                 "Short": quantity(one.short, one.week.unit, mark),
                 "Unsent": quantity(one.unsent, one.week.unit, mark),

@@ -14,12 +14,11 @@ from types import MappingProxyType
 from engine.compare.quantities import Costed, Priced, charges_of, costs_of
 from engine.exact import canonical, total_of
 from engine.figures import Order
-from engine.money import round_half_up
+from engine.money import per_unit
 from engine.planning.plan import Plan, Shipment
 from engine.planning.planner import plan_week
 from engine.week import Week
 
-PER_UNIT_PLACES = 4
 SHOWN = 5
 SECONDS = 10.0
 """How long a plan with whole loads is searched for, where the service has to be made equal."""
@@ -82,7 +81,7 @@ def saving(plan: Plan, other: Priced, seconds: float = SECONDS) -> Saving:
     delivered = total_of(one.quantity for one in other.shipments)
     return Saving(
         freight,
-        _per_unit(freight, delivered),
+        per_unit(freight, delivered),
         not differs,
         against,
         total_of((charges_of(other), -charges_of(against))),
@@ -115,10 +114,6 @@ def lane_savings(usual: Priced, planned: Priced) -> tuple[LaneSaving, ...]:
             sums[place + 2].append(one.payable)
     found = [LaneSaving(*lane, *(total_of(part) for part in sums)) for lane, sums in lanes.items()]
     return tuple(sorted(found, key=lambda one: -abs(one.saving)))
-
-
-def _per_unit(freight: Decimal, delivered: Decimal) -> Decimal | None:
-    return round_half_up(freight / delivered, PER_UNIT_PLACES) if delivered else None
 
 
 def _by(shipments: Iterable[Shipment], what: str) -> dict[str, Decimal]:

@@ -7,10 +7,10 @@ from decimal import Decimal
 from engine.changes import Change, Together
 from engine.compare.distances import km_along
 from engine.compare.quantities import charges_of
-from engine.compare.service import PER_UNIT_PLACES, SECONDS
+from engine.compare.service import SECONDS
 from engine.exact import TooLarge, places_needed, to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity
-from engine.money import round_half_up
+from engine.money import per_unit
 from engine.planning.differences import Difference, difference
 from engine.planning.plan import Plan
 from engine.planning.planner import NotPlannable, plan_week
@@ -65,7 +65,7 @@ def measured(plan: Plan) -> Measures:
     loads = [one.loads for one in plan.shipments if one.loads is not None]
     return Measures(
         plan.freight_payable,
-        round_half_up(plan.freight_payable / delivered, PER_UNIT_PLACES) if delivered else None,
+        per_unit(plan.freight_payable, delivered),
         charges_of(plan),
         delivered,
         total_of(one.quantity for one in plan.short),

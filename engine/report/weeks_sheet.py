@@ -3,7 +3,7 @@
 from collections.abc import Sequence
 from typing import Any
 
-from engine.money import minor_places, round_half_up
+from engine.money import minor_places, per_unit
 from engine.records.totals import WeekTotals
 from engine.report.look import DEEP, Style, number_format, places_of
 from engine.report.native_charts import line_over_rows
@@ -35,7 +35,6 @@ def weeks_sheet(found: Sequence[WeekTotals], header: str) -> Sheet:
         Row(_HEADINGS, [Style("heading"), *[right] * 7], height=30),
     ]
     for one in found:
-        each = round_half_up(one.freight_payable / one.delivered, 4) if one.delivered else None
         day = one.week.created.date()
         rows.append(
             Row(
@@ -43,7 +42,7 @@ def weeks_sheet(found: Sequence[WeekTotals], header: str) -> Sheet:
                     one.week.name,
                     day,
                     one.freight_payable,
-                    each,
+                    per_unit(one.freight_payable, one.delivered),
                     one.ordered,
                     one.delivered,
                     one.short,
