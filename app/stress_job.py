@@ -1,13 +1,14 @@
-"""A stress run beside the page: a thread works, the page looks now and then, Stop keeps what is done.
+"""Stress runs outside any browser session: a thread works, sessions look, Stop keeps what is done.
 
-The kernels let go of the interpreter while they work, so the desk stays quick meanwhile.
+A run goes by its week and the week's version, so that a browser that is refreshed, or a second tab, finds
+it again with its progress and its results. The kernels let go of the interpreter while they work, so the
+desk stays quick meanwhile.
 """
 
 import threading
-from collections.abc import Sequence
+from collections.abc import Hashable, Sequence
 from dataclasses import dataclass, field
-
-import streamlit as st
+from datetime import datetime
 
 from engine.compare.stress import Stressed, stressed
 from engine.compare.stress_cases import Case
@@ -15,15 +16,21 @@ from engine.compare.stress_ground import NeedsWholeLoads
 from engine.exact import TooLarge
 from engine.planning.plan import Plan
 
-KEY = "stress-job"
+MOST_KEPT = 12
+"""So many runs that have ended are remembered."""
 
 
 @dataclass(eq=False)
 class Job:
-    """One run for one plan. `found` is there once it has ended, or `fault` with the reason why not."""
+    """One run for one plan. `found` is there once it has ended, or `fault` with the reason why not.
 
+    version: how many changes the week had; begun: when, by this machine's clock
+    """
+
+    version: int
     plan: Plan
     cases: Sequence[Case]
+    begun: datetime = field(default_factory=lambda: datetime.now().astimezone())
     finished: int = 0
     found: Stressed | None = None
     fault: str = ""
@@ -40,23 +47,29 @@ class Job:
         return min(1.0, self.finished / max(1, len(self.cases)))
 
 
-def job_of(plan: Plan) -> Job | None:
-    """This session's run for this plan; one for an earlier plan is stopped and forgotten."""
-    job: Job | None = st.session_state.get(KEY)
-    if job is not None and job.plan is not plan:
+_jobs: dict[Hashable, Job] = {}
+_lock = threading.Lock()
+
+
+def job_of(key: Hashable, version: int) -> Job | None:
+    """The run of a week at this version, under way or ended; one for an earlier version is stopped."""
+    with _lock:
+        job = _jobs.get(key)
+    if job is not None and job.version < version:
         job.stop.set()
-        del st.session_state[KEY]
-        return None
-    return job
+    return job if job is not None and job.version == version else None
 
 
-def begin(plan: Plan, cases: Sequence[Case]) -> Job:
-    """Starts a run; one that goes on is stopped."""
-    before: Job | None = st.session_state.get(KEY)
-    if before is not None:
-        before.stop.set()
-    job = Job(plan, cases)
-    st.session_state[KEY] = job
+def begin(key: Hashable, version: int, plan: Plan, cases: Sequence[Case]) -> Job:
+    """Starts a run; one of the same week that goes on is stopped."""
+    job = Job(version, plan, cases)
+    with _lock:
+        before = _jobs.pop(key, None)
+        if before is not None:
+            before.stop.set()
+        _jobs[key] = job
+        for old in [name for name, one in _jobs.items() if one.is_done][:-MOST_KEPT]:
+            del _jobs[old]
     threading.Thread(target=_work, args=(job,), name="stress", daemon=True).start()
     return job
 

@@ -49,6 +49,7 @@ else:
         view = st.segmented_control(
             "View", list(VIEWS), default=first, required=True, key="compare-view",
             format_func=lambda name: VIEWS[name][0], label_visibility="collapsed",
+            bind="query-params",
         ) or first  # fmt: skip
         try:
             with st.spinner("Comparing …", show_time=True):

@@ -1,5 +1,6 @@
 """Stress: what each loss would do to the week, ranked, and how its cost is distributed if figures stray."""
 
+from collections.abc import Hashable
 from decimal import Decimal
 from io import BytesIO
 
@@ -21,12 +22,14 @@ from engine.report.stress_sheet import strays_in_words, stress_sheet
 from engine.report.workbook import header_of, write_workbook
 
 MOST_BARS = 15
+OWN = "stress-own"
 XLSX = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
 
 
 def stress_view(state: Desk, plan: Plan) -> None:
-    """What to try, the run, and what it found; kept until the plan is another one."""
-    job = job_of(plan)
+    """What to try, the run, and what it found; kept until the week is changed, whichever tab looks."""
+    key, version = run_key(state), len(state.history.entries)
+    job = job_of(key, version)
     with st.expander("What to try", expanded=job is None):
         st.caption(
             "Each case is a plan of its own, proved, beside the plan as it stands. "
@@ -38,7 +41,7 @@ def stress_view(state: Desk, plan: Plan) -> None:
             and len(cases)
             and st.button(f"Try {counted(len(cases), 'case')}", type="primary", key="stress-run")
         ):
-            job = begin(plan, cases)
+            job = begin(key, version, plan, cases)
             st.rerun()
     if job is None:
         return
@@ -48,7 +51,19 @@ def stress_view(state: Desk, plan: Plan) -> None:
     if job.fault:
         st.error(plain(job.fault))
     elif job.found is not None:
-        _shown(state, plan, job.found)
+        _shown(state, job.found)
+        st.caption(f"Tried at {job.begun:%H:%M}, {job.begun:%d %b}; kept here until the week is changed.")
+
+
+def run_key(state: Desk) -> Hashable:
+    """What a run goes by. Who only reads the week runs apart from those who change it."""
+    if state.kept is not None:
+        return state.kept.records.where, state.kept.week_id, state.only_reads
+    held = st.session_state.get(OWN)
+    if held is None or held[0] is not state.week:  # in no records: this session's, as long as the week is
+        held = st.session_state[OWN] = (state.week, object())
+    found: Hashable = held[1]
+    return found
 
 
 @st.fragment(run_every=0.5)
@@ -63,7 +78,9 @@ def _watched(job: Job) -> None:
         st.button("Stop", key="stress-stop", on_click=job.stop.set)
 
 
-def _shown(state: Desk, plan: Plan, found: Stressed) -> None:
+def _shown(state: Desk, found: Stressed) -> None:
+    """What the run found, beside the plan that it started from."""
+    plan = found.plan
     if found.stopped:
         st.info(f"Stopped: {len(found.outcomes):,} of {counted(found.asked, 'case')} are done.")
     picked = _ranked(state, found)

@@ -1,5 +1,7 @@
 """Stress and the trade-off on Compare: what the page says is what the engine says."""
 
+import itertools
+import threading
 import time
 from dataclasses import replace
 from decimal import Decimal
@@ -11,12 +13,15 @@ from streamlit.testing.v1 import AppTest
 import engine
 import sample_data
 from app import stress_job
+from app.parts.stress_view import OWN, run_key
 from app.session import KEY, Desk
+from engine.changes import Alter
 from engine.compare.frontier import Emissions, frontier
 from engine.compare.stress import stressed
 from engine.compare.stress_cases import depots_lost, drawn
 from engine.compare.stress_draws import Draws, Spread
 from engine.history import History
+from tests.app.test_compare_page import at, kept_in, whole
 
 SCRIPT = """
 import runpy
@@ -48,8 +53,16 @@ def said(test: AppTest) -> str:
     return "\n".join(str(part.value) for part in parts).replace("\\", "")
 
 
+def run_of(test: AppTest) -> stress_job.Job:
+    state: Desk = test.session_state[KEY]
+    _, key = test.session_state[OWN]
+    job = stress_job.job_of(key, len(state.history.entries))
+    assert job is not None
+    return job
+
+
 def finished(test: AppTest) -> AppTest:
-    job: stress_job.Job = test.session_state[stress_job.KEY]
+    job = run_of(test)
     assert job.done.wait(60)
     test.run()
     assert not test.exception
@@ -81,18 +94,26 @@ def test_a_run_from_the_button_to_the_ranking() -> None:
     assert f"Worst of all: **{ranked[0].case.depot} lost**" in text
     short = sum(bool(one.short) for one in expected.drawn)
     assert f"Something goes short in {short} of 30, " in text
-    again = page(state, "stress", **{stress_job.KEY: test.session_state[stress_job.KEY]})
-    assert again.dataframe, "the result is kept while the plan is the same"
-    changed = state.week.apply(engine_change(state))
-    state.history = History.of(changed)
-    assert not page(state, "stress", **{stress_job.KEY: test.session_state[stress_job.KEY]}).dataframe
-
-
-def engine_change(state: Desk) -> "engine.history.Change":  # type: ignore[name-defined]
-    from engine.changes import Alter
-
+    test.run()
+    assert test.dataframe, "the result is kept while the week is the same"
     depot = next(iter(state.week.depots.values()))
-    return Alter("depot", depot.name, "available", depot.available + 1)
+    assert state.commit(Alter("depot", depot.name, "available", depot.available + 1))
+    test.run()
+    assert not test.dataframe
+
+
+def test_a_run_goes_by_the_week_and_its_version_and_not_by_the_session() -> None:
+    plan = with_sample().planned()
+    assert plan is not None
+    job = stress_job.begin("a week", 3, plan, depots_lost(plan))
+    assert job.done.wait(60)
+    assert stress_job.job_of("a week", 3) is job
+    assert stress_job.job_of("another", 3) is None
+    again = stress_job.begin("a week", 3, plan, depots_lost(plan)[:1])
+    assert stress_job.job_of("a week", 3) is again
+    assert job.stop.is_set()
+    assert stress_job.job_of("a week", 4) is None
+    assert again.stop.is_set(), "what was changed since needs no answer any more"
 
 
 def test_stop_keeps_what_is_done(monkeypatch: pytest.MonkeyPatch) -> None:
@@ -107,7 +128,7 @@ def test_stop_keeps_what_is_done(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(stress_run, "outcome_of", slowly)
     test = page(with_sample(), "stress", **{"stress-lose": ["depots"], "stress-draw": "2000"})
     test.button(key="stress-run").click().run()
-    job: stress_job.Job = test.session_state[stress_job.KEY]
+    job = run_of(test)
     while job.finished < 5:
         time.sleep(0.01)
     test.run()
@@ -116,6 +137,39 @@ def test_stop_keeps_what_is_done(monkeypatch: pytest.MonkeyPatch) -> None:
     assert job.found is not None
     assert 5 <= len(job.found.outcomes) < 2000
     assert "Stopped: " in said(test)
+
+
+def test_a_refreshed_browser_finds_its_run_stops_it_and_keeps_what_was_found(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    from engine.compare import stress_run
+
+    solve, may_go_on = stress_run.outcome_of, threading.Event()
+    done = itertools.count(1)
+
+    def waiting(*args: object) -> object:
+        if next(done) > 5:
+            assert may_go_on.wait(60)
+        return solve(*args)  # type: ignore[arg-type]
+
+    monkeypatch.setattr(stress_run, "outcome_of", waiting)
+    (now,) = kept_in(tmp_path, monkeypatch, sample_data.SMALL_WEEK)
+    first = at(whole({"week": now.listed.id}), "stress")
+    first.text_input(key="stress-draw").set_value("300")
+    first.pills(key="stress-lose").set_value(["depots"]).run()
+    first.button(key="stress-run").click().run()
+    again = at(whole({"week": now.listed.id}), "stress")  # what a refresh is: a session that knows nothing
+    reader = at(whole({"read": now.listed.read_id}), "stress")
+    assert not [button for button in reader.button if button.key == "stress-stop"]
+    again.button(key="stress-stop").click().run()
+    may_go_on.set()
+    job = stress_job.job_of(run_key(again.session_state[KEY]), 0)
+    assert job is not None
+    assert job.done.wait(60)
+    for test in (first.run(), again.run(), at(whole({"week": now.listed.id}), "stress")):
+        assert job.found is not None
+        assert f"Stopped: {len(job.found.outcomes)} of 309 cases" in said(test)
+        assert len(test.dataframe[0].value) == len(job.found.ranked())
 
 
 @pytest.mark.parametrize(
