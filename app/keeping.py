@@ -30,8 +30,8 @@ from engine.records import (
 
 WATCH_SECONDS = 2.0
 MANY_RATES = 100_000
-WEEK, READ, WHO = "week", "read", "who"
-"""What the address says: the week's id, its id for reading only, and who works here."""
+WEEK, READ, WHO, VIEW = "week", "read", "who", "view"
+"""What the address says: the week's id, its id for reading only, who works here, and the view of a page."""
 
 
 @st.cache_resource(show_spinner=False)
@@ -113,7 +113,8 @@ def keep_up(state: Desk, files: tuple[str, ...] = ()) -> None:
         name, value = (WEEK, state.kept.week_id) if state.kept.may_change else (READ, state.kept.read_id)
         wanted = {name: value} | ({WHO: state.who} if state.kept.may_change and not person().who else {})
         if any(st.query_params.get(key) != said for key, said in wanted.items()):
-            st.query_params.from_dict(wanted)
+            seen = {VIEW: st.query_params[VIEW]} if VIEW in st.query_params else {}
+            st.query_params.from_dict(wanted | seen)
 
 
 def issue(state: Desk, plan: Plan, note: str = "") -> Issued | None:

@@ -4,6 +4,7 @@ from collections.abc import Callable
 
 import streamlit as st
 
+from app.keeping import VIEW
 from app.parts.compare_bridge import bridge_view
 from app.parts.compare_summary import summary_view
 from app.parts.compare_usual import usual_view
@@ -30,6 +31,21 @@ VIEWS: dict[str, tuple[str, Callable[[Desk, Plan], None]]] = {
     "frontier": ("Cost and emissions", frontier_view),
 }
 
+LAST = "compare-last"  # the view that the session saw last
+
+
+def _seen_last() -> str:
+    """The view to begin with: the one seen last, else the one in the address, else the manager's."""
+    found: str = st.session_state.get(LAST, st.query_params.get(VIEW, ""))
+    return found if found in VIEWS else next(iter(VIEWS))
+
+
+def _remember(view: str) -> None:
+    st.session_state[LAST] = view
+    if st.query_params.get(VIEW) != view:
+        st.query_params[VIEW] = view
+
+
 state = desk()
 st.title("Compare")
 if state.message:
@@ -45,12 +61,12 @@ else:
         st.error("This week cannot be planned as it stands, so there is nothing to compare.")
         findings_panel(state.stopped, key="stopped")
     else:
-        first = next(iter(VIEWS))
+        first = _seen_last()
         view = st.segmented_control(
             "View", list(VIEWS), default=first, required=True, key="compare-view",
             format_func=lambda name: VIEWS[name][0], label_visibility="collapsed",
-            bind="query-params",
         ) or first  # fmt: skip
+        _remember(view)
         try:
             with st.spinner("Comparing …", show_time=True):
                 VIEWS[view][1](state, plan)
