@@ -1,11 +1,14 @@
 """Variants side by side: what each would come to, lane by lane what it does otherwise, and making one."""
 
 from decimal import Decimal
+from io import BytesIO
 
 import streamlit as st
 
+import engine
 from app.parts.change_words import words_of
 from app.parts.compare_asked import kept, variants_of
+from app.parts.compare_file import WORKBOOK
 from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import counted, money, plain, quantity
 from app.session import Desk
@@ -14,6 +17,9 @@ from engine.exact import total_of
 from engine.money import minor_places
 from engine.planning.plan import Plan
 from engine.records import NotSaved, remove_variant
+from engine.report.text import safe_file_name
+from engine.report.variants_sheet import variants_sheet
+from engine.report.workbook import header_of
 
 SHOWN = 12
 
@@ -32,6 +38,7 @@ def variants_view(state: Desk, plan: Plan) -> None:
         return
     found = kept(state, plan, ("variants", variants), lambda: side_by_side(plan, variants))
     picked = _table(state, plan, found)
+    _workbook(state, plan, found)
     if any(one.difference is not None and one.difference.short for one in found):
         st.caption("Where less is delivered, freight falls: read it with what goes short.")
     if picked is None:
@@ -69,6 +76,21 @@ def _table(state: Desk, plan: Plan, found: tuple[Measured, ...]) -> int | None:
             rows.append([one.variant.name, *_cells(one.measures, base), changes, moved])
     picked = reasons_table(headings, rows, f"variants-{state.generation}", state.decimal_mark)
     return None if not picked else picked - 1
+
+
+def _workbook(state: Desk, plan: Plan, found: tuple[Measured, ...]) -> None:
+    """The plan's workbook with the sheet Variants, made when it is asked for."""
+    sound = engine.with_findings(plan, state.read)
+
+    def make() -> bytes:
+        header, held = header_of(sound), BytesIO()
+        engine.write_workbook(sound, held, more=[variants_sheet(plan, found, words_of, header)])
+        return held.getvalue()
+
+    st.download_button(
+        "Workbook with sheet Variants", make, f"variants_{safe_file_name(plan.week.rules.week)}.xlsx",
+        WORKBOOK, on_click="ignore", key="variants-book",
+    )  # fmt: skip
 
 
 def _cells(one: Measures, base: Measures) -> list[Cell]:

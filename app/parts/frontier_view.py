@@ -81,16 +81,15 @@ def _found(plan: Plan, emissions: Emissions) -> Frontier:
 
 def _shown(state: Desk, plan: Plan, found: Frontier) -> None:
     rules, mark, minor = plan.week.rules, state.decimal_mark, minor_places(plan.week.rules.currency)
-    first, last = found.points[0], found.points[-1]
+    last = found.points[-1]
     if len(found.points) == 1:
         st.markdown("The cheapest plan is also the one that emits least: there is nothing to trade off.")
     else:
-        saved = total_of((first.emissions, -last.emissions))
-        dearer = total_of((last.cost, -first.cost))
+        percent = found.less_percent(last) or Decimal(0)
         st.markdown(
-            f"At most **{number(saved, mark, 1)} kg CO2e** less "
-            f"({number(100 * saved / first.emissions, mark, 1)} %), for "
-            f"**{plain(money(dearer, rules.currency, mark))}** more; the first kilogram costs "
+            f"At most **{number(found.less(last), mark, 1)} kg CO2e** less "
+            f"({number(percent, mark, 2)} %), for "
+            f"**{plain(money(found.dearer(last), rules.currency, mark))}** more; the first kilogram costs "
             f"{plain(_per_kg(found.points[1], rules.currency, mark))}, the last "
             f"{plain(_per_kg(last, rules.currency, mark))}."
         )
@@ -105,8 +104,7 @@ def _shown(state: Desk, plan: Plan, found: Frontier) -> None:
     ]
     rows: list[list[Cell]] = [
         [
-            Decimal(n), point.cost, point.freight, point.emissions, total_of((point.cost, -first.cost)),
-            total_of((first.emissions, -point.emissions)),
+            Decimal(n), point.cost, point.freight, point.emissions, found.dearer(point), found.less(point),
             None if point.per_kg is None else Decimal(repr(float(point.per_kg))),
         ]
         for n, point in enumerate(found.points, 1)

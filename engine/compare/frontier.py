@@ -20,6 +20,7 @@ import numpy.typing as npt
 from engine.compare.stress_ground import is_no_network
 from engine.exact import BLANK, LARGEST, TooLarge, places_needed, to_decimal, to_integer, total_of
 from engine.figures import RateKey
+from engine.money import per_unit
 from engine.network import Flow, Problem, least_cost
 from engine.planning.aims import MUST_MOVE, weights
 from engine.planning.gone import cost_of
@@ -103,6 +104,18 @@ class Frontier:
     today: Point
     left_out: int
     complete: bool
+
+    def dearer(self, point: Point) -> Decimal:
+        """How much more a point costs than the cheapest."""
+        return total_of((point.cost, -self.points[0].cost))
+
+    def less(self, point: Point) -> Decimal:
+        """How many kilograms less a point emits than the cheapest."""
+        return total_of((self.points[0].emissions, -point.emissions))
+
+    def less_percent(self, point: Point) -> Decimal | None:
+        """The same in percent of what the cheapest emits, to two places; None where that is nothing."""
+        return per_unit(100 * self.less(point), self.points[0].emissions, 2)
 
 
 def frontier(

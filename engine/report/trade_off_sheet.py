@@ -1,10 +1,9 @@
 """Sheet *Trade-off*: every breakpoint of cost against emissions, with the factor and where it is from."""
 
-from decimal import Decimal
 from typing import Any
 
 from engine.compare.frontier import Frontier
-from engine.exact import canonical, total_of
+from engine.exact import canonical
 from engine.money import minor_places
 from engine.report.look import DEEP, Style, number_format
 from engine.report.native_charts import JOINED_HEIGHT, chart_rows, joined_points
@@ -43,14 +42,13 @@ def trade_off_sheet(found: Frontier, header: str) -> Sheet:
     money = Style(number=number_format(minor_places(rules.currency)), align="right")
     kilograms, each = Style(number="#,##0.0", align="right"), Style(number="#,##0.0000", align="right")
     styles = [Style(number="0"), kilograms, money, money, kilograms, money, kilograms, each]
-    start = found.points[0]
     for n, point in enumerate(found.points, 1):
         per_kg = None if point.per_kg is None else float(f"{float(point.per_kg):.12g}")
         rows.append(
             Row(
                 [
                     n, point.emissions, point.cost, point.freight, point.tonne_km,
-                    _less(point.cost, start.cost), _less(start.emissions, point.emissions), per_kg,
+                    found.dearer(point), found.less(point), per_kg,
                 ],
                 styles,
             )
@@ -64,10 +62,6 @@ def trade_off_sheet(found: Frontier, header: str) -> Sheet:
         )
 
     return Sheet("Trade-off", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
-
-
-def _less(one: Decimal, other: Decimal) -> Decimal:
-    return total_of((one, -other))
 
 
 def _headings(currency: str) -> Row:

@@ -5,8 +5,10 @@ and what a manager sees who opens the link for reading only.
 import re
 from collections.abc import Callable, Iterator
 from decimal import Decimal
+from io import BytesIO
 from urllib.parse import urlparse
 
+import openpyxl
 import pytest
 from playwright.sync_api import Browser, Locator, Page, expect
 
@@ -134,6 +136,10 @@ def test_a_variant_is_made_compared_and_promoted(visit: Visit) -> None:
     assert [text_of(grid, names, row) for row in (0, 1)] == ["The week as it stands", "half of it"]
     assert figure(grid, "Freight", 0) == plan.freight_payable
     assert figure(grid, "Freight", 1) == other.freight_payable
+    with page.expect_download() as download:
+        page.get_by_role("button", name="Workbook with sheet Variants").click()
+    book = openpyxl.load_workbook(BytesIO(download.value.path().read_bytes()), read_only=True)
+    assert "Variants" in book.sheetnames
     pick_row(page, 1)
     page.get_by_role("button", name="Put it up as a change").click(timeout=LATEST)
     page.get_by_text("Not made yet.").wait_for(timeout=LATEST)

@@ -8,9 +8,12 @@ from pathlib import Path
 
 import openpyxl
 
+import engine
+from engine.changes import Add, Alter
 from engine.compare.bridge import Side, bridge
 from engine.compare.service import saving
 from engine.compare.usual import Rule, usual_plan
+from engine.compare.variants import Variant, side_by_side
 from engine.figures import Customer, Depot, Order, RateRow, Rules
 from engine.planning.planner import plan_week
 from engine.records.totals import WeekTotals
@@ -18,6 +21,7 @@ from engine.records.weeks import Listed
 from engine.report.book import write_book
 from engine.report.bridge_sheet import bridge_sheet
 from engine.report.compare_sheet import compare_sheet
+from engine.report.variants_sheet import variants_sheet
 from engine.report.weeks_sheet import weeks_sheet
 from engine.week import Week
 from tests.report.libreoffice import calculated, without_results
@@ -81,3 +85,44 @@ def test_charts_are_native_and_names_never_formulas() -> None:
     for sheet in book.worksheets:
         for row in sheet.iter_rows():
             assert not [c for c in row if c.data_type == "f" and "HYPERLINK" in str(c.value)]
+
+
+def test_the_sheet_of_variants_adds_up_and_is_never_read_as_figures(tmp_path: Path) -> None:
+    plan = plan_week(week())
+    variants = (
+        Variant(EVIL, (Alter("depot", EVIL, "available", D(3)), Alter("depot", "Upland", "must_move", D(1)))),
+        Variant("More", (Add(Depot("Third", D(40))), Add(RateRow("Third", "Elm", D(1))))),
+        Variant("Never", (Alter("depot", "Nowhere", "available", D(3)),)),
+    )
+    found = side_by_side(plan, variants)
+    sheet = variants_sheet(plan, found, lambda change: f"={type(change).__name__} 1", "A")
+    file = tmp_path / "variants.xlsx"
+    engine.write_workbook(plan, file, more=[sheet])
+    book = calculated([without_results(file, tmp_path / "bare.xlsx")], tmp_path)["bare.xlsx"]
+    rows = [row for row in book["Variants"].iter_rows(values_only=True) if row[0]]
+    by_name = {row[0]: row for row in reversed(rows) if isinstance(row[1], int | float)}
+    for one in found[:2]:
+        assert one.measures is not None
+        assert one.difference is not None
+        row = by_name[one.variant.name]
+        assert D(str(row[1])) == one.measures.freight
+        assert D(str(row[2])).quantize(D("0.01")) == one.difference.freight_payable
+        assert row[10:12] == (2, len(one.difference.rows))
+    never = next(row for row in rows if row[0] == "Never")
+    assert str(never[1]).startswith("Cannot be planned. ")
+    moved = [(r[0], r[1], r[6]) for r in rows if isinstance(r[6], int | float) and isinstance(r[1], str)]
+    assert [(n, d, D(str(m)).quantize(D("0.01"))) for n, d, m in moved] == [
+        (one.variant.name, row.key.depot, row.more)
+        for one in found
+        if one.difference
+        for row in one.difference.rows
+    ]
+    written = openpyxl.load_workbook(file)["Variants"]
+    assert len(written._charts) == 1
+    formulas = [c.value for row in written.iter_rows() for c in row if c.data_type == "f"]
+    assert formulas
+    assert not [text for text in formulas if "HYPERLINK" in text or "Alter" in text]
+    again = engine.read_week(file)
+    assert again.week == plan.week
+    assert not [f for f in again.findings if f.sheet == "Variants"]
+    assert dict(engine.read_quantities(file)) == {s.key: s.quantity for s in plan.shipments}
