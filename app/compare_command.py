@@ -6,29 +6,27 @@ from pathlib import Path
 import click
 
 import engine
+from app.compare_sides import sides
 from app.json_out import write_json
 from engine.compare.bridge import Bridge, Side, bridge
 from engine.compare.bridge_words import paragraph
 from engine.compare.effects import STATED_ORDER
 from engine.compare.mixed import NotComparable
-from engine.compare.quantities import Priced
 from engine.compare.service import saving
 from engine.compare.usual import NoRule, Rule, UsualPlan, rules_possible, usual_plan
 from engine.exact import TooLarge, canonical
 from engine.findings import Finding, Severity
-from engine.planning.near import sent_by
 from engine.report.bridge_json import bridge_as_json
 from engine.report.bridge_sheet import bridge_sheet
 from engine.report.compare_sheet import compare_sheet
 from engine.report.workbook import header_of
 
-SHORT, UNUSABLE = 3, 2
-FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
+SHORT = 3
 
 
 @click.command()
-@click.argument("first", type=FILE, metavar="A")
-@click.argument("second", type=FILE, metavar="B")
+@click.argument("first", metavar="A")
+@click.argument("second", metavar="B")
 @click.option("--order", default="", metavar="EFFECT,…",
               help=f"Effects to take first, in this order. They are: {', '.join(STATED_ORDER)}.")  # fmt: skip
 @click.option("--average", is_flag=True, help="The average over all orders (Shapley 1953), not one order.")
@@ -38,25 +36,31 @@ FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
               help="Write the comparison as JSON; - is stdout.")  # fmt: skip
 @click.option("--out", type=click.Path(dir_okay=False, path_type=Path), metavar="PLAN.xlsx",
               help="Write the plan of B as a workbook, with the sheets Compare and Bridge.")  # fmt: skip
+@click.option("--records", envvar="HITHE_RECORDS", metavar="URL", show_envvar=True,
+              help="Where named weeks are kept: a file, or postgresql://USER@HOST/DATABASE.")  # fmt: skip
 @click.pass_context
 def compare(
     ctx: click.Context,
-    first: Path,
-    second: Path,
+    first: str,
+    second: str,
     order: str,
     average: bool,
     usual: str | None,
     as_json: str | None,
     out: Path | None,
+    records: str | None,
 ) -> None:
     """Say why B costs more than A, or less: each is a week, or the workbook of a plan.
+
+    A and B are files, or weeks in the records by their name or id: 'Week 6' is the week as it stands now,
+    'Week 6#2' its plan 2 as it was issued.
 
     A plan is taken as it was sent; a week is planned. Exit status: 0 all orders met in both, 3 something is
     short in one of them, 2 the figures cannot be used.
     """
     from app.command import _refuse
 
-    one, two = _side(ctx, first), _side(ctx, second)
+    one, two = sides(ctx, first, second, records)
     wanted = [effect.strip() for effect in order.split(",") if effect.strip()]
     try:
         found = bridge(one, two, wanted, average, _progress)
@@ -71,28 +75,6 @@ def compare(
     else:
         click.echo("\n".join(_lines(found)))
     ctx.exit(SHORT if one.plan.short or two.plan.short else 0)
-
-
-def _side(ctx: click.Context, file: Path) -> Side:
-    """The week in a file with its plan: as the file sends it, where it is a plan's workbook."""
-    from app.command import _read, _refuse, _tell, _together
-
-    reading = _read(ctx, (file,))
-    try:
-        sent = engine.read_quantities(file)
-    except engine.Unreadable:
-        sent = None
-    try:
-        plan = engine.plan_week(reading.week, near=sent)
-        as_it_was: Priced = plan
-        if sent is not None and dict(sent_by(plan)) != {key: much for key, much in sent.items() if much}:
-            as_it_was = usual_plan(reading.week, Rule.ACTUAL, sent, completed=None).costs
-    except engine.NotPlannable as stopped:
-        _refuse(ctx, _together(reading.findings, stopped.findings))
-    except TooLarge as too_large:
-        _refuse(ctx, [*reading.findings, Finding(Severity.STOPS, "too large", str(too_large))])
-    _tell(reading.findings)
-    return Side(reading.week.rules.week, reading.week, as_it_was)
 
 
 def _write(ctx: click.Context, side: Side, found: Bridge, rule: str | None, out: Path) -> None:

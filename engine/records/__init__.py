@@ -12,7 +12,8 @@ from engine.records.before import week_before
 from engine.records.failures import Missing, NotSaved
 from engine.records.journal import Conflict, Made, append, changes_since, version_of
 from engine.records.merging import Clash, Merged, caught_up, merge, save
-from engine.records.opening import Records, default_place, open_records
+from engine.records.named import Named, find_named
+from engine.records.opening import Records, are_there, default_place, open_records
 from engine.records.plans import Issued, find_plan, issue_plan, latest_number, list_plans
 from engine.records.remarks import save_remarks
 from engine.records.totals import WeekTotals, note_totals, totals_by_week
@@ -36,17 +37,20 @@ __all__ = [
     "Made",
     "Merged",
     "Missing",
+    "Named",
     "NotSaved",
     "Opened",
     "Records",
     "WeekTotals",
     "append",
     "archive_week",
+    "are_there",
     "caught_up",
     "changes_since",
     "copy_week",
     "create_week",
     "default_place",
+    "find_named",
     "find_plan",
     "issue_plan",
     "latest_number",

@@ -98,6 +98,17 @@ def open_records(place: str | Path | None = None) -> Records:
     return Records(engine, where)
 
 
+def are_there(place: str | Path | None = None) -> bool:
+    """Whether records may be found at a place: False where their file would first have to be made.
+
+    Raises:
+        NotSaved: it is no place for records.
+    """
+    url = url_of(default_place() if place is None else place)
+    named = url.database or ""
+    return not _is_sqlite(url) or named.startswith("file:") or Path(named).is_file()
+
+
 def url_of(place: str | Path) -> URL:
     """The URL of a place given as a URL or as a path.
 

@@ -11,6 +11,8 @@ from click.testing import CliRunner
 import engine
 import sample_data
 from app.command import main
+from engine.changes import Alter
+from engine.records import Opened, create_week, issue_plan, open_records, save
 
 BEFORE, NOW = (str(sample_data.path(name)) for name in ("week_before.xlsx", sample_data.SMALL_WEEK))
 
@@ -101,3 +103,54 @@ def test_the_workbook_has_sheets_that_add_up_and_reads_back_as_the_week(tmp_path
     assert again.week == engine.read_week(NOW).week
     told = [f"{f.sheet}: {f.message}" for f in again.findings if f.sheet in ("Bridge", "Compare")]
     assert not told
+
+
+def kept_week(place: Path, name: str) -> Opened:
+    records = open_records(place)
+    found = create_week(records, engine.read_week(sample_data.path(name)))
+    records.close()
+    return found
+
+
+def test_weeks_of_the_records_go_by_name_or_id_beside_files(tmp_path: Path) -> None:
+    place = tmp_path / "kept.sqlite"
+    before, now = (kept_week(place, name) for name in ("week_before.xlsx", sample_data.SMALL_WEEK))
+    _, by_files, _ = run(BEFORE, NOW, "--json", "-")
+    for first, second in (("week 5", now.listed.id), (before.listed.id, "Week 6"), (BEFORE, "Week 6")):
+        code, out, _ = run(first, second, "--json", "-", "--records", str(place))
+        assert code == 3
+        assert json.loads(out) == json.loads(by_files)
+
+
+def test_an_issued_plan_and_what_was_done_to_the_week_since(tmp_path: Path) -> None:
+    place = tmp_path / "kept.sqlite"
+    now = kept_week(place, sample_data.SMALL_WEEK)
+    records = open_records(place)
+    issue_plan(records, now.listed.id, engine.plan_week(now.history.week), 0, "Ann")
+    change = Alter("depot", "Northgate", "available", Decimal(500))
+    save(records, now.listed.id, now.history.after(change, "Ann", "silo repaired"), 0)
+    records.close()
+    code, out, err = run("Week 6#1", "Week 6", "--json", "-", "--records", str(place))
+    assert code == 3, err
+    read = json.loads(out)
+    assert (read["first"], read["second"]) == ("Week 6, plan 1", "Week 6")
+    after = engine.plan_week(now.history.week.apply(change))
+    assert Decimal(read["freight_payable"]["second"]) == after.freight_payable
+    assert any("silo repaired" in step["name"] for step in read["steps"])
+    assert "No plan 7 of 'Week 6' was issued" in run("Week 6#7", NOW, "--records", str(place))[2]
+
+
+def test_a_name_of_several_weeks_and_of_none_is_not_guessed_at(tmp_path: Path) -> None:
+    place = tmp_path / "kept.sqlite"
+    ids = [kept_week(place, sample_data.SMALL_WEEK).listed.id for _ in range(2)]
+    code, out, err = run("Week 6", NOW, "--records", str(place))
+    assert (code, out) == (2, "")
+    assert "2 weeks are named 'Week 6'" in err
+    assert all(one in err for one in ids)
+    code, _, err = run("no_file.xlsx", NOW, "--records", str(tmp_path / "none.sqlite"))
+    assert code == 2
+    assert "there are no records to look it up in" in err
+    assert not (tmp_path / "none.sqlite").exists(), "nothing is made by looking"
+    code, _, err = run("Week 9", NOW, "--records", str(place))
+    assert code == 2
+    assert "'Week 9' is no file here, nor a week in the records" in err
