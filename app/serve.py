@@ -49,6 +49,8 @@ def flags(port: int, host: str = ADDRESS, names: Sequence[str] = ()) -> dict[str
         "server_trustedUserHeaders": "{}",
         "server_unsafeMetricsUserAttributes": [],
         "server_enableStaticServing": False,
+        # Python collects garbage by itself; after every run of every page it took most of a full desk's time
+        "runner_postScriptGC": False,
         "client_toolbarMode": "minimal",
         "client_showErrorDetails": "none",
         "client_showErrorLinks": "false",

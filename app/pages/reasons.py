@@ -12,7 +12,7 @@ from app.parts.reasons_why import why_view
 from app.parts.words import plain
 from app.session import desk
 from engine.exact import TooLarge
-from engine.reasons.ground import WHOLE
+from engine.reasons.ground import why_withheld
 
 VIEWS = {
     "rates": ("Rates", rates_view),
@@ -31,8 +31,8 @@ else:
     if plan is None:
         st.error("This week cannot be planned as it stands, so there is nothing to ask about.")
         findings_panel(state.stopped, key="stopped")
-    elif plan.whole is not None:
-        st.info(plain(WHOLE))
+    elif because := why_withheld(plan):
+        st.info(plain(because))
     else:
         st.caption(
             "Each answer compares this plan with the best plan of the changed week, exactly. "

@@ -7,6 +7,7 @@ from app.parts.words import counted, money, quantity
 from app.session import Desk
 from engine.planning.holds import PricedHold, all_lifted, priced_holds
 from engine.planning.plan import Plan
+from engine.reasons.ground import why_withheld
 
 MOST_PRICED = 60
 
@@ -17,8 +18,8 @@ def holds_list(state: Desk, plan: Plan) -> None:
     if not holds:
         st.caption("Nothing is held." if state.only_reads else "Nothing is held. Type a quantity to hold it.")
         return
-    if plan.whole is not None:
-        st.caption("With whole loads a hold has no price of its own: lift it, and the price is shown before.")
+    if why_withheld(plan):
+        st.caption("Holds have no price of their own in this plan: lift one, and the price is shown before.")
         priced = tuple(PricedHold(key, hold, None, None) for key, hold in holds.items())
     elif len(holds) > MOST_PRICED:
         st.caption(f"{counted(len(holds), 'hold')}: too many to price one by one.")

@@ -24,9 +24,8 @@ from engine.money import per_unit
 from engine.network import Flow, Problem, least_cost
 from engine.planning.aims import MUST_MOVE, weights
 from engine.planning.gone import cost_of
-from engine.planning.model import NO_RATE, Model
+from engine.planning.model import NO_RATE, Model, limits_of
 from engine.planning.plan import Plan
-from engine.planning.prices import limits_of
 
 Integers = npt.NDArray[np.int64]
 Progress = Callable[[int], None]

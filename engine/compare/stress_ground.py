@@ -20,9 +20,8 @@ from engine.exact import LARGEST, TooLarge, places_needed, to_integer, total_of
 from engine.figures import Customer, Rules
 from engine.network import UNLIMITED, Flow, Problem
 from engine.planning.gone import cost_of, left
-from engine.planning.model import EVEN_SHARE, NO_RATE, Model, model_of, step_of
+from engine.planning.model import EVEN_SHARE, NO_RATE, Model, limits_of, model_of, step_of
 from engine.planning.plan import Plan
-from engine.planning.prices import limits_of
 from engine.planning.spread import has_whole_loads
 from engine.rates import NO_CODE, Codes
 
@@ -157,6 +156,11 @@ def ground_of(plan: Plan) -> Ground:
         raise NeedsWholeLoads(
             "The week has whole loads, charges due once, smallest drops, single depots or limits on loads or "
             "hauliers."
+        )
+    if plan.model.apart:
+        raise TooLarge(
+            "The rates and charges have so many digits that the aims were solved one after the other: such a "
+            "week cannot be stressed. Use fewer decimal places, or a larger currency unit."
         )
     even = week.rules.when_short == EVEN_SHARE
     step = step_of(week.rules)

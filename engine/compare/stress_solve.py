@@ -18,8 +18,7 @@ from engine.compare.stress_kernels import would_pay
 from engine.exact import LARGEST, TooLarge, to_decimal, total, total_of
 from engine.network import Contradiction, Flow, Problem, least_cost
 from engine.planning.aims import MUST_MOVE, OUT_OF_REACH, Weights, weights
-from engine.planning.model import EVEN_SHARE, NO_RATE, Model
-from engine.planning.prices import limits_of
+from engine.planning.model import EVEN_SHARE, NO_RATE, Model, limits_of
 from engine.planning.shortage import evenly_shared, sharing_of
 from engine.week import Week
 

@@ -7,6 +7,7 @@ there, joined by a free row, so that balanced and unbalanced weeks are one probl
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from decimal import Decimal
+from typing import NamedTuple
 
 import numpy as np
 import numpy.typing as npt
@@ -27,6 +28,31 @@ NO_RATE = -1
 EVEN_SHARE = "even share"
 
 
+class AimPrices(NamedTuple):
+    """What an aim was solved with, where it is not a weight.
+
+    rows: where each unit counts one against it
+    depot, customer: (depots + 1,) and (customers + 1,) prices in units of the aim, stand-ins last
+    """
+
+    aim: str
+    rows: Integers
+    depot: Integers
+    customer: Integers
+
+
+class Decided(NamedTuple):
+    """What the aims decided, one after the other, see `engine.planning.aim_by_aim`.
+
+    at_least, at_most: (rows,) limits as the week states them; the problem's own hold what the aims decided
+    prices: the highest aim first
+    """
+
+    at_least: Integers
+    at_most: Integers
+    prices: tuple[AimPrices, ...]
+
+
 @dataclass(frozen=True, eq=False)
 class Model:
     """The problem, and what each of its rows stands for.
@@ -39,6 +65,9 @@ class Model:
     money:    (rows,) what a unit costs in money alone; `problem.cost` has the aims' weights on top
     must_row: (depots,) the row of what must move, NO_RATE where nothing must
     quantity_places, money_places: decimal places of the integers
+    counted:  aims and the rows where each unit counts one against them, the highest first
+    apart:    whether the weights do not fit, so that the problem's costs are money alone
+    decided:  what came out then, once the aims are solved
     """
 
     problem: Problem
@@ -50,6 +79,16 @@ class Model:
     weights: Weights
     quantity_places: int
     money_places: int
+    counted: tuple[tuple[str, Integers], ...] = ()
+    apart: bool = False
+    decided: Decided | None = None
+
+    @property
+    def stated_limits(self) -> tuple[Integers, Integers]:
+        """(rows,) least and most of each row by the week's figures and shares, whatever the aims decided."""
+        if self.decided is not None:
+            return self.decided.at_least, self.decided.at_most
+        return limits_of(self)
 
     @property
     def short_rows(self) -> Integers:
@@ -92,13 +131,13 @@ def model_of(week: Week) -> Model:
     live, customer_of_row, depot_of_row = _live_rows(week, flat)
     lower, upper = _limits(week, flat, quantity_places)
     must = np.flatnonzero(must_move > 0)
-    aims = weights(
-        max((int(np.abs(part).max(initial=0)) for part in (rate[live], charges)), default=0),
-        len(depots),
-        {priority_of(c) for c in customers if not c.may_decline},
-        must_move=len(must) > 0,
-    )
-    short_weight = np.array([0 if c.may_decline else aims[priority_of(c)] for c in customers], dtype=np.int64)
+    largest = max((int(np.abs(part).max(initial=0)) for part in (rate[live], charges)), default=0)
+    short_aim = [None if c.may_decline else priority_of(c) for c in customers]
+    try:
+        aims = weights(largest, len(depots), {aim for aim in short_aim if aim}, must_move=len(must) > 0)
+        apart = False
+    except TooLarge:
+        aims, apart = weights(largest, len(depots), (), must_move=False), True
 
     rows = len(live) + len(customers) + len(depots) + len(must) + 1
     counts = np.bincount(customer_of_row, minlength=len(customers)) + 1
@@ -118,12 +157,15 @@ def model_of(week: Week) -> Model:
     rate_row = np.full(rows, NO_RATE, dtype=np.int64)
     depot[rate_at], money[rate_at], rate_row[rate_at] = depot_of_row, rate[live], live
     at_least[rate_at], at_most[rate_at] = lower[live], upper[live]
-    money[short_at], weight[short_at] = short_charge, short_weight
+    money[short_at] = short_charge
     depot[stay_at], money[stay_at] = np.arange(len(depots)), unsent_charge
     at_most[stay_at] = available - must_move
     depot[must_at], money[must_at], at_most[must_at] = must, unsent_charge[must], must_move[must]
-    if len(must):
-        weight[must_at] = aims[MUST_MOVE]
+    counted = [(aim, short_at[np.array([one == aim for one in short_aim], dtype=bool)]) for aim in PRIORITIES]
+    counted = [(aim, at) for aim, at in (*counted, (MUST_MOVE, must_at)) if len(at)]
+    if not apart:
+        for aim, at in counted:
+            weight[at] = aims[aim]
 
     must_row = np.full(len(depots), NO_RATE, dtype=np.int64)
     must_row[must] = must_at
@@ -146,7 +188,17 @@ def model_of(week: Week) -> Model:
         aims,
         quantity_places,
         money_places,
+        counted=tuple(counted),
+        apart=apart,
     )
+
+
+def limits_of(model: Model) -> tuple[Integers, Integers]:
+    """(rows,) least and most that each row of the problem carries."""
+    problem = model.problem
+    lower = np.zeros(problem.rows, np.int64) if problem.at_least is None else problem.at_least
+    upper = np.full(problem.rows, UNLIMITED) if problem.at_most is None else problem.at_most
+    return lower, upper
 
 
 def priority_of(customer: Customer) -> str:

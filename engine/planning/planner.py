@@ -5,7 +5,7 @@ from functools import cache
 
 import numpy as np
 
-from engine.exact import to_decimal, to_integer, total_of
+from engine.exact import TooLarge, to_decimal, to_integer, total_of
 from engine.findings import Finding, Severity, by_gravity, stops
 from engine.intake.check import check_week
 from engine.intake.earlier import Quantities
@@ -14,6 +14,7 @@ from engine.loads import NoPlan, prepare
 from engine.money import minor_places, round_half_up
 from engine.network import Flow, least_cost
 from engine.planning.accounts import about_the_plan, gone_shipments, short_of, unsent_of
+from engine.planning.aim_by_aim import decided
 from engine.planning.contradictions import contradictions
 from engine.planning.gone import about_gone, used_up
 from engine.planning.load_plan import Improved, ShouldStop, in_words, plan_loads, search_of
@@ -30,6 +31,12 @@ Progress = Callable[[str], None]
 
 USUAL_SECONDS = 60.0
 """How long a search by whole loads may take where nobody says otherwise."""
+
+
+TOO_FINE_FOR_LOADS = (
+    "The rates and charges are too large or too finely divided to keep the aims in order with whole loads: "
+    "use fewer decimal places, or a larger currency unit."
+)
 
 
 class NotPlannable(ValueError):
@@ -79,6 +86,8 @@ def plan_week(
         tell("Sharing evenly")
         model = evenly_shared(week, model)
     tell("Solving")
+    if model.apart and has_whole_loads(week):
+        raise TooLarge(TOO_FINE_FOR_LOADS)
     if has_whole_loads(week):
         search = search_of(week, model, least_cost(model.problem), found)
         tell("Preparing the search")
@@ -89,6 +98,7 @@ def plan_week(
             return plan_loads(search, start, improved, should_stop, time_limit)
         except NoPlan as refused:
             raise NotPlannable((in_words(week, search, refused), *found)) from None
+    model = decided(model)
     flow = nearest_flow(week, model, least_cost(model.problem), near)
     tell("Writing the plan down")
     return _plan(week, model, flow, found)

@@ -13,9 +13,8 @@ import numpy.typing as npt
 
 from engine.network import Flow, prove
 from engine.network.closure import NO_WAY, Closure, close
-from engine.network.problem import UNLIMITED
 from engine.planning.aims import OUT_OF_REACH
-from engine.planning.model import Model
+from engine.planning.model import Model, limits_of
 
 Integers = npt.NDArray[np.int64]
 
@@ -69,14 +68,6 @@ def chain_prices(model: Model, closure: Closure) -> tuple[Integers, Integers]:
     np.minimum.at(begins, problem.depot[has_room], spare[has_room])
     shifts = np.bincount(problem.depot[may_give], minlength=problem.depots) > 0
     return np.where(shifts | (begins == NO_WAY), -chain, begins), customer_price
-
-
-def limits_of(model: Model) -> tuple[Integers, Integers]:
-    """(rows,) least and most that each row of the problem carries."""
-    problem = model.problem
-    lower = np.zeros(problem.rows, np.int64) if problem.at_least is None else problem.at_least
-    upper = np.full(problem.rows, UNLIMITED) if problem.at_most is None else problem.at_most
-    return lower, upper
 
 
 def least_by_customer(model: Model, values: Integers) -> Integers:

@@ -54,7 +54,7 @@ def shortages(model: Model) -> tuple[Shortage, ...]:
     Customers who may decline are left out: they go short where that is cheaper.
     """
     sharing = sharing_of(model)
-    counted = model.problem.cost[model.short_rows] > model.money[model.short_rows]
+    counted = np.isin(model.short_rows, [row for _, rows in model.counted for row in rows.tolist()])
     needs = np.where(counted, sharing.ordered - sharing.forced, 0)
     short, cut = tightest_cut(sharing, sharing.free, needs.tolist())
     if short == 0:
@@ -89,10 +89,7 @@ def sharing_of(model: Model) -> Sharing:
     problem = model.problem
     rows = np.flatnonzero(model.rate_row >= 0)
     customers = len(model.customers)
-    at_least = np.zeros(problem.rows, np.int64) if problem.at_least is None else problem.at_least
-    at_most = problem.at_most
-    if at_most is None:
-        raise ValueError("A week's problem has limits on its stand-in rows; this one has none.")
+    at_least, at_most = model.stated_limits
     return Sharing(
         available=problem.supply[:-1],
         ordered=problem.demand[:-1],

@@ -22,13 +22,13 @@ from engine.reasons.ends import End, moved
 from engine.reasons.ground import (
     OVERRUN,
     SHARED,
-    WHOLE,
     Ground,
     Withheld,
     ground_of,
     grounded_again,
     is_shared,
     overrun,
+    why_withheld,
 )
 from engine.reasons.rows import gone_on, key_at, row_of
 
@@ -154,8 +154,8 @@ def chain(plan: Plan, change: Change) -> Chain:
 
 
 def _of_end(plan: Plan, end: End, asked: Chain) -> Chain:
-    if plan.whole is not None:
-        raise Withheld(WHOLE)
+    if because := why_withheld(plan):
+        raise Withheld(because)
     if is_shared(plan):
         return replace(asked, note=SHARED)
     if (end.what, asked.depot or asked.customer) in overrun(plan):

@@ -13,7 +13,7 @@ from engine.exact import to_decimal, to_integer, total_of
 from engine.planning.model import EVEN_SHARE, NO_RATE
 from engine.planning.plan import Plan
 from engine.reasons.ends import End, Stretch, What, stretch
-from engine.reasons.ground import OVERRUN, SHARED, WHOLE, Ground, ground_of, is_shared, overrun
+from engine.reasons.ground import OVERRUN, SHARED, Ground, ground_of, is_shared, overrun, why_withheld
 
 MOST_CORNERS = 2_000
 """A curve with more corners than this ends early; `Curve.cut_short` says so."""
@@ -71,8 +71,8 @@ def curve(plan: Plan, name: str, low: Decimal, high: Decimal, what: What | None 
     what = _what(plan, name, what)
     week = plan.week
     today = week.depots[name].available if what == "depot" else week.customers[name].ordered
-    if plan.whole is not None:
-        return Curve(what, name, today, (), withheld=WHOLE)
+    if because := why_withheld(plan):
+        return Curve(what, name, today, (), withheld=because)
     if is_shared(plan):
         return Curve(what, name, today, (), withheld=SHARED)
     if (what, name) in overrun(plan):

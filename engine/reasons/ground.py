@@ -11,9 +11,8 @@ from engine.network.closure import NO_WAY, Closure, close_chains, exchange_direc
 from engine.network.problem import Problem
 from engine.planning.aims import Weights
 from engine.planning.gone import left
-from engine.planning.model import EVEN_SHARE, Integers, Model
+from engine.planning.model import EVEN_SHARE, Integers, Model, limits_of
 from engine.planning.plan import Plan
-from engine.planning.prices import limits_of
 from engine.reasons.kernels import Rows, Searched, second_exchanges, take_apart
 
 Flags = npt.NDArray[np.bool_]
@@ -27,6 +26,13 @@ WHOLE = (
     "its price is worked out there."
 )
 """Why there are no reasons for a plan with whole loads."""
+
+APART = (
+    "The rates and charges have so many digits that the aims were solved one after the other. What a unit "
+    "more would mean to all of them together is not told. Put the change up on Plan: its price is worked out "
+    "there."
+)
+"""Why there are no reasons for a plan whose aims had to be solved one by one."""
 
 
 class Withheld(ValueError):
@@ -107,15 +113,22 @@ class Ground:
         return searched(self)
 
 
+def why_withheld(plan: Plan) -> str:
+    """Why the plan as a whole has no values, thresholds and chains; empty where it has them."""
+    if plan.whole is not None:
+        return WHOLE
+    return APART if plan.model.apart else ""
+
+
 def ground_of(plan: Plan) -> Ground:
     """What all reasons of a plan start from.
 
     Raises:
-        Withheld: the plan has whole loads.
+        Withheld: the plan has no reasons of this kind, see `why_withheld`.
         TooLarge: a chain's cost could leave the exact integers.
     """
-    if plan.whole is not None:
-        raise Withheld(WHOLE)
+    if because := why_withheld(plan):
+        raise Withheld(because)
     return Ground(plan.model, plan.closure, *limits_of(plan.model))
 
 

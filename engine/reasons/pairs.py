@@ -13,7 +13,7 @@ from engine.exact import to_decimal
 from engine.network.closure import NO_WAY
 from engine.planning.model import EVEN_SHARE
 from engine.planning.plan import Plan
-from engine.reasons.ground import WHOLE, Withheld, ground_of, money_of
+from engine.reasons.ground import Withheld, ground_of, money_of, why_withheld
 from engine.reasons.kernels import more_at_both_ends
 from engine.reasons.sides import more_available, more_ordered
 
@@ -38,8 +38,8 @@ def pairs(plan: Plan, most: int = 20) -> tuple[Pair, ...]:
     Raises:
         TooLarge: a chain's cost could leave the exact integers.
     """
-    if plan.whole is not None:
-        raise Withheld(WHOLE)
+    if because := why_withheld(plan):
+        raise Withheld(because)
     model = plan.model
     if plan.week.rules.when_short == EVEN_SHARE:
         return ()

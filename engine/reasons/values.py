@@ -14,7 +14,7 @@ from engine.exact import to_decimal
 from engine.network.closure import NO_WAY
 from engine.planning.model import EVEN_SHARE, Model
 from engine.planning.plan import Plan, UnitPrice
-from engine.reasons.ground import SHARED, WHOLE, Ground, ground_of, is_shared, money_of, overrun
+from engine.reasons.ground import SHARED, Ground, ground_of, is_shared, money_of, overrun, why_withheld
 from engine.reasons.kernels import MANY
 from engine.reasons.sides import Side, customer_sides, depot_sides
 
@@ -61,8 +61,8 @@ def values(plan: Plan, holds: bool = False) -> Values:
     Raises:
         TooLarge: a chain's cost could leave the exact integers.
     """
-    if plan.whole is not None:
-        return Values((), (), withheld=WHOLE)
+    if because := why_withheld(plan):
+        return Values((), (), withheld=because)
     if is_shared(plan):
         depots, customers = (
             tuple(UnitValue(p.name, p.price) for p in some)

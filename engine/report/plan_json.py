@@ -8,6 +8,7 @@ from engine.exact import canonical
 from engine.planning.load_plan import cost_of_wholeness
 from engine.planning.plan import Plan, Shipment, Wholeness
 from engine.reasons import RateInterval, UnitValue, rate_intervals, values
+from engine.reasons.ground import why_withheld
 
 
 def plan_as_json(plan: Plan, full: bool = False) -> dict[str, Any]:
@@ -56,11 +57,12 @@ def plan_as_json(plan: Plan, full: bool = False) -> dict[str, Any]:
             "opening_cost": canonical(plan.opening_cost),
             "openings": [{"depot": one.depot, "charge": canonical(one.charge)} for one in plan.openings],
             "whole_loads": _wholeness(plan, plan.whole),
-            "values_withheld": value_of.withheld,
         }
+    if because := why_withheld(plan):
+        written["values_withheld"] = because
     if not full:
         return written
-    return {**written, "rates": [] if plan.whole else [_rate(one) for one in rate_intervals(plan)]}
+    return {**written, "rates": [] if because else [_rate(one) for one in rate_intervals(plan)]}
 
 
 def _shipment(one: Shipment, whole: bool) -> dict[str, Any]:

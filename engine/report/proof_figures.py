@@ -63,10 +63,16 @@ def proof_figures(plan: Plan) -> ProofFigures:
     model = plan.model
     problem = model.problem
     depot_sums, customer_sums = chain_prices(model, plan.closure)
-    names = list(model.weights.of)  # the highest aim first
     depot_units, depot_money = _apart(model, depot_sums)
     customer_units, customer_money = _apart(model, customer_sums)
     cost_units, _ = _apart(model, problem.cost - model.money)
+    names = list(model.weights.of)  # the highest aim first
+    for one in reversed(model.decided.prices if model.decided else ()):
+        names.insert(0, one.aim)
+        depot_units.insert(0, one.depot - one.depot[-1])
+        customer_units.insert(0, one.customer + one.depot[-1])
+        cost_units.insert(0, np.zeros(problem.rows, dtype=np.int64))
+        cost_units[0][one.rows] = 1
     left = [
         cost_units[a] - depot_units[a][problem.depot] - customer_units[a][problem.customer]
         for a in range(len(names))
@@ -93,10 +99,8 @@ def proof_figures(plan: Plan) -> ProofFigures:
 
 def check_codes(plan: Plan, figures: ProofFigures) -> Integers:
     """(rows of the problem,) 0: in order; 1: could improve the plan; 2: outside its limits."""
-    problem, quantity, sign = plan.model.problem, plan.flow.quantity, figures.sign
-    none = np.zeros(problem.rows, dtype=np.int64)
-    least = none if problem.at_least is None else problem.at_least
-    most = none + UNLIMITED if problem.at_most is None else problem.at_most
+    quantity, sign = plan.flow.quantity, figures.sign
+    least, most = plan.model.stated_limits
     improves = ((sign > 0) & (quantity > least)) | ((sign < 0) & (quantity < most))
     return np.where((quantity < least) | (quantity > most), 2, improves.astype(np.int64))
 
@@ -125,13 +129,9 @@ def kept_of_must(plan: Plan) -> Integers:
 
 def forced(model: Model, figures: ProofFigures) -> Integers:
     """(rows of the problem,) the limit that holds each row, where its sign says that one does; else 0."""
-    problem = model.problem
-    at = np.zeros(problem.rows, dtype=np.int64)
-    if problem.at_least is not None:
-        at = np.where(figures.sign > 0, problem.at_least, at)
-    if problem.at_most is not None:
-        at = np.where((figures.sign < 0) & (problem.at_most != UNLIMITED), problem.at_most, at)
-    return at
+    least, most = model.stated_limits
+    at = np.where(figures.sign > 0, least, 0)
+    return np.where((figures.sign < 0) & (most != UNLIMITED), most, at)
 
 
 def lower_bound(plan: Plan, figures: ProofFigures) -> Decimal:

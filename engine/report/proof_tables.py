@@ -58,9 +58,7 @@ def depot_rows(plan: Plan, figures: ProofFigures, layout: Layout) -> Iterator[Ro
         r = layout.depots[0] + i
         rows = [int(row) for row in (model.stay_rows[i], model.must_row[i]) if row != NO_RATE]
         supply = int(model.problem.supply[i])
-        should = (
-            int(model.problem.at_most[rows[1]]) if len(rows) > 1 and model.problem.at_most is not None else 0
-        )
+        should = int(model.stated_limits[1][rows[1]]) if len(rows) > 1 else 0
         free_aims, must_aims = f"(P{r}+$P${stays})", f"(Q{r}-P{r}-$P${stays})"
         free, bound = f"IF({free_aims}<>0,-{free_aims},J{r})", f"IF({must_aims}<>0,{must_aims},J{r})"
         check = (
@@ -344,9 +342,7 @@ def _barred(plan: Plan) -> set[int]:
 
 
 def _limits(model: Model, row: int) -> tuple[int, int | None]:
-    problem = model.problem
-    least = 0 if problem.at_least is None else int(problem.at_least[row])
-    most = UNLIMITED if problem.at_most is None else int(problem.at_most[row])
+    least, most = (int(limits[row]) for limits in model.stated_limits)
     return least, None if most == UNLIMITED else most
 
 

@@ -296,6 +296,14 @@ _RULES = (
             "remainders go by the largest fraction, then by sheet order."
         ),
     ),
+    Rule(
+        "Aims one by one",
+        lambda plan: plan.model.apart,
+        lambda _: (
+            "The rates have so many digits that the aims were solved one after the other, each proved, and "
+            "each on what the ones before leave free. What a unit is worth is not told for such a plan."
+        ),
+    ),
     Rule("One depot", _any_customer(lambda customer: customer.one_depot), _one_depot),
     Rule(
         "Holds",

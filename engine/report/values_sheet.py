@@ -13,6 +13,7 @@ from engine.reasons import (
     rate_intervals,
     values,
 )
+from engine.reasons.ground import why_withheld
 from engine.report.look import Style, number_format, places_of
 from engine.report.sheet import Row, Sheet, Value
 
@@ -46,7 +47,7 @@ _ABOUT_RATES = (
 def values_sheet(plan: Plan, header: str) -> Sheet:
     """Sheet *Values*: depots, then customers, then rates in use and those nearest to paying."""
     found = values(plan, holds=True)
-    if plan.whole is not None:
+    if why_withheld(plan):
         rows = [
             Row(["What a unit is worth"], [Style("title")], height=26),
             Row([found.withheld], [Style("quiet")]),
