@@ -5,7 +5,12 @@ import shutil
 from collections.abc import Iterator
 
 import pytest
+from hypothesis import settings
 from playwright.sync_api import Browser, sync_playwright
+
+# no test depends on how busy the machine is
+settings.register_profile("unhurried", settings(), deadline=None)
+settings.load_profile("unhurried")
 
 CHROMIUM = shutil.which("chromium") or "/usr/bin/chromium"
 ARGUMENTS = [
