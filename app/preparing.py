@@ -34,8 +34,8 @@ def _prepare() -> None:
 def _settle() -> None:
     """Take what stays until the end out of the garbage collector's rounds.
 
-    Most objects of the process are modules, which never become garbage, and a round looks at all of them while
-    every session waits.
+    Most objects of the process are modules, which never become garbage, and a round looks at all of them
+    while every session waits.
     """
     import altair
     import pydeck
