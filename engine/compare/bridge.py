@@ -4,14 +4,16 @@ Figures change from the first week's to the second's, one effect after the other
 the whole week is planned anew after each: what the plan then costs more is that effect. Nothing is left
 over, since the first step starts at the first plan and the last one ends at the second. An effect depends
 on its place in the order; the average over all orders does not (Shapley, "A value for n-person games",
-1953): it is worked out from the plans of all subsets of the effects.
+1953): it is worked out from the plans of all subsets of the effects. Where these are too many, the named
+events of the week are one effect together, which is what they have in common by Owen's value ("Values of
+games with a priori unions", 1977); where even then they are too many, the stated order stands.
 
 Freight, charges and what is short are bridged each by itself, in exact fractions; freight and charges are
 then cut to cents by largest remainder, so that the cents add up as well.
 """
 
-from collections.abc import Callable, Collection, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Collection, Mapping, Sequence
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from fractions import Fraction
 from math import factorial
@@ -31,6 +33,9 @@ from engine.week import Week
 
 MOST_AVERAGED = 10
 """With more effects than this there are too many plans to average over: 2 to their power."""
+
+EVENTS = "events"
+"""The effect that all named events are together."""
 
 DEPARTS_BEFORE, DEPARTS_AFTER, ROUNDING = "departs before", "departs after", "rounding"
 
@@ -81,7 +86,10 @@ class Step:
 
 @dataclass(frozen=True, eq=False)
 class Bridge:
-    """From a first plan to a second: positive is dearer, or more that is short."""
+    """From a first plan to a second: positive is dearer, or more that is short.
+
+    note: how the average that was asked for had to be made smaller, or why there is none; empty otherwise
+    """
 
     first: str
     second: str
@@ -96,6 +104,7 @@ class Bridge:
     steps: tuple[Step, ...]
     averaged: bool
     planned: int
+    note: str = ""
 
     @property
     def freight(self) -> Decimal:
@@ -133,29 +142,23 @@ def bridge(
     Args:
         first, second: where it starts and ends.
         order: effects to be taken first, in this order; the others follow in the stated one.
-        average: the average over all orders instead of one order.
+        average: the average over all orders instead of one order; `Bridge.note` says where there are too many
+            effects for that.
         progress: told how many of how many weeks are planned.
         seconds: how long each week with whole loads is searched for; what is not proved then is remarked.
 
     Raises:
-        NotComparable: units or currencies differ, an effect is not known or does not differ, or there are
-            too many effects to average over.
+        NotComparable: units or currencies differ, an effect is not known or does not differ, or some mixture
+            of the two cannot be planned, so that there is no average.
         NotPlannable: one of the two weeks cannot be planned.
     """
     mixture = Mixture.of(first.week, second.week if second.before is None else second.before, second.events)
     effects = ordered(mixture.effects, order)
-    if average and len(effects) > MOST_AVERAGED and mixture.events:
-        mixture = Mixture.of(first.week, second.week)
-        effects = ordered(mixture.effects, [key for key in order if not is_event(key)])
-    if average and len(effects) > MOST_AVERAGED:
-        raise NotComparable(
-            f"{len(effects)} effects differ; an average over all orders of more than {MOST_AVERAGED} would "
-            f"take {2 ** len(effects):,} plans. Compare in one order."
-        )
-    plans = _Plans(
-        mixture, (first, second), seconds, progress, 2 ** len(effects) if average else len(effects) + 1
-    )
-    found = _averaged(plans, effects) if average else _in_order(plans, effects)
+    together, note = _together(effects) if average else ({}, "")
+    average = average and not (effects and not together)
+    expected = 2 ** len(together) if average else len(effects) + 1
+    plans = _Plans(mixture, (first, second), seconds, progress, expected)
+    found = _averaged(plans, together) if average else _in_order(plans, effects)
     ends = plans.worth(()), plans.worth(effects)
     if ends[0] is None or ends[1] is None:
         raise NotComparable("A week that cannot be planned cannot be compared.")
@@ -164,7 +167,30 @@ def bridge(
         found.insert(0, (DEPARTS_BEFORE, ends[0].less(actual[0]), ()))
     if actual[1] != ends[1]:
         found.append((DEPARTS_AFTER, actual[1].less(ends[1]), ()))
-    return _written(first, second, mixture, found, average, plans.count)
+    return replace(_written(first, second, mixture, found, average, plans.count), note=note)
+
+
+def _together(effects: Sequence[str]) -> tuple[dict[str, tuple[str, ...]], str]:
+    """What is averaged over: each effect by itself, or the events as one of them; nothing where too many.
+
+    With a note where it is not each effect by itself.
+    """
+    single: dict[str, tuple[str, ...]] = {effect: (effect,) for effect in effects}
+    if len(effects) <= MOST_AVERAGED:
+        return single, ""
+    events = tuple(effect for effect in effects if is_event(effect))
+    fewer = {effect: those for effect, those in single.items() if effect not in events}
+    if events and len(fewer) < MOST_AVERAGED:
+        return {**fewer, EVENTS: events}, (
+            f"An average tells at most {MOST_AVERAGED} reasons apart and there are {len(effects)}, so the "
+            f"{len(events)} events of the week are one reason together (Owen 1977); without the average they "
+            "are told one by one."
+        )
+    return {}, (
+        f"{len(effects)} reasons differ, and an average over all orders is worked out for at most "
+        f"{MOST_AVERAGED}: it would take {2 ** len(effects):,} plans. So this is no average: the reasons stand "
+        "in the stated order, each on top of those before it."
+    )
 
 
 def ordered(effects: Sequence[str], first: Sequence[str]) -> tuple[str, ...]:
@@ -267,8 +293,12 @@ def _in_order(plans: _Plans, effects: Sequence[str]) -> list[_Found]:
 _NOTHING = Worth(Fraction(0), Fraction(0), Fraction(0))
 
 
-def _averaged(plans: _Plans, effects: Sequence[str]) -> list[_Found]:
-    """The average of each effect over all orders, from all subsets (Shapley 1953)."""
+def _averaged(plans: _Plans, together: Mapping[str, tuple[str, ...]]) -> list[_Found]:
+    """The average of each effect over all orders, from all subsets (Shapley 1953).
+
+    together: what each effect stands for, itself or several at once
+    """
+    effects = tuple(together)
     count = len(effects)
     weights = [
         Fraction(factorial(size) * factorial(count - size - 1), factorial(count)) for size in range(count)
@@ -279,7 +309,8 @@ def _averaged(plans: _Plans, effects: Sequence[str]) -> list[_Found]:
         sums, remarks = _NOTHING, dict[str, None]()
         for bits in range(2 ** len(others)):
             chosen = [one for n, one in enumerate(others) if bits >> n & 1]
-            without, with_it = plans.worth(chosen), plans.planned([*chosen, effect])
+            inside = [key for one in chosen for key in together[one]]
+            without, with_it = plans.worth(inside), plans.planned([*inside, *together[effect]])
             if without is None or with_it[0] is None:
                 raise NotComparable(
                     "Some mixtures of the two weeks cannot be planned, so there is no average over all "
@@ -354,6 +385,8 @@ def _called(key: str, mixture: Mixture) -> tuple[str, str]:
     }
     if key in own:
         return own[key]
+    if key == EVENTS:
+        return "Events of the week", "; ".join(event.name for event in mixture.events)
     for number, event in enumerate(mixture.events):
         if key == event_key(number):
             return event.name, "an event of the week"

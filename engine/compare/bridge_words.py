@@ -36,6 +36,8 @@ def sentences(bridge: Bridge, money: Written | None = None, quantity: Written | 
     said += _service(bridge, pay, much)
     if bridge.averaged:
         said.append("Each reason is its average over all orders in which they could have come.")
+    if bridge.note:
+        said.append(bridge.note)
     return said
 
 

@@ -34,6 +34,7 @@ def bridge_as_json(bridge: Bridge) -> dict[str, Any]:
             }
             for step in bridge.steps
         ],
+        **({"note": bridge.note} if bridge.note else {}),
     }
 
 

@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 import engine
 import sample_data
 from engine.changes import Alter, Lift, SetHold, Together
+from engine.compare import bridge as bridge_module
 from engine.compare.bridge import Bridge, Side, Worth, bridge
 from engine.compare.bridge_words import paragraph
 from engine.compare.cents import apportioned
@@ -312,3 +313,57 @@ def test_an_event_that_does_not_fit_a_mixture_is_noted() -> None:
     mixture = Mixture.of(week, week, (Event("lost", Alter("depot", "Nowhere", "available", D(0))),))
     _, said = mixture.week({"event 1"})
     assert said == ("'lost' changes nothing here: There is no depot 'Nowhere' in the week.",)
+
+
+def eventful(events: int, figures: bool = True) -> tuple[Side, Side]:
+    """Two weeks of one depot and customer; in the second so many events, after some other figures."""
+    first = Week.of(
+        (Depot("Quarry", D(90)), Depot("Upland", D(90))),
+        (Customer("Elm", (Order(D(40)),)), Customer("Ash", (Order(D(30)),))),
+        tuple(RateRow(i, j, D(r)) for i, j, r in (("Quarry", "Elm", 3), ("Quarry", "Ash", 4), ("Upland", "Elm", 5),
+                                                  ("Upland", "Ash", 6))),
+        Rules(week="A"),
+    )  # fmt: skip
+    before = first
+    if figures:
+        before = first.apply(Alter("rule", "", "fuel_surcharge", D(10)))
+        before = before.apply(Alter("customer", "Elm", "charge_if_short", D(2)))
+    named = tuple(
+        Event(f"event {n}", Alter("depot", "Quarry", "available", D(60 - 5 * n))) for n in range(events)
+    )
+    second = before
+    for event in named:
+        second = second.apply(event.change)
+    return side(first, "A"), Side("B", second, plan_week(second), before, named)
+
+
+def test_of_too_many_effects_the_events_are_averaged_as_one() -> None:
+    """The union's share is its Shapley value among the unions (Owen 1977), worked out from both orders."""
+    first, second = eventful(11)
+    found = bridge(first, second, average=True)
+    assert found.averaged
+    assert "the 11 events of the week are one reason together" in paragraph(found)
+    steps = {step.key: step.exact.freight for step in found.steps}
+    assert set(steps) == {"surcharge", "charges", "events"}
+    assert "event 3" in next(step for step in found.steps if step.key == "events").about
+    surcharge = Alter("rule", "", "fuel_surcharge", D(10))
+    both, neither = second.week, first.week
+    events_only = both.apply(Alter("rule", "", "fuel_surcharge", None))
+    worth = [
+        Fraction(plan_week(w).freight_cost) for w in (neither, neither.apply(surcharge), events_only, both)
+    ]
+    assert steps["events"] == ((worth[2] - worth[0]) + (worth[3] - worth[1])) / 2
+    assert steps["charges"] == 0
+    adds_up(found)
+
+
+def test_where_even_that_is_too_much_the_stated_order_stands_and_says_so(
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    monkeypatch.setattr(bridge_module, "MOST_AVERAGED", 1)
+    first, second = eventful(2)
+    found, plain = bridge(first, second, average=True), bridge(first, second)
+    assert not found.averaged
+    assert found.steps == plain.steps
+    assert "So this is no average" in paragraph(found)
+    assert not plain.note
