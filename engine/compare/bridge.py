@@ -188,8 +188,8 @@ def _together(effects: Sequence[str]) -> tuple[dict[str, tuple[str, ...]], str]:
         )
     return {}, (
         f"{len(effects)} reasons differ, and an average over all orders is worked out for at most "
-        f"{MOST_AVERAGED}: it would take {2 ** len(effects):,} plans. So this is no average: the reasons stand "
-        "in the stated order, each on top of those before it."
+        f"{MOST_AVERAGED}: it would take {2 ** len(effects):,} plans. So this is no average: the reasons "
+        "stand in the stated order, each on top of those before it."
     )
 
 

@@ -320,10 +320,14 @@ def eventful(events: int, figures: bool = True) -> tuple[Side, Side]:
     first = Week.of(
         (Depot("Quarry", D(90)), Depot("Upland", D(90))),
         (Customer("Elm", (Order(D(40)),)), Customer("Ash", (Order(D(30)),))),
-        tuple(RateRow(i, j, D(r)) for i, j, r in (("Quarry", "Elm", 3), ("Quarry", "Ash", 4), ("Upland", "Elm", 5),
-                                                  ("Upland", "Ash", 6))),
+        (
+            RateRow("Quarry", "Elm", D(3)),
+            RateRow("Quarry", "Ash", D(4)),
+            RateRow("Upland", "Elm", D(5)),
+            RateRow("Upland", "Ash", D(6)),
+        ),
         Rules(week="A"),
-    )  # fmt: skip
+    )
     before = first
     if figures:
         before = first.apply(Alter("rule", "", "fuel_surcharge", D(10)))
