@@ -20,9 +20,9 @@ def _prepare() -> None:
     from engine.network import prepare
 
     try:
-        prepare()
+        prepare(_done.set)  # from there on weeks can be planned; the rest is made while somebody looks
     finally:
-        _done.set()  # from here on weeks can be planned; the rest is made while somebody looks at the first
+        _done.set()
     from engine.loads import prepare as prepare_loads
     from engine.reasons.prepare import prepare as prepare_reasons
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import threading
 from collections.abc import Callable
 
 from engine.exact import Integers, TooLarge
@@ -20,6 +21,10 @@ with very many customers. Beyond, the simplex is faster, where rates grow with d
 depots and 60 to 100,000 customers)."""
 
 
+only_simplex = threading.Event()
+"""Set while the code of the exchange is still being made."""
+
+
 def least_cost(problem: Problem, start: Flow | None = None) -> Flow:
     """A least-cost flow of `problem`, proved in integers before it is returned.
 
@@ -36,7 +41,12 @@ def least_cost(problem: Problem, start: Flow | None = None) -> Flow:
 def _solved(problem: Problem, start: Flow | None) -> tuple[Method, Answer]:
     """Quantities, depot prices and customer prices, and how they were found; not yet proved."""
     price, quantity = guess_from(problem, start)
-    if start is not None and quantity is start.quantity and few_orders_differ(problem, start.problem):
+    if (
+        start is not None
+        and quantity is start.quantity
+        and few_orders_differ(problem, start.problem)
+        and not only_simplex.is_set()
+    ):
         answer = exchange.resume(problem, start.problem, quantity, price)
         if answer is not None:
             return "exchange", answer
@@ -57,6 +67,8 @@ def _simplex() -> Solver:
 
 
 def method_for(problem: Problem) -> Method:
-    """The kernel that is faster on problems of this shape."""
+    """The kernel that is faster on problems of this shape, of those that are there."""
+    if only_simplex.is_set():
+        return "simplex"
     most = SOME_DEPOTS if problem.customers >= MANY_CUSTOMERS else FEW_DEPOTS
     return "exchange" if problem.depots <= most else "simplex"

@@ -10,6 +10,7 @@ from pathlib import Path
 import numpy as np
 
 from engine.network import Problem, closure, exchange, least_cost, prepare, proof, restart
+from engine.network.solve import only_simplex
 
 PROVE = """
 import numpy as np
@@ -61,3 +62,23 @@ def test_without_a_folder_of_the_users_a_temporary_one_serves(tmp_path: Path) ->
     cost, folder = proved({"XDG_CACHE_HOME": str(blocked), "TMPDIR": str(tmp_path / "temporary")})
     assert cost == "2"
     assert Path(folder).is_relative_to(tmp_path / "temporary")
+
+
+def test_the_simplex_solves_all_while_the_exchange_is_being_made() -> None:
+    problem = Problem.dense([2, 1], [1, 2], [[1, 2], [3, 5]])
+    assert least_cost(problem).method == "exchange"
+    only_simplex.set()
+    try:
+        flow = least_cost(problem)
+        again = least_cost(problem.with_quantities([3, 1], [2, 2]), flow)
+    finally:
+        only_simplex.clear()
+    assert flow.method == again.method == "simplex"
+    assert (flow.cost, again.cost) == (7, 8)
+
+
+def test_whoever_waits_is_told_once_that_problems_can_be_solved() -> None:
+    told: list[int] = []
+    prepare(lambda: told.append(1))
+    assert told == [1]
+    assert not only_simplex.is_set()
