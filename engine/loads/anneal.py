@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from dataclasses import dataclass
 
 import numpy as np
@@ -22,8 +23,11 @@ TAKEN_OUT = 10
 HOT = 40
 """At first a plan may be dearer by what an average customer costs, divided by this."""
 
-PIECE = 4000
-"""Rounds between two looks at the clock."""
+PIECE = 200
+"""Rounds of the first piece,"""
+
+PIECE_SECONDS = 0.1
+"""and about how long every later one takes."""
 
 FIRST_ROUNDS = 60_000
 """Rounds of the first run; each one that finds nothing makes the next longer."""
@@ -31,7 +35,7 @@ FIRST_ROUNDS = 60_000
 
 @dataclass
 class Annealing:
-    """One run. `rounds` are all of its rounds, `done` those that have passed."""
+    """One run. `rounds` are all of its rounds, `done` those that have passed, `pace` those of a piece."""
 
     rows: Rows
     guide: Priced
@@ -43,6 +47,7 @@ class Annealing:
     heat: int
     done: int = 0
     found: bool = False
+    pace: int = PIECE
 
 
 def begin(problem: LoadProblem, quantity: Integers, price: Integers, rounds: int, seed: int) -> Annealing:
@@ -72,10 +77,13 @@ def begin(problem: LoadProblem, quantity: Integers, price: Integers, rounds: int
 
 def piece(run: Annealing) -> bool:
     """A piece of the run; says whether the best plan of the run, in `moves.best`, is a new one."""
-    count = min(PIECE, 100 * len(run.rows.demand), run.rounds - run.done)
+    count = min(run.pace, run.rounds - run.done)
+    begun = time.monotonic()
     run.moves.setting[0] = count
     run.moves.setting[2] = run.heat * (run.rounds - run.done) // run.rounds
     better = rearrange(run.rows, run.guide, run.true, run.room, run.answers, run.moves)
+    taken = max(time.monotonic() - begun, 1e-6)
+    run.pace = max(1, min(2 * run.pace, int(count * PIECE_SECONDS / taken), 100 * len(run.rows.demand)))
     run.done += count
     run.found |= better
     return better

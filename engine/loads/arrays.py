@@ -68,11 +68,15 @@ class Answers(NamedTuple):
 
 
 class Corners(NamedTuple):
-    """Corners of the rows of one customer: those of its row n are at first[n] up to first[n+1]."""
+    """Corners of the rows of one customer: those of its row n are at first[n] up to first[n+1].
+
+    ratio: (rows of the customer,) what a unit costs at least on each row, NEVER where none can be had
+    """
 
     first: Integers
     x: Integers
     cost: Integers
+    ratio: Integers
 
 
 class Sums(NamedTuple):

@@ -8,7 +8,12 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from engine.exact import Integers
+from engine.loads.arrays import NEVER, Answers
 from engine.loads.compact import compact, run
+from engine.loads.highs import run_until
+from engine.loads.master import Master, add_patterns, whole_ways
+from engine.loads.patterns import patterns_of
+from engine.loads.prices import Floats
 from engine.loads.problem import Flags
 from engine.loads.stage import Stage
 
@@ -17,6 +22,12 @@ LONGEST = 10.0**7
 
 SMALLEST_GAP = 1e-9
 """Part of the cost that HiGHS may leave open."""
+
+CHOSEN_GAP = 1e-4
+"""Part of the cost that may be left open when ways are chosen: the ways are not all there are,"""
+
+CHOOSING = 15.0
+"""so it may not take longer than so many seconds."""
 
 
 @dataclass
@@ -59,6 +70,36 @@ def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool) -> Bes
         work.bound, work.optimal = found.bound, found.optimal
         if found.quantity is not None:
             work.quantities.append(found.quantity)
+
+    work.thread = threading.Thread(target=solve, daemon=True)
+    work.thread.start()
+    return work
+
+
+def choose(master: Master, best: Integers, short: Integers) -> Beside:
+    """Begins to choose one way for every customer, of those that the linear programme has met.
+
+    The programme with whole ways (Barnhart et al. 1998 price and branch); its columns hold good plans long
+    before the week's own integer model has any.
+    best, short: the best plan, a way of which every customer gets as a column, and what it lacks
+    """
+    problem = master.stage.problem
+    everybody = np.arange(problem.customers, dtype=np.int64)
+    never = np.full(problem.customers, NEVER, dtype=np.int64)
+    add_patterns(master, patterns_of(master.stage, everybody, Answers(best, short, never, never)))
+    solver, patterns = whole_ways(master), master.patterns
+    solver.setOptionValue("mip_rel_gap", CHOSEN_GAP)
+    everything = np.ones(problem.rows, dtype=np.bool_)
+    work = Beside(everything, best, False)
+
+    def add(value: Floats) -> None:
+        weight = np.rint(value[master.fixed : master.fixed + len(patterns.customer)]).astype(np.int64)
+        quantity = np.zeros(problem.rows, dtype=np.int64)
+        np.add.at(quantity, patterns.row, weight[patterns.way] * patterns.quantity)
+        work.quantities.append(quantity)
+
+    def solve() -> None:
+        run_until(solver, work.stopping.is_set, CHOOSING, add)
 
     work.thread = threading.Thread(target=solve, daemon=True)
     work.thread.start()

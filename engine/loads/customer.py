@@ -130,40 +130,14 @@ def at_customer(
     for n in range(width):
         best[n] = answers.quantity[first + n]
     best[width] = answers.short[j]
-    count = 0
-    ratio = NEVER
-    if rows.short_most[j] > 0:
-        ratio = priced.short[j]
-    coarse, forced = False, 0
-    for n in range(width):
-        corners.first[n] = count
-        count = list_corners(rows, priced, first + n, needed, corners, count)
-        for c in range(corners.first[n], count):
-            ratio = min(ratio, corners.cost[c] // corners.x[c])
-        coarse |= is_coarse(rows, first + n, needed)
-        forced += rows.forced[first + n]
-    corners.first[width] = count
+    ratio, coarse, forced = list_all(rows, priced, corners, j)
     if needed == 0 or ratio == NEVER:
         answers.lower[j] = finish_trivial(rows, answers, j, forced, needed)
         answers.value[j] = answers.lower[j]
         return
     if forced == 0:
         value = try_simple(rows, priced, corners, best, j, value)
-    lost = NEVER
-    if rows.one_depot[j] == 0:
-        value, lost = search_rows(rows, priced, corners, sums, active, best, (j, -1, ratio, value))
-    else:
-        for n in range(width):
-            i = rows.depot[first + n]
-            seen, elsewhere = False, 0
-            for m in range(width):
-                seen |= m < n and rows.depot[first + m] == i
-                if rows.depot[first + m] != i:
-                    elsewhere += rows.forced[first + m]
-            if seen or elsewhere > 0:
-                continue
-            value, dropped = search_rows(rows, priced, corners, sums, active, best, (j, i, ratio, value))
-            lost = min(lost, dropped)
+    value, lost = search_depots(rows, priced, corners, sums, active, best, (j, ratio, value))
     if coarse:
         lost = min(lost, ratio * needed)
     answers.value[j] = value
@@ -172,6 +146,108 @@ def at_customer(
         for n in range(width):
             answers.quantity[first + n] = best[n]
         answers.short[j] = best[width]
+
+
+@part
+def list_all(rows: Rows, priced: Priced, corners: Corners, j: int) -> tuple[int, bool, int]:
+    """Lists the corners of customer j.
+
+    Returns what a unit costs at least (NEVER if nothing can be had), whether corners were left out, and how
+    many rows must carry something.
+    """
+    first, needed = rows.start[j], rows.demand[j]
+    width = rows.start[j + 1] - first
+    count = 0
+    ratio = NEVER
+    if rows.short_most[j] > 0:
+        ratio = priced.short[j]
+    coarse, forced = False, 0
+    for n in range(width):
+        corners.first[n] = count
+        count = list_corners(rows, priced, first + n, needed, corners, count)
+        # a smaller number is as true, and its products cannot wrap
+        corners.ratio[n] = NEVER if count == corners.first[n] else NEVER // (2 * max(needed, 1))
+        for c in range(corners.first[n], count):
+            corners.ratio[n] = min(corners.ratio[n], corners.cost[c] // corners.x[c])
+        ratio = min(ratio, corners.ratio[n])
+        coarse |= is_coarse(rows, first + n, needed)
+        forced += rows.forced[first + n]
+    corners.first[width] = count
+    return ratio, coarse, forced
+
+
+@part
+def search_depots(
+    rows: Rows,
+    priced: Priced,
+    corners: Corners,
+    sums: Sums,
+    active: Integers,
+    best: Integers,
+    about: tuple[int, int, int],
+) -> tuple[int, int]:
+    """The search of `search_rows` for any depots, or for each depot alone if the customer takes from one."""
+    j, ratio, value = about
+    if rows.one_depot[j] == 0:
+        return search_rows(rows, priced, corners, sums, active, best, (j, -1, ratio, value))
+    first = rows.start[j]
+    width = rows.start[j + 1] - first
+    lost = NEVER
+    for n in range(width):
+        i = rows.depot[first + n]
+        seen, elsewhere = False, 0
+        for m in range(width):
+            seen |= m < n and rows.depot[first + m] == i
+            if rows.depot[first + m] != i:
+                elsewhere += rows.forced[first + m]
+        if seen or elsewhere > 0:
+            continue
+        value, dropped = search_rows(rows, priced, corners, sums, active, best, (j, i, ratio, value))
+        lost = min(lost, dropped)
+    return value, lost
+
+
+@part
+def regrets_at(
+    rows: Rows,
+    priced: Priced,
+    corners: Corners,
+    sums: Sums,
+    active: Integers,
+    best: Integers,
+    about: tuple[int, int, int],
+    regret: Integers,
+) -> None:
+    """How much dearer customer j is at least, for each of its rows, if that row must be used.
+
+    regret: (rows of j,) receives them
+    about:  j, its least cost, and what interests: regrets beyond that may be given as any smaller number
+            that is beyond it too
+    """
+    j, lower, most = about
+    first, last, needed = rows.start[j], rows.start[j + 1], rows.demand[j]
+    ceiling = lower + most
+    ratio, coarse, _ = list_all(rows, priced, corners, j)
+    for row in range(first, last):
+        found = NEVER
+        least = rows.least[row]
+        if rows.forced[row] == 1 or coarse:
+            found = lower
+        elif least <= min(rows.most[row], needed):
+            found = cost_of(rows, priced, row, least) + ratio * (needed - least)
+            for c in range(corners.first[row - first], corners.first[row - first + 1]):
+                found = min(found, corners.cost[c] + ratio * (needed - corners.x[c]))
+        regret[row - first] = NEVER if found == NEVER else max(found - lower, 0)
+    if coarse:
+        return
+    for row in range(first, last):
+        if rows.forced[row] == 1 or regret[row - first] >= most:
+            continue
+        rows.forced[row] = 1
+        again, _, _ = list_all(rows, priced, corners, j)
+        value, lost = search_depots(rows, priced, corners, sums, active, best, (j, again, ceiling))
+        rows.forced[row] = 0
+        regret[row - first] = max(regret[row - first], min(value, lost) - lower)
 
 
 @part
@@ -257,15 +333,18 @@ def search_rows(
         for c in range(corners.first[n], corners.first[n + 1]):
             useful |= corners.cost[c] + ratio * (needed - corners.x[c]) < value
         if useful:
-            active[count] = n
+            # the cheapest first: what is left can then only be dearer
+            at = count
+            while at > 0 and corners.ratio[active[at - 1]] > corners.ratio[n]:
+                active[at] = active[at - 1]
+                at -= 1
+            active[at] = n
             count += 1
     # the free one is each row in turn, and what is short
     for free in range(count + 1):
         if free == count and rows.short_most[j] == 0:
             continue
-        level, begin, end, dropped = reach(
-            rows, priced, corners, sums, active, (j, count, free, ratio, value)
-        )
+        level, begin, end, dropped = reach(rows, priced, corners, sums, active, (j, count, free, value))
         lost = min(lost, dropped)
         row = first + (active[free] if free < count else 0)
         found = -1
@@ -306,20 +385,49 @@ def trace(sums: Sums, active: Integers, best: Integers, about: tuple[int, int, i
 
 
 @part
+def ratio_behind(
+    rows: Rows, priced: Priced, corners: Corners, active: Integers, about: tuple[int, int, int, int]
+) -> int:
+    """What a unit costs at least on the free row, as what is short, or on rows behind a place."""
+    j, count, free, place = about
+    ratio = NEVER
+    if free < count:
+        ratio = corners.ratio[active[free]]
+    if rows.short_most[j] > 0:
+        ratio = min(ratio, priced.short[j])
+    behind = place + 1
+    if behind == free:
+        behind += 1
+    if behind < count:
+        ratio = min(ratio, corners.ratio[active[behind]])
+    return int(ratio)
+
+
+@part
+def with_rest(cost: int, ratio: int, rest: int) -> int:
+    """A cost, and the rest at a ratio."""
+    if rest == 0:
+        return cost
+    if ratio == NEVER:
+        return NEVER
+    return cost + ratio * rest
+
+
+@part
 def reach(
     rows: Rows,
     priced: Priced,
     corners: Corners,
     sums: Sums,
     active: Integers,
-    about: tuple[int, int, int, int, int],
+    about: tuple[int, int, int, int],
 ) -> tuple[int, int, int, int]:
     """All sums at corners of the active rows but the free one; sums that cannot beat `value` are left out.
 
     Returns the number of steps, where the last step's sums begin and end, and the least value that was
     left out because there was no room.
     """
-    j, count, free, ratio, value = about
+    j, count, free, value = about
     needed, first = rows.demand[j], rows.start[j]
     lost = NEVER
     begin, end, level = 0, 1, 0
@@ -328,28 +436,35 @@ def reach(
         if place == free or (place == count and rows.short_most[j] == 0):
             continue
         into = end
+        ratio = ratio_behind(rows, priced, corners, active, (j, count, free, place))
         if place == count:
             most = min(rows.short_most[j], needed)
             for s in range(begin, end):
                 if into + 2 > len(sums.sum):
-                    lost = min(lost, sums.cost[s] + ratio * (needed - sums.sum[s]))
+                    lost = min(lost, with_rest(sums.cost[s], ratio, needed - sums.sum[s]))
                     continue
                 into = put(sums, into, s, 0, 0)
+                if sums.sum[s] + most > needed:
+                    continue
                 cost = sums.cost[s] + priced.short[j] * most
-                if sums.sum[s] + most <= needed and cost + ratio * (needed - sums.sum[s] - most) < value:
+                if with_rest(cost, ratio, needed - sums.sum[s] - most) < value:
                     into = put(sums, into, s, most, priced.short[j] * most)
         else:
             n = active[place]
             for s in range(begin, end):
                 if rows.forced[first + n] == 0:
-                    if into + 1 > len(sums.sum):
-                        lost = min(lost, sums.cost[s] + ratio * (needed - sums.sum[s]))
-                    else:
-                        into = put(sums, into, s, 0, 0)
+                    bound = with_rest(sums.cost[s], ratio, needed - sums.sum[s])
+                    if bound < value:
+                        if into + 1 > len(sums.sum):
+                            lost = min(lost, bound)
+                        else:
+                            into = put(sums, into, s, 0, 0)
                 for c in range(corners.first[n], corners.first[n + 1]):
                     x, cost = corners.x[c], corners.cost[c]
-                    bound = sums.cost[s] + cost + ratio * (needed - sums.sum[s] - x)
-                    if sums.sum[s] + x > needed or bound >= value:
+                    if sums.sum[s] + x > needed:
+                        continue
+                    bound = with_rest(sums.cost[s] + cost, ratio, needed - sums.sum[s] - x)
+                    if bound >= value:
                         continue
                     if into + 1 > len(sums.sum):
                         lost = min(lost, bound)
@@ -396,13 +511,13 @@ def thin(sums: Sums, begin: int, end: int, about: tuple[int, int]) -> tuple[int,
         low, highest = NEVER, -NEVER
         for n in range(count):
             if kept[n] == 1:
-                bound = sums.cost[begin + n] + ratio * (needed - sums.sum[begin + n])
+                bound = with_rest(sums.cost[begin + n], ratio, needed - sums.sum[begin + n])
                 low, highest = min(low, bound), max(highest, bound)
         while low < highest:
             middle = low + (highest - low) // 2
             within = 0
             for n in range(count):
-                bound = sums.cost[begin + n] + ratio * (needed - sums.sum[begin + n])
+                bound = with_rest(sums.cost[begin + n], ratio, needed - sums.sum[begin + n])
                 within += kept[n] == 1 and bound <= middle
             if within > MOST_SUMS // 2:
                 highest = middle
@@ -413,7 +528,7 @@ def thin(sums: Sums, begin: int, end: int, about: tuple[int, int]) -> tuple[int,
         if kept[n] == 0:
             continue
         s = begin + n
-        bound = sums.cost[s] + ratio * (needed - sums.sum[s])
+        bound = with_rest(sums.cost[s], ratio, needed - sums.sum[s])
         if bound > highest or into - begin == MOST_SUMS // 2:
             lost = min(lost, bound)
             continue

@@ -297,6 +297,23 @@ def settle(
     return Bounded(rounded_up(stage, best), weight, opened, best_prices, not _penalised(master))
 
 
+def whole_ways(master: Master) -> highspy.Highs:
+    """A solver of its own for the programme where every way is taken wholly or not at all."""
+    model = master.solver.getLp()
+    kinds = highspy.HighsVarType
+    opening = range(master.columns["open"], master.columns["lack"])
+    whole = [kinds.kContinuous] * master.fixed + [kinds.kInteger] * len(master.patterns.customer)
+    upper = np.array(model.col_upper_)
+    for column in opening:
+        whole[column] = kinds.kInteger
+    upper[_penalties(master)] = 0.0
+    upper[master.fixed :] = np.minimum(upper[master.fixed :], 1.0)
+    model.integrality_, model.col_upper_ = whole, upper
+    solver = quiet()
+    solver.passModel(model)
+    return solver
+
+
 def _solve(master: Master) -> tuple[float, Prices, Floats] | None:
     """Solves the programme: value, prices, what each customer may cost; None if it fails."""
     solver, at, problem = master.solver, master.at, master.stage.problem

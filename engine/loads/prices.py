@@ -17,9 +17,12 @@ from engine.exact import Integers, total
 from engine.loads.arrays import NEVER, Answers, Priced, Rows
 from engine.loads.problem import NO_LIMIT
 from engine.loads.stage import LARGEST_PRICED, Node, Stage
-from engine.loads.turns import cheapest
+from engine.loads.turns import cheapest, regrets_of
 
 Floats = NDArray[np.float64]
+
+AT_ONCE = 50
+"""Customers between two looks at whether to stop."""
 
 
 class Prices(NamedTuple):
@@ -149,25 +152,21 @@ def _at_depots(stage: Stage, node: Node, prices: tuple[Integers, Integers, Integ
 
 
 def regrets(
-    stage: Stage, rows: Rows, priced: Priced, answers: Answers, should_stop: Callable[[], bool]
+    stage: Stage, rows: Rows, priced: Priced, answers: Answers, most: int, should_stop: Callable[[], bool]
 ) -> Integers:
     """(rows,) by how much the bound rises, at least, where a row must be used; in scaled units.
 
     answers: the customers' cheapest ways at the same prices; rows not reached before a stop get 0
+    most:    larger regrets may be given as any number from there
     """
     problem = stage.problem
-    counts = np.diff(problem.start)
-    regret = np.full(problem.rows, NEVER, dtype=np.int64)
-    for place in range(int(counts.max(initial=0))):
-        which = np.flatnonzero(counts > place)
-        row = problem.start[which] + place
+    regret = np.zeros(problem.rows, dtype=np.int64)
+    everybody = np.arange(problem.customers, dtype=np.int64)
+    for which in np.array_split(everybody, max(1, -(-problem.customers // AT_ONCE))):
         if should_stop():
-            regret[row] = 0
-            continue
-        forced = rows.forced.copy()
-        forced[row] = 1
-        again = Answers(*(part.copy() for part in answers))
-        cheapest(rows._replace(forced=forced), priced, which, again)
-        lower = again.lower[which]
-        regret[row] = np.where(lower == NEVER, NEVER, lower - answers.lower[which])
+            break
+        found = regrets_of(rows, priced, which, answers, most)
+        regret[problem.start[which[0]] : problem.start[which[-1] + 1]] = found[
+            problem.start[which[0]] : problem.start[which[-1] + 1]
+        ]
     return regret

@@ -10,21 +10,27 @@ import numpy as np
 
 from engine.exact import Integers
 from engine.loads.anneal import FIRST_ROUNDS, Annealing, begin, piece
-from engine.loads.beside import Beside, start, taken
-from engine.loads.cost import Score, score_of
+from engine.loads.beside import Beside, choose, start, taken
+from engine.loads.cost import Score, score_of, short_of
 from engine.loads.fit import behind, mended, serve
-from engine.loads.master import master_of
+from engine.loads.master import Master, master_of, settle
 from engine.loads.prices import Floats, Prices
 from engine.loads.problem import Flags, LoadProblem
 from engine.loads.proof import NotValid, check
 from engine.loads.stage import Stage, whole
-from engine.loads.tree import Tree, close_rows, rounded, step, with_regrets
+from engine.loads.tree import Tree, close_rows, mean_of, rounded, step, with_regrets
 
 FEW_ROWS = 700
 """About so many rows are given to HiGHS first."""
 
 SHARE = 4.0
 """Time for rearranging, per time for the bound; less and less where it finds nothing."""
+
+SOON = 1e-5
+"""Part of the cost that the bound of a first mixture may lack."""
+
+SHORT_RUN = 3000
+"""Rounds given to making a plan of what keeps the rules but leaves too much short."""
 
 LONG_ENOUGH = 2.0
 """Seconds given to finding out which rows can be closed."""
@@ -97,6 +103,27 @@ def polish(best: Best, quantity: Integers, passes: int = 2) -> None:
             break
 
 
+def rearranged(best: Best, quantity: Integers, price: Integers, should_stop: Callable[[], bool]) -> None:
+    """Offers what a short run makes of a plan that keeps the rules but may leave more short than the best.
+
+    price: (depots,) what a unit of the stock is worth
+    """
+    run = begin(best.problem, quantity, price, SHORT_RUN, 0)
+    while run.done < run.rounds and not should_stop():
+        if piece(run):
+            best.offer(run.moves.best.copy())
+
+
+def mixture_first(stage: Stage, best: Best, should_stop: Callable[[], bool]) -> tuple[Master, Prices]:
+    """Makes a plan of the stage's mixture, whose ways are known from then on."""
+    master = master_of(stage)
+    found = settle(master, whole(stage), None, should_stop, None, None, SOON)
+    if len(found.weight):
+        quantity = mended(best.problem, rounded(mean_of(master, found.weight)))
+        rearranged(best, quantity, np.rint(found.prices.depot).astype(np.int64), should_stop)
+    return master, found.prices
+
+
 @dataclass
 class Hunt:
     """All that is at work on one stage.
@@ -132,15 +159,18 @@ def search(
     told: Told,
     should_stop: Callable[[], bool],
     by_cost: bool,
+    known: tuple[Master, Prices] | None = None,
 ) -> None:
     """Betters plan and bound of a stage until they meet or it is told to stop.
 
     value:   what the best plan comes to in this stage
     told:    its bound is kept up to date
     by_cost: whether the stage is the last, where cost is bettered
+    known:   a programme of this stage with ways that are known already, and its prices
     """
-    hunt = Hunt(Tree(master_of(stage)), best, value, told, should_stop)
-    hunt.tree.push(told.bound, whole(stage), None)
+    master, prices = (master_of(stage), None) if known is None else known
+    hunt = Hunt(Tree(master), best, value, told, should_stop)
+    hunt.tree.push(told.bound, whole(stage), prices)
     try:
         while told.bound < value() and not should_stop():
             begun = time.monotonic()
@@ -188,6 +218,17 @@ def _bound_step(hunt: Hunt) -> None:
         better = exact is not None and best.offer(exact)
         if hunt.steps == 1:
             polish(best, best.quantity if better else rounded(came.mean))
+            if not better:
+                _from_mixture(hunt, rounded(came.mean))
+
+
+def _from_mixture(hunt: Hunt, quantity: Integers) -> None:
+    """Most customers have one way in a mixture; the others are served from what is left, and rearranged."""
+    best = hunt.best
+    price = np.zeros(best.problem.depots, dtype=np.int64)
+    if hunt.prices is not None:
+        price = np.rint(hunt.prices.depot).astype(np.int64)
+    rearranged(best, mended(best.problem, quantity), price, hunt.should_stop)
 
 
 def _anneal(hunt: Hunt, seconds: float) -> None:
@@ -229,6 +270,9 @@ def _beside_step(hunt: Hunt) -> None:
             _take(best, quantity)
         if ended:
             _hear(hunt, work)
+    if work is None and hunt.prices is not None and hunt.told.bound < value():
+        hunt.beside = choose(hunt.tree.master, best.quantity, short_of(best.problem, best.quantity))
+        return
     again = work is None or (ended and not work.all_rows)
     if hunt.prices is None or not (again or hunt.fixed is None or value() < hunt.fixed):
         return

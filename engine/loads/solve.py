@@ -16,7 +16,7 @@ from engine.loads.forced import least_plan
 from engine.loads.linear import loads_cap, relaxed_lines, solve_lines
 from engine.loads.problem import LoadProblem
 from engine.loads.proof import check
-from engine.loads.search import Best, Told, polish, search
+from engine.loads.search import Best, Told, mixture_first, polish, search
 from engine.loads.stage import stage_of
 from engine.loads.whole import as_network
 from engine.network import Contradiction
@@ -80,6 +80,10 @@ def least_cost_loads(
         bounds = _first(problem, best, start)
         tell("A first plan")
         best.tell = lambda: tell("A better plan")
+        known, wanted = None, bounds
+        if best.score.aims > bounds:
+            # prices of plans as good as the bounds mostly lead to one, which is sooner than aim by aim
+            known = mixture_first(stage_of(problem, bounds, len(bounds)), best, stop_at(time_limit))
         for place in range(len(bounds)):
             if best.score.aims[place] > bounds[place]:
                 left = None if time_limit is None else time_limit - (time.monotonic() - begin)
@@ -91,7 +95,9 @@ def least_cost_loads(
                 bounds = (*bounds[:place], aim.bound, *(0 for _ in bounds[place + 1 :]))
         told.tell = tell
         stage = stage_of(problem, best.score.aims, len(bounds))
-        search(stage, best, lambda: best.score.cost, told, stop_at(time_limit), True)
+        if best.score.aims != wanted:
+            known = None
+        search(stage, best, lambda: best.score.cost, told, stop_at(time_limit), True, known)
     except KeyboardInterrupt:
         stopped.set()
     best.tell = lambda: None

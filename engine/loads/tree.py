@@ -26,6 +26,9 @@ ROUGHLY = 1e-5
 NARROW = 1e-4
 """unless its bound is nearer to the best plan than this."""
 
+WORTH_REGRETS = 0.25
+"""Regrets are made exact where plan and bound are nearer than this part of what a customer costs."""
+
 EVEN = 1e-6
 """Shares of a mixture nearer to 0 or 1 than this count as that."""
 
@@ -80,7 +83,7 @@ def step(tree: Tree, best: int, should_stop: Callable[[], bool], tell: Callable[
     if old >= best:
         tree.leave_out(best)
         return Step(None, node)
-    loose = SETTLED if prices is None or best - old < NARROW * abs(best) else ROUGHLY
+    loose = SETTLED if tree.count == 1 or best - old < NARROW * abs(best) else ROUGHLY
     found = settle(tree.master, node, best, should_stop, prices, tell, loose)
     if found.bound is None or found.bound >= best:
         tree.leave_out(best)
@@ -180,7 +183,10 @@ def with_regrets(tree: Tree, best: int, prices: Prices, should_stop: Callable[[]
     if bound is None:
         return None
     priced = priced_by(stage, node, in_integers(stage, prices))
-    found = regrets(stage, rows, priced, answers, should_stop)
+    near = best * stage.scale - bound
+    # while the plan is poor, regrets say little for the time that they take
+    most = near if near < WORTH_REGRETS * abs(bound) / max(1, stage.problem.customers) else 0
+    found = regrets(stage, rows, priced, answers, most, should_stop)
     reached = np.array(
         [best if regret >= NEVER else rounded_up(stage, bound + regret) for regret in found.tolist()],
         dtype=np.int64,

@@ -11,13 +11,13 @@ import numpy as np
 from engine.exact import Integers
 from engine.loads.arrays import NEVER, Answers, Corners, Moves, Priced, Room, Rows, Scratch, Sums
 from engine.loads.compiled import kernel, part
-from engine.loads.customer import MOST_CORNERS, MOST_SUMS, at_customer, value_of
+from engine.loads.customer import MOST_CORNERS, MOST_SUMS, at_customer, regrets_at, value_of
 from engine.loads.room import has_room, limit_to_room, openings, too_much_stays, use_room
 
 LONG = 2**31 - 1
 """Chance runs through the numbers up to this."""
 
-CHEAPEST, VALUES, SERVE, REARRANGE = 0, 1, 2, 3
+CHEAPEST, VALUES, SERVE, REARRANGE, REGRETS = 0, 1, 2, 3, 4
 
 _NONE = np.zeros(0, dtype=np.int64)
 _NO_ROOM = Room(_NONE, _NONE, _NONE, _NONE, _NONE)
@@ -35,6 +35,19 @@ def values_of(rows: Rows, priced: Priced, answers: Answers) -> None:
     """Fills `value` with what the ways that stand in `answers` cost."""
     everybody = np.arange(len(rows.demand), dtype=np.int64)
     take_turns(VALUES, rows, priced, priced, everybody, _NO_ROOM, answers, _NO_MOVES)
+
+
+def regrets_of(rows: Rows, priced: Priced, which: Integers, answers: Answers, most: int) -> Integers:
+    """(rows,) by how much each row of the customers in `which`, if it must be used, raises their least cost.
+
+    answers: their least cost is in `lower`; most: regrets beyond this are given as any number beyond it
+    """
+    moves = _NO_MOVES._replace(
+        standing=np.array([most], dtype=np.int64), best=np.zeros(len(rows.depot), dtype=np.int64)
+    )
+    apart = rows._replace(forced=rows.forced.copy())
+    take_turns(REGRETS, apart, priced, priced, which, _NO_ROOM, answers, moves)
+    return moves.best
 
 
 def serve_in_turn(rows: Rows, priced: Priced, order: Integers, room: Room, answers: Answers) -> None:
@@ -80,7 +93,12 @@ def take_turns(
     largest = max(1, moves.setting[1])
     integers = np.int64
     scratch = Scratch(
-        Corners(np.empty(widest + 1, integers), np.empty(most, integers), np.empty(most, integers)),
+        Corners(
+            np.empty(widest + 1, integers),
+            np.empty(most, integers),
+            np.empty(most, integers),
+            np.empty(widest, integers),
+        ),
         Sums(
             np.empty(deep, integers),
             np.empty(deep, integers),
@@ -102,6 +120,13 @@ def take_turns(
         return better
     for j in which:
         first, last = rows.start[j], rows.start[j + 1]
+        if kind == REGRETS:
+            about = (j, answers.lower[j], moves.standing[0])
+            regret = moves.best[first:last]
+            regrets_at(
+                rows, priced, scratch.corners, scratch.sums, scratch.active, scratch.best, about, regret
+            )
+            continue
         if kind == SERVE:
             for row in range(first, last):
                 scratch.before[0, row - first] = answers.quantity[row]
@@ -183,6 +208,12 @@ def rearrange_once(
     for n in range(count):
         j = chosen[n]
         limit_to_room(rows, room, j)
+        # the way before, where there is room for it, is a good value to begin with
+        received = 0
+        for row in range(rows.start[j], rows.start[j + 1]):
+            answers.quantity[row] = scratch.before[n, row - rows.start[j]]
+            received += answers.quantity[row]
+        answers.short[j] = rows.demand[j] - received
         serve_one(rows, guide if guided else true, answers, scratch, j)
         if answers.value[j] == NEVER or not fitted(rows, room, answers, j):
             break
