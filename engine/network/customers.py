@@ -276,10 +276,11 @@ def gap_limited(rows: Rows, state: State, j: int) -> int:
 
 
 @kernel
-def take_over(rows: Rows, state: State, before: Integers, changed: Integers) -> int:
+def take_over(rows: Rows, state: State, before: Integers, changed: Integers, known: int) -> int:
     """Fills the flow with that of an earlier problem, and serves the `changed` customers anew at its prices.
 
     before: (rows,) the earlier flow, which suits `state.price`
+    known:  1, as every customer has flow; given, since a number written here would compile `assign` again
     `excess` comes as what the depots had too much before that, and is brought up to date.
     Returns the customer whose rows cannot carry what it needs, or -1.
     """
@@ -288,7 +289,7 @@ def take_over(rows: Rows, state: State, before: Integers, changed: Integers) -> 
         state.home[j] = SEVERAL
         for row in range(rows.start[j], rows.start[j + 1]):
             state.excess[rows.depot[row]] -= before[row]
-    return assign(rows, state, changed, 1, np.empty(len(changed), dtype=np.int64))
+    return assign(rows, state, changed, known, np.empty(len(changed), dtype=np.int64))
 
 
 @part

@@ -103,7 +103,7 @@ def resume(
         rows.kind[:] = COMPLETE
     else:
         classify(rows)
-    place = take_over(rows, state, above, changed)
+    place = take_over(rows, state, above, changed, 1)
     outcome = UNSERVABLE
     if place < 0:
         outcome, place = solve_sample(rows, state, new_search(problem.depots), 1, SUITED)
