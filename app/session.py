@@ -129,7 +129,7 @@ class Desk:
         self.proposal = self.proposed = None
         if self.commit(reasoned(change, why), why):
             alone = len(self.history.entries) == made + 1
-            if proposed.plan is not None and not why and alone:
+            if proposed.plan is not None and alone and reasoned(change, why) == change:
                 self.planned_for, self.plan, self.stopped = self.week, proposed.plan, ()
                 if proposed.plan.whole is not None and not proposed.plan.proof.exact:
                     self.search_on()

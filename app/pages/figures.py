@@ -122,10 +122,11 @@ def _part_of_a_week(state: Desk, uploaded: list[File], known: Answers, product: 
 
 state = desk()
 st.title("Figures")
-if state.message:
-    kind, text = state.message
-    (st.error if kind == "error" else st.success)(plain(text))
-    state.message = None
+with st.container():  # always there: what stands before the tabs must not move them, or the first opens again
+    if state.message:
+        kind, text = state.message
+        (st.error if kind == "error" else st.success)(plain(text))
+        state.message = None
 if state.week.is_empty:
     welcome(state)
     st.header("Your own week", anchor=False)
@@ -133,7 +134,8 @@ if state.week.is_empty:
 else:
     with st.expander("Open other figures"):
         opening(state)
-    proposal(state)
+    with st.container(key="put-up"):
+        proposal(state)
     grids, remarks = st.columns([13, 7], gap="medium")
     with grids:
         depots, customers, rates, hauliers, rules = st.tabs(

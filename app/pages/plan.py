@@ -1,5 +1,7 @@
 """The plan: what it costs, who sends what to whom, and the map; a quantity typed here becomes a hold."""
 
+from pathlib import Path
+
 import streamlit as st
 
 from app.parts.costs import cost_line
@@ -18,6 +20,8 @@ from app.parts.words import plain
 from app.preparing import prepared
 from app.session import desk
 
+PAGES = Path(__file__).parent
+
 state = desk()
 st.title("Plan")
 if state.week.is_empty:
@@ -30,13 +34,14 @@ else:
         (st.error if kind == "error" else st.success)(plain(text))
         state.message = None
     if plan is None:
-        st.error(
-            "This week cannot be planned as it stands. Mend what is listed here, or undo the last change."
-        )
+        undo = ", or undo the last change" if state.history.entries else ""
+        st.error(f"This week cannot be planned as it stands. Mend what is listed here{undo}.")
+        if not state.only_reads:
+            st.page_link(PAGES / "figures.py", label="Mend it on Figures")
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)
-        put_up = st.container()  # filled last: what is typed into the grid below is shown in the same run
+        put_up = st.container(key="put-up")  # filled last: what is typed into the grid below is shown in the same run
         if state.only_reads:
             st.caption("🔒 This link is for reading only: the grids show the plan and take no edits.")
         search_panel(state, plan)

@@ -1,10 +1,11 @@
 """Issuing a plan: a numbered, frozen plan that was handed out, and what changed since the last one."""
 
-import pandas as pd
 import streamlit as st
 
 from app.keeping import issue
-from app.parts.words import counted, money, number, plain
+from app.parts.moves_table import moves_table
+from app.parts.proposal import shortage
+from app.parts.words import counted, money, plain
 from app.session import Desk
 from engine.planning.differences import difference
 from engine.planning.plan import Plan
@@ -46,20 +47,9 @@ def _changes(state: Desk, plan: Plan) -> bool:
     word = "dearer" if found.freight_payable > 0 else "cheaper"
     cost = money(abs(found.freight_payable), rules.currency, mark)
     st.markdown(f"Since then **{counted(len(found.rows), 'rate')} changed**; freight is {cost} {word}.")
-    right = st.column_config.TextColumn
-    st.dataframe(
-        pd.DataFrame(
-            {
-                "Depot": [row.key.depot for row in found.rows],
-                "Customer": [row.key.customer for row in found.rows],
-                "Haulier": [row.key.haulier or "" for row in found.rows],
-                "Was": [number(row.before, mark) for row in found.rows],
-                "Is": [number(row.after, mark) for row in found.rows],
-            }
-        ),
-        hide_index=True,
-        column_config={name: right(f"{name}, {rules.unit}", alignment="right") for name in ("Was", "Is")},
-        key="since-issued",
-    )
+    said = shortage(found, rules.unit, mark)
+    if said:
+        st.markdown(said)
+    moves_table(found, rules.unit, mark, key="since-issued")
     st.markdown(f"**To ring:** {plain(', '.join(found.to_ring[:30]))}")
     return True

@@ -1,7 +1,10 @@
 """A change that is put up: what it would cost, whom it moves, or why it cannot be; accept it or leave it."""
 
+from decimal import Decimal
+
 import streamlit as st
 
+from app.parts.moves_table import moves_table
 from app.parts.price_bounds import between
 from app.parts.variant_kept import keep_as_variant
 from app.parts.words import counted, money, number, plain
@@ -10,7 +13,8 @@ from engine.changes import Change, SetHold, Together
 from engine.findings import Severity
 from engine.planning.differences import Difference, Outcome
 
-SHOWN = 6
+SHOWN = 4
+MOST_SHORT, MOST_RUNG = 6, 30
 WHY = "proposal-why"
 
 
@@ -28,8 +32,8 @@ def proposal(state: Desk) -> None:
             st.markdown(f":red[■] {plain(finding.message)} *{plain(finding.mend)}*")
         possible = state.proposed.plan is not None
         with st.container(horizontal=True, vertical_alignment="bottom"):
-            if possible and _asks_why(state.proposal):
-                st.text_input("Reason", key=WHY, placeholder="promised by telephone, …", width=320)
+            if possible:
+                st.text_input("Reason", key=WHY, placeholder=_for_example(state.proposal), width=320)
             # as callbacks, so that the page is drawn once and not twice
             st.button(
                 "Make the change" if possible else "Make it all the same",
@@ -53,10 +57,11 @@ def _bare(state: Desk) -> bool:
     return state.proposed is not None and any(f.rule == "refused" for f in state.proposed.findings)
 
 
-def _asks_why(change: Change) -> bool:
+def _for_example(change: Change) -> str:
+    """What a reason for such a change may sound like."""
     if isinstance(change, Together):
-        return any(_asks_why(one) for one in change.changes)
-    return isinstance(change, SetHold) and not change.reason
+        return _for_example(change.changes[0]) if change.changes else ""
+    return "promised by telephone, …" if isinstance(change, SetHold) else "a silo lost on Tuesday, …"
 
 
 def _headline(state: Desk, found: Outcome) -> str:
@@ -70,10 +75,7 @@ def _headline(state: Desk, found: Outcome) -> str:
     else:
         cost = "Freight **stays the same**"
     now = money(found.plan.freight_payable, rules.currency, mark)
-    said = [f"{cost}, then {now}."]
-    if by.short:
-        word = "more" if by.short > 0 else "less"
-        said.append(f"**{number(abs(by.short), mark)} {plain(rules.unit)} {word} short.**")
+    said = [shortage(by, rules.unit, mark), f"{cost}, then {now}."]
     if by.charges:
         word = "more" if by.charges > 0 else "less"
         said.append(f"Charges {money(abs(by.charges), rules.currency, mark)} {word}.")
@@ -81,13 +83,35 @@ def _headline(state: Desk, found: Outcome) -> str:
     return " ".join(one for one in said if one)
 
 
+def shortage(by: Difference, unit: str, mark: str) -> str:
+    """Who goes short of more, or of less, in Markdown; nothing where nobody does."""
+    if not by.who_short:
+        return ""
+    said = ""
+    if by.short:
+        word = "more" if by.short > 0 else "less"
+        said = f"**{number(abs(by.short), mark)} {plain(unit)} {word} short:** "
+    else:
+        said = "**Others go short:** "
+    names = [f"{plain(one.customer)} {_signed(one.more, mark)}" for one in by.who_short[:MOST_SHORT]]
+    if len(by.who_short) > MOST_SHORT:
+        names.append(f"{counted(len(by.who_short) - MOST_SHORT, 'more customer')}")
+    return said + ", ".join(names) + "."
+
+
+def _signed(value: Decimal, mark: str) -> str:
+    return f"+{number(value, mark)}" if value > 0 else number(value, mark)
+
+
 def _moves(state: Desk, by: Difference) -> None:
     """Who sends what more or less to whom, and whom to ring."""
     if not by.rows:
         st.caption("Nothing moves.")
         return
-    unit = state.week.rules.unit
-    lines = [f"- {plain(row.words(unit))}" for row in by.rows[:SHOWN]]
-    if len(by.rows) > SHOWN:
-        lines.append(f"- and {counted(len(by.rows) - SHOWN, 'more rate')}")
-    st.markdown("\n".join(lines))
+    unit, mark = state.week.rules.unit, state.decimal_mark
+    st.markdown("\n".join(f"- {plain(row.words(unit))}" for row in by.rows[:SHOWN]))
+    if len(by.rows) <= SHOWN:
+        return
+    with st.expander(f"All {counted(len(by.rows), 'rate')} that would change, and whom to ring"):
+        moves_table(by, unit, mark, key="proposal-moves")
+        st.markdown(f"**To ring:** {plain(', '.join(by.to_ring[:MOST_RUNG]))}")

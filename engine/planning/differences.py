@@ -35,17 +35,26 @@ class RowDifference:
 
 
 @dataclass(frozen=True, slots=True)
+class ShortDifference:
+    """A customer who goes short of another quantity in the second plan; `more` is negative for less."""
+
+    customer: str
+    more: Decimal
+
+
+@dataclass(frozen=True, slots=True)
 class Difference:
     """The second plan against the first: positive is dearer, or more.
 
     `rows` are the rate rows that changed, the largest change first; `to_ring` the depots, customers and
-    hauliers that they concern.
+    hauliers that they concern. `who_short` are the customers behind `short`, the worst hit first.
     """
 
     freight_payable: Decimal
     charges: Decimal
     short: Decimal
     rows: tuple[RowDifference, ...]
+    who_short: tuple[ShortDifference, ...] = ()
 
     @property
     def to_ring(self) -> tuple[str, ...]:
@@ -84,7 +93,19 @@ def difference(before: Delivered, after: Delivered) -> Difference:
         charges=total_of((_charges(after), -_charges(before))),
         short=total_of([*(s.quantity for s in after.short), *(-s.quantity for s in before.short)]),
         rows=tuple(sorted(rows, key=lambda row: -abs(row.more))),
+        who_short=_who_short(before, after),
     )
+
+
+def _who_short(before: Delivered, after: Delivered) -> tuple[ShortDifference, ...]:
+    """Each customer whose shortage is another, those who lose most first."""
+    was, now = ({one.customer: one.quantity for one in plan.short} for plan in (before, after))
+    nothing = Decimal(0)
+    changed = (
+        ShortDifference(name, total_of((now.get(name, nothing), -was.get(name, nothing))))
+        for name in dict.fromkeys([*now, *was])
+    )
+    return tuple(sorted((one for one in changed if one.more), key=lambda one: -one.more))
 
 
 @dataclass(frozen=True, slots=True)
