@@ -31,7 +31,12 @@ class _Faults(click.Group):
     def invoke(self, ctx: click.Context) -> object:
         try:
             return super().invoke(ctx)
-        except (click.ClickException, click.exceptions.Exit, click.Abort):
+        except click.ClickException as wrong:
+            if isinstance(wrong, click.UsageError) and wrong.ctx is not None:
+                click.echo(wrong.ctx.get_usage(), err=True)
+            click.echo(wrong.format_message(), err=True)
+            ctx.exit(wrong.exit_code)
+        except (click.exceptions.Exit, click.Abort):
             raise
         except Exception as fault:
             if ctx.params.get("trace"):
@@ -233,18 +238,22 @@ def plan(
 @click.pass_context
 def check(ctx: click.Context, week: tuple[Path, ...], product: str | None) -> None:
     """Read the figures in these files and list every finding; nothing is planned."""
-    reading = _read(ctx, week, product)
+    reading = _read(ctx, week, product, all_the_same=True)
+    click.echo(reading.summary)
     found = _together(reading.findings, engine.contradictions(reading.week))
     _tell(found)
     if stops(found):
         ctx.exit(UNUSABLE)
-    click.echo(reading.summary)
 
 
 @main.command()
 @click.argument("out", type=click.Path(dir_okay=False, path_type=Path), metavar="OUT.xlsx")
-def blank(out: Path) -> None:
-    """Write a workbook with the headings and no figures yet."""
+@click.pass_context
+def blank(ctx: click.Context, out: Path) -> None:
+    """Write a workbook with the headings and no figures yet; a file that is there is left alone."""
+    if out.exists():
+        click.echo(f"{out} is there already and may hold figures: name another file.", err=True)
+        ctx.exit(UNUSABLE)
     engine.write_blank(out)
     click.echo(f"Wrote {out}", err=True)
 
@@ -253,13 +262,15 @@ main.add_command(compare)
 main.add_command(stress)
 
 
-def _read(ctx: click.Context, files: tuple[Path, ...], product: str | None = None) -> engine.Reading:
-    """The week in these files; ends the command where they cannot be used."""
+def _read(
+    ctx: click.Context, files: tuple[Path, ...], product: str | None = None, all_the_same: bool = False
+) -> engine.Reading:
+    """The week in these files; ends the command where they cannot be used, unless asked for all the same."""
     try:
         reading = engine.read_week(list(files), product=product)
     except engine.Unreadable as refused:
         _refuse(ctx, [refused.finding])
-    if stops(reading.findings):
+    if stops(reading.findings) and not (all_the_same and not reading.week.is_empty):
         if len(reading.products) > 1 and reading.week.is_empty:
             click.echo(f"Name the product: --product '{reading.products[0]}'", err=True)
         _refuse(ctx, reading.findings)

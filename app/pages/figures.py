@@ -10,6 +10,7 @@ from app.parts.figures_grid import figures_grid, rules_grid
 from app.parts.findings_panel import findings_panel
 from app.parts.products import File, keep_others, product_choice
 from app.parts.proposal import proposal
+from app.parts.raise_rates import raise_rates
 from app.parts.sample import open_sample
 from app.parts.uploaded import keep, uploaded_panel
 from app.parts.welcome import welcome
@@ -148,10 +149,11 @@ else:
         with rates:
             figures_grid(state, "rates")
         with hauliers:
-            st.caption("Only hauliers with a limit over all their lanes, or a load size of their own.")
+            raise_rates(state)
+            st.caption("Below, only hauliers with a limit over all their lanes, or a load size of their own.")
             figures_grid(state, "hauliers")
         with rules:
             rules_grid(state)
     with remarks:
         uploaded_panel(state)
-        findings_panel(state.all_findings(), key="figures")
+        findings_panel(state.all_findings(), key="figures", known=answers())

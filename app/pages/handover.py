@@ -70,5 +70,7 @@ else:
             st.header("Notes that go with it", anchor=False)
             for title, pairs in notes_of(plan):
                 st.markdown(f"**{plain(title)}**")
-                for label, words in pairs:
-                    st.markdown(f"- *{plain(label)}*: {plain(words)}" if label else f"- {plain(words)}")
+                lines = [
+                    f"*{plain(label)}*: {plain(words)}" if label else plain(words) for label, words in pairs
+                ]
+                st.markdown("\n".join(f"- {line}" for line in lines))

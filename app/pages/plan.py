@@ -4,6 +4,7 @@ from pathlib import Path
 
 import streamlit as st
 
+from app.access import answers
 from app.parts.costs import cost_line
 from app.parts.findings_panel import findings_panel
 from app.parts.gone_list import gone_list
@@ -41,7 +42,9 @@ else:
         findings_panel(state.stopped, key="stopped")
     else:
         cost_line(plan, state.decimal_mark)
-        put_up = st.container(key="put-up")  # filled last: what is typed into the grid below is shown in the same run
+        put_up = st.container(
+            key="put-up"
+        )  # filled last: what is typed into the grid below is shown in the same run
         if state.only_reads:
             st.caption("🔒 This link is for reading only: the grids show the plan and take no edits.")
         search_panel(state, plan)
@@ -75,6 +78,6 @@ else:
                 shipments_grid(state, plan, view or "depot")
         with chart:
             plan_map(state, plan, view)
-        findings_panel(plan.findings, key="plan")
+        findings_panel(plan.findings, key="plan", known=answers())
         with put_up:
             proposal(state)

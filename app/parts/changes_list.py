@@ -14,6 +14,7 @@ from engine.figures import RateKey
 from engine.week import describe
 
 MOST = 500
+PICKED = "change-picked"
 
 
 def changes_list(state: Desk) -> None:
@@ -22,11 +23,34 @@ def changes_list(state: Desk) -> None:
     if not history.entries:
         st.caption("Nothing was changed since the figures were opened.")
         return
-    st.dataframe(_frame(state), hide_index=True, height=360, alt="Changes of this week")
+    count = len(history.entries)
+    shown = st.dataframe(
+        _frame(state),
+        hide_index=True,
+        height=min(360, 38 + 35 * count),
+        alt="Changes of this week",
+        key=f"changes-{count}",
+        on_select="rerun",
+        selection_mode="single-row",
+        column_config={
+            "No.": st.column_config.NumberColumn(width=50),
+            "Change": st.column_config.TextColumn(width="large"),
+            "Who": st.column_config.TextColumn(width="small"),
+            "When (UTC)": st.column_config.TextColumn(width=130),
+            "Why": st.column_config.TextColumn(width="medium"),
+            "": st.column_config.TextColumn(width=90),
+        },
+    )
+    picked = (count, *(shown["selection"]["rows"] if shown else ()))
+    if picked != st.session_state.get(PICKED):  # the row that was ticked last, else the latest change
+        st.session_state[PICKED] = picked
+        st.session_state["change-number"] = count - (picked[1] if len(picked) > 1 else 0)
     if len(history.entries) > MOST:
         st.caption(f"The latest {MOST} of {len(history.entries)} changes are shown.")
     with st.container(horizontal=True, vertical_alignment="bottom"):
-        number = st.number_input("Change", 1, len(history.entries), len(history.entries), key="change-number")
+        number = st.number_input(
+            "Change: tick its row, or type its number", 1, count, key="change-number", width=260
+        )
         if st.button("Take back only this change", key="revert"):
             if state.make(lambda now: now.reverted(int(number) - 1, state.who)):
                 state.start_afresh()
@@ -83,7 +107,13 @@ def _compared(state: Desk) -> None:
                 "Now": _cell(one.after, one.field),
             }
         )
-    st.dataframe(pd.DataFrame(rows), hide_index=True, alt="What differs from the figures as uploaded")
+    right = st.column_config.TextColumn(alignment="right")
+    st.dataframe(
+        pd.DataFrame(rows),
+        hide_index=True,
+        column_config={"Uploaded": right, "Now": right},
+        alt="What differs from the figures as uploaded",
+    )
     if len(found) > MOST:
         st.caption(f"The first {MOST} of {len(found)} figures that differ are shown.")
 

@@ -1,11 +1,15 @@
 """The cost of a plan in one line: freight first, charges apart."""
 
+from decimal import Decimal
+
 import streamlit as st
 
-from app.parts.words import counted, money, number
+from app.parts.words import counted, money, number, plain
 from engine.planning.fills import loads_total
 from engine.planning.plan import Plan
 from engine.planning.totals import totals
+
+NAMED = 6
 
 
 def cost_line(plan: Plan, mark: str) -> None:
@@ -27,6 +31,22 @@ def cost_line(plan: Plan, mark: str) -> None:
         f"unsent {money(plan.unsent_cost, rules.currency, mark)}{_opened(plan, mark)}. "
         + ("" if plan.whole else "Proved in whole numbers: no other plan that serves these aims costs less.")
     )
+    left = [
+        _named("Short", {one.customer: one.quantity for one in plan.short}, mark),
+        _named("Unsent", {one.depot: one.quantity for one in plan.unsent}, mark),
+    ]
+    if any(left):
+        st.markdown(" ".join(one for one in left if one))
+
+
+def _named(word: str, quantities: dict[str, Decimal], mark: str) -> str:
+    """Who goes short, or what stays where: the most first, in Markdown."""
+    names = sorted((name for name in quantities if quantities[name]), key=lambda name: -quantities[name])
+    if not names:
+        return ""
+    said = ", ".join(f"{plain(name)} {number(quantities[name], mark)}" for name in names[:NAMED])
+    more = f" and {counted(len(names) - NAMED, 'more', 'more')}" if len(names) > NAMED else ""
+    return f"**{word}:** {said}{more}."
 
 
 def _opened(plan: Plan, mark: str) -> str:

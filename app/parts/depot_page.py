@@ -9,6 +9,7 @@ import streamlit as st
 from app.access import records
 from app.parts.words import counted, number, plain
 from app.rights import claims, house
+from engine.exact import total_of
 from engine.planning.plan import Shipment
 from engine.records import Issued, Missing, NotSaved, find_plan, open_week
 from engine.records.depot_links import is_for, week_of_link
@@ -76,7 +77,12 @@ def _list(loaded: Loaded, depot: str, mark: str) -> None:
         }
     )
     right = st.column_config.TextColumn(f"Send, {loaded.week.rules.unit}", alignment="right")
-    st.dataframe(frame, hide_index=True, column_config={"Send": right}, alt="Loading list")
+    st.dataframe(
+        frame, hide_index=True, column_config={"Send": right}, alt="Loading list",
+        height=min(38 + 35 * len(frame), 1200),
+    )  # fmt: skip
+    sent = number(total_of(line.shipment.quantity for line in lines), mark)
+    st.markdown(f"In all: **{sent} {plain(loaded.week.rules.unit)}**, {counted(len(lines), 'line')}")
     if len(lines) > SHOWN:
         st.caption(f"The first {SHOWN:,} of {counted(len(lines), 'line')}; the workbook has all.")
     held = BytesIO()

@@ -18,6 +18,8 @@ NUMBERS = {
     Kind.LATITUDE, Kind.LONGITUDE,
 }  # fmt: skip
 
+MONEY = {Kind.RATE, Kind.CHARGE, Kind.PRICE}
+
 
 def figures_grid(state: Desk, table: str) -> None:
     """Depots, customers or rates; rows can be added, pasted and taken out."""
@@ -28,7 +30,7 @@ def figures_grid(state: Desk, table: str) -> None:
         )
         return
     columns = GRID_COLUMNS[table]
-    _grid(state, table, {column.heading: _config(column) for column in columns}, "dynamic")
+    _grid(state, table, {column.heading: _config(state, column) for column in columns}, "dynamic")
 
 
 def rules_grid(state: Desk) -> None:
@@ -41,9 +43,11 @@ def rules_grid(state: Desk) -> None:
     _grid(state, "rules", config, "fixed")
 
 
-def _config(column: Column) -> ColumnConfig:
+def _config(state: Desk, column: Column) -> ColumnConfig:
+    rules = state.working.rules
+    unit = rules.unit if column.kind is Kind.QUANTITY else rules.currency if column.kind in MONEY else ""
     return st.column_config.TextColumn(
-        column.heading,
+        f"{column.heading}, {unit}" if unit else column.heading,
         help=column.about,
         alignment="right" if column.kind in NUMBERS else "left",
         pinned=column.kind is Kind.NAME,

@@ -5,8 +5,9 @@ from collections.abc import Sequence
 import pandas as pd
 import streamlit as st
 
-from app.parts.words import plain
+from app.parts.words import counted, plain
 from engine.findings import Finding, Severity, by_gravity
+from engine.intake.answers import Answers
 
 SHOWN = 12
 WORDS = {Severity.STOPS: "Stops", Severity.CHECK: "Check", Severity.NOTE: "Note"}
@@ -14,11 +15,17 @@ SIGNS = {Severity.STOPS: ":red[■]", Severity.CHECK: ":orange[▲]", Severity.N
 PLURALS = {Severity.STOPS: "stop the plan", Severity.CHECK: "to check", Severity.NOTE: "to note"}
 
 
-def findings_panel(findings: Sequence[Finding], key: str) -> None:
-    """The findings, or a word that there are none."""
+def findings_panel(findings: Sequence[Finding], key: str, known: Answers | None = None) -> None:
+    """The findings, or a word that there are none; those that were accepted are only counted."""
     st.header("Findings", anchor=False)
+    accepted: Sequence[Finding] = ()
+    if known is not None:
+        findings, accepted = known.parted(list(findings))
+    if accepted:
+        st.caption(f"{counted(len(accepted), 'finding')} accepted earlier, in the notes of the plan.")
     if not findings:
-        st.caption("Nothing to remark on these figures.")
+        if not accepted:
+            st.caption("Nothing to remark on these figures.")
         return
     ordered = by_gravity(findings)
     counts = [(severity, sum(f.severity is severity for f in ordered)) for severity in Severity]

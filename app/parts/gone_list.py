@@ -6,7 +6,8 @@ from decimal import Decimal
 import pandas as pd
 import streamlit as st
 
-from app.parts.words import money, number, plain, quantity
+from app.parts.gone_planned import gone_as_planned
+from app.parts.words import amount, number, plain
 from app.session import Desk
 from engine.changes import Add, Remove, Together
 from engine.columns import SEND
@@ -24,7 +25,9 @@ def gone_list(state: Desk, plan: Plan) -> None:
     )
     _table(state)
     if not state.only_reads:
-        _form(state, plan)
+        gone_as_planned(state, plan)
+        with st.expander("Enter one load by hand, planned or not"):
+            _form(state, plan)
 
 
 def _table(state: Desk) -> None:
@@ -42,16 +45,19 @@ def _table(state: Desk) -> None:
                 "Depot": [one.depot for one in gone],
                 "Customer": [one.customer for one in gone],
                 "Haulier": [one.haulier or "" for one in gone],
-                "Quantity": [quantity(one.quantity, rules.unit, mark) for one in gone],
+                "Quantity": [number(one.quantity, mark) for one in gone],
                 "Rate": [number(one.rate, mark) for one in gone],
-                "Cost": [money(cost_of(one), rules.currency, mark) for one in gone],
+                "Cost": [amount(cost_of(one), rules.currency, mark) for one in gone],
             }
         ),
         key=f"gone-{state.generation}",
         hide_index=True,
         on_select="rerun",
         selection_mode="multi-row",
-        column_config={name: right(alignment="right") for name in ("Quantity", "Rate", "Cost")},
+        column_config={
+            name: right(f"{name}, {unit}", alignment="right")
+            for name, unit in (("Quantity", rules.unit), ("Rate", rules.currency), ("Cost", rules.currency))
+        },
     )
     if state.only_reads:
         return
@@ -64,7 +70,6 @@ def _table(state: Desk) -> None:
 
 def _form(state: Desk, plan: Plan) -> None:
     week = state.week
-    st.markdown("**Enter what has gone**")
     left, middle, right = st.columns(3)
     depot = left.selectbox("From depot", list(week.depots), key="gone-depot")
     customer = middle.selectbox("To customer", list(week.customers), key="gone-customer")
@@ -73,16 +78,19 @@ def _form(state: Desk, plan: Plan) -> None:
         "By haulier", hauliers, key="gone-haulier", format_func=lambda name: name or "(no haulier named)"
     )
     left, middle, right = st.columns(3)
-    text = left.text_input(f"Quantity, {week.rules.unit}", key="gone-quantity")
+    made = f"gone-quantity-{len(week.gone)}"  # blank again once a load is recorded, so that none is twice
+    text = left.text_input(f"Quantity, {week.rules.unit}", key=made)
     day = middle.date_input("Day it left", value=None, key="gone-day")
-    load = right.text_input("Load or note number", key="gone-load", placeholder=unused_name(week))
+    load = right.text_input(
+        "Load or note number", key=f"gone-load-{len(week.gone)}", placeholder=unused_name(week)
+    )
     if not hauliers:
         st.caption("No rate is quoted on this lane: give one on Figures first.")
         return
     on = day if isinstance(day, date) else None
-    amount, finding = read_field(SEND, text, state.style)
-    rate = paid_per_unit(week, str(depot), str(customer), haulier, on, amount or Decimal(0))
-    if rate is None and amount:
+    much, finding = read_field(SEND, text, state.style)
+    rate = paid_per_unit(week, str(depot), str(customer), haulier, on, much or Decimal(0))
+    if rate is None and much:
         st.caption("No rate was valid on this lane that day: give one on Figures first.")
         return
     if rate is not None:
@@ -90,10 +98,10 @@ def _form(state: Desk, plan: Plan) -> None:
         st.caption(f"Paid per unit, surcharge and whole loads included: {said}")
     if not st.button("Record as gone", key="gone-add"):
         return
-    if amount is None or rate is None:
+    if much is None or rate is None:
         said = f"{finding.message} {finding.mend}" if finding else "Type the quantity that left."
         st.error(plain(said))
         return
     name = load.strip() or unused_name(week)
-    state.propose(Add(Gone(name, str(depot), str(customer), amount, rate, haulier, on)))
+    state.propose(Add(Gone(name, str(depot), str(customer), much, rate, haulier, on)))
     st.rerun()

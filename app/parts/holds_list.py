@@ -3,7 +3,7 @@
 import pandas as pd
 import streamlit as st
 
-from app.parts.words import counted, money, quantity
+from app.parts.words import amount, counted, number
 from app.session import Desk
 from engine.planning.holds import PricedHold, all_lifted, priced_holds
 from engine.planning.plan import Plan
@@ -32,9 +32,9 @@ def holds_list(state: Desk, plan: Plan) -> None:
             "Depot": [one.key.depot for one in priced],
             "Customer": [one.key.customer for one in priced],
             "Haulier": [one.key.haulier or "" for one in priced],
-            "Held": [quantity(one.hold.quantity, unit, mark) for one in priced],
+            "Held": [number(one.hold.quantity, mark) for one in priced],
             "Costs today": [
-                "" if one.freight is None else money(one.freight, currency, mark) for one in priced
+                "" if one.freight is None else amount(one.freight, currency, mark) for one in priced
             ],
             "Reason": [one.hold.reason for one in priced],
         }
@@ -47,9 +47,11 @@ def holds_list(state: Desk, plan: Plan) -> None:
         on_select="rerun",
         selection_mode="multi-row",
         column_config={
-            "Held": right(alignment="right"),
+            "Held": right(f"Held, {unit}", alignment="right"),
             "Costs today": right(
-                alignment="right", help="What freight would fall by if this hold alone went"
+                f"Costs today, {currency}",
+                alignment="right",
+                help="What freight would fall by if this hold alone went",
             ),
         },
     )

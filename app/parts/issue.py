@@ -27,7 +27,9 @@ def issue_panel(state: Desk, plan: Plan) -> None:
     if state.kept is not None and not state.kept.may_change:
         return
     following = 1 if last is None else last.number + 1
-    note = st.text_input("Note for the issue", key="issue-note", placeholder="after the call with Quarry, …")
+    note = st.text_input(
+        "Note for the issue", key=f"issue-note-{following}", placeholder="after the call with Quarry, …"
+    )
     if st.button(f"Issue this plan as number {following}", key="issue", disabled=not changed):
         made = issue(state, plan, note.strip())
         if made is not None:

@@ -6,7 +6,7 @@ import pandas as pd
 import streamlit as st
 from streamlit.elements.lib.column_types import ColumnConfig
 
-from app.parts.words import plain
+from app.parts.words import number, plain
 from app.session import Desk
 from engine.changes import Change, Together
 from engine.columns import SEND
@@ -16,7 +16,7 @@ from engine.planning.plan import Plan
 from engine.planning.totals import flows
 
 MOST_CELLS = 20_000
-CUSTOMER = "Customer"
+CUSTOMER, SUMS = "Customer", ("Ordered", "Short")
 
 
 def matrix_grid(state: Desk, plan: Plan) -> None:
@@ -31,7 +31,14 @@ def matrix_grid(state: Desk, plan: Plan) -> None:
     base = _frame(state, plan, depots, customers)
     text = st.column_config.TextColumn
     config: dict[str, ColumnConfig] = {CUSTOMER: text(CUSTOMER, pinned=True, disabled=True)}
-    config |= {f"{i}": text(name, alignment="right", width="small") for i, name in enumerate(depots)}
+    config |= {
+        name: text(f"{name}, {plan.week.rules.unit}", alignment="right", width=85, disabled=True)
+        for name in SUMS
+    }
+    config |= {
+        f"{i}": text(name, alignment="right", width=max(75, 44 + 7 * len(name)))
+        for i, name in enumerate(depots)
+    }
     edited = st.data_editor(
         base,
         key=f"matrix-{state.generation}",
@@ -48,7 +55,12 @@ def matrix_grid(state: Desk, plan: Plan) -> None:
 def _frame(state: Desk, plan: Plan, depots: list[str], customers: list[str]) -> pd.DataFrame:
     """One text column a depot, named by its position, since two names may look alike."""
     sent = {(flow.depot, flow.customer): flow.quantity for flow in flows(plan)}
+    short = {one.customer: one.quantity for one in plan.short}
+    mark = state.decimal_mark
     columns = {CUSTOMER: customers}
+    columns["Ordered"] = [number(plan.week.customers[customer].ordered, mark) for customer in customers]
+    if short:
+        columns["Short"] = [number(short[one], mark) if one in short else "" for one in customers]
     for i, depot in enumerate(depots):
         quantities: list[Decimal | None] = [sent.get((depot, customer)) for customer in customers]
         columns[f"{i}"] = [show_field(SEND, q, state.style) if q else "" for q in quantities]
@@ -73,7 +85,7 @@ def _take_edits(
                 st.error(f"{plain(finding.message)} {plain(finding.mend)}")
             return
         try:
-            changes.append(hold_on_lane(plan, depots[column - 1], customers[row], quantity))
+            changes.append(hold_on_lane(plan, depots[int(base.columns[column])], customers[row], quantity))
         except NoSingleRow as unclear:
             st.error(plain(str(unclear)))
             return

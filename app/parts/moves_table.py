@@ -3,7 +3,7 @@
 import pandas as pd
 import streamlit as st
 
-from app.parts.words import number, plain
+from app.parts.words import number
 from engine.planning.differences import Difference
 
 
@@ -22,7 +22,7 @@ def moves_table(by: Difference, unit: str, mark: str, key: str) -> None:
         ),
         hide_index=True,
         column_config={
-            name: right(f"{name}, {plain(unit)}", alignment="right", width="small") for name in ("Was", "Is")
+            name: right(f"{name}, {unit}", alignment="right", width="small") for name in ("Was", "Is")
         },
         key=key,
         alt="Rates that carry another quantity",

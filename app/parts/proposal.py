@@ -4,6 +4,7 @@ from decimal import Decimal
 
 import streamlit as st
 
+from app.parts.change_words import words_of
 from app.parts.moves_table import moves_table
 from app.parts.price_bounds import between
 from app.parts.variant_kept import keep_as_variant
@@ -14,7 +15,7 @@ from engine.findings import Severity
 from engine.planning.differences import Difference, Outcome
 
 SHOWN = 4
-MOST_SHORT, MOST_RUNG = 6, 30
+MOST_SHORT, MOST_RUNG, LONGEST = 6, 30, 160
 WHY = "proposal-why"
 
 
@@ -24,6 +25,8 @@ def proposal(state: Desk) -> None:
         return
     with st.container(border=True, key="proposal"):
         st.markdown("**Not made yet.** " + _headline(state, state.proposed))
+        said = words_of(state.proposal)
+        st.caption(plain(said if len(said) <= LONGEST else f"{said[:LONGEST]} …"))
         if state.proposed.difference is not None:
             _moves(state, state.proposed.difference)
         for finding in state.proposed.findings:

@@ -1,15 +1,17 @@
 """The rate rows of a plan as a grid: a quantity typed into it is put up as a hold, a limit as a new limit."""
 
 from dataclasses import dataclass
+from decimal import Decimal
 
 import pandas as pd
 import streamlit as st
 from streamlit.elements.lib.column_types import ColumnConfig
 
-from app.parts.words import money, number, plain
+from app.parts.words import money, number, plain, quantity
 from app.session import Desk
 from engine.changes import Alter, Change, Lift, SetHold, Together
 from engine.columns import RATE_COLUMNS, SEND
+from engine.exact import places_needed
 from engine.findings import Finding
 from engine.intake.fields import read_field, show_field
 from engine.planning.fills import fill_of
@@ -19,7 +21,7 @@ from engine.planning.plan import Plan
 
 EVERY = "All"
 REASON = "Hold reason"
-MOST_ROWS = 2_000
+MOST_ROWS, MOST_PLACES = 2_000, 5
 LIMITS = tuple(column for column in RATE_COLUMNS if column.field in ("at_least", "at_most", "closed"))
 
 
@@ -37,6 +39,8 @@ def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
     """The rows by depot or by customer, with filters; what is typed is put up as one change."""
     view = _view(state, by)
     shown = _shown(plan, view)
+    if view.name is not None:
+        st.caption(_about(state, plan, view.by, view.name))
     if len(shown) > MOST_ROWS:
         st.caption(f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {by} to see all of its rows.")
         shown = shown[:MOST_ROWS]
@@ -57,6 +61,17 @@ def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
     _hold_many(state, shown, view)
 
 
+def _about(state: Desk, plan: Plan, by: str, name: str) -> str:
+    """What a depot has and keeps, or what a customer ordered and does not get."""
+    mark, unit = state.decimal_mark, plan.week.rules.unit
+    if by == "depot":
+        kept = next((one.quantity for one in plan.unsent if one.depot == name), Decimal(0))
+        has = quantity(plan.week.depots[name].available, unit, mark)
+        return f"Available {has}, unsent {number(kept, mark)}."
+    short = next((one.quantity for one in plan.short if one.customer == name), Decimal(0))
+    return f"Ordered {quantity(plan.week.customers[name].ordered, unit, mark)}, short {number(short, mark)}."
+
+
 def _view(state: Desk, by: str) -> _View:
     names = list(state.week.depots if by == "depot" else state.week.customers)
     left, middle, right = st.columns([3, 2, 2], vertical_alignment="bottom")
@@ -71,16 +86,15 @@ def _view(state: Desk, by: str) -> _View:
 
 
 def _shown(plan: Plan, view: _View) -> list[Lane]:
-    """Grouped by depot or customer in order of first appearance; sheet order within."""
+    """Grouped by depot or customer; the order of the sheets in both."""
     found = lanes(
         plan,
         depot=view.name if view.by == "depot" else None,
         customer=view.name if view.by == "customer" else None,
         unused=view.unused,
     )
-    place: dict[str, int] = {}
-    for lane in found:
-        place.setdefault(getattr(lane.key, view.by), len(place))
+    names = plan.week.depots if view.by == "depot" else plan.week.customers
+    place = {name: number for number, name in enumerate(names)}
     return sorted(found, key=lambda lane: place[getattr(lane.key, view.by)])
 
 
@@ -118,7 +132,9 @@ def _frame(state: Desk, plan: Plan, shown: list[Lane], view: _View) -> pd.DataFr
     }
     if any(lane.load_size for lane in shown):
         columns["Loads"] = [_fill(lane) for lane in shown]
-    columns["Rate"] = [number(lane.rate, mark) for lane in shown]
+    places = max((places_needed(lane.rate) for lane in shown), default=0)
+    same = places if places <= MOST_PLACES else None  # decimals under each other, where they fit
+    columns["Rate"] = [number(lane.rate, mark, same) for lane in shown]
     if any(lane.per == "load" for lane in shown):
         columns["Per"] = ["load" if lane.per == "load" else plan.week.rules.unit for lane in shown]
     columns |= {

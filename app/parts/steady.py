@@ -6,7 +6,7 @@ import pandas as pd
 import streamlit as st
 
 from app.parts.steady_chart import trade_chart
-from app.parts.words import counted, money, plain
+from app.parts.words import amount, counted, money, plain
 from app.session import Desk
 from engine.columns import RATE_COLUMNS
 from engine.exact import TooLarge
@@ -53,11 +53,14 @@ def steady(state: Desk, plan: Plan) -> None:
         f"Against plan {state.issued.number} the least cost changes **{counted(last.lanes, 'lane')}**. "
         f"Keeping to it as far as possible changes {first.lanes} and costs **{cost}** more."
     )
-    _table(state, found)
+    picked = _table(state, found)
     trade_chart(found, plan.week.rules.currency)
     _longer(plan, state.issued, found)
     if not state.only_reads:
-        _pick(state, found)
+        if picked is not None:
+            _offer(state, found, picked)
+        else:
+            _pick(state, found)
     st.caption(
         "A lane is a depot, a customer and a haulier, changed where its quantity of the week is another. "
         "Only plans that leave nobody shorter than the least-cost plan are compared."
@@ -84,30 +87,42 @@ def _search(plan: Plan, issued: Issued, seconds: float) -> Trade | None:
     return found
 
 
-def _table(state: Desk, found: Trade) -> None:
+def _table(state: Desk, found: Trade) -> Point | None:
+    """The whole trade, a plan a row; the plan whose row is picked."""
     mark, currency = state.decimal_mark, found.lanes.plan.week.rules.currency
     right = st.column_config.TextColumn
-    st.dataframe(
+    shown = st.dataframe(
         pd.DataFrame(
             {
                 "Lanes changed": [str(point.lanes) for point in found.points],
-                "Costs more": [money(point.extra, currency, mark) for point in found.points],
-                "Cannot cost less than": [money(point.bound, currency, mark) for point in found.points],
+                "Costs more": [amount(point.extra, currency, mark) for point in found.points],
+                "Cannot cost less than": [amount(point.bound, currency, mark) for point in found.points],
                 "": [RESTS[point.rests] for point in found.points],
             }
         ),
         hide_index=True,
         column_config={
             "Lanes changed": right(alignment="right", width="small"),
-            "Costs more": right(alignment="right", help="Freight and charges above the least-cost plan"),
+            "Costs more": right(
+                f"Costs more, {currency}",
+                alignment="right",
+                help="Freight and charges above the least-cost plan",
+            ),
             "Cannot cost less than": right(
-                alignment="right", help="No plan that changes at most so many lanes costs less"
+                f"Not below, {currency}",
+                alignment="right",
+                help="No plan that changes at most so many lanes costs less",
             ),
         },
         alt="Lanes changed against cost above the least",
+        key="steady-table",
+        on_select="ignore" if state.only_reads else "rerun",
+        selection_mode="single-row",
     )
     if found.fewest < found.points[0].lanes:
         st.caption(f"Whether fewer lanes, from {found.fewest} on, could be enough is open.")
+    rows: list[int] = [] if state.only_reads else shown["selection"]["rows"]  # type: ignore[index]
+    return found.points[rows[0]] if rows and rows[0] < len(found.points) else None
 
 
 def _longer(plan: Plan, issued: Issued, found: Trade) -> None:
@@ -122,7 +137,9 @@ def _pick(state: Desk, found: Trade) -> None:
     """One of three questions, its answer, and the answer put up as a change."""
     currency = found.lanes.plan.week.rules.currency
     left, right = st.columns([3, 2], vertical_alignment="bottom")
-    asked = left.selectbox("Pick a plan", list(ASKED), format_func=ASKED.__getitem__, key="steady-asked")
+    asked = left.selectbox(
+        "Pick a plan: tick its row, or ask", list(ASKED), format_func=ASKED.__getitem__, key="steady-asked"
+    )
     unit = "lanes" if asked == "lanes" else currency
     text = right.text_input(f"How much, {plain(unit)}", key="steady-much")
     if not text.strip():

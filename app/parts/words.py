@@ -37,6 +37,11 @@ def money(value: Decimal, currency: str, mark: str = ".") -> str:
     return f"{number(value, mark, minor_places(currency))} {currency}"
 
 
+def amount(value: Decimal, currency: str, mark: str = ".") -> str:
+    """The same without the currency, for a column that has it in its heading."""
+    return number(value, mark, minor_places(currency))
+
+
 def quantity(value: Decimal, unit: str, mark: str = ".") -> str:
     return f"{number(value, mark)} {unit}"
 

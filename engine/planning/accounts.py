@@ -86,6 +86,7 @@ def about_the_plan(
             "Add stock, open a lane or raise a limit; or lower the orders.",
         )
         for group in (shortages(model) if short else ())
+        if group.depots or group.limited  # who is reached by nothing has a finding of the figures already
     )
     found.extend(
         Finding(

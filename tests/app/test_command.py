@@ -107,7 +107,9 @@ def test_check_tells_the_findings_and_what_was_read() -> None:
     assert result.exit_code == 0
     assert "6 depots, 48 customers" in result.stdout
     assert "Cole ordered 49.5" in result.stderr
-    assert hithe("check", MESSY).exit_code == 2
+    faulty = hithe("check", MESSY)
+    assert faulty.exit_code == 2
+    assert "12 customers" in faulty.stdout  # what was understood is said of a faulty week as well
 
 
 def test_what_is_no_spreadsheet_is_refused_in_a_sentence(tmp_path: Path) -> None:
@@ -126,6 +128,22 @@ def test_a_blank_workbook_asks_for_figures(tmp_path: Path) -> None:
     result = hithe("check", str(out))
     assert result.exit_code == 2
     assert "There are no depots." in result.stderr
+
+
+def test_a_blank_workbook_never_replaces_a_file(tmp_path: Path) -> None:
+    out = tmp_path / "week.xlsx"
+    out.write_bytes(b"a week of work")
+    result = hithe("blank", str(out))
+    assert result.exit_code == 2
+    assert "is there already" in result.stderr
+    assert out.read_bytes() == b"a week of work"
+
+
+def test_a_file_that_is_not_there_is_named_in_a_plain_sentence() -> None:
+    result = hithe("plan", "no_such_week.xlsx")
+    assert result.exit_code == 2
+    assert "no_such_week.xlsx" in result.stderr
+    assert "Error" not in result.output
 
 
 def test_near_takes_an_earlier_plan(tmp_path: Path) -> None:

@@ -12,6 +12,7 @@ from app.parts.map_drawing import drawing
 from app.parts.map_layers import layer_ids
 from app.parts.plan_map import lines_of, points_of
 from app.session import KEY, Desk
+from engine.changes import Alter
 
 MAIN = Path(__file__).parents[2] / "app" / "main.py"
 PAGES = ["pages/figures.py", "pages/plan.py", "pages/handover.py"]
@@ -136,3 +137,59 @@ def test_the_map_shows_chosen_lanes(lanes: str) -> None:
     test = page("pages/plan.py", with_sample())
     next(one for one in test.selectbox if one.label == "Lanes on the map").select(lanes).run()
     assert not test.exception
+
+
+def test_a_haulier_raises_all_its_rates_and_the_change_says_why() -> None:
+    state = with_sample()
+    test = page("pages/figures.py", state)
+    test.selectbox(key="raise-haulier").select("Oxcart")
+    test.text_input(key="raise-percent").input("10 %")
+    next(one for one in test.button if one.label == "Put it up").click().run()
+    assert not test.exception
+    assert any("rates of Oxcart up 10 %" in one.value.replace("\\", "") for one in test.caption)
+    test.text_input(key="proposal-why").input("new list from Wednesday")
+    test.button(key="accept").click().run()
+    assert not test.exception
+    old = engine.read_week(sample_data.path(sample_data.SMALL_WEEK)).week
+    for before, after in zip(old.rates, state.week.rates, strict=True):
+        assert after.rate == before.rate * (Decimal("1.1") if before.haulier == "Oxcart" else 1)
+    assert state.history.entries[-1].why == "new list from Wednesday"
+
+
+def test_what_left_as_planned_is_ticked_and_recorded() -> None:
+    state = with_sample()
+    test = page("pages/plan.py", state)
+    plan = state.planned()
+    assert plan is not None
+    test.session_state["plan-view"] = "gone"
+    test.session_state[f"gone-planned-{state.generation}-All"] = {
+        "selection": {"rows": [0, 2], "columns": [], "cells": []}
+    }
+    test.run()
+    test.button(key="gone-planned-add").click().run()
+    test.button(key="accept").click().run()
+    assert not test.exception
+    assert [(g.name, g.customer, g.quantity) for g in state.week.gone.values()] == [
+        ("Load 1", plan.shipments[0].customer, plan.shipments[0].quantity),
+        ("Load 2", plan.shipments[2].customer, plan.shipments[2].quantity),
+    ]
+    now = state.planned()
+    assert now is not None
+    assert now.freight_payable == plan.freight_payable
+
+
+def test_who_goes_short_is_named_beside_the_costs_and_before_a_change_is_made() -> None:
+    state = with_sample()
+    test = page("pages/plan.py", state)
+    assert any("**Short:** Mistletoe 190.5, Cole 9.5, Sorrel 8.5." in one.value for one in test.markdown)
+    state.propose(Alter("depot", "Railhead", "available", Decimal(400)))
+    test.run()
+    (put_up,) = [one.value for one in test.markdown if "Not made yet" in one.value]
+    assert "**270 t more short:** " in put_up
+    assert put_up.index("more short") < put_up.index("Freight")
+
+
+def test_a_faulty_week_leads_back_to_the_figures() -> None:
+    test = page("pages/plan.py", with_sample(sample_data.MESSY_WEEK))
+    assert test.error[0].value == "This week cannot be planned as it stands. Mend what is listed here."
+    assert test.get("page_link")[0].proto.label == "Mend it on Figures"

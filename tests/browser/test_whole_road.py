@@ -118,6 +118,23 @@ def test_a_figure_typed_in_a_grid_is_read_by_our_reader(page: Page) -> None:
     assert freight(page) == engine.plan_week(changed).freight_payable
 
 
+def test_the_table_that_is_edited_stays_open_and_the_price_in_sight(page: Page) -> None:
+    page.get_by_role("button", name="Open the sample week").click()
+    page.get_by_text("6 depots, 48 customers, 352 rates").wait_for(timeout=30_000)
+    page.get_by_role("tab", name="Customers").click()
+    grid = visible_grid(page)
+    type_into(page, grid, column_of(grid, "Ordered"), 1, "400")
+    made = page.get_by_role("button", name="Make the change")
+    made.wait_for(timeout=30_000)
+    expect(page.get_by_role("tab", name="Customers")).to_have_attribute("aria-selected", "true")
+    page.mouse.move(1262, 600)
+    page.mouse.wheel(0, 600)
+    expect(made).to_be_in_viewport()
+    made.click()
+    page.get_by_text("1 change since it was opened").wait_for(timeout=30_000)
+    expect(page.get_by_role("tab", name="Customers")).to_have_attribute("aria-selected", "true")
+
+
 def test_an_address_of_a_page_leads_to_that_page_with_the_menu(page: Page, desk: str) -> None:
     page.goto(f"{desk}/plan")
     page.get_by_role("heading", name="Plan", exact=True).wait_for(timeout=30_000)
