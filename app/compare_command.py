@@ -1,6 +1,8 @@
 """`hithe compare`: why does one week, or one plan, cost more than another?"""
 
 import sys
+from dataclasses import replace
+from decimal import Decimal
 from pathlib import Path
 
 import click
@@ -16,6 +18,7 @@ from engine.compare.service import saving
 from engine.compare.usual import NoRule, Rule, UsualPlan, rules_possible, usual_plan
 from engine.exact import TooLarge, canonical
 from engine.findings import Finding, Severity
+from engine.money import minor_places, round_half_up
 from engine.report.bridge_json import bridge_as_json
 from engine.report.bridge_sheet import bridge_sheet
 from engine.report.compare_sheet import compare_sheet
@@ -61,6 +64,8 @@ def compare(
     from app.command import _refuse
 
     one, two = sides(ctx, first, second, records)
+    if one.name == two.name:  # 'Week 6 costs more than Week 6' would say nothing
+        one, two = replace(one, name=f"{one.name} ({first})"), replace(two, name=f"{two.name} ({second})")
     wanted = [effect.strip() for effect in order.split(",") if effect.strip()]
     try:
         found = bridge(one, two, wanted, average, _progress)
@@ -91,19 +96,24 @@ def _write(ctx: click.Context, side: Side, found: Bridge, rule: str | None, out:
 
 
 def _lines(found: Bridge) -> list[str]:
-    lines = [paragraph(found), ""]
+    places = minor_places(found.currency)
+
+    def money(value: Decimal) -> str:
+        return f"{round_half_up(value, places):.{places}f}"
+
+    lines = [paragraph(found, money=lambda value: f"{money(value)} {found.currency}"), ""]
     width = max([len(step.name) for step in found.steps] + [len(found.first), len(found.second), 8])
     lines.append(f"{'':{width}}  {'freight':>14}  {'then':>14}  {'charges':>12}  {'short':>10}")
-    lines.append(f"{found.first:{width}}  {'':>14}  {canonical(found.first_freight):>14}")
+    lines.append(f"{found.first:{width}}  {'':>14}  {money(found.first_freight):>14}")
     for step in found.steps:
-        then = "" if step.after is None else canonical(step.after)
+        then = "" if step.after is None else money(step.after)
         lines.append(
-            f"{step.name:{width}}  {canonical(step.freight):>14}  {then:>14}  "
-            f"{canonical(step.charges):>12}  {canonical(step.short):>10}"
+            f"{step.name:{width}}  {money(step.freight):>14}  {then:>14}  "
+            f"{money(step.charges):>12}  {canonical(step.short):>10}"
         )
     lines.append(
-        f"{found.second:{width}}  {canonical(found.freight):>14}  {canonical(found.second_freight):>14}  "
-        f"{canonical(found.charges):>12}  {canonical(found.short):>10}"
+        f"{found.second:{width}}  {money(found.freight):>14}  {money(found.second_freight):>14}  "
+        f"{money(found.charges):>12}  {canonical(found.short):>10}"
     )
     return [*lines, *(["", *found.remarks] if found.remarks else [])]
 

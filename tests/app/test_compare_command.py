@@ -154,3 +154,10 @@ def test_a_name_of_several_weeks_and_of_none_is_not_guessed_at(tmp_path: Path) -
     code, _, err = run("Week 9", NOW, "--records", str(place))
     assert code == 2
     assert "'Week 9' is no file here, nor a week in the records" in err
+
+
+def test_two_files_of_one_week_are_told_apart_by_their_names(tmp_path: Path) -> None:
+    other = tmp_path / "thursday.xlsx"
+    assert CliRunner().invoke(main, ["plan", NOW, "--out", str(other)]).exit_code == 3
+    said = CliRunner().invoke(main, ["compare", NOW, str(other)]).stdout
+    assert f"Week 6 ({other}) costs the same freight as Week 6 ({NOW}): 59566.18 EUR." in said
