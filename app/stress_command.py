@@ -19,8 +19,9 @@ from engine.compare.stress import Stressed, short_often, spreading, stressed
 from engine.compare.stress_cases import Case, all_by, depots_lost, drawn, hauliers_lost, lanes_lost
 from engine.compare.stress_cluster import NoCluster, cluster
 from engine.compare.stress_draws import Draws, Spread, spread_of
-from engine.compare.stress_ground import NeedsWholeLoads
+from engine.compare.stress_ground import is_no_network
 from engine.compare.stress_run import processes
+from engine.compare.stress_whole import SECONDS_A_CASE, NotDrawn, dearest_lanes_lost
 from engine.exact import canonical
 from engine.money import minor_places, round_half_up
 from engine.report.stress_json import stress_as_json
@@ -93,6 +94,8 @@ FILE = click.Path(exists=True, dir_okay=False, path_type=Path)
 @click.option("--rates-stray", type=Strays(), metavar="HOW", help="Likewise the rates, haulier by haulier.")
 @click.option("--workers", type=click.IntRange(1, 256), metavar="N", help="Work on so many processes.")
 @click.option("--cluster", "address", metavar="ADDRESS", help="Work on the Dask cluster of this scheduler.")
+@click.option("--time-limit", type=click.FloatRange(min=0), default=SECONDS_A_CASE, show_default=True,
+              metavar="SECONDS", help="With whole loads: how long to search for each case.")  # fmt: skip
 @click.option("--emission-factor", type=Amount(), metavar="KG",
               help="Also trade cost off against emissions: your own kg CO2e per tonne-km.")  # fmt: skip
 @click.option("--source", default="", metavar="TEXT", help="Where that factor is from; it is printed.")
@@ -115,6 +118,7 @@ def stress(
     rates_stray: Spread | None,
     workers: int | None,
     address: str | None,
+    time_limit: float,
     emission_factor: Decimal | None,
     source: str,
     tonnes_per_unit: Decimal | None,
@@ -123,9 +127,10 @@ def stress(
 ) -> None:
     """Stress the week in these files: what if a depot, a haulier or a lane is lost, or figures stray?
 
-    Every case is a plan of its own, proved. Ctrl-C stops, keeps what is done and exits with 130.
-    Otherwise the exit status is 0 if nobody goes short in any case, 3 if somebody does, 2 if the figures
-    cannot be used.
+    Every case is a plan of its own, proved. With whole loads it is searched for, and what is proved stands
+    beside it; of the lanes only the dearest are lost, and no weeks are drawn. Ctrl-C stops, keeps what is
+    done and exits with 130. Otherwise the exit status is 0 if nobody goes short in any case, 3 if somebody
+    does, 2 if the figures cannot be used.
     """
     from app.command import _read, _refuse, _tell, _together
 
@@ -144,20 +149,22 @@ def stress(
     except engine.NotPlannable as stopped:
         _refuse(ctx, _together(reading.findings, stopped.findings))
     cases: list[Case] = []
-    for what, cases_of in (("depots", depots_lost), ("hauliers", hauliers_lost), ("lanes", lanes_lost)):
+    whole = is_no_network(plan)
+    lanes = dearest_lanes_lost if whole else lanes_lost
+    if whole and (workers or address):
+        click.echo("With whole loads cases are searched for one after the other, on this machine.", err=True)
+        workers = address = None
+    for what, cases_of in (("depots", depots_lost), ("hauliers", hauliers_lost), ("lanes", lanes)):
         if what in lose:
             cases += cases_of(plan)
     cases += [*all_by("orders", orders), *all_by("rates", rates), *drawn(draws, draw)]
     try:
-        found = _run(plan, cases, workers, address)
+        found = _run(plan, cases, workers, address, time_limit)
         traded = None
         if emission_factor is not None:
             traded = frontier(plan, Emissions(emission_factor, source.strip(), tonnes_per_unit))
-    except (NoCluster, NoTradeOff, engine.TooLarge) as missing:
+    except (NoCluster, NoTradeOff, NotDrawn, engine.TooLarge) as missing:
         click.echo(str(missing), err=True)
-        ctx.exit(UNUSABLE)
-    except NeedsWholeLoads as refused:
-        click.echo(f"{refused} Such a week cannot be stressed yet.", err=True)
         ctx.exit(UNUSABLE)
     if out is not None:
         made = engine.with_findings(plan, reading.findings)
@@ -176,7 +183,9 @@ def stress(
     ctx.exit(SHORT if any(one.short for one in (found.today, *found.outcomes)) else 0)
 
 
-def _run(plan: engine.Plan, cases: list[Case], workers: int | None, address: str | None) -> Stressed:
+def _run(
+    plan: engine.Plan, cases: list[Case], workers: int | None, address: str | None, seconds: float
+) -> Stressed:
     """The stressed plan, with progress on stderr; Ctrl-C stops it and keeps what is done."""
     with ExitStack() as stack:
         stop = stack.enter_context(_stopping())
@@ -201,6 +210,7 @@ def _run(plan: engine.Plan, cases: list[Case], workers: int | None, address: str
             progress=lambda done, _: bar.update(done - bar.pos),
             stop=stop.is_set,
             renew=renew,
+            seconds=seconds,
         )
 
 
@@ -254,7 +264,8 @@ def _lines(found: Stressed) -> list[str]:
     ranked = found.ranked()
     if ranked:
         width = max(len(one.case.words) for one in ranked)
-        lines += ["", f"{'':{width}}  {'more short':>12}  {'dearer by':>14}"]
+        proved = "" if found.seconds is None else f"{'at least':>14}  "
+        lines += ["", f"{'':{width}}  {'more short':>12}  {'dearer by':>14}  {proved}".rstrip()]
         for one in ranked:
             if one.why:
                 lines.append(f"{one.case.words:{width}}  cannot be planned: {one.why}")
@@ -262,9 +273,24 @@ def _lines(found: Stressed) -> list[str]:
             hit = ", ".join(f"{name} {canonical(quantity)}" for name, quantity in one.hit[:3])
             more = f" and {len(one.hit) - 3} more" if len(one.hit) > 3 else ""
             short = canonical(found.more_short(one))
-            dearer = canonical(round_half_up(found.dearer(one), minor))
-            lines.append(f"{one.case.words:{width}}  {short:>12}  {dearer:>14}  {hit}{more}".rstrip())
+            dearer, surely = (
+                canonical(round_half_up(amount, minor))
+                for amount in (found.dearer(one), found.surely_dearer(one))
+            )
+            proved = "" if found.seconds is None else f"{surely:>14}  "
+            lines.append(f"{one.case.words:{width}}  {short:>12}  {dearer:>14}  {proved}{hit}{more}".rstrip())
     lines += found.unchanged
+    if found.seconds is not None:
+        lines += [
+            f"With whole loads each case was searched for {found.seconds:g} s. Dearer by: the best plan "
+            "found against today's. At least: proved, by so much or more the least cost rises.",
+            f"Today's plan is at most {canonical(found.today.gap)} {rules.currency} above the least cost.",
+        ]
+        lines += [
+            f"{one.case.words}: perhaps less would go short, which is not proved."
+            for one in ranked
+            if one.may_serve_better
+        ]
     spread = spreading([one.total for one in found.drawn])
     if spread is not None:
         often = short_often(found.drawn)

@@ -12,7 +12,7 @@ from datetime import datetime
 
 from engine.compare.stress import Stressed, stressed
 from engine.compare.stress_cases import Case
-from engine.compare.stress_ground import NeedsWholeLoads
+from engine.compare.stress_whole import SECONDS_A_CASE, NotDrawn
 from engine.exact import TooLarge
 from engine.planning.plan import Plan
 
@@ -25,11 +25,13 @@ class Job:
     """One run for one plan. `found` is there once it has ended, or `fault` with the reason why not.
 
     version: how many changes the week had; begun: when, by this machine's clock
+    seconds: with whole loads, how long each case is searched for
     """
 
     version: int
     plan: Plan
     cases: Sequence[Case]
+    seconds: float = SECONDS_A_CASE
     begun: datetime = field(default_factory=lambda: datetime.now().astimezone())
     finished: int = 0
     found: Stressed | None = None
@@ -60,9 +62,11 @@ def job_of(key: Hashable, version: int) -> Job | None:
     return job if job is not None and job.version == version else None
 
 
-def begin(key: Hashable, version: int, plan: Plan, cases: Sequence[Case]) -> Job:
+def begin(
+    key: Hashable, version: int, plan: Plan, cases: Sequence[Case], seconds: float = SECONDS_A_CASE
+) -> Job:
     """Starts a run; one of the same week that goes on is stopped."""
-    job = Job(version, plan, cases)
+    job = Job(version, plan, cases, seconds)
     with _lock:
         before = _jobs.pop(key, None)
         if before is not None:
@@ -79,11 +83,11 @@ def _work(job: Job) -> None:
         job.finished = done
 
     try:
-        job.found = stressed(job.plan, job.cases, progress=progress, stop=job.stop.is_set)
-    except NeedsWholeLoads as refused:
-        job.fault = f"{refused} Such a week cannot be stressed yet."
-    except TooLarge as too_large:
-        job.fault = str(too_large)
+        job.found = stressed(
+            job.plan, job.cases, progress=progress, stop=job.stop.is_set, seconds=job.seconds
+        )
+    except (NotDrawn, TooLarge) as refused:
+        job.fault = str(refused)
     except Exception as fault:  # the page must say it, nobody waits for this thread
         job.fault = f"The run ended by a fault of ours: {type(fault).__name__}: {fault}"
     finally:

@@ -1,5 +1,6 @@
 """What to try in a stress run, as the desk types it."""
 
+from collections.abc import Mapping
 from decimal import Decimal
 
 import streamlit as st
@@ -9,6 +10,8 @@ from app.session import Desk
 from engine.columns import Column, Kind
 from engine.compare.stress_cases import Case, all_by, depots_lost, drawn, hauliers_lost, lanes_lost
 from engine.compare.stress_draws import Draws, Spread, spread_of
+from engine.compare.stress_ground import is_no_network
+from engine.compare.stress_whole import MOST_DEAREST, SECONDS_A_CASE, dearest_lanes_lost
 from engine.intake.fields import read_field
 from engine.planning.plan import Plan
 
@@ -17,6 +20,8 @@ MOST_LANES = 500
 """Of the lanes in use, so many that carry most are tried on the page; the command tries all."""
 
 MOST_DRAWN = 5_000
+LONGEST_CASE = 120
+"""Seconds."""
 
 _PERCENT = Column("Percent", "percent", Kind.PERCENT, "")
 _STRAYS = (
@@ -31,12 +36,14 @@ _HOW = (
 )
 
 
-def cases_asked(state: Desk, plan: Plan) -> list[Case] | None:
-    """The cases chosen; None, and why, where something that was typed cannot be read."""
-    losses = st.pills(
-        "Lose, one by one", list(LOSSES), selection_mode="multi", default=list(LOSSES), key="stress-lose",
-        format_func=LOSSES.__getitem__,
-    )  # fmt: skip
+def cases_asked(state: Desk, plan: Plan) -> tuple[list[Case], float] | None:
+    """The cases chosen, and with whole loads how long each is searched for.
+
+    None, and why, where something that was typed cannot be read.
+    """
+    if is_no_network(plan):
+        return _with_whole_loads(state, plan)
+    losses = _losses(LOSSES)
     with st.container(horizontal=True, vertical_alignment="bottom"):
         orders = st.text_input("Orders up and down by, %", "10", key="stress-orders", width=180)
         rates = st.text_input("Rates up by, %", "10", key="stress-rates", width=180)
@@ -67,7 +74,42 @@ def cases_asked(state: Desk, plan: Plan) -> list[Case] | None:
     cases += hauliers_lost(plan) if "hauliers" in losses else ()
     cases += lanes_lost(plan, MOST_LANES) if "lanes" in losses else ()
     cases += [*all_by("orders", [by[0], -by[0]]), *all_by("rates", [by[1]]), *drawn(draws, number)]
-    return cases
+    return cases, SECONDS_A_CASE
+
+
+def _with_whole_loads(state: Desk, plan: Plan) -> tuple[list[Case], float] | None:
+    """Fewer cases, since each is a search, and no sample."""
+    losses = _losses({**LOSSES, "lanes": f"the {MOST_DEAREST} dearest lanes"})
+    with st.container(horizontal=True, vertical_alignment="bottom"):
+        orders = st.text_input("Orders up and down by, %", "10", key="stress-orders", width=180)
+        rates = st.text_input("Rates up by, %", "10", key="stress-rates", width=180)
+        seconds = st.text_input(
+            "Seconds a case", f"{SECONDS_A_CASE:g}", key="stress-seconds", width=180,
+            help="The longer each case is searched for, the less is left between its plan and what is proved",
+        )  # fmt: skip
+    wrong: list[str] = []
+    by = [_percent(state, text, wrong) for text in (orders, rates)]
+    bare = seconds.strip()
+    limit = int(bare) if bare.isascii() and bare.isdigit() and len(bare) < 5 else 0
+    if not 1 <= limit <= LONGEST_CASE:
+        wrong.append(f"Seconds a case: '{seconds}' is no whole number between 1 and {LONGEST_CASE}.")
+    for sentence in dict.fromkeys(wrong):
+        st.error(plain(sentence))
+    if wrong:
+        return None
+    cases: list[Case] = []
+    cases += depots_lost(plan) if "depots" in losses else ()
+    cases += hauliers_lost(plan) if "hauliers" in losses else ()
+    cases += dearest_lanes_lost(plan) if "lanes" in losses else ()
+    cases += [*all_by("orders", [by[0], -by[0]]), *all_by("rates", [by[1]])]
+    return cases, float(limit)
+
+
+def _losses(called: Mapping[str, str]) -> list[str]:
+    return st.pills(
+        "Lose, one by one", list(called), selection_mode="multi", default=list(called), key="stress-lose",
+        format_func=called.__getitem__,
+    )  # fmt: skip
 
 
 def _percent(state: Desk, text: str, wrong: list[str]) -> Decimal:

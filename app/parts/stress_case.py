@@ -11,19 +11,24 @@ from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import number, plain
 from app.session import Desk, try_plan
 from engine.compare.stress_cases import Case, change_of
+from engine.compare.stress_solve import Outcome
 from engine.exact import total_of
+from engine.findings import Finding
 from engine.planning.plan import Plan
 from engine.planning.totals import flows
 
 Lane = tuple[str, str]
 
 
-def case_view(state: Desk, plan: Plan, case: Case) -> None:
+def case_view(state: Desk, plan: Plan, one: Outcome) -> None:
     """The plan of the week as the case leaves it, beside today's."""
-    with st.spinner("Planning this case …", show_time=True):
-        found, stopped = asked(
-            plan, ("case", case), lambda: try_plan(plan.week.apply(change_of(plan.week, case)), near=plan)
-        )
+    case, found = one.case, one.plan
+    stopped: tuple[Finding, ...] = ()
+    if found is None:
+        with st.spinner("Planning this case …", show_time=True):
+            found, stopped = asked(
+                plan, ("case", case), lambda: try_plan(plan.week.apply(change_of(plan.week, case)), near=plan)
+            )
     st.markdown(f"#### {plain(_title(case))}")
     if found is None:
         for finding in stopped:

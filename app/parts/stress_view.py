@@ -15,6 +15,7 @@ from app.session import Desk
 from app.stress_job import Job, begin, job_of
 from engine.compare.stress import Stressed, short_often, spreading
 from engine.compare.stress import histogram as bins_of
+from engine.compare.stress_ground import is_no_network
 from engine.compare.stress_solve import Outcome
 from engine.money import minor_places
 from engine.planning.plan import Plan
@@ -23,6 +24,11 @@ from engine.report.workbook import header_of, write_workbook
 
 MOST_BARS = 15
 OWN = "stress-own"
+_PROVED = "Each case is a plan of its own, proved, beside today's. Nothing here changes the week."
+_WHOLE = (
+    "With whole loads each case is a plan that is searched for, with a proved least cost beside it; no weeks "
+    "are drawn, since a sample takes hundreds of plans. Nothing here changes the week."
+)
 XLSX = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
 
 
@@ -31,18 +37,17 @@ def stress_view(state: Desk, plan: Plan) -> None:
     key, version = run_key(state), len(state.history.entries)
     job = job_of(key, version)
     with st.expander("What to try", expanded=job is None):
-        st.caption(
-            "Each case is a plan of its own, proved, beside the plan as it stands. "
-            "Nothing here changes the week."
-        )
-        cases = cases_asked(state, plan)
-        if (
-            cases is not None
-            and len(cases)
-            and st.button(f"Try {counted(len(cases), 'case')}", type="primary", key="stress-run")
-        ):
-            job = begin(key, version, plan, cases)
-            st.rerun()
+        whole = is_no_network(plan)
+        st.caption(_WHOLE if whole else _PROVED)
+        asked = cases_asked(state, plan)
+        if whole and state.searching.is_on:
+            _plan_awaited(state)
+        elif asked is not None and asked[0]:
+            cases, seconds = asked
+            about = f", about {_minutes(len(cases) * seconds)}" if whole else ""
+            if st.button(f"Try {counted(len(cases), 'case')}{about}", type="primary", key="stress-run"):
+                job = begin(key, version, _latest(state, plan), cases, seconds)
+                st.rerun()
     if job is None:
         return
     if not job.is_done:
@@ -53,6 +58,24 @@ def stress_view(state: Desk, plan: Plan) -> None:
     elif job.found is not None:
         _shown(state, job.found)
         st.caption(f"Tried at {job.begun:%H:%M}, {job.begun:%d %b}; kept here until the week is changed.")
+
+
+def _minutes(seconds: float) -> str:
+    return f"{seconds:.0f} s" if seconds < 90 else f"{seconds / 60:.0f} min"
+
+
+def _latest(state: Desk, plan: Plan) -> Plan:
+    """The plan on the desk, or the better one that its search has ended with."""
+    job = state.searching.job
+    return plan if job is None or not job.is_done or job.fault else job.so_far()
+
+
+@st.fragment(run_every=1.0)
+def _plan_awaited(state: Desk) -> None:
+    """With whole loads a run begins from the plan that the search ends with."""
+    if not state.searching.is_on:
+        st.rerun()
+    st.info("This week's own plan is still being searched for: cases can be tried once that has ended.")
 
 
 def run_key(state: Desk) -> Hashable:
@@ -81,11 +104,13 @@ def _watched(job: Job) -> None:
 def _shown(state: Desk, found: Stressed) -> None:
     """What the run found, beside the plan that it started from."""
     plan = found.plan
+    if found.seconds is not None:
+        st.caption(_searched(found, state.decimal_mark))
     if found.stopped:
         st.info(f"Stopped: {len(found.outcomes):,} of {counted(found.asked, 'case')} are done.")
     picked = _ranked(state, found)
     if picked is not None:
-        case_view(state, plan, picked.case)
+        case_view(state, plan, picked)
     _drawn(state, found)
 
     def workbook() -> bytes:
@@ -127,10 +152,12 @@ def _ranked(state: Desk, found: Stressed) -> Outcome | None:
                 f"How much dearer the {len(named)} worst cases are; the table says the same.",
             )  # fmt: skip
     minor = minor_places(rules.currency)
+    surely = Heading(f"At least, {rules.currency}", "Proved: by so much or more the least cost rises", minor)
     headings = [
         Heading("Case"),
         Heading(f"More short, {rules.unit}", "Beside today, over all customers"),
         Heading(f"Dearer by, {rules.currency}", "Freight and charges beside today", minor),
+        *([] if found.seconds is None else [surely]),
         Heading(f"Freight, {rules.currency}", "Exact, before amounts are rounded", minor),
         Heading(f"Charge for short, {rules.currency}", places=minor),
         Heading(f"Charge for unsent, {rules.currency}", places=minor),
@@ -138,22 +165,42 @@ def _ranked(state: Desk, found: Stressed) -> Outcome | None:
         Heading("Hit", "How many customers go shorter than today"),
         Heading("Who most"),
     ]
-    rows: list[list[Cell]] = [
-        [_name(one), None, None, None, None, None, None, None, one.why] if one.why else [
-            _name(one), found.more_short(one), found.dearer(one), one.freight, one.short_charge,
-            one.unsent_charge, one.moved, Decimal(len(one.hit)), _most_hit(one),
-        ]
-        for one in ranked
-    ]  # fmt: skip
+    rows = [_row(found, one, len(headings)) for one in ranked]
     row = reasons_table(headings, rows, f"stress-table-{id(found)}", mark, most_height=420)
     for sentence in found.unchanged:
         st.caption(plain(sentence))
+    open_ended = [_name(one) for one in ranked if one.may_serve_better]
+    if open_ended:
+        st.caption(plain(f"Perhaps less would go short, which is not proved: {', '.join(open_ended)}."))
     if sum(one.case.kind == "lane lost" for one in ranked) == MOST_LANES:
         st.caption(f"Of the lanes in use, the {MOST_LANES:,} that carry most were tried.")
     if row is None:
         st.caption("Pick a case to see who is hit and which lanes change, on the map.")
         return None
     return ranked[row]
+
+
+def _row(found: Stressed, one: Outcome, width: int) -> list[Cell]:
+    if one.why:
+        return [_name(one), *[None] * (width - 2), one.why]
+    surely: list[Cell] = [] if found.seconds is None else [found.surely_dearer(one)]
+    return [
+        _name(one), found.more_short(one), found.dearer(one), *surely, one.freight, one.short_charge,
+        one.unsent_charge, one.moved, Decimal(len(one.hit)), _most_hit(one),
+    ]  # fmt: skip
+
+
+def _searched(found: Stressed, mark: str) -> str:
+    """What the figures of a run with whole loads are."""
+    currency, gap = found.plan.week.rules.currency, found.today.gap
+    said = (
+        f"With whole loads each case was searched for {found.seconds:g} s. *Dearer by* holds the best plan "
+        "found against today's: it can be done. *At least* is proved: by so much or more the least cost "
+        "rises, service as good. Cases are ranked by what is proved."
+    )
+    if gap:
+        said += f" Today's plan itself is at most {plain(money(gap, currency, mark))} above the least cost."
+    return said
 
 
 def _worst(found: Stressed, ranked: tuple[Outcome, ...], mark: str) -> str:
@@ -163,6 +210,9 @@ def _worst(found: Stressed, ranked: tuple[Outcome, ...], mark: str) -> str:
     more, dearer = found.more_short(worst), found.dearer(worst)
     cost = plain(money(abs(dearer), rules.currency, mark))
     way = "dearer" if dearer >= 0 else "cheaper, since less is delivered"
+    if found.seconds is not None and worst.gap:
+        surely = found.surely_dearer(worst)
+        way += f" (proved: at least {plain(money(surely, rules.currency, mark))})"
     short = f"{plain(quantity(more, rules.unit, mark))} more go short and " if more > 0 else ""
     return (
         f"Worst of all: **{plain(_name(worst))}**. {short.capitalize()}freight and charges are {cost} {way}."

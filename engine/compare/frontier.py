@@ -263,7 +263,12 @@ _TOO_LARGE = (
 
 def _ground(plan: Plan, emissions: Emissions) -> _Ground:
     if is_no_network(plan):
-        raise NoTradeOff("A week with whole loads or single depots cannot be traded off exactly yet.")
+        raise NoTradeOff(
+            "Cost is traded off against emissions only where loads can be divided: with whole loads, "
+            "charges due once, smallest drops, single depots or limits on loads or hauliers a plan is "
+            "searched for, and points that are not proved are no frontier. To see about what there is to "
+            "save, take a copy of the week on Weeks and give its rates per unit, without those figures."
+        )
     model, flat = plan.model, plan.week.rates.flat
     kilograms = emissions.per_unit_km(plan.week.rules.unit)
     column = flat.decimals.get("km")

@@ -15,9 +15,16 @@ from engine.compare.stress_cases import (
     unchanged,
 )
 from engine.compare.stress_draws import Draws
-from engine.compare.stress_ground import ground_of
+from engine.compare.stress_ground import ground_of, is_no_network
 from engine.compare.stress_run import Progress, stress
 from engine.compare.stress_solve import Outcome, outcome_of
+from engine.compare.stress_whole import (
+    SECONDS_A_CASE,
+    WholeGround,
+    dearest_lanes_lost,
+    none_drawn,
+    whole_today,
+)
 from engine.exact import total_of
 from engine.planning.plan import Plan
 
@@ -32,6 +39,7 @@ class Stressed:
     outcomes:  each case that was done, in the order asked
     unchanged: what was not solved since it changes nothing, as sentences
     asked:     how many cases were asked; fewer were done where the run was stopped
+    seconds:   with whole loads, how long each case was searched for; None: every plan is proved
     """
 
     plan: Plan
@@ -39,6 +47,7 @@ class Stressed:
     outcomes: tuple[Outcome, ...]
     unchanged: tuple[str, ...]
     asked: int
+    seconds: float | None = None
 
     @property
     def named(self) -> tuple[Outcome, ...]:
@@ -67,11 +76,26 @@ class Stressed:
         """How much more freight and charges come to than today."""
         return total_of((outcome.total, -self.today.total))
 
+    def surely_dearer(self, outcome: Outcome) -> Decimal:
+        """By how much the least cost rises at least, service as good: what is proved.
+
+        Today's least cost is no more than today's plan, and a case that only closes lanes lowers none.
+        """
+        least = outcome.total if outcome.at_least is None else outcome.at_least
+        more = total_of((least, -self.today.total))
+        as_good = not self.more_short(outcome) and not outcome.may_serve_better
+        return max(more, Decimal(0)) if outcome.only_closes and as_good else more
+
     def ranked(self) -> tuple[Outcome, ...]:
-        """The named cases, the worst first: what cannot be planned, then by what goes short, then by cost."""
-        return tuple(
-            sorted(self.named, key=lambda one: (not one.why, -self.more_short(one), -self.dearer(one)))
-        )
+        """The named cases, the worst first: what cannot be planned, then by what goes short, then by cost.
+
+        With whole loads by the cost that is proved, since what a search comes to also depends on the search.
+        """
+
+        def worse(one: Outcome) -> tuple[bool, Decimal, Decimal, Decimal]:
+            return not one.why, -self.more_short(one), -self.surely_dearer(one), -self.dearer(one)
+
+        return tuple(sorted(self.named, key=worse))
 
 
 def usual_cases(
@@ -85,7 +109,7 @@ def usual_cases(
     return [
         *depots_lost(plan),
         *hauliers_lost(plan),
-        *lanes_lost(plan, lanes),
+        *(dearest_lanes_lost(plan) if is_no_network(plan) else lanes_lost(plan, lanes)),
         *all_by("orders", both),
         *all_by("rates", percents),
     ]
@@ -100,11 +124,19 @@ def stressed(
     progress: Progress | None = None,
     stop: Callable[[], bool] | None = None,
     renew: Callable[[], Executor] | None = None,
+    seconds: float = SECONDS_A_CASE,
 ) -> Stressed:
     """Stresses a plan; see `engine.compare.stress_run.stress` for what is given and raised.
 
-    Raises NeedsWholeLoads where the week is no plain network.
+    seconds: with whole loads, how long each case is searched for
+
+    Raises NotDrawn where weeks are to be drawn of a plan with whole loads.
     """
+    if is_no_network(plan):
+        none_drawn(cases)
+        run = stress(WholeGround(plan, seconds), cases, progress=progress, stop=stop)
+        found = tuple(run.outcomes.values())
+        return Stressed(plan, whole_today(plan), found, unchanged(plan), run.asked, seconds)
     ground = ground_of(plan)
     run = stress(ground, cases, executor, workers=workers, progress=progress, stop=stop, renew=renew)
     today = outcome_of(ground, AS_IT_IS)

@@ -16,6 +16,7 @@ from engine.compare.stress_cases import Case
 from engine.compare.stress_ground import Ground
 from engine.compare.stress_kernels import prepare
 from engine.compare.stress_solve import Outcome, outcome_of
+from engine.compare.stress_whole import WholeGround, whole_outcome
 from engine.network import prepare as prepare_network
 
 Progress = Callable[[int, int], None]
@@ -68,7 +69,7 @@ class Run:
 
 
 def stress(
-    ground: Ground,
+    ground: Ground | WholeGround,
     cases: Sequence[Case],
     executor: Executor | None = None,
     *,
@@ -80,9 +81,10 @@ def stress(
     """Solves the cases, each once, every plan proved.
 
     Args:
-        ground: the plan to be stressed, see `ground_of`.
+        ground: the plan to be stressed, see `ground_of`; with whole loads a `WholeGround`.
         cases: what may happen; one that is asked twice is solved once.
-        executor: where parts are solved; None solves case after case here.
+        executor: where parts are solved; None solves case after case here. With whole loads each search keeps
+            several cores busy by itself, and cases follow each other here in any case.
         workers: how many parts the executor works on at a time.
         progress: told of each part that is done.
         stop: asked now and then; once it says so, no more is begun and what is done is kept.
@@ -95,7 +97,7 @@ def stress(
     run = Run(len(wanted))
     tell, asked_to_stop = progress or (lambda done, of: None), stop or (lambda: False)
     tell(0, run.asked)
-    if executor is None:
+    if executor is None or isinstance(ground, WholeGround):
         for case in wanted:
             if asked_to_stop():
                 run.stopped = True
@@ -108,8 +110,11 @@ def stress(
     return run
 
 
-def part_of(ground: Ground, cases: Sequence[Case]) -> tuple[list[Outcome], float]:
+def part_of(ground: Ground | WholeGround, cases: Sequence[Case]) -> tuple[list[Outcome], float]:
     """The outcomes of some cases, and the processor time that they took this thread."""
+    if isinstance(ground, WholeGround):
+        begun = time.thread_time()
+        return [whole_outcome(ground, case) for case in cases], time.thread_time() - begun
     _ = ground.near  # what is made once is no part of a case
     begun = time.thread_time()
     return [outcome_of(ground, case) for case in cases], time.thread_time() - begun

@@ -5,7 +5,7 @@ all other rows; those that would pay are let in, until none would: so every plan
 week, at the price of one pass over its rows.
 """
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from decimal import Decimal
 from typing import NamedTuple
 
@@ -19,6 +19,7 @@ from engine.exact import LARGEST, TooLarge, to_decimal, total, total_of
 from engine.network import Contradiction, Flow, Problem, least_cost
 from engine.planning.aims import MUST_MOVE, OUT_OF_REACH, Weights, weights
 from engine.planning.model import EVEN_SHARE, NO_RATE, Model, limits_of
+from engine.planning.plan import Plan
 from engine.planning.shortage import evenly_shared, sharing_of
 from engine.week import Week
 
@@ -38,6 +39,12 @@ class Outcome:
     unsent:    what depots keep; must_stay: what of it should have moved
     moved:     how much goes on other rate rows than today
     why:       why it cannot be planned; empty where it can, and then the figures count
+    With whole loads also:
+    opening_charge: of the depots that are opened
+    at_least:  what any plan that serves as well costs at least, proved; None: the plan itself is proved
+    may_serve_better: whether it is not proved that no plan leaves less short, or moves more that must
+    only_closes: whether the case takes ways to send away and nothing else, no promise or hold either
+    plan:      the plan that was found, so that nobody searches for it again
     """
 
     case: Case
@@ -50,11 +57,21 @@ class Outcome:
     must_stay: Decimal = Decimal(0)
     moved: Decimal = Decimal(0)
     why: str = ""
+    opening_charge: Decimal = Decimal(0)
+    at_least: Decimal | None = None
+    may_serve_better: bool = False
+    only_closes: bool = False
+    plan: Plan | None = field(default=None, compare=False, repr=False)
 
     @property
     def total(self) -> Decimal:
         """Freight and charges: what was made least."""
-        return total_of((self.freight, self.short_charge, self.unsent_charge))
+        return total_of((self.freight, self.short_charge, self.unsent_charge, self.opening_charge))
+
+    @property
+    def gap(self) -> Decimal:
+        """How far the plan may be above the least cost, 0 where it is proved."""
+        return Decimal(0) if self.at_least is None else total_of((self.total, -self.at_least))
 
     @property
     def missing(self) -> Decimal:

@@ -12,7 +12,7 @@ from threading import Event
 
 import numpy as np
 
-from engine.exact import Integers, canonical, to_decimal, total_of
+from engine.exact import Integers, canonical, places_needed, to_decimal, to_integer, total_of
 from engine.figures import PRIORITIES
 from engine.findings import Finding, Severity, by_gravity
 from engine.loads import LoadFlow, LoadProblem, NoPlan, Progress, least_cost_loads
@@ -114,17 +114,24 @@ def plan_loads(
         if improved is not None:
             improved(_improving(search, progress))
 
-    earlier = None if start is None or start.whole is None else start.whole.loads
-    if earlier is not None and _size(earlier.problem) != _size(search.loads.problem):
-        earlier = None
+    earlier = None if start is None or start.whole is None else _as_start(search, start, start.whole.loads)
     flow = least_cost_loads(
         search.loads.problem, earlier, tell if improved else None, should_stop, time_limit
     )
     return plan_of(search, flow)
 
 
-def _size(problem: LoadProblem) -> tuple[int, int, int]:
-    return problem.depots, problem.customers, problem.rows
+def _as_start(search: Search, start: Plan, earlier: LoadFlow) -> LoadFlow | None:
+    """An earlier plan's quantities on the rows of this week that go by the same name; None: no row does."""
+    week, model, rows = search.week, search.model, search.loads.rows
+    ids = week.rates.ids_in_order[model.rate_row[rows]].tolist()
+    place = {number: row for row, number in enumerate(ids)}
+    quantity = np.zeros(len(rows), dtype=np.int64)
+    for one in start.shipments:
+        row = place.get(week.rates.find(one.key))
+        if row is not None and not one.gone and places_needed(one.quantity) <= model.quantity_places:
+            quantity[row] += to_integer(one.quantity, model.quantity_places)
+    return replace(earlier, quantity=quantity) if quantity.any() else None
 
 
 def search_of(week: Week, model: Model, network: Flow, found: tuple[Finding, ...]) -> Search:

@@ -14,6 +14,7 @@ def stress_as_json(stressed: Stressed) -> dict[str, Any]:
         "week": rules.week,
         "unit": rules.unit,
         "currency": rules.currency,
+        **({} if stressed.seconds is None else {"seconds_a_case": stressed.seconds}),
         "asked": stressed.asked,
         "done": len(stressed.outcomes),
         "unchanged": list(stressed.unchanged),
@@ -40,14 +41,30 @@ def _outcome(one: Outcome) -> dict[str, Any]:
     }
     if one.why:
         return {**said, "cannot_be_planned": one.why}
-    return said | {
-        "freight_cost": canonical(one.freight),
-        "short_cost": canonical(one.short_charge),
-        "unsent_cost": canonical(one.unsent_charge),
-        "total_cost": canonical(one.total),
-        "short": [{"customer": name, "quantity": canonical(quantity)} for name, quantity in one.short],
-        "more_short": [{"customer": name, "quantity": canonical(quantity)} for name, quantity in one.hit],
-        "unsent": canonical(one.unsent),
-        "must_move_kept": canonical(one.must_stay),
-        "moved": canonical(one.moved),
+    return (
+        said
+        | {
+            "freight_cost": canonical(one.freight),
+            "short_cost": canonical(one.short_charge),
+            "unsent_cost": canonical(one.unsent_charge),
+            "total_cost": canonical(one.total),
+            "short": [{"customer": name, "quantity": canonical(quantity)} for name, quantity in one.short],
+            "more_short": [{"customer": name, "quantity": canonical(quantity)} for name, quantity in one.hit],
+            "unsent": canonical(one.unsent),
+            "must_move_kept": canonical(one.must_stay),
+            "moved": canonical(one.moved),
+        }
+        | _with_whole_loads(one)
+    )
+
+
+def _with_whole_loads(one: Outcome) -> dict[str, Any]:
+    """What stands beside a plan that was searched for."""
+    if one.at_least is None:
+        return {}
+    return {
+        "opening_cost": canonical(one.opening_charge),
+        "lower_bound": canonical(one.at_least),
+        "gap": canonical(one.gap),
+        "may_serve_better": one.may_serve_better,
     }

@@ -14,6 +14,7 @@ from engine.report.native_charts import bars_height, chart_rows, columns, ranked
 from engine.report.sheet import Row, Sheet, Value
 
 _WIDTHS = (44, 15, 16, 16, 16, 16, 17, 66)
+_MORE_WIDTHS = (18, 18)
 _MOST_BARS = 15
 _MOST_NAMED = 4
 _COUNT = "#,##0"
@@ -42,7 +43,8 @@ def stress_sheet(stressed: Stressed, header: str) -> Sheet:
             axes = (f"Freight and charges from, {money}", "Drawn weeks")
             sheet.add_chart(columns(sheet, "Cost of the drawn weeks", where, 3, axes), f"E{first_bin - 8}")
 
-    return Sheet("Stress", _WIDTHS, rows, len(rows), header=header, tab=DEEP, finish=finish)
+    widths = _WIDTHS if stressed.seconds is None else (*_WIDTHS, *_MORE_WIDTHS)
+    return Sheet("Stress", widths, rows, len(rows), header=header, tab=DEEP, finish=finish)
 
 
 def strays_in_words(spread: Spread | None) -> str:
@@ -67,10 +69,12 @@ def _about(stressed: Stressed) -> list[Row]:
         Row(
             [
                 f"Money in {rules.currency}, exact and before rounding; quantities in {rules.unit}. Every "
-                "case is a plan of its own, proved."
+                "case is a plan of its own"
+                + (", proved." if stressed.seconds is None else f", searched for {stressed.seconds:g} s.")
             ],
             quiet,
         ),
+        *(Row([sentence], quiet) for sentence in _searched(stressed)),
         Row(
             [
                 "Dearer by: freight and charges beside today. Where less is delivered, freight may fall: "
@@ -85,21 +89,34 @@ def _about(stressed: Stressed) -> list[Row]:
     ]  # fmt: skip
 
 
+def _searched(stressed: Stressed) -> list[str]:
+    """What the figures are where vehicles are whole."""
+    if stressed.seconds is None:
+        return []
+    said = [
+        "Dearer by holds the best plan found against today's. At least dearer by is proved: by so much or "
+        "more the least cost rises, service as good.",
+    ]
+    if stressed.today.gap:
+        said.append(f"Today's plan itself is at most {canonical(stressed.today.gap)} above the least cost.")
+    open_ended = [one.case.words for one in stressed.ranked() if one.may_serve_better]
+    if open_ended:
+        said.append(f"Perhaps less would go short, which is not proved: {', '.join(open_ended)}.")
+    return said
+
+
 def _cases(stressed: Stressed) -> list[Row]:
     money, quantity = _formats(stressed)
     styles = [Style(), quantity, money, money, money, money, quantity, Style()]
-    rows = [
-        _headings("Case", "More short", "Dearer by", "Freight", "Charge for short", "Charge for unsent",
-                  "Goes another way", "Who is hit"),
-    ]  # fmt: skip
+    names = ["Case", "More short", "Dearer by", "Freight", "Charge for short", "Charge for unsent",
+             "Goes another way", "Who is hit"]  # fmt: skip
     today = stressed.today
-    rows.append(
-        Row(
-            ["Today", None, None, today.freight, today.short_charge, today.unsent_charge, None,
-             _who(today.short)],
-            [style._replace(kind="total") for style in styles],
-        )
-    )  # fmt: skip
+    first: list[Value] = ["Today", None, None, today.freight, today.short_charge, today.unsent_charge, None,
+                          _who(today.short)]  # fmt: skip
+    if stressed.seconds is not None:
+        names += ["At least dearer by", "Charge for opening"]
+        styles, first = [*styles, money, money], [*first, None, today.opening_charge]
+    rows = [_headings(*names), Row(first, [style._replace(kind="total") for style in styles])]
     rows += [Row(_cells(stressed, one), styles) for one in stressed.ranked()]
     return rows
 
@@ -108,9 +125,10 @@ def _cells(stressed: Stressed, one: Outcome) -> list[Value]:
     name = one.case.words[:1].upper() + one.case.words[1:]
     if one.why:
         return [name, None, None, None, None, None, None, f"Cannot be planned. {one.why}"]
+    proved = [] if stressed.seconds is None else [stressed.surely_dearer(one), one.opening_charge]
     return [
         name, stressed.more_short(one), stressed.dearer(one), one.freight, one.short_charge,
-        one.unsent_charge, one.moved, _who(one.hit),
+        one.unsent_charge, one.moved, _who(one.hit), *proved,
     ]  # fmt: skip
 
 

@@ -15,6 +15,7 @@ from engine.compare import stress_run
 from engine.compare.stress_cases import Case
 from engine.compare.stress_ground import Ground
 from engine.compare.stress_solve import Outcome
+from tests.compare.test_whole_loads import week as small_loads
 
 SMALL = "sample_data/small_week.xlsx"
 HEADINGS = "Depot,Available\n", "Customer,Ordered\n", "Depot,Customer,Rate,Haulier\n"
@@ -138,3 +139,20 @@ def test_a_stopped_run_keeps_what_is_done_and_answers_130(
     assert status == 130
     assert json.loads(out)["done"] == 3
     assert "Stopped: 3 of 52 cases are done." in err
+
+
+def test_a_week_with_whole_loads_has_what_is_proved_beside_what_was_found(tmp_path: Path) -> None:
+    file = tmp_path / "loads.xlsx"
+    engine.write_workbook(engine.plan_week(small_loads()), file)
+    code, out, err = run(str(file), "--lose", "depots", "--json", "-", "--workers", "2", "--time-limit", "2")
+    assert code == 3, err
+    read = json.loads(out)
+    assert read["seconds_a_case"] == 2
+    by_name = {one["case"]: one for one in read["cases"]}
+    assert by_name["Quarry lost"]["total_cost"] == by_name["Quarry lost"]["lower_bound"] == "390"
+    assert "on this machine" in err
+    _, out, _ = run(str(file), "--lose", "nothing", "--rates", "10")
+    assert "At least: proved" in out
+    code, _, err = run(str(file), "--draw", "5", "--rates-stray", "even 0 5")
+    assert code == 2
+    assert "ask for no drawn weeks" in err

@@ -17,11 +17,12 @@ from app.parts.stress_view import OWN, run_key
 from app.session import KEY, Desk
 from engine.changes import Alter
 from engine.compare.frontier import Emissions, frontier
-from engine.compare.stress import stressed
+from engine.compare.stress import stressed, usual_cases
 from engine.compare.stress_cases import depots_lost, drawn
 from engine.compare.stress_draws import Draws, Spread
 from engine.history import History
 from tests.app.test_compare_page import at, kept_in, whole
+from tests.compare.test_whole_loads import week as small_loads
 
 SCRIPT = """
 import runpy
@@ -214,3 +215,26 @@ def test_lanes_without_km_are_named() -> None:
     test = page(state, "frontier", **{"frontier-factor": "0.06", "frontier-source": "us"})
     assert "column Km" in said(test)
     assert not test.dataframe
+
+
+def test_with_whole_loads_cases_are_searched_for_and_what_is_proved_stands_beside() -> None:
+    state = Desk()
+    state.history = History.of(small_loads())
+    test = page(state, "stress")
+    assert "no weeks are drawn" in said(test)
+    assert not [box for box in test.text_input if box.key == "stress-draw"]
+    test.text_input(key="stress-seconds").set_value("2.5").run()
+    assert "'2.5' is no whole number" in said(test)
+    test.text_input(key="stress-seconds").set_value("3").run()
+    test.button(key="stress-run").click().run()
+    finished(test)
+    plan = state.planned()
+    assert plan is not None
+    expected = stressed(plan, usual_cases(plan), seconds=3)
+    frame = test.dataframe[0].value
+    ranked = expected.ranked()
+    assert list(frame["Case"]) == [one.case.words[:1].upper() + one.case.words[1:] for one in ranked]
+    assert list(frame["At least, EUR"]) == [float(expected.surely_dearer(one)) for one in ranked]
+    assert "searched for 3 s" in said(test)
+    refused = page(state, "frontier", **{"frontier-factor": "0.06", "frontier-source": "us"})
+    assert "copy of the week" in said(refused)
