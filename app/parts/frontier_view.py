@@ -14,7 +14,17 @@ from app.parts.reasons_table import Cell, Heading, reasons_table
 from app.parts.words import counted, money, number, plain
 from app.session import Desk
 from engine.columns import Column, Kind
-from engine.compare.frontier import TONNES, Emissions, Frontier, NoTradeOff, Point, frontier, sent_at
+from engine.compare.frontier import (
+    NOT_DIVISIBLE,
+    TONNES,
+    Emissions,
+    Frontier,
+    NoTradeOff,
+    Point,
+    frontier,
+    sent_at,
+)
+from engine.compare.stress_ground import is_no_network
 from engine.exact import total_of
 from engine.intake.fields import read_field
 from engine.money import minor_places
@@ -35,6 +45,9 @@ Lane = tuple[str, str]
 def frontier_view(state: Desk, plan: Plan) -> None:
     """The factor and its source; then the frontier as chart and table, and one point of it."""
     unit = plan.week.rules.unit
+    if is_no_network(plan):
+        st.info(NOT_DIVISIBLE)
+        return
     st.caption(
         "Everybody gets what the plan gives them; only who sends it, and by whom, changes. "
         "Nothing here changes the week."

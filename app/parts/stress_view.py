@@ -75,7 +75,10 @@ def _plan_awaited(state: Desk) -> None:
     """With whole loads a run begins from the plan that the search ends with."""
     if not state.searching.is_on:
         st.rerun()
-    st.info("This week's own plan is still being searched for: cases can be tried once that has ended.")
+    st.info(
+        "This week's own plan is still being searched for: cases can be tried once that has ended, or is "
+        "stopped on *Plan*."
+    )
 
 
 def run_key(state: Desk) -> Hashable:

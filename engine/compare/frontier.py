@@ -34,6 +34,14 @@ TONNES = {"t": Decimal(1), "kg": Decimal("0.001")}
 """Tonnes of one unit, where the unit itself says so."""
 
 
+NOT_DIVISIBLE = (
+    "Cost is traded off against emissions only where loads can be divided: with whole loads, charges due "
+    "once, smallest drops, single depots or limits on loads or hauliers a plan is searched for, and points "
+    "that are not proved are no frontier. To see about what there is to save, take a copy of the week on "
+    "Weeks and give its rates per unit, without those figures."
+)
+
+
 class NoTradeOff(ValueError):
     """The trade-off cannot be drawn; the message says what is missing."""
 
@@ -263,12 +271,7 @@ _TOO_LARGE = (
 
 def _ground(plan: Plan, emissions: Emissions) -> _Ground:
     if is_no_network(plan):
-        raise NoTradeOff(
-            "Cost is traded off against emissions only where loads can be divided: with whole loads, "
-            "charges due once, smallest drops, single depots or limits on loads or hauliers a plan is "
-            "searched for, and points that are not proved are no frontier. To see about what there is to "
-            "save, take a copy of the week on Weeks and give its rates per unit, without those figures."
-        )
+        raise NoTradeOff(NOT_DIVISIBLE)
     model, flat = plan.model, plan.week.rates.flat
     kilograms = emissions.per_unit_km(plan.week.rules.unit)
     column = flat.decimals.get("km")

@@ -236,5 +236,6 @@ def test_with_whole_loads_cases_are_searched_for_and_what_is_proved_stands_besid
     assert list(frame["Case"]) == [one.case.words[:1].upper() + one.case.words[1:] for one in ranked]
     assert list(frame["At least, EUR"]) == [float(expected.surely_dearer(one)) for one in ranked]
     assert "searched for 3 s" in said(test)
-    refused = page(state, "frontier", **{"frontier-factor": "0.06", "frontier-source": "us"})
+    refused = page(state, "frontier")
     assert "copy of the week" in said(refused)
+    assert not refused.text_input
