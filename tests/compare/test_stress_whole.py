@@ -3,19 +3,21 @@
 import json
 from decimal import Decimal
 from io import BytesIO
+from threading import Event
 
 import openpyxl
 import pytest
 
 import engine
 import sample_data
-from engine.changes import SetHold, Together
+from engine.changes import Alter, SetHold, Together
 from engine.compare.frontier import Emissions, NoTradeOff, frontier
 from engine.compare.stress import Stressed, stressed
 from engine.compare.stress_cases import Case, all_by, change_of, depots_lost, drawn, lanes_lost
 from engine.compare.stress_draws import Draws, spread_of
 from engine.compare.stress_whole import NotDrawn, dearest_lanes_lost, whole_today
 from engine.figures import RateKey
+from engine.planning.load_plan import Improving
 from engine.planning.planner import plan_week
 from engine.report.stress_json import stress_as_json
 from engine.report.stress_sheet import stress_sheet
@@ -119,3 +121,21 @@ def test_the_sheet_and_the_json_say_what_is_proved() -> None:
     assert head[8:10] == ("At least dearer by", "Charge for opening")
     assert next(row for row in rows if row[0] == "Rates up 10 %")[2:10:6] == (34, 34)
     assert any("searched for 2 s" in str(row[0]) for row in rows)
+
+
+def test_a_search_starts_from_an_earlier_plan_although_rows_have_gone() -> None:
+    week7 = engine.read_week(sample_data.path("loads_week.xlsx")).week
+    first, better = plan_week(week7, time_limit=0), Event()
+
+    def improved(news: Improving) -> None:
+        if news.short == 0 and news.cost < first.total_cost:
+            better.set()
+
+    plan = plan_week(week7, improved=improved, should_stop=better, time_limit=None)
+    used = {one.key for one in plan.shipments}
+    idle = next(
+        key for number in week7.rates.ids_in_order.tolist() if (key := week7.rates.key_of(number)) not in used
+    )
+    closed = week7.apply(Alter("rate", idle, "closed", True))
+    assert plan_week(closed, near=plan, time_limit=0).total_cost <= plan.total_cost < first.total_cost
+    assert plan_week(closed, time_limit=0).total_cost > plan.total_cost
