@@ -23,6 +23,9 @@ LONGEST = 10.0**7
 SMALLEST_GAP = 1e-9
 """Part of the cost that HiGHS may leave open."""
 
+PATIENCE = 0.3
+"""Seconds for HiGHS to hear a stop: it does not look while it simplifies a large model."""
+
 CHOSEN_GAP = 1e-4
 """Part of the cost that may be left open when ways are chosen: the ways are not all there are,"""
 
@@ -53,10 +56,10 @@ class Beside:
         return self.thread is not None and self.thread.is_alive()
 
     def stop(self) -> None:
-        """Ends it; returns when it has ended."""
+        """Ends it; returns when it has ended, or soon. Left to itself it ends when HiGHS next looks."""
         self.stopping.set()
         if self.thread is not None:
-            self.thread.join()
+            self.thread.join(PATIENCE)
 
 
 def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool) -> Beside:
