@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import threading
+import time
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -39,11 +40,14 @@ class Beside:
 
     open_rows: the rows in the model; all others carry what they do in `base`
     all_rows:  whether every row that may better the plan is in the model
+    of_ways:   how many ways there were, if ways are chosen; 0 if rows are planned
     """
 
     open_rows: Flags
     base: Integers
     all_rows: bool
+    of_ways: int = 0
+    begun: float = field(default_factory=time.monotonic)
     stopping: threading.Event = field(default_factory=threading.Event)
     thread: threading.Thread | None = None
     quantities: list[Integers] = field(default_factory=list)
@@ -74,7 +78,7 @@ def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool) -> Bes
         if found.quantity is not None:
             work.quantities.append(found.quantity)
 
-    work.thread = threading.Thread(target=solve, daemon=True)
+    work.thread = threading.Thread(target=solve)
     work.thread.start()
     return work
 
@@ -93,7 +97,7 @@ def choose(master: Master, best: Integers, short: Integers) -> Beside:
     solver, patterns = whole_ways(master), master.patterns
     solver.setOptionValue("mip_rel_gap", CHOSEN_GAP)
     everything = np.ones(problem.rows, dtype=np.bool_)
-    work = Beside(everything, best, False)
+    work = Beside(everything, best, False, len(patterns.customer))
 
     def add(value: Floats) -> None:
         weight = np.rint(value[master.fixed : master.fixed + len(patterns.customer)]).astype(np.int64)
@@ -104,7 +108,7 @@ def choose(master: Master, best: Integers, short: Integers) -> Beside:
     def solve() -> None:
         run_until(solver, work.stopping.is_set, CHOOSING, add)
 
-    work.thread = threading.Thread(target=solve, daemon=True)
+    work.thread = threading.Thread(target=solve)
     work.thread.start()
     return work
 

@@ -23,6 +23,9 @@ from engine.loads.tree import Tree, close_rows, mean_of, rounded, step, with_reg
 FEW_ROWS = 700
 """About so many rows are given to HiGHS first."""
 
+ROUNDS_EACH = 250
+"""Rounds of a first run per customer, if that is less than usual."""
+
 SHARE = 4.0
 """Time for rearranging, per time for the bound; less and less where it finds nothing."""
 
@@ -34,6 +37,12 @@ SHORT_RUN = 3000
 
 LONG_ENOUGH = 2.0
 """Seconds given to finding out which rows can be closed."""
+
+MORE_WAYS = 1.1
+"""So many times as many ways make it worth while to choose again,"""
+
+FIRST_TURN = 8.0
+"""when rows have been planned for so many seconds."""
 
 MORE = 3
 """So many times as many the next time, if all were not in."""
@@ -131,8 +140,11 @@ class Hunt:
     value:  what the best plan comes to in the stage
     prices: of the first bound
     asked:  about how many rows HiGHS gets next
+    heard:  what was at work beside and has ended, the last of these
+    chosen_of, turn: number of ways at the last choice, seconds before the next
     fixed:  value of the best plan when rows were closed last
-    run:    the rearranging that is under way, the runs-th, of so many rounds, for a share of the time
+    run:    the rearranging that is under way, the runs-th, of so many rounds, for a share of the time;
+            owed: seconds of it that are still due
     """
 
     tree: Tree
@@ -143,11 +155,15 @@ class Hunt:
     prices: Prices | None = None
     beside: Beside | None = None
     asked: int = FEW_ROWS
+    heard: Beside | None = None
+    chosen_of: int = 0
+    turn: float = FIRST_TURN
     fixed: int | None = None
     run: Annealing | None = None
     runs: int = 0
     rounds: int = FIRST_ROUNDS
     share: float = SHARE
+    owed: float = 0.0
     steps: int = 0
     last_told: float = field(default_factory=time.monotonic)
 
@@ -170,6 +186,7 @@ def search(
     """
     master, prices = (master_of(stage), None) if known is None else known
     hunt = Hunt(Tree(master), best, value, told, should_stop)
+    hunt.rounds = min(FIRST_ROUNDS, ROUNDS_EACH * max(1, stage.problem.customers))
     hunt.tree.push(told.bound, whole(stage), prices)
     try:
         while told.bound < value() and not should_stop():
@@ -232,12 +249,12 @@ def _from_mixture(hunt: Hunt, quantity: Integers) -> None:
 
 
 def _anneal(hunt: Hunt, seconds: float) -> None:
-    """Rearranges for a share of the time that the last step for the bound took."""
-    begun = time.monotonic()
-    while not hunt.should_stop() and hunt.told.bound < hunt.value():
+    """Rearranges for a share of the time that the steps for the bound took, a piece as soon as it is owed."""
+    hunt.owed += seconds * hunt.share
+    while hunt.owed > 0 and not hunt.should_stop() and hunt.told.bound < hunt.value():
+        begun = time.monotonic()
         _anneal_step(hunt)
-        if time.monotonic() - begun >= seconds * hunt.share:
-            return
+        hunt.owed -= time.monotonic() - begun
 
 
 def _anneal_step(hunt: Hunt) -> None:
@@ -270,10 +287,14 @@ def _beside_step(hunt: Hunt) -> None:
             _take(best, quantity)
         if ended:
             _hear(hunt, work)
-    if work is None and hunt.prices is not None and hunt.told.bound < value():
+            if work is not hunt.heard and not work.of_ways:
+                hunt.asked *= MORE
+            hunt.heard = work
+    if hunt.prices is not None and hunt.told.bound < value() and _time_to_choose(hunt):
         hunt.beside = choose(hunt.tree.master, best.quantity, short_of(best.problem, best.quantity))
+        hunt.chosen_of = hunt.beside.of_ways
         return
-    again = work is None or (ended and not work.all_rows)
+    again = work is None or (ended and (work.of_ways > 0 or not work.all_rows))
     if hunt.prices is None or not (again or hunt.fixed is None or value() < hunt.fixed):
         return
     limit = value()
@@ -287,8 +308,29 @@ def _beside_step(hunt: Hunt) -> None:
     hunt.fixed = limit
     if again and hunt.told.bound < limit:
         open_rows, complete = _open(best, reached, limit, hunt.asked)
-        hunt.asked *= MORE
         hunt.beside = start(hunt.tree.master.stage, open_rows, best.quantity, complete)
+
+
+def _time_to_choose(hunt: Hunt) -> bool:
+    """Whether ways should be chosen (again): first of all, and when rows had a turn and there are more ways.
+
+    Rows that are still being planned then are left, for a longer turn the next time.
+    """
+    work = hunt.beside
+    if work is None:
+        return True
+    many = len(hunt.tree.master.patterns.customer) >= MORE_WAYS * hunt.chosen_of
+    if work.of_ways or not many or (work.all_rows and work.optimal):
+        return False
+    if work.running:
+        if time.monotonic() - work.begun < hunt.turn:
+            return False
+        hunt.turn *= 2
+        work.stop()
+        for quantity in taken(work):
+            _take(hunt.best, quantity)
+        _hear(hunt, work)
+    return True
 
 
 def _hear(hunt: Hunt, work: Beside) -> None:
