@@ -34,6 +34,8 @@ from engine.week import Week
 MOST_AVERAGED = 10
 """With more effects than this there are too many plans to average over: 2 to their power."""
 
+MOST_NAMED = 4
+
 EVENTS = "events"
 """The effect that all named events are together."""
 
@@ -386,7 +388,9 @@ def _called(key: str, mixture: Mixture) -> tuple[str, str]:
     if key in own:
         return own[key]
     if key == EVENTS:
-        return "Events of the week", "; ".join(event.name for event in mixture.events)
+        named = [event.name for event in mixture.events]
+        more = [f"and {len(named) - MOST_NAMED} more"] if len(named) > MOST_NAMED else []
+        return "Events of the week", "; ".join([*named[:MOST_NAMED], *more])
     for number, event in enumerate(mixture.events):
         if key == event_key(number):
             return event.name, "an event of the week"
