@@ -20,7 +20,7 @@ from engine.reasons import Withheld, rate_intervals, values
 from engine.reasons.ground import APART
 from engine.report.proof_figures import check_codes, lower_bound, proof_figures
 from engine.week import Week
-from tests.planning.weeks import Outcome, best_outcome, weeks
+from tests.planning.weeks import best_outcome, outcome_of, weeks
 
 D = Decimal
 
@@ -45,19 +45,7 @@ def test_one_by_one_the_aims_come_to_what_highs_finds(week: Week) -> None:
             return
     assert expected is not None
     assert plan.model.apart == bool(plan.model.counted)
-    shorts = {one.customer: one.quantity for one in plan.short}
-    missing = tuple(
-        int(
-            sum(
-                shorts.get(c.name, D(0))
-                for c in week.customers.values()
-                if not c.may_decline and (c.priority or "C") == priority
-            )
-        )
-        for priority in ("A", "B", "C")
-    )
-    kept = int(sum(one.must_move for one in plan.unsent))
-    assert Outcome(missing, kept, int(plan.total_cost)) == expected
+    assert outcome_of(week, plan) == expected
     assert plan.proof.lower_bound == plan.total_cost
     figures = proof_figures(plan)
     assert not check_codes(plan, figures).any()  # against the limits as stated, with the prices of every aim

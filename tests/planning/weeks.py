@@ -8,6 +8,7 @@ from hypothesis import strategies as st
 from scipy.optimize import linprog
 
 from engine.figures import Customer, Depot, Hold, Order, RateKey, RateRow, Rules
+from engine.planning.plan import Plan
 from engine.week import Week
 
 D = Decimal
@@ -67,6 +68,22 @@ def weeks(draw: st.DrawFn) -> Week:
     }
     rules = Rules(charge_if_short=_maybe(draw(st.none() | st.integers(0, 5))))
     return Week.of(tuple(depots), tuple(customers), tuple(rows), rules, holds)
+
+
+def outcome_of(week: Week, plan: Plan) -> Outcome:
+    """What a plan comes to."""
+    shorts = {one.customer: one.quantity for one in plan.short}
+    missing = tuple(
+        int(
+            sum(
+                shorts.get(c.name, D(0))
+                for c in week.customers.values()
+                if not c.may_decline and (c.priority or "C") == priority
+            )
+        )
+        for priority in ("A", "B", "C")
+    )
+    return Outcome(missing, int(sum(one.must_move for one in plan.unsent)), int(plan.total_cost))
 
 
 def _maybe(value: int | None) -> Decimal | None:
