@@ -62,10 +62,6 @@ def figure(grid: Locator, heading: str, row: int) -> Decimal:
     return D(text.replace(",", "").replace("\u2212", "-"))
 
 
-def map_of(page: Page) -> Locator:
-    return page.locator('[data-testid="stDeckGlJsonChart"] canvas').first
-
-
 def sample_plan() -> engine.Plan:
     return engine.plan_week(engine.read_week(sample_data.path(sample_data.SMALL_WEEK)).week)
 
@@ -93,7 +89,7 @@ def test_a_run_is_stopped_ranked_drawn_on_the_map_and_outlives_a_refresh(
     assert figure(grid, "More short", 0) == expected.more_short(worst)
     assert figure(grid, "Dearer by", 0) == expected.dearer(worst)
     pick_row(page, 0)
-    map_of(page).wait_for(timeout=LATEST)
+    page.locator('[data-testid="stDeckGlJsonChart"] canvas').first.wait_for(timeout=LATEST)
     page.get_by_text("Who goes short", exact=True).first.wait_for(timeout=LATEST)
     assert {urlparse(url).hostname for url in requests if url.startswith("http")} == {"127.0.0.1"}
 
@@ -113,7 +109,6 @@ def test_the_trade_off_asks_for_the_factor_and_its_source(visit: Visit) -> None:
     expect(page.locator('[data-testid="stVegaLiteChart"]')).to_have_count(1)
     pick_row(page, 1)
     page.get_by_text(re.compile(r"Breakpoint 2: \d+ lanes? would change")).wait_for(timeout=LATEST)
-    map_of(page).wait_for(timeout=LATEST)
 
 
 def test_a_variant_is_made_compared_and_promoted(visit: Visit) -> None:
