@@ -44,7 +44,7 @@ def _named(word: str, quantities: dict[str, Decimal], mark: str) -> str:
     names = sorted((name for name in quantities if quantities[name]), key=lambda name: -quantities[name])
     if not names:
         return ""
-    said = ", ".join(f"{plain(name)} {number(quantities[name], mark)}" for name in names[:NAMED])
+    said = ", ".join(f"{plain(name)} ({number(quantities[name], mark)})" for name in names[:NAMED])
     more = f" and {counted(len(names) - NAMED, 'more', 'more')}" if len(names) > NAMED else ""
     return f"**{word}:** {said}{more}."
 

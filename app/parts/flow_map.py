@@ -181,8 +181,9 @@ def remarks(drawn: Drawing, short_named: int, depots_named: int) -> list[str]:
     if drawn.flows_drawn > len(drawn.lines) or any(len(mark.names) > 1 for mark in drawn.customers):
         customers = sum(len(mark.names) for mark in drawn.customers)
         said.append(
-            f"{customers} customers are drawn as {len(drawn.customers)} dots and {drawn.flows_drawn} flows as"
-            f" {len(drawn.lines)} lines: customers near each other share them. Nothing is left out."
+            f"{customers:,} customers are drawn as {len(drawn.customers):,} dots and"
+            f" {drawn.flows_drawn:,} flows as {len(drawn.lines):,} lines:"
+            " customers near each other share them. Nothing is left out."
         )
     short = sum(mark.short > 0 for mark in drawn.customers)
     if short > short_named:

@@ -7,7 +7,7 @@ import pandas as pd
 import streamlit as st
 from streamlit.elements.lib.column_types import ColumnConfig
 
-from app.parts.words import money, number, plain, quantity
+from app.parts.words import counted, money, number, plain, quantity
 from app.session import Desk
 from engine.changes import Alter, Change, Lift, SetHold, Together
 from engine.columns import RATE_COLUMNS, SEND
@@ -41,6 +41,8 @@ def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
     shown = _shown(plan, view)
     if view.name is not None:
         st.caption(_about(state, plan, view.by, view.name))
+    if state.week.gone:
+        st.caption(f"What is still to go; {counted(len(state.week.gone), 'load')} that left stand on *Gone*.")
     if len(shown) > MOST_ROWS:
         st.caption(f"The first {MOST_ROWS:,} of {len(shown):,} rows; choose a {by} to see all of its rows.")
         shown = shown[:MOST_ROWS]

@@ -181,7 +181,9 @@ def test_what_left_as_planned_is_ticked_and_recorded() -> None:
 def test_who_goes_short_is_named_beside_the_costs_and_before_a_change_is_made() -> None:
     state = with_sample()
     test = page("pages/plan.py", state)
-    assert any("**Short:** Mistletoe 190.5, Cole 9.5, Sorrel 8.5." in one.value for one in test.markdown)
+    assert any(
+        "**Short:** Mistletoe (190.5), Cole (9.5), Sorrel (8.5)." in one.value for one in test.markdown
+    )
     state.propose(Alter("depot", "Railhead", "available", Decimal(400)))
     test.run()
     (put_up,) = [one.value for one in test.markdown if "Not made yet" in one.value]
