@@ -63,8 +63,8 @@ def steady(state: Desk, plan: Plan) -> None:
             _pick(state, found)
     st.caption(
         "A lane is a depot, a customer and a haulier, changed where its quantity of the week is another. "
-        "Only plans that deliver as much as the least-cost plan, priority by priority, are compared; within a "
-        "priority others may go short, at their charges, and what is put up names them."
+        "Only plans that deliver as much as the least-cost plan, priority by priority, are compared; within "
+        "a priority others may go short, at their charges, and what is put up names them."
     )
 
 
