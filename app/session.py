@@ -33,6 +33,7 @@ class Desk:
 
     `kept` is where the week is in the records; `fresh` a week that was read and is not there yet, `unsaved`
     why not. `news` are changes of others that were not shown yet, `clashes` ours that touch theirs.
+    `itself` stands for a desk whose week is not in the records, and for no other as long as anything names it.
     """
 
     history: History = field(default_factory=lambda: History.of(Week()))
@@ -57,6 +58,7 @@ class Desk:
     clashes: tuple[Clash, ...] = ()
     issued: Issued | None = None
     searching: Searching = field(default_factory=Searching)
+    itself: object = field(default_factory=object)
 
     @property
     def week(self) -> Week:
@@ -239,7 +241,7 @@ class Desk:
     @property
     def search_key(self) -> Hashable:
         """What a search for this desk goes by: the week in the records, so that every tab finds it."""
-        return id(self) if self.kept is None else self.kept.week_id
+        return self.itself if self.kept is None else self.kept.week_id
 
     def take_best(self) -> None:
         """Show the best plan that the search has come to."""
