@@ -33,7 +33,7 @@ class Desk:
 
     `kept` is where the week is in the records; `fresh` a week that was read and is not there yet, `unsaved`
     why not. `news` are changes of others that were not shown yet, `clashes` ours that touch theirs.
-    `itself` stands for a desk whose week is not in the records, and for no other as long as anything names it.
+    `itself` stands for a desk whose week is not in the records, and for no other while anything names it.
     """
 
     history: History = field(default_factory=lambda: History.of(Week()))
