@@ -18,6 +18,14 @@ from engine.findings import Finding, Severity, stops
 from engine.history import History
 from engine.planning.near import sent_by
 
+SENDS_OTHERWISE = Finding(
+    Severity.CHECK,
+    "plan as sent",
+    "The sheet Plan does not send what the figures in this file lead to; it is compared as it stands.",
+    "Where you changed a figure in a plan's workbook, run hithe plan on it and compare what that writes.",
+    sheet="Plan",
+)
+
 
 @dataclass(frozen=True)
 class _End:
@@ -99,6 +107,7 @@ def _of_file(ctx: click.Context, file: Path) -> Side:
         as_it_was: Priced = plan
         if sent is not None and dict(sent_by(plan)) != {key: much for key, much in sent.items() if much}:
             as_it_was = usual_plan(reading.week, Rule.ACTUAL, sent, completed=None).costs
+            _tell([replace(SENDS_OTHERWISE, file=file.name)])
     except engine.NotPlannable as stopped:
         _refuse(ctx, _together(reading.findings, stopped.findings))
     except TooLarge as too_large:

@@ -161,3 +161,14 @@ def test_two_files_of_one_week_are_told_apart_by_their_names(tmp_path: Path) -> 
     assert CliRunner().invoke(main, ["plan", NOW, "--out", str(other)]).exit_code == 3
     said = CliRunner().invoke(main, ["compare", NOW, str(other)]).stdout
     assert f"Week 6 ({other}) costs the same freight as Week 6 ({NOW}): 59566.18 EUR." in said
+
+
+def test_a_figure_changed_in_the_workbook_of_a_plan_is_remarked_on(tmp_path: Path) -> None:
+    plan, changed = tmp_path / "plan.xlsx", tmp_path / "changed.xlsx"
+    CliRunner().invoke(main, ["plan", NOW, "--out", str(plan)])
+    assert "does not send what the figures" not in run(NOW, str(plan))[2]
+    book = openpyxl.load_workbook(plan)
+    assert (book["Depots"]["A2"].value, book["Depots"]["B2"].value) == ("Northgate", 810)
+    book["Depots"]["B2"] = 700
+    book.save(changed)
+    assert "check: changed.xlsx: Plan: The sheet Plan does not send what" in run(NOW, str(changed))[2]
