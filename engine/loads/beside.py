@@ -9,11 +9,9 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from engine.exact import Integers
-from engine.loads.arrays import NEVER, Answers
 from engine.loads.compact import compact, run
 from engine.loads.highs import run_until
-from engine.loads.master import Master, add_patterns, whole_ways
-from engine.loads.patterns import patterns_of
+from engine.loads.master import Master, add_plan, whole_ways
 from engine.loads.prices import Floats
 from engine.loads.problem import Flags
 from engine.loads.stage import Stage
@@ -83,17 +81,15 @@ def start(stage: Stage, open_rows: Flags, best: Integers, all_rows: bool) -> Bes
     return work
 
 
-def choose(master: Master, best: Integers, short: Integers) -> Beside:
+def choose(master: Master, best: Integers) -> Beside:
     """Begins to choose one way for every customer, of those that the linear programme has met.
 
     The programme with whole ways (Barnhart et al. 1998 price and branch); its columns hold good plans long
     before the week's own integer model has any.
-    best, short: the best plan, a way of which every customer gets as a column, and what it lacks
+    best: the best plan, a way of which every customer gets as a column
     """
     problem = master.stage.problem
-    everybody = np.arange(problem.customers, dtype=np.int64)
-    never = np.full(problem.customers, NEVER, dtype=np.int64)
-    add_patterns(master, patterns_of(master.stage, everybody, Answers(best, short, never, never)))
+    add_plan(master, best)
     solver, patterns = whole_ways(master), master.patterns
     solver.setOptionValue("mip_rel_gap", CHOSEN_GAP)
     everything = np.ones(problem.rows, dtype=np.bool_)

@@ -16,7 +16,7 @@ from scipy.sparse import coo_array
 
 from engine.exact import Integers
 from engine.loads.arrays import NEVER, Answers
-from engine.loads.cost import loads_on
+from engine.loads.cost import loads_on, short_of
 from engine.loads.highs import INFINITE, OPTIMAL, quiet
 from engine.loads.patterns import Patterns, allowed, joined, no_patterns, patterns_of
 from engine.loads.prices import Floats, Prices, answers_for, between, bound_at, no_prices
@@ -201,6 +201,15 @@ def add_patterns(master: Master, new: Patterns) -> None:
     master.patterns = joined(master.patterns, new)
 
 
+def add_plan(master: Master, quantity: Integers) -> None:
+    """Adds the ways of a plan, with which every customer can be served within all limits."""
+    problem = master.stage.problem
+    everybody = np.arange(problem.customers, dtype=np.int64)
+    never = np.full(problem.customers, NEVER, dtype=np.int64)
+    answers = Answers(quantity, short_of(problem, quantity), never, never)
+    add_patterns(master, patterns_of(master.stage, everybody, answers))
+
+
 def _loads(master: Master, patterns: Patterns) -> Floats:
     """(entries,) loads of each entry, 0 at depots without a limit."""
     problem = master.stage.problem
@@ -253,7 +262,7 @@ def settle(
     best = bound_at(stage, node, rows, best_prices, answers)
     if best is None:
         return Bounded(None, np.zeros(0), np.zeros(0), best_prices, False)
-    if not len(master.patterns.customer):
+    if len(master.patterns.customer) <= stage.problem.customers:
         everybody = np.arange(stage.problem.customers, dtype=np.int64)
         add_patterns(master, patterns_of(stage, everybody, answers))
     share = TOWARDS_BEST

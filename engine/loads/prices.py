@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from engine.exact import Integers, total
 from engine.loads.arrays import NEVER, Answers, Priced, Rows
 from engine.loads.problem import NO_LIMIT
-from engine.loads.stage import LARGEST_PRICED, Node, Stage
+from engine.loads.stage import LARGEST_PRICED, Node, Stage, most_counted
 from engine.loads.turns import cheapest, regrets_of
 
 Floats = NDArray[np.float64]
@@ -58,11 +58,13 @@ def between(one: Prices, other: Prices, share: float) -> Prices:
 
 def in_integers(stage: Stage, prices: Prices) -> list[Integers]:
     """Prices as whole numbers of the stage's scale, none so large that sums could wrap."""
-    problem = stage.problem
-    everything = total(problem.demand) + total(problem.supply) + problem.rows + 1
-    # on one row at most five prices add up
-    largest = LARGEST_PRICED // (8 * everything)
-    whole = [np.clip(np.rint(part * stage.scale), -largest, largest).astype(np.int64) for part in prices]
+    units, loads = most_counted(stage.problem)
+    counted = (units, loads, units, units, units, loads)
+    whole = []
+    for part, most in zip(prices, counted, strict=True):
+        # on one row at most five prices add up
+        largest = LARGEST_PRICED // (8 * most)
+        whole.append(np.clip(np.rint(part * stage.scale), -largest, largest).astype(np.int64))
     return [whole[0], *(np.maximum(part, 0) for part in whole[1:])]
 
 

@@ -11,9 +11,9 @@ import numpy as np
 from engine.exact import Integers
 from engine.loads.anneal import FIRST_ROUNDS, Annealing, begin, piece
 from engine.loads.beside import Beside, choose, start, taken
-from engine.loads.cost import Score, score_of, short_of
+from engine.loads.cost import Score, score_of
 from engine.loads.fit import behind, mended, serve
-from engine.loads.master import Master, master_of, settle
+from engine.loads.master import Master, add_plan, master_of, settle
 from engine.loads.prices import Floats, Prices
 from engine.loads.problem import Flags, LoadProblem
 from engine.loads.proof import NotValid, check
@@ -185,6 +185,10 @@ def search(
     known:   a programme of this stage with ways that are known already, and its prices
     """
     master, prices = (master_of(stage), None) if known is None else known
+    if master.penalty > 1:
+        master, prices = master_of(stage), None
+    # without a plan only penalties keep a programme with tight limits possible, and prices grow
+    add_plan(master, best.quantity)
     hunt = Hunt(Tree(master), best, value, told, should_stop)
     hunt.rounds = min(FIRST_ROUNDS, ROUNDS_EACH * max(1, stage.problem.customers))
     hunt.tree.push(told.bound, whole(stage), prices)
@@ -291,7 +295,7 @@ def _beside_step(hunt: Hunt) -> None:
                 hunt.asked *= MORE
             hunt.heard = work
     if hunt.prices is not None and hunt.told.bound < value() and _time_to_choose(hunt):
-        hunt.beside = choose(hunt.tree.master, best.quantity, short_of(best.problem, best.quantity))
+        hunt.beside = choose(hunt.tree.master, best.quantity)
         hunt.chosen_of = hunt.beside.of_ways
         return
     again = work is None or (ended and (work.of_ways > 0 or not work.all_rows))

@@ -9,11 +9,14 @@ import numpy as np
 
 from engine.exact import Integers, total
 from engine.loads.arrays import Rows
-from engine.loads.cost import ranks_of
+from engine.loads.cost import loads_on, ranks_of, row_costs
 from engine.loads.problem import Flags, LoadProblem
 
 LARGEST_PRICED = 2**60
 """Sums of costs and prices, multiplied by the scale, stay below this."""
+
+TIMES = 16
+"""Prices have room up to so many times what units and loads cost at most."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -106,8 +109,23 @@ def _scale(problem: LoadProblem) -> int:
         ),
         default=1,
     )
-    room = LARGEST_PRICED // (16 * dearest)
+    units, vehicles = most_counted(problem)
+    of_unit, of_load = 1, 1
+    if problem.rows:
+        amount = np.maximum(problem.most, 1)
+        cost = np.abs(row_costs(problem, amount))
+        of_unit = max(1, int((cost // amount).max()))
+        of_load = max(1, int((cost // np.maximum(loads_on(problem, amount), 1)).max()))
+    # prices may well be several times what a unit or a load costs, where limits are tight
+    largest = max(16 * int(dearest), 8 * TIMES * units * of_unit, 8 * TIMES * vehicles * of_load)
+    room = LARGEST_PRICED // largest
     return int(2 ** max(0, min(20, room.bit_length() - 1)))
+
+
+def most_counted(problem: LoadProblem) -> tuple[int, int]:
+    """How many units, and how many loads (a row counts as one at least), a price can be multiplied by."""
+    units = total(problem.demand) + total(problem.supply) + problem.rows + 1
+    return units, total(np.maximum(loads_on(problem, np.maximum(problem.most, 1)), 1)) + 1
 
 
 def _step(problem: LoadProblem, must_cost: int) -> int:
