@@ -2,6 +2,7 @@
 
 import os
 import sqlite3
+import time
 from collections import OrderedDict
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -147,7 +148,8 @@ def _sqlite(url: URL) -> Engine:
     @event.listens_for(engine, "connect")
     def prepare(connection: sqlite3.Connection, _: object) -> None:
         connection.isolation_level = None  # transactions are begun below: the driver begins them too late
-        for setting in ("journal_mode = WAL", "synchronous = FULL", "foreign_keys = ON"):
+        _keep_a_log(connection)
+        for setting in ("synchronous = FULL", "foreign_keys = ON"):
             connection.execute(f"PRAGMA {setting}").close()
         connection.create_function("lower", 1, _lower, deterministic=True)  # its own knows ASCII only
 
@@ -158,6 +160,19 @@ def _sqlite(url: URL) -> Engine:
         connection.exec_driver_sql("BEGIN IMMEDIATE" if writes else "BEGIN")
 
     return engine
+
+
+def _keep_a_log(connection: sqlite3.Connection) -> None:
+    """Sets the journal mode, for which SQLite does not always wait while another connection does the same."""
+    until = time.monotonic() + BUSY_SECONDS
+    while True:
+        try:
+            connection.execute("PRAGMA journal_mode = WAL").close()
+            return
+        except sqlite3.OperationalError as refused:
+            if refused.sqlite_errorcode & 0xFF != sqlite3.SQLITE_BUSY or time.monotonic() > until:
+                raise
+            time.sleep(0.02)
 
 
 def _lower(text: str | None) -> str | None:

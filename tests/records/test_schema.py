@@ -1,7 +1,9 @@
 """The tables: the same on both databases, brought up to date from every earlier version, never backwards."""
 
+import sqlite3
 from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
+from threading import Timer
 
 import pytest
 from alembic.autogenerate import compare_metadata
@@ -140,6 +142,18 @@ def test_several_who_open_new_records_at_once_make_them_once(place: str) -> None
     assert len(set(ids)) == 4
     for one in opened:
         one.close()
+
+
+def test_opening_waits_for_whoever_writes_first(tmp_path: Path) -> None:
+    """SQLite refuses a change of the journal mode at once while another connection has begun to write."""
+    place = tmp_path / "records.sqlite"
+    other = sqlite3.connect(place, isolation_level=None, check_same_thread=False)
+    other.execute("BEGIN IMMEDIATE")
+    later = Timer(0.3, other.rollback)
+    later.start()
+    open_records(place).close()
+    later.join()
+    other.close()
 
 
 def test_sqlite_is_kept_safely(tmp_path: Path) -> None:
