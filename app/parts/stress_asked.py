@@ -1,6 +1,6 @@
 """What to try in a stress run, as the desk types it."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from decimal import Decimal
 
 import streamlit as st
@@ -69,12 +69,8 @@ def cases_asked(state: Desk, plan: Plan) -> tuple[list[Case], float] | None:
         st.error(plain(sentence))
     if wrong:
         return None
-    cases: list[Case] = []
-    cases += depots_lost(plan) if "depots" in losses else ()
-    cases += hauliers_lost(plan) if "hauliers" in losses else ()
-    cases += lanes_lost(plan, MOST_LANES) if "lanes" in losses else ()
-    cases += [*all_by("orders", [by[0], -by[0]]), *all_by("rates", [by[1]]), *drawn(draws, number)]
-    return cases, SECONDS_A_CASE
+    cases = _lost_or_moved(plan, losses, lanes_lost(plan, MOST_LANES), by)
+    return [*cases, *drawn(draws, number)], SECONDS_A_CASE
 
 
 def _with_whole_loads(state: Desk, plan: Plan) -> tuple[list[Case], float] | None:
@@ -97,12 +93,18 @@ def _with_whole_loads(state: Desk, plan: Plan) -> tuple[list[Case], float] | Non
         st.error(plain(sentence))
     if wrong:
         return None
+    return _lost_or_moved(plan, losses, dearest_lanes_lost(plan), by), float(limit)
+
+
+def _lost_or_moved(
+    plan: Plan, losses: Sequence[str], lanes: Sequence[Case], by: Sequence[Decimal]
+) -> list[Case]:
+    """The losses that are asked for, of lanes these; then orders up and down and rates up, by percentages."""
     cases: list[Case] = []
     cases += depots_lost(plan) if "depots" in losses else ()
     cases += hauliers_lost(plan) if "hauliers" in losses else ()
-    cases += dearest_lanes_lost(plan) if "lanes" in losses else ()
-    cases += [*all_by("orders", [by[0], -by[0]]), *all_by("rates", [by[1]])]
-    return cases, float(limit)
+    cases += lanes if "lanes" in losses else ()
+    return [*cases, *all_by("orders", [by[0], -by[0]]), *all_by("rates", [by[1]])]
 
 
 def _losses(called: Mapping[str, str]) -> list[str]:

@@ -17,7 +17,7 @@ from engine.exact import canonical, places_needed, to_decimal, to_integer, total
 from engine.figures import RateKey
 from engine.planning.gone import left
 from engine.planning.model import step_of
-from engine.planning.plan import Plan
+from engine.planning.plan import Plan, Shipment
 from engine.rates import NO_CODE
 from engine.week import Week
 
@@ -64,11 +64,18 @@ def depots_lost(plan: Plan) -> tuple[Case, ...]:
 
 def lanes_lost(plan: Plan, most: int | None = None) -> tuple[Case, ...]:
     """Each lane that the plan still sends on, what carries most first; an unused lane changes nothing."""
-    carried: dict[tuple[str, str], list[Decimal]] = {}
+    return lanes_lost_by(plan, lambda shipment: shipment.quantity, most)
+
+
+def lanes_lost_by(
+    plan: Plan, weight: Callable[[Shipment], Decimal], most: int | None = None
+) -> tuple[Case, ...]:
+    """Each lane that the plan still sends on, by what its shipments weigh together, the most first."""
+    found: dict[tuple[str, str], list[Decimal]] = {}
     for shipment in plan.shipments:
         if not shipment.gone:
-            carried.setdefault((shipment.depot, shipment.customer), []).append(shipment.quantity)
-    sums = {lane: total_of(quantities) for lane, quantities in carried.items()}
+            found.setdefault((shipment.depot, shipment.customer), []).append(weight(shipment))
+    sums = {lane: total_of(amounts) for lane, amounts in found.items()}
     line = sorted(sums, key=lambda lane: -sums[lane])
     return tuple(Case("lane lost", depot=i, customer=j) for i, j in line[:most])
 

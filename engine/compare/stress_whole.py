@@ -10,7 +10,7 @@ from dataclasses import dataclass, replace
 from decimal import Decimal
 
 from engine.changes import Alter, Change, Together
-from engine.compare.stress_cases import AS_IT_IS, Case, change_of
+from engine.compare.stress_cases import AS_IT_IS, Case, change_of, lanes_lost_by
 from engine.compare.stress_solve import Outcome
 from engine.exact import TooLarge, total_of
 from engine.figures import RateKey
@@ -40,13 +40,7 @@ class WholeGround:
 
 def dearest_lanes_lost(plan: Plan, most: int = MOST_DEAREST) -> tuple[Case, ...]:
     """The lanes in use that cost most freight still to go, the dearest first."""
-    paid: dict[tuple[str, str], list[Decimal]] = {}
-    for one in plan.shipments:
-        if not one.gone:
-            paid.setdefault((one.depot, one.customer), []).append(one.payable)
-    sums = {lane: total_of(amounts) for lane, amounts in paid.items()}
-    line = sorted(sums, key=lambda lane: -sums[lane])
-    return tuple(Case("lane lost", depot=i, customer=j) for i, j in line[:most])
+    return lanes_lost_by(plan, lambda shipment: shipment.payable, most)
 
 
 def none_drawn(cases: Iterable[Case]) -> None:
