@@ -1,7 +1,9 @@
 """The rate rows of a plan as a grid: a quantity typed into it is put up as a hold, a limit as a new limit."""
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from decimal import Decimal
+from typing import Literal
 
 import pandas as pd
 import streamlit as st
@@ -22,6 +24,8 @@ from engine.planning.plan import Plan
 EVERY = "All"
 REASON = "Hold reason"
 MOST_ROWS, MOST_PLACES = 2_000, 5
+SHORT_FIGURE = 9
+"""So many characters fit a small column."""
 LIMITS = tuple(column for column in RATE_COLUMNS if column.field in ("at_least", "at_most", "closed"))
 
 
@@ -54,7 +58,7 @@ def shipments_grid(state: Desk, plan: Plan, by: str) -> None:
         hide_index=True,
         height=520,
         disabled=True if state.only_reads else [name for name in base.columns if name not in typed],
-        column_config=_config(plan),
+        column_config=_config(plan, base),
         alt="Shipments of the plan: depot, customer, haulier, quantity, rate and cost",
     )
     if state.only_reads:
@@ -100,20 +104,27 @@ def _shown(plan: Plan, view: _View) -> list[Lane]:
     return sorted(found, key=lambda lane: place[getattr(lane.key, view.by)])
 
 
-def _config(plan: Plan) -> dict[str, ColumnConfig]:
+def _wide_enough(texts: Iterable[str]) -> Literal["small"] | int:
+    """A figure that does not fit loses its first digits, and would be read as another."""
+    longest = max((len(text) for text in texts), default=0)
+    return "small" if longest <= SHORT_FIGURE else 24 + 8 * longest
+
+
+def _config(plan: Plan, frame: pd.DataFrame) -> dict[str, ColumnConfig]:
     text, rules = st.column_config.TextColumn, plan.week.rules
+    width = {name: _wide_enough(frame[name]) for name in (SEND.heading, "Rate", "Cost")}
     return {
         SEND.heading: text(
-            f"{SEND.heading}, {rules.unit}", alignment="right", width="small",
+            f"{SEND.heading}, {rules.unit}", alignment="right", width=width[SEND.heading],
             help="Type a quantity to hold it; empty the cell to lift the hold",
         ),
         "Loads": text("Loads", width=130, help="Full vehicles, and how full the last one is"),
         "Per": text("Per", width=50, help="What the rate is charged by"),
         "Rate": text(
-            f"Rate, {rules.currency}", alignment="right", width="small",
+            f"Rate, {rules.currency}", alignment="right", width=width["Rate"],
             help="Per unit, or per load where Per says so; with the surcharge",
         ),
-        "Cost": text(f"Cost, {rules.currency}", alignment="right", width="small"),
+        "Cost": text(f"Cost, {rules.currency}", alignment="right", width=width["Cost"]),
         "Held": text("Held", width="small"),
         REASON: text(REASON, help="Why the quantity is held"),
         **{c.heading: text(c.heading, help=c.about, alignment="right", width="small") for c in LIMITS},
